@@ -1,0 +1,59 @@
+// Package review holds a review as data: the studies with every number's place
+// in the sheet, the findings about them, and the plan of the analysis.
+package review
+
+import (
+	"fmt"
+	"strconv"
+)
+
+// Place says where in the reviewer's files something stands.
+type Place struct {
+	File  string // base name, never a path
+	Sheet string // blank for a text file
+	Row   int    // 1-based, as a spreadsheet program numbers it; 0 for a whole column
+	Col   int    // 1-based; 0 for a whole row
+	Text  string // the cell's text exactly as stored
+}
+
+// Cell returns the place in the style of spreadsheets: "C7", "C:C" for a column,
+// "7:7" for a row, blank when neither is known.
+func (p Place) Cell() string {
+	col, row := ColumnLetters(p.Col), strconv.Itoa(p.Row)
+	switch {
+	case p.Col > 0 && p.Row > 0:
+		return col + row
+	case p.Col > 0:
+		return col + ":" + col
+	case p.Row > 0:
+		return row + ":" + row
+	}
+	return ""
+}
+
+// String returns the full place, such as "Sheet1!C7", or "trials.csv!C7" for a
+// text file.
+func (p Place) String() string {
+	where := p.Sheet
+	if where == "" {
+		where = p.File
+	}
+	cell := p.Cell()
+	switch {
+	case where == "":
+		return cell
+	case cell == "":
+		return where
+	}
+	return fmt.Sprintf("%s!%s", where, cell)
+}
+
+// ColumnLetters returns a spreadsheet's letters of a 1-based column: 1 is A, 27
+// is AA; blank for 0.
+func ColumnLetters(col int) string {
+	var letters []byte
+	for ; col > 0; col = (col - 1) / 26 {
+		letters = append([]byte{byte('A' + (col-1)%26)}, letters...)
+	}
+	return string(letters)
+}

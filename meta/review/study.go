@@ -1,0 +1,117 @@
+package review
+
+import (
+	"fmt"
+
+	"steelyard/meta/effect"
+)
+
+// Date is a calendar date of which the day, or day and month, may be unknown
+// (zero). The zero Date is no date.
+type Date struct{ Year, Month, Day int }
+
+// String returns the date in the form of ISO 8601, as far as it is known.
+func (d Date) String() string {
+	switch {
+	case d.Year == 0:
+		return ""
+	case d.Month == 0:
+		return fmt.Sprintf("%04d", d.Year)
+	case d.Day == 0:
+		return fmt.Sprintf("%04d-%02d", d.Year, d.Month)
+	}
+	return fmt.Sprintf("%04d-%02d-%02d", d.Year, d.Month, d.Day)
+}
+
+// Compare orders dates; an unknown part sorts before a known one.
+func (d Date) Compare(e Date) int {
+	for _, diff := range []int{d.Year - e.Year, d.Month - e.Month, d.Day - e.Day} {
+		if diff != 0 {
+			return diff
+		}
+	}
+	return 0
+}
+
+// Number is one extracted number with its place in the sheet.
+type Number struct {
+	Field Field
+	Value float64
+	Place Place
+}
+
+// Study is one row of the sheet: one study's result for one outcome.
+type Study struct {
+	Name    string
+	ID      string
+	Date    Date
+	Outcome string // as typed; blank when the sheet has no such column
+	Measure effect.Measure
+	Better  Better
+	Row     Place // of the whole row
+	Numbers []Number
+	Remarks []Remark // every other filled cell: context fields and covariates
+}
+
+// Remark is the text of a context or covariate cell.
+type Remark struct {
+	Header string // as the sheet's header says; for a recognised column its field's name
+	Text   string
+	Place  Place
+}
+
+// Number returns the study's number of a field, if it has one.
+func (s *Study) Number(f Field) (Number, bool) {
+	for _, n := range s.Numbers {
+		if n.Field == f {
+			return n, true
+		}
+	}
+	return Number{}, false
+}
+
+// Remark returns the text of a context or covariate column by its folded header.
+func (s *Study) Remark(header string) (Remark, bool) {
+	for _, n := range s.Remarks {
+		if n.Header == header {
+			return n, true
+		}
+	}
+	return Remark{}, false
+}
+
+// Source identifies the input.
+type Source struct {
+	File   string // base name
+	Sheet  string // blank for text
+	SHA256 string // of the file's bytes, lower-case hex
+}
+
+// Column is a column of the sheet as it was understood.
+type Column struct {
+	Header string // as typed; two header rows joined by a blank
+	Field  Field  // NoField for a covariate
+	Place  Place
+}
+
+// Extraction is a whole sheet as read: the studies in the order of the file,
+// rows with findings included.
+type Extraction struct {
+	Source   Source
+	Columns  []Column
+	Studies  []Study
+	Findings []Finding
+}
+
+// Outcomes returns the names of the outcomes in the order of their first row.
+func (x *Extraction) Outcomes() []string {
+	var names []string
+	seen := map[string]bool{}
+	for i := range x.Studies {
+		if name := x.Studies[i].Outcome; !seen[name] {
+			seen[name] = true
+			names = append(names, name)
+		}
+	}
+	return names
+}
