@@ -29,10 +29,13 @@ const (
 	HowObtained
 	NoteField
 	Accept
-	Estimate
+	Estimate         // in the reader's unit: a ratio as a ratio
+	AnalysisEstimate // on the analysis scale: the logarithm of a ratio
 	StandardError
 	LimitLow
 	LimitHigh
+	AnalysisLow
+	AnalysisHigh
 	LimitLevel
 	PValue
 	EventsTreated
@@ -51,7 +54,7 @@ var fieldNames = choice.Of[Field]("column",
 	"", "study", "id", "registration", "date", "outcome", "comparison", "time point", "subgroup",
 	"measure", "design", "better", "cluster", "adjusted", "result type", "unit", "risk of bias",
 	"source", "how obtained", "note", "accept",
-	"estimate", "se", "ci low", "ci high", "ci level", "p",
+	"estimate", "analysis estimate", "se", "ci low", "ci high", "analysis ci low", "analysis ci high", "ci level", "p",
 	"events treated", "total treated", "events control", "total control",
 	"mean treated", "sd treated", "se treated", "mean control", "sd control", "se control")
 

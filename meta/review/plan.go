@@ -3,6 +3,8 @@ package review
 import (
 	"errors"
 	"fmt"
+	"maps"
+	"slices"
 	"strings"
 
 	"steelyard/meta"
@@ -33,7 +35,7 @@ func (f From) MarshalText() ([]byte, error) { return []byte(f.String()), nil }
 type Value struct {
 	Text   string
 	From   From
-	Cell   string // "plan!B7" for a value from the plan sheet
+	Place  Place  // of a value from the plan sheet
 	Reason string // as the plan gives it
 }
 
@@ -42,7 +44,7 @@ type Run struct {
 	Name    string
 	Outcome string            // blank for all
 	Changes map[string]string // setting → value, "where" included
-	Cell    string
+	Place   Place
 }
 
 // Plan holds the settings of an analysis: for all outcomes and for single ones.
@@ -100,17 +102,23 @@ func (p *Plan) Value(setting, outcome string) Value {
 	return Value{Text: s.Default}
 }
 
-// Outcomes returns the folded names of the outcomes that have settings of their
-// own.
-func (p *Plan) Outcomes() map[string]bool {
-	named := map[string]bool{}
-	for key := range p.values {
-		if key.outcome != "" {
-			named[key.outcome] = true
+// Outcomes returns the outcomes that have settings of their own, as folded names
+// in order, each with the place of one of its settings.
+func (p *Plan) Outcomes() (names []string, places map[string]Place) {
+	places = map[string]Place{}
+	for key, v := range p.values {
+		if key.outcome == "" {
+			continue
+		}
+		if old, seen := places[key.outcome]; !seen || before(v.Place, old) {
+			places[key.outcome] = v.Place
 		}
 	}
-	return named
+	return slices.Sorted(maps.Keys(places)), places
 }
+
+// before reports whether a stands before b in reading order.
+func before(a, b Place) bool { return a.Row < b.Row || (a.Row == b.Row && a.Col < b.Col) }
 
 // Analysis is the typed form of the settings for one outcome.
 type Analysis struct {

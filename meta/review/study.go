@@ -2,7 +2,9 @@ package review
 
 import (
 	"fmt"
+	"strconv"
 
+	"steelyard/meta/choice"
 	"steelyard/meta/effect"
 )
 
@@ -114,4 +116,34 @@ func (x *Extraction) Outcomes() []string {
 		}
 	}
 	return names
+}
+
+// Cell returns the text of a column by its folded name, for filters: identity
+// first, then numbers, then context and covariates. It is blank where the row has
+// nothing.
+func (s *Study) Cell(column string) string {
+	switch column {
+	case "study":
+		return s.Name
+	case "id":
+		return s.ID
+	case "date", "year":
+		if column == "year" && s.Date.Year != 0 {
+			return strconv.Itoa(s.Date.Year)
+		}
+		return s.Date.String()
+	case "outcome":
+		return s.Outcome
+	}
+	for _, n := range s.Numbers {
+		if choice.Fold(n.Field.String()) == column {
+			return n.Place.Text
+		}
+	}
+	for _, r := range s.Remarks {
+		if choice.Fold(r.Header) == column {
+			return r.Text
+		}
+	}
+	return ""
 }

@@ -1,0 +1,122 @@
+package synthesis
+
+import (
+	"fmt"
+	"math"
+
+	"steelyard/meta"
+	"steelyard/meta/evidence"
+	"steelyard/meta/numeric"
+	"steelyard/meta/review"
+)
+
+// pool fits the model and what stands beside it.
+func (o *Outcome) pool(asked review.Analysis) error {
+	y, s := make([]float64, len(o.Studies)), make([]float64, len(o.Studies))
+	for i, study := range o.Studies {
+		y[i], s[i] = study.Estimate.Y, study.Estimate.SE
+	}
+	fit, err := o.Analysis.Model.Fit(y, s)
+	if err != nil {
+		return o.explain(err)
+	}
+	o.Analysis.Model = fit.Model
+	o.Result = &Result{Fit: fit, Other: otherFit(asked.Model, fit.Model.Null, y, s)}
+	for i := range o.Studies {
+		study := &o.Studies[i]
+		study.Weight = fit.Weights[i]
+		study.Interval.Low, study.Interval.High = studyInterval(study.Estimate, fit.Model.Level)
+		study.Evidence = evidence.Normal((study.Estimate.Y - fit.Model.Null) / study.Estimate.SE)
+	}
+	for _, prior := range o.Analysis.Prior {
+		o.Result.Posterior = append(o.Result.Posterior, Belief{Prior: prior, Posterior: evidence.Posterior(prior, fit.Mean.Evidence)})
+	}
+	o.Result.DoubtersPrior = Belief{Prior: evidence.DoubtersPrior(fit.Mean.Evidence, believed), Posterior: believed}
+	o.Result.Regions, err = o.regions()
+	return err
+}
+
+// explain names the study that a model's complaint is about.
+func (o *Outcome) explain(err error) error {
+	if input, ok := err.(*meta.InputError); ok && input.Index >= 0 && input.Index < len(o.Studies) {
+		row := o.Studies[input.Index].Source
+		return fmt.Errorf("%s (%s): %w", row.Name, row.Row, err)
+	}
+	return err
+}
+
+// otherFit returns the fit of the effects model that was not asked for, with the
+// default methods where the asked ones belong to the other model; nil for a
+// single study, where both are the same.
+func otherFit(asked meta.Model, null float64, y, s []float64) *meta.Fit {
+	if len(y) < 2 {
+		return nil
+	}
+	other := asked
+	other.Null = null
+	other.Effects = meta.CommonEffect
+	other.Interval = meta.DefaultInterval
+	if asked.Effects == meta.CommonEffect {
+		other.Effects = meta.RandomEffects
+	}
+	if asked.Interval == meta.ProfileLikelihood || asked.Interval == meta.HenmiCopas {
+		other.Tau = meta.DefaultTau
+	}
+	fit, err := other.Fit(y, s)
+	if err != nil {
+		return nil
+	}
+	return fit
+}
+
+// regions weighs benefit, trivial effect and harm; nil without an important
+// difference.
+func (o *Outcome) regions() ([]Region, error) {
+	zone := o.Analysis.Important
+	if zone == nil {
+		return nil, nil
+	}
+	below, above := "lower", "higher"
+	switch o.Analysis.Better {
+	case review.BetterLower:
+		below, above = "benefit", "harm"
+	case review.BetterHigher:
+		below, above = "harm", "benefit"
+	}
+	regions := []Region{
+		{Name: below, Low: math.Inf(-1), High: zone.Low},
+		{Name: "trivial", Low: zone.Low, High: zone.High},
+		{Name: above, Low: zone.High, High: math.Inf(1)},
+	}
+	location := o.Result.Fit.Mean.Location()
+	for i := range regions {
+		r := &regions[i]
+		here := evidence.Region{{Low: r.Low, High: r.High}}
+		ratio, err := location.Region(here, here.Complement())
+		if err != nil {
+			return nil, fmt.Errorf("important: %w", err)
+		}
+		r.Evidence, r.LnM, r.Posterior = ratio, location.LnM(here), location.Posterior(here)
+		r.Settings = o.settingsWithin(r.Low, r.High)
+	}
+	return regions, nil
+}
+
+// settingsWithin returns the predicted share of settings whose true effect lies
+// between low and high: the distribution behind the prediction interval (Higgins,
+// Thompson & Spiegelhalter 2009). It is −1 when there is none.
+func (o *Outcome) settingsWithin(low, high float64) float64 {
+	fit := o.Result.Fit
+	if fit.Prediction == nil {
+		return -1
+	}
+	center := fit.Mean.Estimate
+	half := (fit.Prediction.High - fit.Prediction.Low) / 2
+	df := fit.Prediction.DF
+	scale := half / numeric.StudentCritical(1-fit.Model.Level, df)
+	if !(scale > 0) {
+		return -1
+	}
+	tail := func(x float64) float64 { return numeric.StudentTail((x-center)/scale, df) }
+	return tail(low) - tail(high)
+}

@@ -1,0 +1,120 @@
+package synthesis
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"steelyard/meta"
+	"steelyard/meta/effect"
+	"steelyard/meta/review"
+)
+
+// settle decides what the outcome measures and puts the null and the thresholds
+// on the analysis scale.
+func (o *Outcome) settle(asked review.Analysis, rows []*review.Study) error {
+	measure, err := o.measure(asked, rows)
+	if err != nil {
+		return err
+	}
+	o.Analysis = Analysis{
+		Measure:    measure,
+		Better:     o.better(asked.Better, rows),
+		Model:      asked.Model,
+		Prior:      asked.Prior,
+		Correction: asked.Correction,
+	}
+	null := measure.Null()
+	if asked.Null != nil {
+		null = *asked.Null
+	}
+	if o.Analysis.Model.Null, err = effect.FromReader(measure, null); err != nil {
+		return fmt.Errorf("null: %w", err)
+	}
+	o.Analysis.Important, err = important(measure, asked.Important, o.Analysis.Model.Null)
+	return err
+}
+
+// measure returns the plan's measure, else the one all rows state, else what
+// their numbers suggest, saying so in a note.
+func (o *Outcome) measure(asked review.Analysis, rows []*review.Study) (effect.Measure, error) {
+	if asked.MeasureSet {
+		return asked.Measure, nil
+	}
+	stated := map[effect.Measure]string{}
+	bases := map[Basis]bool{}
+	var names []string
+	for _, row := range rows {
+		if row.Measure != effect.Unspecified {
+			if _, seen := stated[row.Measure]; !seen {
+				names = append(names, fmt.Sprintf("%s (%s)", row.Measure, row.Name))
+			}
+			stated[row.Measure] = row.Name
+		}
+		bases[basisOf(row)] = true
+	}
+	switch len(stated) {
+	case 1:
+		for m := range stated {
+			return m, nil
+		}
+	case 0:
+	default:
+		return 0, fmt.Errorf("the rows state different measures: %s; pool one measure at a time, or choose with --measure where the numbers allow it", strings.Join(names, ", "))
+	}
+	switch {
+	case bases[FromCounts]:
+		o.note("No measure is stated: counts are pooled as a risk ratio. Choose another with --measure.")
+		return effect.RiskRatio, nil
+	case bases[FromMeans]:
+		o.note("No measure is stated: means are pooled as a mean difference. Choose another with --measure.")
+		return effect.MeanDifference, nil
+	}
+	o.note("No measure is stated: estimates are pooled as they stand, on a linear scale. State one with --measure if they are ratios.")
+	return effect.Unspecified, nil
+}
+
+func (o *Outcome) note(sentence string) { o.Notes = append(o.Notes, sentence) }
+
+// better returns the plan's direction, else the one all rows state.
+func (o *Outcome) better(asked review.Better, rows []*review.Study) review.Better {
+	if asked != review.BetterUnknown {
+		return asked
+	}
+	found := review.BetterUnknown
+	for _, row := range rows {
+		switch {
+		case row.Better == review.BetterUnknown:
+		case found == review.BetterUnknown:
+			found = row.Better
+		case found != row.Better:
+			o.note("The rows state different directions (better: lower and higher); none is assumed. Check that all scales point the same way.")
+			return review.BetterUnknown
+		}
+	}
+	return found
+}
+
+// important puts the important difference on the analysis scale: one value is
+// mirrored at the null.
+func important(m effect.Measure, values []float64, null float64) (*meta.Limits, error) {
+	if len(values) == 0 {
+		return nil, nil
+	}
+	scaled := make([]float64, 0, 2)
+	for _, v := range values {
+		y, err := effect.FromReader(m, v)
+		if err != nil {
+			return nil, fmt.Errorf("important: %w", err)
+		}
+		scaled = append(scaled, y)
+	}
+	if len(scaled) == 1 {
+		scaled = append(scaled, 2*null-scaled[0])
+	}
+	zone := meta.Limits{Low: math.Min(scaled[0], scaled[1]), High: math.Max(scaled[0], scaled[1])}
+	if !(zone.Low < null && null < zone.High) {
+		return nil, fmt.Errorf("important: the differences must lie on both sides of the null, such as 0.8 (mirrored as 1.25) or \"0.8, 1.2\" around 1")
+	}
+	return &zone, nil
+}

@@ -1,0 +1,282 @@
+// Package synthesis runs a planned analysis over an extraction: it turns each
+// row's numbers into an effect, pools every outcome, weighs the evidence, and
+// says what was left out and why. It also writes the results as JSON.
+package synthesis
+
+import (
+	"context"
+	"fmt"
+	"strings"
+
+	"steelyard/meta"
+	"steelyard/meta/choice"
+	"steelyard/meta/effect"
+	"steelyard/meta/evidence"
+	"steelyard/meta/review"
+)
+
+// Want says which outcomes are asked for; none named means all.
+type Want struct {
+	Outcomes []string
+}
+
+// Synthesis is the result of an analysis. Every output prints its numbers.
+type Synthesis struct {
+	Source   review.Source
+	Plan     *review.Plan
+	Findings []review.Finding // of the sheet and of the analysis
+	Cautions []string
+	Outcomes []Outcome
+}
+
+// Outcome is one pooled outcome.
+type Outcome struct {
+	Name     string
+	Analysis Analysis
+	Counts   Counts
+	Studies  []Study // pooled, in the order of the sheet
+	Excluded []Excluded
+	Result   *Result // nil when nothing could be pooled; Problem then says why
+	Problem  string
+	Notes    []string // what was assumed, in sentences
+}
+
+// Analysis is what was settled before pooling, null and thresholds on the
+// analysis scale.
+type Analysis struct {
+	Measure    effect.Measure
+	Better     review.Better
+	Model      meta.Model
+	Important  *meta.Limits // the trivial zone's limits; nil without an important difference
+	Prior      []float64
+	Correction effect.Correction
+}
+
+// Counts counts an outcome's rows and people.
+type Counts struct {
+	Rows         int // of this outcome, after the filter
+	Participants int // in the pooled rows that state totals
+	Events       int // in the pooled rows that state events
+	Corrected    int // pooled tables with a zero cell that was corrected
+	Wrong        int // rows left out because of an error
+}
+
+// Study is one pooled row.
+type Study struct {
+	Source      *review.Study
+	Estimate    effect.Estimate
+	Interval    meta.Limits
+	Weight      float64
+	Evidence    evidence.Ratio // normal form, of this study alone
+	Basis       Basis
+	Conversions []effect.Conversion
+	Corrected   bool // a zero cell was corrected
+}
+
+// Excluded is a row that was not pooled.
+type Excluded struct {
+	Study  string
+	Place  review.Place
+	Reason string
+	Wrong  bool // an error of the sheet, not the plan's or the measure's choice
+}
+
+// Result is what pooling gave.
+type Result struct {
+	Fit           *meta.Fit
+	Other         *meta.Fit // the effects model that was not chosen
+	Posterior     []Belief
+	DoubtersPrior Belief // Posterior is the level, Prior the doubter's prior
+	Regions       []Region
+}
+
+// Belief is a probability of an effect before and after the data.
+type Belief struct{ Prior, Posterior float64 }
+
+// believed is the posterior probability that the doubter's prior refers to.
+const believed = 0.95
+
+// Region is a range of the mean effect with what the data say of it.
+type Region struct {
+	Name      string // "benefit", "trivial", "harm"; "lower", "trivial", "higher" when no direction is better
+	Low, High float64
+	LnM       float64        // ln of the mean of the likelihood over the region's own posterior, relative
+	Posterior float64        // share of the reference posterior in the region
+	Evidence  evidence.Ratio // for the region against all other values
+	Settings  float64        // predicted share of settings whose true effect lies in it; negative if unknown
+}
+
+// Run pools the wanted outcomes of an extraction by the plan. It returns an
+// error if a wanted outcome does not occur, if the plan cannot be read, or if ctx
+// ends; an outcome that cannot be pooled carries its own Problem.
+func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want) (*Synthesis, error) {
+	names, err := wanted(x, want)
+	if err != nil {
+		return nil, err
+	}
+	s := &Synthesis{Source: x.Source, Plan: plan, Findings: append([]review.Finding(nil), x.Findings...)}
+	s.Findings = append(s.Findings, strayPlan(x, plan)...)
+	blocked := blockedRows(x.Findings)
+	for _, name := range names {
+		if err := ctx.Err(); err != nil {
+			return nil, err
+		}
+		o, err := s.outcome(x, plan, name, blocked)
+		if err != nil {
+			return nil, err
+		}
+		s.Outcomes = append(s.Outcomes, *o)
+	}
+	s.Cautions = cautions(s)
+	return s, nil
+}
+
+// wanted resolves the names of the outcomes asked for.
+func wanted(x *review.Extraction, want Want) ([]string, error) {
+	all := x.Outcomes()
+	if len(want.Outcomes) == 0 {
+		return all, nil
+	}
+	var names []string
+	for _, name := range want.Outcomes {
+		found := false
+		for _, have := range all {
+			if choice.Fold(have) == choice.Fold(name) {
+				names, found = append(names, have), true
+				break
+			}
+		}
+		if !found {
+			return nil, &choice.UnknownError{What: "outcome of this sheet", Text: name, Valid: all}
+		}
+	}
+	return names, nil
+}
+
+// strayPlan warns of plan rows for outcomes that the sheet does not have.
+func strayPlan(x *review.Extraction, plan *review.Plan) []review.Finding {
+	have := map[string]bool{}
+	for _, name := range x.Outcomes() {
+		have[choice.Fold(name)] = true
+	}
+	var stray []review.Finding
+	names, places := plan.Outcomes()
+	for _, name := range names {
+		if !have[name] {
+			stray = append(stray, review.Finding{
+				Severity: review.Warning, Rule: "plan", Place: places[name], Outcome: name,
+				Message: fmt.Sprintf("the plan has settings for an outcome %q that no row of the sheet has; the outcomes are: %s", name, strings.Join(x.Outcomes(), ", ")),
+			})
+		}
+	}
+	return stray
+}
+
+type rowKey struct {
+	sheet string
+	row   int
+}
+
+// blockedRows returns the first blocking finding of each row.
+func blockedRows(findings []review.Finding) map[rowKey]review.Finding {
+	blocked := map[rowKey]review.Finding{}
+	for _, f := range findings {
+		key := rowKey{f.Place.Sheet, f.Place.Row}
+		if _, have := blocked[key]; !have && f.Blocks() && f.Place.Row > 0 {
+			blocked[key] = f
+		}
+	}
+	return blocked
+}
+
+// outcome pools one outcome.
+func (s *Synthesis) outcome(x *review.Extraction, plan *review.Plan, name string, blocked map[rowKey]review.Finding) (*Outcome, error) {
+	asked, err := plan.Analysis(name)
+	if err != nil {
+		return nil, fmt.Errorf("outcome %q: %w", name, err)
+	}
+	o := &Outcome{Name: name}
+	rows := o.rows(x, asked.Where, blocked)
+	if f, refused := refusal(x.Findings, name); refused {
+		o.Problem = f.Message
+		return o, nil
+	}
+	if err := o.settle(asked, rows); err != nil {
+		o.Problem = err.Error()
+		return o, nil
+	}
+	s.Findings = append(s.Findings, o.derive(rows)...)
+	if len(o.Studies) == 0 {
+		o.Problem = o.nothingLeft()
+		return o, nil
+	}
+	o.count()
+	if err := o.pool(asked); err != nil {
+		o.Problem = err.Error()
+	}
+	return o, nil
+}
+
+// rows returns the rows of the outcome that may be pooled, and lists the others.
+func (o *Outcome) rows(x *review.Extraction, where *review.Filter, blocked map[rowKey]review.Finding) []*review.Study {
+	var rows []*review.Study
+	for i := range x.Studies {
+		row := &x.Studies[i]
+		if row.Outcome != o.Name {
+			continue
+		}
+		if where != nil && !where.Match(row.Cell) {
+			o.exclude(row, fmt.Sprintf("left out by the filter %q", where), false)
+			continue
+		}
+		o.Counts.Rows++
+		if f, bad := blocked[rowKey{row.Row.Sheet, row.Row.Row}]; bad {
+			o.exclude(row, f.Message, true)
+			continue
+		}
+		rows = append(rows, row)
+	}
+	return rows
+}
+
+func (o *Outcome) exclude(row *review.Study, reason string, wrong bool) {
+	o.Excluded = append(o.Excluded, Excluded{Study: row.Name, Place: row.Row, Reason: reason, Wrong: wrong})
+	if wrong {
+		o.Counts.Wrong++
+	}
+}
+
+// refusal returns the finding that keeps a whole outcome from being pooled: an
+// error of a column, or of the outcome itself.
+func refusal(findings []review.Finding, outcome string) (review.Finding, bool) {
+	for _, f := range findings {
+		if f.Blocks() && f.Place.Row == 0 && (f.Outcome == "" || choice.Fold(f.Outcome) == choice.Fold(outcome)) {
+			return f, true
+		}
+	}
+	return review.Finding{}, false
+}
+
+func (o *Outcome) nothingLeft() string {
+	if len(o.Excluded) == 0 {
+		return "there is no row to pool"
+	}
+	return fmt.Sprintf("none of %d rows can be pooled; the first: %s", len(o.Excluded), o.Excluded[0].Reason)
+}
+
+func (o *Outcome) count() {
+	for i := range o.Studies {
+		study := &o.Studies[i]
+		for _, n := range study.Source.Numbers {
+			switch n.Field {
+			case review.TotalTreated, review.TotalControl:
+				o.Counts.Participants += int(n.Value)
+			case review.EventsTreated, review.EventsControl:
+				o.Counts.Events += int(n.Value)
+			}
+		}
+		if study.Corrected {
+			o.Counts.Corrected++
+		}
+	}
+}
