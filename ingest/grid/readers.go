@@ -17,7 +17,3 @@ func refuseForeign(data []byte, name string) error {
 func readWorkbook(ctx context.Context, data []byte, book *Book) error {
 	return &FileError{File: book.File, Problem: "is a workbook, which is not read", Remedy: "save it as .csv"}
 }
-
-func readText(ctx context.Context, data []byte, book *Book) error {
-	return &FileError{File: book.File, Problem: "is a text file, which is not read", Remedy: "save it as .xlsx"}
-}
