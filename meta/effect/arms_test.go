@@ -89,6 +89,15 @@ func TestFromArmsByHand(t *testing.T) {
 	}
 }
 
+// Source: ln(1+x) = x − x²/2 + x³/3 at x = 1e-9; the difference of two logarithms
+// would keep seven digits of it.
+func TestRatioOfMeansNearOne(t *testing.T) {
+	e, _, err := FromArms(RatioOfMeans, Arm{Mean: 1e9 + 1, SD: 1, N: 10}, Arm{Mean: 1e9, SD: 1, N: 10})
+	if err != nil || !relative(e.Y, 1e-9-0.5e-18, 1e-14) {
+		t.Errorf("%v, %v; want 9.999999995e-10", e.Y, err)
+	}
+}
+
 // gamma32 is J at 32 degrees of freedom: 15!·2¹⁵ / (4·29!!·√π).
 var gamma32 = 1307674368000 * 32768 / (4 * 6190283353629375 * math.Sqrt(math.Pi))
 
