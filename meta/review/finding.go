@@ -28,6 +28,9 @@ func (s *Severity) UnmarshalText(text []byte) (err error) {
 	return err
 }
 
+// RulePlan is the rule of findings about the plan.
+const RulePlan = "plan"
+
 // Finding is something in the sheet or the plan that a person should look at.
 type Finding struct {
 	Severity Severity

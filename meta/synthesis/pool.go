@@ -83,12 +83,17 @@ func (o *Outcome) regions() ([]Region, error) {
 	case review.BetterHigher:
 		below, above = "harm", "benefit"
 	}
+	return regionsOf(o.Result.Fit.Mean.Location(), *zone, below, above, o.settingsWithin)
+}
+
+// regionsOf weighs the ranges below, within and above a zone, each against all
+// other values; settings gives the predicted share of settings in a range.
+func regionsOf(location evidence.Location, zone meta.Limits, below, above string, settings func(low, high float64) float64) ([]Region, error) {
 	regions := []Region{
 		{Name: below, Low: math.Inf(-1), High: zone.Low},
 		{Name: "trivial", Low: zone.Low, High: zone.High},
 		{Name: above, Low: zone.High, High: math.Inf(1)},
 	}
-	location := o.Result.Fit.Mean.Location()
 	for i := range regions {
 		r := &regions[i]
 		here := evidence.Region{{Low: r.Low, High: r.High}}
@@ -97,7 +102,7 @@ func (o *Outcome) regions() ([]Region, error) {
 			return nil, fmt.Errorf("important: %w", err)
 		}
 		r.Evidence, r.LnM, r.Posterior = ratio, location.LnM(here), location.Posterior(here)
-		r.Settings = o.settingsWithin(r.Low, r.High)
+		r.Settings = settings(r.Low, r.High)
 	}
 	return regions, nil
 }

@@ -164,7 +164,7 @@ func strayPlan(x *review.Extraction, plan *review.Plan) []review.Finding {
 	for _, name := range names {
 		if !have[name] {
 			stray = append(stray, review.Finding{
-				Severity: review.Warning, Rule: "plan", Place: places[name], Outcome: name,
+				Severity: review.Warning, Rule: review.RulePlan, Place: places[name], Outcome: name,
 				Message: fmt.Sprintf("the plan has settings for an outcome %q that no row of the sheet has; the outcomes are: %s", name, strings.Join(x.Outcomes(), ", ")),
 			})
 		}
@@ -173,6 +173,7 @@ func strayPlan(x *review.Extraction, plan *review.Plan) []review.Finding {
 }
 
 type rowKey struct {
+	file  string
 	sheet string
 	row   int
 }
@@ -181,7 +182,7 @@ type rowKey struct {
 func blockedRows(findings []review.Finding) map[rowKey]review.Finding {
 	blocked := map[rowKey]review.Finding{}
 	for _, f := range findings {
-		key := rowKey{f.Place.Sheet, f.Place.Row}
+		key := rowKey{f.Place.File, f.Place.Sheet, f.Place.Row}
 		if _, have := blocked[key]; !have && f.Blocks() && f.Place.Row > 0 {
 			blocked[key] = f
 		}
@@ -230,7 +231,7 @@ func (o *Outcome) rows(x *review.Extraction, where *review.Filter, blocked map[r
 			continue
 		}
 		o.Counts.Rows++
-		if f, bad := blocked[rowKey{row.Row.Sheet, row.Row.Row}]; bad {
+		if f, bad := blocked[rowKey{row.Row.File, row.Row.Sheet, row.Row.Row}]; bad {
 			o.exclude(row, f.Message, true)
 			continue
 		}
@@ -247,10 +248,11 @@ func (o *Outcome) exclude(row *review.Study, reason string, wrong bool) {
 }
 
 // refusal returns the finding that keeps a whole outcome from being pooled: an
-// error of a column, or of the outcome itself.
+// error of the plan, of a column, or of the outcome itself.
 func refusal(findings []review.Finding, outcome string) (review.Finding, bool) {
 	for _, f := range findings {
-		if f.Blocks() && f.Place.Row == 0 && (f.Outcome == "" || choice.Fold(f.Outcome) == choice.Fold(outcome)) {
+		concerns := f.Outcome == "" || choice.Fold(f.Outcome) == choice.Fold(outcome)
+		if f.Blocks() && concerns && (f.Rule == review.RulePlan || f.Place.Row == 0) {
 			return f, true
 		}
 	}

@@ -1,0 +1,62 @@
+# steelyard: build, try, test. "make" or "make help" lists the targets.
+SHELL := /bin/bash -o pipefail
+export GOFLAGS := -buildvcs=false
+
+VERSION := $(shell git describe --tags --always --dirty 2>/dev/null || echo unreleased)
+FUZZCOUNT ?= 20000x
+
+.DEFAULT_GOAL := help
+.PHONY: help build demo test race check fuzz bench golden dist clean
+
+help: ## list the targets
+	@awk -F ':.*## ' '/^[a-z]+:.*## / { printf "  make %-8s %s\n", $$1, $$2 }' $(MAKEFILE_LIST)
+
+build: ## build ./steelyard
+	go build -trimpath -ldflags "-s -w -X main.version=$(VERSION)" -o steelyard ./cmd/steelyard
+
+demo: build ## pool the published BCG trials and an invented workbook; charts go to out/
+	@mkdir -p out
+	./steelyard pool testdata/checks/bcg_counts.csv
+	./steelyard pool testdata/demo.xlsx
+	./steelyard chart forest testdata/checks/bcg_counts.csv --out out/bcg.svg --overwrite
+	./steelyard chart forest testdata/demo.xlsx --outcome "flare within 24 weeks" --out out/demo.svg --overwrite
+	./steelyard chart forest testdata/demo.xlsx --outcome "flare within 24 weeks" --out out/demo.pdf --overwrite
+	./steelyard chart forest testdata/demo.xlsx --outcome "flare within 24 weeks" --out out/demo.png --overwrite
+
+test: ## run every test
+	go test ./...
+
+race: ## run every test under the race detector
+	go test -race ./...
+
+check: ## formatting, vet, tidiness, static analysis, imports
+	@unformatted="$$(gofmt -l .)"; if [ -n "$$unformatted" ]; then echo "gofmt would change: $$unformatted"; exit 1; fi
+	go vet ./... ./testdata/demo
+	GOOS=windows go vet ./...
+	go mod tidy -diff
+	go tool staticcheck ./...
+	go test -count=1 -run TestRooms ./cmd/steelyard
+
+fuzz: ## every fuzz target for FUZZCOUNT inputs each (default 20000x)
+	@set -e; for package in $$(go list ./...); do \
+	  for target in $$(go test -list '^Fuzz' $$package | grep '^Fuzz' || true); do \
+	    echo "$$package $$target"; \
+	    go test -run '^$$' -fuzz "^$$target$$" -fuzztime $(FUZZCOUNT) $$package; \
+	  done; \
+	done
+
+bench: ## every benchmark, in the form that benchstat reads
+	go test -run '^$$' -bench . -benchmem ./...
+
+golden: ## rewrite the golden files and the README's transcript and figures, to be looked at before they are committed
+	go test ./... -run 'Golden|Readme' -update
+
+dist: ## cross-build for Linux, Windows and macOS into dist/
+	@set -e; mkdir -p dist; for target in linux/amd64 linux/arm64 windows/amd64 darwin/arm64 darwin/amd64; do \
+	  suffix=; case $$target in windows/*) suffix=.exe;; esac; \
+	  echo "dist/steelyard-$${target/\//-}$$suffix"; \
+	  CGO_ENABLED=0 GOOS=$${target%/*} GOARCH=$${target#*/} go build -trimpath -ldflags "-s -w -X main.version=$(VERSION)" -o dist/steelyard-$${target/\//-}$$suffix ./cmd/steelyard; \
+	done
+
+clean: ## remove what the targets above made
+	rm -rf steelyard steelyard.exe out dist

@@ -1,0 +1,77 @@
+package main
+
+import (
+	"fmt"
+	"io"
+	"path/filepath"
+
+	"github.com/urfave/cli/v2"
+
+	"steelyard/ingest"
+	"steelyard/meta/review"
+	"steelyard/meta/synthesis"
+)
+
+// mostInput bounds what is read from standard input, in bytes.
+const mostInput = 200 << 20
+
+// analyse reads the call's file and runs the plan over it.
+func analyse(c *cli.Context) (*synthesis.Synthesis, error) {
+	path, err := oneFile(c)
+	if err != nil {
+		return nil, err
+	}
+	x, plan, err := readSheet(c, path)
+	if err != nil {
+		return nil, err
+	}
+	if err := applySettings(c, plan); err != nil {
+		return nil, err
+	}
+	s, err := synthesis.Run(c.Context, x, plan, synthesis.Want{Outcomes: c.StringSlice(flagOutcome)})
+	if err != nil && len(c.StringSlice(flagOutcome)) > 0 && c.Context.Err() == nil {
+		return nil, &callError{"--outcome: " + err.Error()}
+	}
+	return s, err
+}
+
+// readSheet reads a file, or standard input for "-".
+func readSheet(c *cli.Context, path string) (*review.Extraction, *review.Plan, error) {
+	options := ingest.Options{Sheet: c.String(flagSheet), Columns: map[string]string{}}
+	for _, text := range c.StringSlice(flagColumn) {
+		field, header, err := ingest.ParseColumn(text)
+		if err != nil {
+			return nil, nil, &callError{"--column: " + err.Error()}
+		}
+		options.Columns[field] = header
+	}
+	if path != "-" {
+		return ingest.Open(c.Context, path, options)
+	}
+	data, err := io.ReadAll(io.LimitReader(c.App.Reader, mostInput+1))
+	switch {
+	case err != nil:
+		return nil, nil, &fileError{fmt.Errorf("standard input: %w", err)}
+	case len(data) > mostInput:
+		return nil, nil, &fileError{fmt.Errorf("standard input is larger than %d MB; save it as a file and name that", mostInput>>20)}
+	}
+	return ingest.Read(c.Context, data, "standard input", options)
+}
+
+// incomplete returns rowsLeftOut if an outcome has no result or misses rows
+// because the sheet or the plan is wrong.
+func incomplete(s *synthesis.Synthesis) error {
+	for _, o := range s.Outcomes {
+		if o.Result == nil || o.Counts.Wrong > 0 {
+			return &rowsLeftOut{}
+		}
+	}
+	return nil
+}
+
+// sameFile reports whether an output would replace the input.
+func sameFile(input, output string) bool {
+	a, errA := filepath.Abs(input)
+	b, errB := filepath.Abs(output)
+	return errA == nil && errB == nil && a == b
+}

@@ -1,0 +1,105 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"strings"
+
+	"github.com/urfave/cli/v2"
+)
+
+// version is set by the Makefile from the source's tag.
+var version = "0.1"
+
+// streams are where a command reads and writes.
+type streams struct {
+	in       io.Reader
+	out, err io.Writer
+}
+
+// run executes one call and returns its exit code.
+func run(ctx context.Context, args []string, s streams) int {
+	app := newApp(s)
+	arranged, err := arrange(app, args)
+	if err == nil {
+		err = app.RunContext(ctx, arranged)
+	}
+	if ctx.Err() != nil {
+		fmt.Fprintln(s.err, "steelyard: interrupted; nothing was written")
+		return codeInterrupted
+	}
+	var partial *rowsLeftOut
+	if err != nil && !errors.As(err, &partial) {
+		fmt.Fprintf(s.err, "steelyard: %s\n", err)
+	}
+	return exitCode(err)
+}
+
+func newApp(s streams) *cli.App {
+	app := &cli.App{
+		Name:                      "steelyard",
+		Usage:                     "pool published studies and weigh the evidence",
+		Version:                   version,
+		Reader:                    s.in,
+		Writer:                    s.out,
+		ErrWriter:                 s.err,
+		HideHelpCommand:           true,
+		CustomAppHelpTemplate:     appHelp,
+		DisableSliceFlagSeparator: true,
+		Commands: []*cli.Command{
+			poolCommand(),
+			weighCommand(),
+			chartCommand(),
+		},
+		Action: func(c *cli.Context) error {
+			if c.NArg() > 0 {
+				return unknownCommand(c.App, c.Args().First())
+			}
+			return cli.ShowAppHelp(c)
+		},
+		ExitErrHandler: func(*cli.Context, error) {},
+		OnUsageError:   usageError,
+	}
+	for _, command := range app.Commands {
+		prepare(command)
+	}
+	return app
+}
+
+// prepare gives a command and its subcommands the same manners.
+func prepare(command *cli.Command) {
+	command.OnUsageError = usageError
+	command.HideHelpCommand = true
+	command.CustomHelpTemplate = strings.ReplaceAll(commandHelp(command), "{{", `{{"{{"}}`)
+	for _, sub := range command.Subcommands {
+		prepare(sub)
+	}
+}
+
+func usageError(c *cli.Context, err error, _ bool) error {
+	text := strings.TrimPrefix(err.Error(), "flag provided but not defined: ")
+	if text != err.Error() {
+		return unknownFlag(c.Command, text)
+	}
+	return &callError{fmt.Sprintf("%s; see: steelyard %s --help", err, c.Command.FullName())}
+}
+
+const appHelp = `{{.Name}} - {{.Usage}}
+
+USAGE
+  {{.Name}} COMMAND [FLAGS] FILE
+
+  A sheet of extracted results in; a pooled effect, its evidence and its chart out.
+  Start with: steelyard pool FILE
+
+COMMANDS{{range .VisibleCommands}}
+  {{printf "%-10s" .Name}}{{.Usage}}{{end}}
+
+  {{.Name}} COMMAND --help explains a command and its flags.
+
+EXIT CODES
+  0 done    1 the data or plan is wrong, or rows were left out    2 the call is wrong
+  3 a file could not be read or written    130 interrupted
+`

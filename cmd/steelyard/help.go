@@ -1,0 +1,67 @@
+package main
+
+import (
+	"fmt"
+	"strings"
+	"unicode/utf8"
+
+	"github.com/urfave/cli/v2"
+)
+
+// helpWidth is the widest line of a help text.
+const helpWidth = 96
+
+// commandHelp returns a command's help text.
+func commandHelp(c *cli.Command) string {
+	var b strings.Builder
+	fmt.Fprintf(&b, "steelyard %s - %s\n\nUSAGE\n  %s\n", c.FullName(), c.Usage, c.UsageText)
+	if c.Description != "" {
+		fmt.Fprintf(&b, "\n%s\n", c.Description)
+	}
+	if len(c.Subcommands) > 0 {
+		b.WriteString("\nKINDS\n")
+		for _, sub := range c.Subcommands {
+			b.WriteString(entry(sub.Name, sub.Usage, 12))
+		}
+	}
+	if len(c.Flags) > 0 {
+		b.WriteString("\nFLAGS (before or after the file)\n")
+		for _, flag := range c.Flags {
+			if documented, ok := flag.(cli.DocGenerationFlag); ok {
+				b.WriteString(entry("--"+flag.Names()[0], documented.GetUsage(), 16))
+			}
+		}
+	}
+	return b.String()
+}
+
+// entry formats a term with its explanation, wrapped and indented.
+func entry(term, text string, indent int) string {
+	lines := wrap(text, helpWidth-indent-2)
+	out := fmt.Sprintf("  %-*s%s\n", indent, term, lines[0])
+	for _, line := range lines[1:] {
+		out += strings.Repeat(" ", indent+2) + line + "\n"
+	}
+	return out
+}
+
+// wrap breaks text at blanks into lines of at most width runes; a longer word
+// has a line of its own. It returns at least one line.
+func wrap(text string, width int) []string {
+	var lines []string
+	line, used := "", 0
+	for _, word := range strings.Fields(text) {
+		n := utf8.RuneCountInString(word)
+		if used > 0 && used+1+n > width {
+			lines = append(lines, line)
+			line, used = "", 0
+		}
+		if used > 0 {
+			line += " "
+			used++
+		}
+		line += word
+		used += n
+	}
+	return append(lines, line)
+}

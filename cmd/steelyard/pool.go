@@ -1,0 +1,48 @@
+package main
+
+import (
+	"encoding/json"
+	"slices"
+
+	"github.com/urfave/cli/v2"
+)
+
+func poolCommand() *cli.Command {
+	return &cli.Command{
+		Name:      "pool",
+		Usage:     "pool the studies of a sheet: effect, interval, evidence",
+		UsageText: "steelyard pool FILE [flags]",
+		Description: "FILE is a workbook (.xlsx) or a text file (.csv, .tsv); - reads text from standard input.\n" +
+			"One row per study and outcome. A sheet named \"plan\", or NAME.plan.csv beside a text file,\n" +
+			"holds settings; flags go before it.",
+		Flags:  slices.Concat(sheetFlags(), settingFlags("pool"), []cli.Flag{formatFlag()}, outputFlags()),
+		Action: pool,
+	}
+}
+
+func pool(c *cli.Context) error {
+	wantJSON, err := jsonWanted(c)
+	if err != nil {
+		return err
+	}
+	s, err := analyse(c)
+	if err != nil {
+		return err
+	}
+	content := []byte(answer(s))
+	if wantJSON {
+		if content, err = indented(s.Document(version)); err != nil {
+			return err
+		}
+	}
+	if err := deliver(c, content); err != nil {
+		return err
+	}
+	return incomplete(s)
+}
+
+// indented returns a value as JSON for reading, with a line end.
+func indented(v any) ([]byte, error) {
+	content, err := json.MarshalIndent(v, "", "  ")
+	return append(content, '\n'), err
+}

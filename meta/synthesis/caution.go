@@ -1,0 +1,74 @@
+package synthesis
+
+import (
+	"fmt"
+
+	"steelyard/meta/review"
+)
+
+// cautions returns the short cautions that belong under these results, general
+// ones first.
+func cautions(s *Synthesis) []string {
+	all := []string{
+		"Decision support only: it does not replace a qualified methodologist, clinicians or your body's own procedures, which prevail. Not for decisions on one patient.",
+		"No result can be better than its studies and its sheet: bias, selective reporting and missing trials are not corrected, and a clean check does not mean correct data. Have a second person check every number.",
+		"The evidence ratio says how well the data agree with an effect against none under this model: not the probability that a treatment works, no statement of size, harm or certainty. Against no effect it can reach 2.33 : 1 at most.",
+	}
+	var few, random, corrected, converted bool
+	for i := range s.Outcomes {
+		o := &s.Outcomes[i]
+		if o.Result == nil {
+			continue
+		}
+		k := o.Result.Fit.Mean.K
+		few = few || k < 5
+		random = random || (o.Result.Fit.Prediction != nil)
+		corrected = corrected || o.Counts.Corrected > 0
+		for _, study := range o.Studies {
+			converted = converted || study.Converted(o)
+		}
+	}
+	if random {
+		all = append(all, "The mean is an average over studies; a given setting may differ: read the prediction interval.")
+	}
+	if few {
+		all = append(all, "With fewer than 5 studies τ², I² and the prediction interval are very uncertain, and τ² = 0 does not show that the studies agree.")
+	}
+	if corrected {
+		all = append(all, "Some tables have a zero cell: interval and p may be off; compare methods made for sparse tables.")
+	}
+	if converted {
+		all = append(all, "Converted numbers (marked †) rest on assumptions; see the result without them.")
+	}
+	if n := overrides(s.Findings); n > 0 {
+		all = append(all, fmt.Sprintf("%d flagged finding(s) were accepted against advice; their reasons stand with the findings.", n))
+	}
+	return all
+}
+
+func overrides(findings []review.Finding) int {
+	n := 0
+	for _, f := range findings {
+		if f.Accepted != "" {
+			n++
+		}
+	}
+	return n
+}
+
+// Converted reports whether a study's effect was taken as reported while others
+// of the outcome come from counts or means, or needed a correction.
+func (s Study) Converted(o *Outcome) bool {
+	if s.Corrected {
+		return true
+	}
+	if s.Basis == FromCounts || s.Basis == FromMeans {
+		return false
+	}
+	for i := range o.Studies {
+		if b := o.Studies[i].Basis; b == FromCounts || b == FromMeans {
+			return true
+		}
+	}
+	return false
+}

@@ -1,0 +1,215 @@
+package synthesis
+
+// Document is the JSON of a synthesis, version steelyard/1. Estimates are on the
+// analysis scale, evidence is the natural log of the ratio for an effect over
+// none; what does not apply is absent.
+type Document struct {
+	Format   string                  `json:"format"`
+	Program  ProgramDocument         `json:"program"`
+	Source   SourceDocument          `json:"source"`
+	Plan     map[string]PlanDocument `json:"plan"`
+	Findings []FindingDocument       `json:"findings"`
+	Cautions []string                `json:"cautions"`
+	Outcomes []OutcomeDocument       `json:"outcomes"`
+}
+
+// ProgramDocument names the program that computed the results.
+type ProgramDocument struct {
+	Version string `json:"version"`
+}
+
+// SourceDocument identifies the input.
+type SourceDocument struct {
+	File   string `json:"file"`
+	Sheet  string `json:"sheet,omitempty"`
+	SHA256 string `json:"sha256"`
+}
+
+// PlanDocument is a setting for all outcomes with its origin.
+type PlanDocument struct {
+	Value  string `json:"value"`
+	From   string `json:"from"`
+	Cell   string `json:"cell,omitempty"`
+	Reason string `json:"reason,omitempty"`
+}
+
+// FindingDocument is a finding with its place.
+type FindingDocument struct {
+	Severity string `json:"severity"`
+	Rule     string `json:"rule,omitempty"`
+	Sheet    string `json:"sheet,omitempty"`
+	Cell     string `json:"cell,omitempty"`
+	Study    string `json:"study,omitempty"`
+	Outcome  string `json:"outcome,omitempty"`
+	Message  string `json:"message"`
+	Accepted string `json:"accepted,omitempty"`
+}
+
+// OutcomeDocument is one outcome.
+type OutcomeDocument struct {
+	Outcome      string               `json:"outcome"`
+	Measure      string               `json:"measure,omitempty"`
+	Scale        string               `json:"scale,omitempty"`
+	Better       string               `json:"better,omitempty"`
+	K            int                  `json:"k"`
+	Rows         int                  `json:"rows"`
+	Participants int                  `json:"participants,omitempty"`
+	Events       int                  `json:"events,omitempty"`
+	Problem      string               `json:"problem,omitempty"`
+	Notes        []string             `json:"notes,omitempty"`
+	Excluded     []ExcludedDocument   `json:"excluded"`
+	Conversions  []ConversionDocument `json:"conversions"`
+	*ResultDocument
+	Studies []StudyDocument `json:"studies"`
+}
+
+// ResultDocument is what pooling gave; its parts stand in the outcome itself.
+type ResultDocument struct {
+	Plan          map[string]PlanDocument `json:"plan,omitempty"`
+	Pooled        PooledDocument          `json:"pooled"`
+	Other         *PooledDocument         `json:"other_effects,omitempty"`
+	Tau           *TauDocument            `json:"tau,omitempty"`
+	Heterogeneity *HeterogeneityDocument  `json:"heterogeneity,omitempty"`
+	Prediction    *PredictionDocument     `json:"prediction,omitempty"`
+	Posterior     []PosteriorDocument     `json:"posterior"`
+	Doubter       DoubterDocument         `json:"doubters_prior"`
+	Regions       []RegionDocument        `json:"regions,omitempty"`
+	Caveats       []string                `json:"caveats,omitempty"`
+}
+
+// ExcludedDocument is a row that was not pooled.
+type ExcludedDocument struct {
+	Study  string `json:"study"`
+	Cell   string `json:"cell"`
+	Reason string `json:"reason"`
+}
+
+// ConversionDocument is one step from extracted numbers to an effect.
+type ConversionDocument struct {
+	Study  string             `json:"study"`
+	What   string             `json:"what"`
+	From   map[string]float64 `json:"from"`
+	To     map[string]float64 `json:"to"`
+	Source string             `json:"source"`
+}
+
+// EvidenceDocument is an evidence ratio.
+type EvidenceDocument struct {
+	LnEvidence float64 `json:"ln_evidence"`
+	Steps      float64 `json:"steps"`
+}
+
+// PooledDocument is a pooled mean with the methods that gave it.
+type PooledDocument struct {
+	Effects  string  `json:"effects"`
+	Method   string  `json:"method"`
+	Tau      string  `json:"tau,omitempty"`
+	Interval string  `json:"interval"`
+	Level    float64 `json:"level"`
+	Null     float64 `json:"null"`
+	MeanDocument
+	EvidenceFormDocument
+	Display DisplayDocument `json:"display"`
+}
+
+// MeanDocument holds the numbers of a pooled mean. DF is absent for a normal
+// statistic; LnP is always there, P where it does not underflow.
+type MeanDocument struct {
+	Estimate  float64  `json:"estimate"`
+	SE        float64  `json:"se"`
+	Statistic float64  `json:"statistic"`
+	DF        *float64 `json:"df,omitempty"`
+	P         float64  `json:"p"`
+	LnP       float64  `json:"ln_p"`
+	Low       float64  `json:"ci_low"`
+	High      float64  `json:"ci_high"`
+}
+
+// EvidenceFormDocument is the evidence beside a pooled mean.
+type EvidenceFormDocument struct {
+	Evidence string `json:"evidence"`
+	EvidenceDocument
+	Word    string `json:"word"`
+	Favours string `json:"favours"`
+}
+
+// DisplayDocument repeats an estimate as a reader sees it; a ratio too large for
+// a float64 is absent.
+type DisplayDocument struct {
+	Estimate *float64 `json:"estimate,omitempty"`
+	Low      *float64 `json:"ci_low,omitempty"`
+	High     *float64 `json:"ci_high,omitempty"`
+	Unit     string   `json:"unit"`
+}
+
+// TauDocument is the between-study variance with its limits.
+type TauDocument struct {
+	Tau2 float64 `json:"tau2"`
+	Low  float64 `json:"tau2_low"`
+	High float64 `json:"tau2_high"`
+}
+
+// HeterogeneityDocument says how the estimates scatter.
+type HeterogeneityDocument struct {
+	Q     float64       `json:"q"`
+	DF    int           `json:"df"`
+	P     float64       `json:"p"`
+	I2Q   ShareDocument `json:"i2_q"`
+	I2Tau ShareDocument `json:"i2_tau"`
+	H2    float64       `json:"h2"`
+	H2Tau float64       `json:"h2_tau"`
+	EvidenceDocument
+}
+
+// ShareDocument is a fraction with limits.
+type ShareDocument struct {
+	Value float64 `json:"value"`
+	Low   float64 `json:"low"`
+	High  float64 `json:"high"`
+}
+
+// PredictionDocument is the prediction interval.
+type PredictionDocument struct {
+	Low     float64  `json:"low"`
+	High    float64  `json:"high"`
+	DF      *float64 `json:"df,omitempty"`
+	Method  string   `json:"method"`
+	Widened bool     `json:"widened,omitempty"`
+}
+
+// PosteriorDocument is a probability of an effect before and after the data.
+type PosteriorDocument struct {
+	Prior     float64 `json:"prior"`
+	Posterior float64 `json:"posterior"`
+}
+
+// DoubterDocument is the prior below which the posterior stays under the level.
+type DoubterDocument struct {
+	Level float64 `json:"level"`
+	Prior float64 `json:"prior"`
+}
+
+// RegionDocument is a range of the mean effect; an absent limit is infinite.
+type RegionDocument struct {
+	Name      string   `json:"name"`
+	Low       *float64 `json:"low,omitempty"`
+	High      *float64 `json:"high,omitempty"`
+	LnM       float64  `json:"ln_m"`
+	Posterior float64  `json:"posterior"`
+	EvidenceDocument
+	Settings *float64 `json:"settings,omitempty"`
+}
+
+// StudyDocument is one pooled study.
+type StudyDocument struct {
+	Study      string  `json:"study"`
+	Date       string  `json:"date,omitempty"`
+	Estimate   float64 `json:"estimate"`
+	SE         float64 `json:"se"`
+	Low        float64 `json:"ci_low"`
+	High       float64 `json:"ci_high"`
+	Weight     float64 `json:"weight"`
+	LnEvidence float64 `json:"ln_evidence"`
+	Place      string  `json:"place"`
+	Converted  bool    `json:"converted"`
+}

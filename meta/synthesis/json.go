@@ -1,0 +1,201 @@
+package synthesis
+
+import (
+	"math"
+
+	"steelyard/meta"
+	"steelyard/meta/effect"
+	"steelyard/meta/evidence"
+	"steelyard/meta/review"
+)
+
+// Format names the version of the JSON.
+const Format = "steelyard/1"
+
+// Document returns the synthesis as its JSON structure; version is the
+// program's.
+func (s *Synthesis) Document(version string) Document {
+	d := Document{
+		Format:   Format,
+		Program:  ProgramDocument{Version: version},
+		Source:   SourceDocument{File: s.Source.File, Sheet: s.Source.Sheet, SHA256: s.Source.SHA256},
+		Plan:     planDocument(s.Plan, ""),
+		Findings: FindingDocuments(s.Findings),
+		Cautions: s.Cautions,
+		Outcomes: []OutcomeDocument{},
+	}
+	for i := range s.Outcomes {
+		d.Outcomes = append(d.Outcomes, s.Outcomes[i].document(s.Plan))
+	}
+	return d
+}
+
+func planDocument(plan *review.Plan, outcome string) map[string]PlanDocument {
+	all := map[string]PlanDocument{}
+	for _, setting := range review.Settings() {
+		v := plan.Value(setting.Name, outcome)
+		if v.Text != "" {
+			all[setting.Name] = PlanDocument{Value: v.Text, From: v.From.String(), Cell: v.Place.String(), Reason: v.Reason}
+		}
+	}
+	return all
+}
+
+// FindingDocuments returns findings as they stand in the JSON.
+func FindingDocuments(findings []review.Finding) []FindingDocument {
+	all := []FindingDocument{}
+	for _, f := range findings {
+		all = append(all, FindingDocument{
+			Severity: f.Severity.String(), Rule: f.Rule, Sheet: f.Place.Sheet, Cell: f.Place.Cell(),
+			Study: f.Study, Outcome: f.Outcome, Message: f.Message, Accepted: f.Accepted,
+		})
+	}
+	return all
+}
+
+func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
+	d := OutcomeDocument{
+		Outcome: o.Name, K: len(o.Studies), Rows: o.Counts.Rows,
+		Participants: o.Counts.Participants, Events: o.Counts.Events,
+		Problem: o.Problem, Notes: o.Notes, Better: o.Analysis.Better.String(),
+		Excluded: []ExcludedDocument{}, Conversions: []ConversionDocument{}, Studies: []StudyDocument{},
+	}
+	for _, e := range o.Excluded {
+		d.Excluded = append(d.Excluded, ExcludedDocument{Study: e.Study, Cell: e.Place.String(), Reason: e.Reason})
+	}
+	if o.Result == nil {
+		return d
+	}
+	d.Measure, d.Scale = o.Analysis.Measure.String(), "linear"
+	if o.Analysis.Measure.Log() {
+		d.Scale = "log"
+	}
+	for _, study := range o.Studies {
+		d.Conversions = append(d.Conversions, conversionDocuments(study)...)
+		d.Studies = append(d.Studies, StudyDocument{
+			Study: study.Source.Name, Date: study.Source.Date.String(),
+			Estimate: study.Estimate.Y, SE: study.Estimate.SE,
+			Low: study.Interval.Low, High: study.Interval.High,
+			Weight: study.Weight, LnEvidence: study.Evidence.Ln(),
+			Place: study.Source.Row.String(), Converted: study.Converted(o),
+		})
+	}
+	d.ResultDocument = o.resultDocument(plan)
+	return d
+}
+
+func conversionDocuments(study Study) []ConversionDocument {
+	var all []ConversionDocument
+	for _, c := range study.Conversions {
+		all = append(all, ConversionDocument{
+			Study: study.Source.Name, What: c.What, Source: c.Source,
+			From: namedValues(c.From), To: namedValues(c.To),
+		})
+	}
+	return all
+}
+
+func namedValues(values []effect.Value) map[string]float64 {
+	named := make(map[string]float64, len(values))
+	for _, v := range values {
+		named[v.Name] = v.Value
+	}
+	return named
+}
+
+func (o *Outcome) resultDocument(plan *review.Plan) *ResultDocument {
+	r, fit := o.Result, o.Result.Fit
+	d := &ResultDocument{
+		Pooled:    o.pooledDocument(fit),
+		Posterior: []PosteriorDocument{},
+		Doubter:   DoubterDocument{Level: r.DoubtersPrior.Posterior, Prior: r.DoubtersPrior.Prior},
+	}
+	if own := planDocument(plan, o.Name); o.Name != "" {
+		d.Plan = own
+	}
+	if r.Other != nil {
+		other := o.pooledDocument(r.Other)
+		d.Other = &other
+	}
+	if fit.Mean.K > 1 {
+		if fit.Model.Effects == meta.RandomEffects {
+			d.Tau = &TauDocument{Tau2: fit.Mean.Tau2, Low: fit.Tau2.Low, High: fit.Tau2.High}
+		}
+		d.Heterogeneity = heterogeneityDocument(fit.Heterogeneity)
+	}
+	if p := fit.Prediction; p != nil {
+		d.Prediction = &PredictionDocument{Low: p.Low, High: p.High, DF: finite(p.DF), Method: p.Method.String(), Widened: p.Widened}
+	}
+	for _, b := range r.Posterior {
+		d.Posterior = append(d.Posterior, PosteriorDocument(b))
+	}
+	for _, region := range r.Regions {
+		d.Regions = append(d.Regions, region.document())
+	}
+	for _, c := range fit.Caveats {
+		d.Caveats = append(d.Caveats, c.Text())
+	}
+	return d
+}
+
+func (r Region) document() RegionDocument {
+	d := RegionDocument{
+		Name: r.Name, Low: finite(r.Low), High: finite(r.High), LnM: r.LnM, Posterior: r.Posterior,
+		EvidenceDocument: evidenceDocument(r.Evidence),
+	}
+	if r.Settings >= 0 {
+		d.Settings = &r.Settings
+	}
+	return d
+}
+
+func heterogeneityDocument(h meta.Heterogeneity) *HeterogeneityDocument {
+	return &HeterogeneityDocument{
+		Q: h.Q, DF: h.DF, P: math.Exp(h.LnP),
+		I2Q: ShareDocument(h.I2Q), I2Tau: ShareDocument(h.I2Tau),
+		H2: h.H2, H2Tau: h.H2Tau, EvidenceDocument: evidenceDocument(h.Evidence),
+	}
+}
+
+func (o *Outcome) pooledDocument(fit *meta.Fit) PooledDocument {
+	m := fit.Mean
+	d := PooledDocument{
+		Effects: fit.Model.Effects.String(), Method: review.InverseVariance.String(),
+		Interval: fit.Model.Interval.String(), Level: fit.Model.Level, Null: fit.Model.Null,
+		MeanDocument: meanDocument(m),
+		EvidenceFormDocument: EvidenceFormDocument{
+			Evidence: fit.Model.Evidence.String(), EvidenceDocument: evidenceDocument(m.Evidence),
+			Word: m.Evidence.Word().String(), Favours: m.Evidence.Favours().String(),
+		},
+		Display: DisplayDocument{
+			Estimate: finite(effect.ToReader(o.Analysis.Measure, m.Estimate)),
+			Low:      finite(effect.ToReader(o.Analysis.Measure, m.Low)),
+			High:     finite(effect.ToReader(o.Analysis.Measure, m.High)),
+			Unit:     o.Analysis.Measure.String(),
+		},
+	}
+	if fit.Model.Effects == meta.RandomEffects {
+		d.Tau = fit.Model.Tau.String()
+	}
+	return d
+}
+
+func meanDocument(m meta.Mean) MeanDocument {
+	return MeanDocument{
+		Estimate: m.Estimate, SE: m.SE, Statistic: m.Statistic, DF: finite(m.DF),
+		P: math.Exp(m.LnP), LnP: m.LnP, Low: m.Low, High: m.High,
+	}
+}
+
+func evidenceDocument(r evidence.Ratio) EvidenceDocument {
+	return EvidenceDocument{LnEvidence: r.Ln(), Steps: r.Steps()}
+}
+
+// finite returns a pointer to x, or nil for an infinite one, which JSON leaves
+// out.
+func finite(x float64) *float64 {
+	if math.IsInf(x, 0) {
+		return nil
+	}
+	return &x
+}
