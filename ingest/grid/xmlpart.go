@@ -1,0 +1,205 @@
+package grid
+
+import (
+	"encoding/xml"
+	"io"
+	"slices"
+	"strings"
+)
+
+// mainNamespaces are those of the transitional and of the strict form of the
+// workbook format (ISO/IEC 29500).
+var mainNamespaces = []string{
+	"http://schemas.openxmlformats.org/spreadsheetml/2006/main",
+	"http://purl.oclc.org/ooxml/spreadsheetml/main",
+}
+
+// maxDepth is how deep elements may nest; workbooks need less than ten.
+const maxDepth = 64
+
+// xmlPart reads one XML part strictly: well formed, one root, no document type.
+type xmlPart struct {
+	archive *archive
+	part    string
+	sheet   string
+	place   string // where reading stands, for messages
+	r       *partReader
+	d       *xml.Decoder
+	spaces  []string // namespaces whose elements are read
+	depth   int
+}
+
+// read opens a part, demands its root element, has body read the root's content
+// and reads on to the very end, where the checksum is.
+func (a *archive) read(part, sheet string, spaces []string, root string, body func(*xmlPart) error) error {
+	r, err := a.open(part)
+	if err != nil {
+		err.(*FileError).Sheet = sheet
+		return err
+	}
+	defer r.close()
+	x := &xmlPart{archive: a, part: part, sheet: sheet, r: r, d: xml.NewDecoder(r), spaces: spaces}
+	if err := x.document(root, body); err != nil {
+		e := a.explain(part, err)
+		if e.Sheet == "" {
+			e.Sheet = sheet
+		}
+		if x.place != "" && (e.Place == "" || strings.HasPrefix(e.Place, "line ")) {
+			e.Place = x.place
+		}
+		return e
+	}
+	return nil
+}
+
+func (x *xmlPart) document(root string, body func(*xmlPart) error) error {
+	e, err := x.root()
+	if err != nil {
+		return err
+	}
+	if !x.knows(e) || e.Name.Local != root {
+		return x.refuse("does not begin with the element <" + root + "> of a workbook")
+	}
+	if err := body(x); err != nil {
+		return err
+	}
+	for {
+		token, err := x.token()
+		if err == io.EOF {
+			return nil
+		}
+		if err != nil {
+			return err
+		}
+		switch t := token.(type) {
+		case xml.StartElement:
+			return x.refuse("goes on after its end")
+		case xml.CharData:
+			if strings.TrimSpace(string(t)) != "" {
+				return x.refuse("goes on after its end")
+			}
+		}
+	}
+}
+
+// root returns the root element.
+func (x *xmlPart) root() (xml.StartElement, error) {
+	for {
+		token, err := x.token()
+		switch t := token.(type) {
+		case xml.StartElement:
+			return t, nil
+		case xml.CharData:
+			if text := strings.TrimLeft(string(t), "\ufeff \t\r\n"); text != "" {
+				return xml.StartElement{}, x.refuse("does not begin as XML")
+			}
+		}
+		switch {
+		case err == io.EOF:
+			return xml.StartElement{}, x.refuse("is empty")
+		case err != nil:
+			return xml.StartElement{}, err
+		}
+	}
+}
+
+func (x *xmlPart) refuse(problem string) *FileError {
+	e := x.archive.refuse(x.part, problem)
+	e.Sheet, e.Place = x.sheet, x.place
+	return e
+}
+
+// token returns the next token; it refuses document types and deep nesting.
+func (x *xmlPart) token() (xml.Token, error) {
+	x.r.begin()
+	token, err := x.d.Token()
+	if err != nil {
+		return nil, err
+	}
+	switch token.(type) {
+	case xml.StartElement:
+		if x.depth++; x.depth > maxDepth {
+			return nil, x.refuse("nests elements too deep")
+		}
+	case xml.EndElement:
+		x.depth--
+	case xml.Directive:
+		return nil, x.refuse("declares a document type, which no workbook needs")
+	}
+	return token, nil
+}
+
+// inside returns the next token within an open element, where the part may not end.
+func (x *xmlPart) inside() (xml.Token, error) {
+	token, err := x.token()
+	if err == io.EOF {
+		err = io.ErrUnexpectedEOF
+	}
+	return token, err
+}
+
+// knows reports whether an element belongs to a namespace that is read.
+func (x *xmlPart) knows(e xml.StartElement) bool { return slices.Contains(x.spaces, e.Name.Space) }
+
+// children calls visit for every child element of the current element, up to
+// and with its end; visit must read to the child's end. Elements of other
+// namespaces are passed over.
+func (x *xmlPart) children(visit func(xml.StartElement) error) error {
+	for {
+		token, err := x.inside()
+		if err != nil {
+			return err
+		}
+		switch t := token.(type) {
+		case xml.EndElement:
+			return nil
+		case xml.StartElement:
+			if x.knows(t) {
+				err = visit(t)
+			} else {
+				err = x.skip()
+			}
+			if err != nil {
+				return err
+			}
+		}
+	}
+}
+
+// skip passes over the current element.
+func (x *xmlPart) skip() error {
+	for end := x.depth - 1; x.depth > end; {
+		if _, err := x.inside(); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// content returns the text of the current element without that of its children.
+func (x *xmlPart) content() ([]byte, error) {
+	var text []byte
+	for end := x.depth - 1; x.depth > end; {
+		token, err := x.inside()
+		if err != nil {
+			return nil, err
+		}
+		if t, ok := token.(xml.CharData); ok && x.depth == end+1 {
+			text = append(text, t...)
+		}
+	}
+	return text, nil
+}
+
+// attribute returns an attribute without namespace, blank if there is none.
+func attribute(e xml.StartElement, name string) string {
+	for i := range e.Attr {
+		if e.Attr[i].Name.Local == name && e.Attr[i].Name.Space == "" {
+			return e.Attr[i].Value
+		}
+	}
+	return ""
+}
+
+// truth reads an XML boolean; absent is false.
+func truth(text string) bool { return text == "1" || text == "true" }
