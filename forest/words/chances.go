@@ -39,7 +39,7 @@ func oddsSize(x float64) string {
 	switch {
 	case rounded(x, 1) < 10:
 		return Linear(x, 1)
-	case rounded(x, 0) < 1000:
+	case x < 1000:
 		return Linear(x, 0)
 	}
 	return Linear(100*math.Round(x/100), 0)
@@ -134,7 +134,7 @@ func AbsoluteInterval(low, high float64) string {
 		return Missing
 	}
 	near, far := min(low, high), max(low, high)
-	if rounded(near, 0) > 0 && near < 0 && rounded(far, 0) > 0 && far > 0 {
+	if near < 0 && far > 0 && rounded(far, 0) > 0 {
 		return Interval(fewerOrMore(near), fewerOrMore(far))
 	}
 	if math.Abs(near) > math.Abs(far) {

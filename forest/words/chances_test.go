@@ -117,18 +117,21 @@ func TestAbsolute(t *testing.T) {
 		{"rule: limits in any order", Absolute(-82, -33, -122), "82 fewer (33 to 122 fewer)"},
 		{"rule: none", Absolute(0.2, -12, 30), "0 (12 fewer to 30 more)"},
 		{"rule: a limit shown as none", Absolute(-15, -30, 0.3), "15 fewer (0 to 30 fewer)"},
+		{"rule: a limit shown as none", Absolute(10, -0.3, 30), "10 more (0 to 30 more)"},
 		{"rule: thousands", Absolute(-1000, -1000, -999.6), "1,000 fewer (1,000 to 1,000 fewer)"},
 		{"rule: no number", Absolute(math.NaN(), 1, math.NaN()), Missing + " (" + Missing + ")"},
 	})
 }
 
 func TestNumberNeeded(t *testing.T) {
+	// Risks in variables: 1/(0.3−0.2) is then 10.000000000000002.
+	a, b := 0.3, 0.2
 	check(t, []row{
 		{"style", NumberNeeded(12.2, 8.2, 30.3), "13 (9 to 31)"},
 		// GRADE guidelines 6, J Clin Epidemiol 2011;64:1283-1293 [seen]: 1.3%
 		// (0.6 to 2.0) is 77 (50 to 167).
 		{"published", NumberNeeded(1/0.013, 1/0.006, 1/0.02), "77 (50 to 167)"},
-		{"rule: rounding errors are not rounded up", NumberNeeded(1/(0.3-0.2), 1/(0.4-0.2), 1/(0.3-0.25)), "10 (5 to 20)"},
+		{"rule: rounding errors are not rounded up", NumberNeeded(1/(a-b), 5, 20), "10 (5 to 20)"},
 		{"rule: no number", NumberNeeded(math.NaN(), 1, 2), Missing + " (1 to 2)"},
 	})
 }
