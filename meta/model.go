@@ -179,6 +179,8 @@ type Mean struct {
 	Tau2      float64 // between-study variance used for the weights; 0 for a common effect
 	Q         float64 // Cochran's Q
 	Evidence  evidence.Ratio
+
+	location evidence.Location // what Location returns
 }
 
 // Fit is a pooled result with all that belongs beside it.

@@ -1,0 +1,90 @@
+package meta
+
+import (
+	"fmt"
+
+	"steelyard/meta/numeric"
+)
+
+// rootTolerance is the relative accuracy asked of iterative roots.
+const rootTolerance = 1e-12
+
+// estimateTau2 returns the estimate of τ² by a method, in squared working units;
+// 0 for a single study.
+//
+// Sources, gathered by Veroniki et al. (2016), Research Synthesis Methods
+// 7:55-79: DerSimonian & Laird (1986); DerSimonian & Kacker (2007); Hedges &
+// Olkin (1985); Hunter & Schmidt; Sidik & Jonkman (2005); Paule & Mandel (1982).
+func (p *Pooler) estimateTau2(method TauMethod) (float64, error) {
+	d := &p.data
+	if d.k() < 2 {
+		return 0, nil
+	}
+	switch method {
+	case DerSimonianLaird:
+		return dersimonianLaird(d), nil
+	case TwoStepDerSimonianLaird:
+		return twoStep(d), nil
+	case HedgesOlkin:
+		return max(0, d.scatter()/d.df()-d.meanVariance()), nil
+	case HunterSchmidt:
+		zero := d.at(0)
+		return max(0, (zero.q-float64(d.k()))/zero.w), nil
+	case SidikJonkman:
+		return sidikJonkman(d), nil
+	case PauleMandel:
+		return tau2WhereQ(d, d.df())
+	case MaximumLikelihood:
+		return p.highestMode(likelihood{data: d, kind: fullLikelihood})
+	case RestrictedML:
+		return p.highestMode(likelihood{data: d, kind: restrictedLikelihood})
+	}
+	return 0, &ModelError{Problem: fmt.Sprintf("%v cannot estimate τ²: choose one of its estimators", method)}
+}
+
+// dersimonianLaird returns max(0, (Q − (k−1))/(Σw − Σw²/Σw)) with w = 1/v.
+func dersimonianLaird(d *sample) float64 {
+	zero := d.at(0)
+	return max(0, (zero.q-d.df())/zero.c)
+}
+
+// twoStep returns DerSimonian and Kacker's two-step estimate: with weights
+// a = 1/(v + first step) and A = Σa,
+//
+//	max(0, (Σa(y − mean)² − Σav + Σa²v/A) / (A − Σa²/A)).
+func twoStep(d *sample) float64 {
+	m := d.at(dersimonianLaird(d))
+	var expected, rest numeric.Sum // Σav(1 − a/A): its mean if τ² were 0
+	for i, a := range d.w {
+		if i != d.best {
+			expected.Add(a * d.v[i] * (1 - a/m.w))
+			rest.Add(a)
+		}
+	}
+	expected.Add(d.w[d.best] * d.v[d.best] * (rest.Value() / m.w))
+	return max(0, (m.q-expected.Value())/m.c)
+}
+
+// sidikJonkman returns τ₀²·Q(τ₀²)/(k−1) with τ₀² = Σ(y − ȳ)²/k, which is
+// Σ(y − μ)²/r/(k−1), r = v/τ₀² + 1; 0 only if all estimates are equal.
+func sidikJonkman(d *sample) float64 {
+	start := d.scatter() / float64(d.k())
+	return start * d.at(start).q / d.df()
+}
+
+// tau2WhereQ returns the τ² at which the generalised Q(τ²) = Σw(y − mean)²
+// equals target, or 0 where Q(0) is at or below it. Q falls as τ² grows and is at
+// most Σ(y − ȳ)²/τ², which brackets the root.
+func tau2WhereQ(d *sample, target float64) (float64, error) {
+	if d.at(0).q <= target {
+		return 0, nil
+	}
+	// target/Q is nearly straight in τ², which Q is not.
+	excess := func(tau2 float64) float64 { return target/d.at(tau2).q - 1 }
+	top := d.scatter() / target * (1 + 1e-6)
+	root, err := numeric.Root(excess, 0, top, rootTolerance)
+	if err != nil {
+		return 0, fmt.Errorf("τ² where Q is %.6g: %w", target, err)
+	}
+	return root, nil
+}
