@@ -4,9 +4,6 @@ import (
 	"errors"
 	"fmt"
 	"math"
-	"sync"
-
-	"steelyard/meta/numeric"
 )
 
 // Location describes an estimate whose place among regions is weighed: on the
@@ -101,31 +98,21 @@ func (l Location) Posterior(r Region) float64 {
 	return min(1, math.Exp(l.standardised(r).lnStudent(1, l.DF)))
 }
 
-// hermite40 is the rule for the expectations in Correction.
-var hermite40 = sync.OnceValues(func() (nodes, weights []float64) { return numeric.Hermite(40) })
-
 // Correction returns β of a region: with G(x) the log of the numerator of M
 // for an estimate at x, U standard normal and c the point of the region nearest
 // to the estimate, in standard errors,
 //
 //	β = ½ + E G(c+U) - E G(c+U/√2)
 //
-// by a 40-point Gauss-Hermite rule. Beside a t interval the region's limits are
-// first matched to normal ones; for the Student-t form they are taken as they
-// are. NaN where Check fails for the location or the region.
+// Beside a t interval the region's limits are first matched to normal ones; for
+// the Student-t form they are taken as they are. NaN where Check fails for the
+// location or the region.
 func (l Location) Correction(r Region) float64 {
 	if l.check(r) != nil {
 		return math.NaN()
 	}
-	strips := l.matched(r)
 	if l.student() {
-		strips = l.standardised(r)
+		return l.standardised(r).correction()
 	}
-	centre := strips.nearest()
-	nodes, weights := hermite40()
-	beta := 0.5
-	for i, u := range nodes {
-		beta += weights[i] * (strips.lnNormal(math.Sqrt2, centre+u) - strips.lnNormal(math.Sqrt2, centre+u/math.Sqrt2))
-	}
-	return beta
+	return l.matched(r).correction()
 }

@@ -41,6 +41,28 @@ func betaFraction(a, b, x float64) float64 {
 	return math.NaN()
 }
 
+// betaFractionRatio is betaFraction by the fraction of Gauss in the ratio r = x/y
+// after the transformation of Pfaff, which keeps the digits of a small y that x
+// near 1 has lost.
+//
+// Source: Abramowitz & Stegun (1964), 15.3.4; Gauss (1813) for the fraction.
+func betaFractionRatio(a, b, r float64) float64 {
+	c, d, f := 1.0, 0.0, 1.0
+	for n := 0.0; n < betaSteps; n++ {
+		odd := (n + 1 - b) * (a + n) / ((a + 2*n) * (a + 2*n + 1)) * r
+		c, d = 1+odd/c, 1/(1+odd*d)
+		f *= c * d
+		even := (n + 1) * (a + b + n) / ((a + 2*n + 1) * (a + 2*n + 2)) * r
+		c, d = 1+even/c, 1/(1+even*d)
+		step := c * d
+		f *= step
+		if math.Abs(step-1) < 2e-16 {
+			return (1 + r) / f
+		}
+	}
+	return math.NaN()
+}
+
 // lnBeta returns ln B(a, b).
 func lnBeta(a, b float64) float64 {
 	if a < b {
@@ -86,6 +108,9 @@ func logBetaTails(a, b, q float64) float64 {
 	lnY := math.Log(y)
 	front := logBetaFront(a, b, x, y, -q, lnY)
 	if x < (a+1)/(a+b+2) {
+		if x > 0.5 {
+			return front - math.Log(a) + math.Log(betaFractionRatio(a, b, x/y))
+		}
 		return front - math.Log(a) + math.Log(betaFraction(a, b, x))
 	}
 	return math.Log1p(-math.Exp(front-math.Log(b)) * betaFraction(b, a, y))

@@ -71,7 +71,17 @@ func LogGammaRise(b, d float64) float64 {
 	}
 	a := b + d
 	// (a-½) ln a - a - (b-½) ln b + b with the large parts taken together.
-	return (b-0.5)*logRatio(b, d) - d + d*math.Log(a) + (stirlingRest(a) - stirlingRest(b)) - shifted
+	return (b-0.5)*logRatio(b, d) - d + d*math.Log(a) + stirlingRise(b, d) - shifted
+}
+
+// stirlingRise returns stirlingRest(b+d) - stirlingRest(b), by the derivative
+// where the difference would lose it.
+func stirlingRise(b, d float64) float64 {
+	if math.Abs(d) < 1e-4 {
+		mid := b + 0.5*d
+		return d * (digammaRest(mid) + 0.5/mid)
+	}
+	return stirlingRest(b+d) - stirlingRest(b)
 }
 
 // logRatio returns ln((b+d)/b).
