@@ -12,20 +12,19 @@ type Correction int
 //   - TreatmentArm adds n₁/(n₁+n₂) to both cells of the treated arm and
 //     n₂/(n₁+n₂) to both of the control arm: proportional to the reciprocal of
 //     the other arm's size, and 1 in sum, so that equal arms get Half;
-//   - Reciprocal adds the bare reciprocals of the other arm's size, 1/n₂ and
-//     1/n₁, a far smaller correction that leaves a far larger variance;
 //   - NoCorrection adds nothing: a table that needs a correction is refused.
 //
 // Source: Sweeting, Sutton & Lambert (2004), Statistics in Medicine
-// 23:1351-1375, for the proportion; they scale it as TreatmentArm does.
+// 23:1351-1375 (from memory), who name TreatmentArm by the reciprocal of the
+// other arm's size.
 const (
 	Half Correction = iota
 	TreatmentArm
-	Reciprocal
 	NoCorrection
 )
 
-var correctionNames = choice.Of[Correction]("zero-cell correction", "half", "treatment-arm", "reciprocal", "none")
+var correctionNames = choice.Of[Correction]("zero-cell correction", "half", "treatment-arm", "none").
+	With(map[string]Correction{"reciprocal": TreatmentArm})
 
 // String returns the correction's name, such as "treatment-arm".
 func (c Correction) String() string { return correctionNames.String(c) }
@@ -63,8 +62,6 @@ func (c Correction) apply(t Table) (cells, Conversion, error) {
 	case TreatmentArm:
 		n := t.Total1 + t.Total2
 		k1, k2 = t.Total1/n, t.Total2/n
-	case Reciprocal:
-		k1, k2 = 1/t.Total2, 1/t.Total1
 	default:
 		_, err := ParseCorrection(c.String())
 		return cells{}, Conversion{}, err

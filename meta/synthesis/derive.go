@@ -82,7 +82,10 @@ func deriveOne(row *review.Study, a Analysis) (Study, error) {
 		study.Estimate, study.Conversions, err = effect.FromTable(a.Measure, table, a.Correction)
 		study.Corrected = len(study.Conversions) > 0
 	case FromMeans:
-		treated, control, made := arms(row)
+		treated, control, made, problem := arms(row)
+		if problem != nil {
+			return study, problem
+		}
 		study.Estimate, study.Conversions, err = effect.FromArms(a.Measure, treated, control)
 		study.Conversions = append(made, study.Conversions...)
 	case FromEstimateSE, FromEstimateLimits:
@@ -98,7 +101,7 @@ func deriveOne(row *review.Study, a Analysis) (Study, error) {
 
 // arms returns both arms of a row with means, with the conversions of standard
 // errors to standard deviations.
-func arms(row *review.Study) (treated, control effect.Arm, made []effect.Conversion) {
+func arms(row *review.Study) (treated, control effect.Arm, made []effect.Conversion, err error) {
 	arm := func(mean, sd, se, total review.Field) effect.Arm {
 		m, _ := row.Number(mean)
 		n, _ := row.Number(total)
@@ -108,18 +111,16 @@ func arms(row *review.Study) (treated, control effect.Arm, made []effect.Convers
 			return a
 		}
 		s, _ := row.Number(se)
-		a.SD = effect.SDFromSE(s.Value, n.Value)
-		made = append(made, effect.Conversion{
-			What:   "standard deviation from the standard error of a mean",
-			From:   []effect.Value{{Name: s.Place.Cell(), Value: s.Value}, {Name: n.Place.Cell(), Value: n.Value}},
-			To:     []effect.Value{{Name: sd.String(), Value: a.SD}},
-			Source: "Cochrane Handbook 6.5.2.2: SD = SE·√n",
-		})
+		value, conversion, problem := effect.SDFromSE(s.Value, n.Value)
+		if problem != nil && err == nil {
+			err = problem
+		}
+		a.SD, made = value, append(made, conversion)
 		return a
 	}
 	treated = arm(review.MeanTreated, review.SDTreated, review.SETreated, review.TotalTreated)
 	control = arm(review.MeanControl, review.SDControl, review.SEControl, review.TotalControl)
-	return treated, control, made
+	return treated, control, made, err
 }
 
 // reported takes the row's own estimate with its standard error or limits. What

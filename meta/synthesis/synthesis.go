@@ -6,6 +6,7 @@ package synthesis
 import (
 	"context"
 	"fmt"
+	"slices"
 	"strings"
 
 	"steelyard/meta"
@@ -27,6 +28,8 @@ type Synthesis struct {
 	Findings []review.Finding // of the sheet and of the analysis
 	Cautions []string
 	Outcomes []Outcome
+	Trials   bool      // the sheet calls its rows trials
+	Arms     [2]string // what the sheet calls the treated and the control arm
 }
 
 // Outcome is one pooled outcome.
@@ -114,7 +117,7 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 	if err != nil {
 		return nil, err
 	}
-	s := &Synthesis{Source: x.Source, Plan: plan, Findings: append([]review.Finding(nil), x.Findings...)}
+	s := &Synthesis{Source: x.Source, Plan: plan, Findings: slices.Clone(x.Findings), Trials: callsTrials(x.Columns), Arms: armNames(x.Columns)}
 	s.Findings = append(s.Findings, strayPlan(x, plan)...)
 	blocked := blockedRows(x.Findings)
 	for _, name := range names {

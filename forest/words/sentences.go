@@ -1,0 +1,180 @@
+package words
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"steelyard/meta"
+	"steelyard/meta/effect"
+	"steelyard/meta/evidence"
+	"steelyard/meta/synthesis"
+)
+
+// even is how far from 1 odds may lie to be called even.
+const even = 0.05
+
+// OutcomeNotation returns how the values of an outcome are written.
+func OutcomeNotation(o *synthesis.Outcome) Notation {
+	smallest := math.Inf(1)
+	for _, study := range o.Studies {
+		smallest = min(smallest, study.Estimate.SE)
+	}
+	return NotationOf(o.Analysis.Measure, smallest)
+}
+
+// Reader returns an estimate on the analysis scale, with its limits, as a reader
+// sees it: "0.71 (0.58 to 0.86)".
+func Reader(o *synthesis.Outcome, y float64, limits meta.Limits) string {
+	m := o.Analysis.Measure
+	return OutcomeNotation(o).Estimate(effect.ToReader(m, y), effect.ToReader(m, limits.Low), effect.ToReader(m, limits.High))
+}
+
+// ReaderInterval returns limits on the analysis scale as a reader sees them.
+func ReaderInterval(o *synthesis.Outcome, limits meta.Limits) string {
+	m := o.Analysis.Measure
+	return OutcomeNotation(o).Interval(effect.ToReader(m, limits.Low), effect.ToReader(m, limits.High))
+}
+
+// readerValue returns one value on the analysis scale as a reader sees it.
+func readerValue(o *synthesis.Outcome, y float64) string {
+	return OutcomeNotation(o).Value(effect.ToReader(o.Analysis.Measure, y))
+}
+
+// Level returns the level of an interval: "95%", "99.5%".
+func Level(level float64) string {
+	return strings.TrimSuffix(fmt.Sprintf("%.4g", 100*level), ".0") + "%"
+}
+
+// Measure returns a measure's name, "estimate" where none is stated.
+func Measure(m effect.Measure) string {
+	if m == effect.Unspecified {
+		return "estimate"
+	}
+	return m.String()
+}
+
+// Wanted says on which side of the null a wanted effect lies: "below 1 is
+// better"; blank where no direction is stated.
+func Wanted(o *synthesis.Outcome) string {
+	side := wantedSide(o.Analysis.Better)
+	if side == "" {
+		return ""
+	}
+	null := effect.ToReader(o.Analysis.Measure, o.Analysis.Model.Null)
+	return fmt.Sprintf("%s %s is better", side, plain(null))
+}
+
+// plain writes a number with the digits it has.
+func plain(x float64) string {
+	return strings.Replace(fmt.Sprintf("%.6g", x), "-", "−", 1)
+}
+
+// Evidence returns an evidence ratio in words: "29 : 1 for an effect against
+// none", "1.5 : 1 for no effect against one".
+func Evidence(r evidence.Ratio) string {
+	switch {
+	case math.Abs(math.Expm1(math.Abs(r.Ln()))) <= even:
+		return "1 : 1, for neither an effect nor none"
+	case r.Favours() == evidence.Effect:
+		return OddsInSentence(r.Ln()) + " for an effect against none"
+	}
+	return OddsInSentence(-r.Ln()) + " for no effect against one"
+}
+
+// Strength returns the word and the steps of an evidence ratio, whichever way it
+// points: "firm, 2.6 steps".
+func Strength(r evidence.Ratio) string {
+	steps := Steps(math.Abs(r.Steps()))
+	unit := "steps"
+	if steps == "1.0" {
+		unit = "step"
+	}
+	return fmt.Sprintf("%s, %s %s", r.Word(), steps, unit)
+}
+
+// Test returns the statistic behind an interval and its p-value: "t = −4.04 on 8
+// df, p = 0.004".
+func Test(m meta.Mean) string {
+	statistic := Linear(m.Statistic, 2)
+	if math.IsInf(m.DF, 1) {
+		return fmt.Sprintf("z = %s, %s", statistic, PValue(m.LnP))
+	}
+	return fmt.Sprintf("t = %s on %s df, %s", statistic, plain(m.DF), PValue(m.LnP))
+}
+
+// Scatter words the chi-square form of a fit's heterogeneity as what it compares,
+// never as homogeneity: it favours a common effect whenever Q is below 1.69 times
+// its degrees of freedom.
+func Scatter(fit *meta.Fit) string {
+	h := fit.Heterogeneity
+	k := h.DF + 1
+	ratio := h.Evidence.Ln()
+	test := fmt.Sprintf("Q = %s on %d df, %s", Linear(h.Q, 2), h.DF, PValue(h.LnP))
+	switch {
+	case math.Abs(math.Expm1(math.Abs(ratio))) <= even:
+		return fmt.Sprintf("%s; %d unrelated effects and one common effect fit alike", test, k)
+	case ratio > 0:
+		return fmt.Sprintf("%s; %d unrelated effects against one common effect: %s", test, k, OddsInSentence(ratio))
+	}
+	return fmt.Sprintf("%s; one common effect against %d unrelated ones: %s (no proof that the effects are alike)", test, k, OddsInSentence(-ratio))
+}
+
+// Spread returns τ with its limits and the share of the scatter that it makes up:
+// "τ 0.13 (0 to 0.48); I² 25% (0% to 81%) of the scatter is beyond chance".
+func Spread(fit *meta.Fit) string {
+	i2 := fit.Heterogeneity.I2Tau
+	return fmt.Sprintf("τ %s; I² %s (%s to %s) by τ, %s by Q",
+		WithInterval(Tau(math.Sqrt(fit.Mean.Tau2)), Tau(math.Sqrt(fit.Tau2.Low)), Tau(math.Sqrt(fit.Tau2.High))),
+		Percent(i2.Value), Percent(i2.Low), Percent(i2.High), Percent(fit.Heterogeneity.I2Q.Value))
+}
+
+// Doubter says for whom the evidence is not enough: "who starts below 40% stays
+// below 95%".
+func Doubter(b synthesis.Belief) string {
+	return fmt.Sprintf("who starts below %s stays below %s", Probability(b.Prior), Percent(b.Posterior))
+}
+
+// RegionRange says which effects a region holds: "0.80 or less", "between 0.80
+// and 1.25", "1.25 or more".
+func RegionRange(o *synthesis.Outcome, r synthesis.Region) string {
+	switch {
+	case math.IsInf(r.Low, -1):
+		return readerValue(o, r.High) + " or less"
+	case math.IsInf(r.High, 1):
+		return readerValue(o, r.Low) + " or more"
+	}
+	return fmt.Sprintf("between %s and %s", readerValue(o, r.Low), readerValue(o, r.High))
+}
+
+// RegionEvidence weighs a region against all other effects.
+func RegionEvidence(r synthesis.Region) string {
+	switch {
+	case math.Abs(math.Expm1(math.Abs(r.Evidence.Ln()))) <= even:
+		return "1 : 1, neither for nor against"
+	case r.Evidence.Ln() > 0:
+		return OddsInSentence(r.Evidence.Ln()) + " for it"
+	}
+	return OddsInSentence(-r.Evidence.Ln()) + " against it"
+}
+
+// HighRisk counts the pooled studies whose risk of bias is called high.
+func HighRisk(o *synthesis.Outcome) int {
+	n := 0
+	for _, study := range o.Studies {
+		risk := strings.ToLower(study.Source.Cell("risk-of-bias"))
+		if strings.Contains(risk, "high") || strings.Contains(risk, "serious") || strings.Contains(risk, "critical") {
+			n++
+		}
+	}
+	return n
+}
+
+// BiasRemark is the line that stands beside the evidence while studies at high
+// risk of bias are pooled; blank otherwise.
+func BiasRemark(o *synthesis.Outcome) string {
+	if HighRisk(o) == 0 {
+		return ""
+	}
+	return "bias is not in this number"
+}
