@@ -1,0 +1,164 @@
+package ingest
+
+import (
+	"fmt"
+	"math"
+	"slices"
+
+	"steelyard/ingest/grid"
+	"steelyard/meta/effect"
+	"steelyard/meta/review"
+)
+
+// checkNumbers reports numbers that cannot be right, whatever they are used for.
+func (r *rowReader) checkNumbers() {
+	r.checkArm(review.EventsTreated, review.TotalTreated)
+	r.checkArm(review.EventsControl, review.TotalControl)
+	for _, field := range []review.Field{review.SDTreated, review.SDControl} {
+		if sd, ok := r.values.has(field); ok && !(sd > 0) {
+			r.wrong("M6", field, "a standard deviation of "+shortest(sd)+" says that nobody differed; check whether it was reported, and leave it blank if not")
+		}
+	}
+	for _, field := range []review.Field{review.StandardError, review.SETreated, review.SEControl} {
+		if se, ok := r.values.has(field); ok && !(se > 0) {
+			r.wrong("M6", field, "a standard error of "+shortest(se)+" would give the study endless weight; it must be above 0, so check the source")
+		}
+	}
+	if p, ok := r.values.has(review.PValue); ok && !(0 <= p && p <= 1) {
+		r.wrong("I8", review.PValue, "a p-value lies between 0 and 1, not at "+shortest(p)+"; check the column and the decimal mark")
+	}
+	r.checkLevel()
+	r.checkLimits(review.Estimate, review.LimitLow, review.LimitHigh)
+	r.checkLimits(review.AnalysisEstimate, review.AnalysisLow, review.AnalysisHigh)
+	r.checkRatio()
+}
+
+// wrong records an error of a number.
+func (r *rowReader) wrong(rule string, field review.Field, message string) {
+	n := r.values.at[field]
+	r.t.find(review.Error, rule, n.Place, r.study.Name, message)
+}
+
+// checkArm checks the count and the size of an arm. A total of an arm with means
+// may not be broken either.
+func (r *rowReader) checkArm(eventsField, totalField review.Field) {
+	events, counted := r.values.has(eventsField)
+	total, sized := r.values.has(totalField)
+	switch {
+	case !sized:
+	case !(total > 0):
+		r.wrong("C1", totalField, "an arm of "+shortest(total)+" people cannot be; write how many were analysed")
+	case total != math.Trunc(total):
+		r.wrong("C2", totalField, shortest(total)+" is no whole number of people; write the number analysed, or accept it with the reason, such as a correction for clusters")
+	}
+	switch {
+	case !counted:
+	case events < 0:
+		r.wrong("C1", eventsField, "a count of "+shortest(events)+" cannot be; write how many people had the event")
+	case events != math.Trunc(events):
+		r.wrong("C2", eventsField, shortest(events)+" is no whole number of people; write the count, not a percentage or a corrected count, or accept it with the reason")
+	case sized && total > 0 && events > total:
+		r.wrong("C1", eventsField, fmt.Sprintf("%s events among %s people cannot be; check both numbers, and that people are counted and not events", shortest(events), shortest(total)))
+	}
+}
+
+// checkLevel checks the level of an interval.
+func (r *rowReader) checkLevel() {
+	level, ok := r.values.has(review.LimitLevel)
+	if !ok || (0 < level && level < 1) {
+		return
+	}
+	message := "the level of an interval is a fraction between 0 and 1, not " + shortest(level) + "; 95% is written 0.95"
+	if 1 < level && level < 100 {
+		message = fmt.Sprintf("the level of an interval is a fraction; %s%% is written %s", shortest(level), shortest(level/100))
+	}
+	r.wrong("I6", review.LimitLevel, message)
+}
+
+// checkLimits checks the order of an estimate and its limits.
+func (r *rowReader) checkLimits(estimateField, lowField, highField review.Field) {
+	low, hasLow := r.values.has(lowField)
+	high, hasHigh := r.values.has(highField)
+	estimate, hasEstimate := r.values.has(estimateField)
+	switch {
+	case hasLow && hasHigh && low >= high:
+		r.wrong("I1", lowField, fmt.Sprintf("the lower limit %s is not below the upper limit %s; are they swapped?", shortest(low), shortest(high)))
+	case hasEstimate && hasLow && estimate < low, hasEstimate && hasHigh && estimate > high:
+		r.wrong("I1", estimateField, fmt.Sprintf("the estimate %s lies outside its limits; check all three numbers against the source", shortest(estimate)))
+	}
+}
+
+// checkRatio checks that a ratio and its limits are positive.
+func (r *rowReader) checkRatio() {
+	if !r.study.Measure.Log() {
+		return
+	}
+	for _, field := range []review.Field{review.Estimate, review.LimitLow, review.LimitHigh} {
+		if x, ok := r.values.has(field); ok && !(x > 0) {
+			r.wrong("I4", field, fmt.Sprintf("%s %s cannot be %s, since ratios are above 0; if it is a logarithm, head the column \"log %s\"",
+				article(r.study.Measure), r.study.Measure, shortest(x), r.study.Measure))
+		}
+	}
+}
+
+func article(m effect.Measure) string {
+	if m == effect.OddsRatio {
+		return "an"
+	}
+	return "a"
+}
+
+// checkRow reports rows that are no study, or not one to be read as it stands.
+func (r *rowReader) checkRow() {
+	t := r.t
+	if len(r.study.Numbers) == 0 && !r.unreadable {
+		r.find(review.Error, "F9", 0, "the row has no number, so there is nothing to pool; fill them in, or take the row out of the table")
+	}
+	if namesTotal(r.study.Name) {
+		r.find(review.Error, "F10", t.role.name, "the row looks like a total of other rows; pooling it would count their people twice, so take it out of the table")
+	}
+	if r.row.Hidden {
+		r.find(review.Warning, "F9", 0, "the row is hidden and was read; show it, or delete it if it is not meant to count")
+	}
+	if extra := len(r.row.Cells); t.book.Text && extra > len(t.header.columns) {
+		r.find(review.Error, "F9", extra, fmt.Sprintf("the row has %d cells and the header %d, so its numbers may stand in the wrong columns; put a text that holds the delimiter into double quotes", extra, len(t.header.columns)))
+	}
+}
+
+// checkNames reports studies that stand twice in one outcome.
+func (t *tableReader) checkNames() {
+	type key struct{ outcome, name string }
+	first := make(map[key]int, len(t.x.Studies))
+	for i := range t.x.Studies {
+		s := &t.x.Studies[i]
+		k := key{s.Outcome, s.Name}
+		j, twice := first[k]
+		if !twice {
+			first[k] = i
+			continue
+		}
+		before := &t.x.Studies[j]
+		place := t.place(s.Row.Row, t.role.name, t.sheetText(s.Row.Row, t.role.name))
+		f := review.Finding{Severity: review.Warning, Rule: "D5", Place: place, Study: s.Name}
+		f.Message = fmt.Sprintf("the study stands in row %d too, with other numbers; if both rows are of the same people, they count twice: keep one, or give them names of their own", before.Row.Row)
+		if len(s.Numbers) > 0 && sameNumbers(s, before) {
+			f.Severity, f.Rule = review.Error, "D1"
+			f.Message = fmt.Sprintf("the row repeats row %d with the same name and numbers, so its people would count twice; take one of them out", before.Row.Row)
+		}
+		f.Accepted = acceptedReason(s, f.Rule)
+		t.x.Findings = append(t.x.Findings, f)
+	}
+}
+
+func sameNumbers(a, b *review.Study) bool {
+	return slices.EqualFunc(a.Numbers, b.Numbers, func(x, y review.Number) bool { return x.Field == y.Field && x.Value == y.Value })
+}
+
+// sheetText returns the stored text of a cell of the sheet.
+func (t *tableReader) sheetText(row, col int) string {
+	i, found := slices.BinarySearchFunc(t.rows, row, func(r grid.Row, want int) int { return r.Number - want })
+	if !found {
+		return ""
+	}
+	return t.rows[i].Cell(col).Text
+}

@@ -1,0 +1,264 @@
+package ingest
+
+import (
+	"strings"
+
+	"steelyard/ingest/grid"
+	"steelyard/meta/choice"
+	"steelyard/meta/review"
+)
+
+// scanRows is how many rows with values are searched for the header.
+const scanRows = 30
+
+// column is a column of the sheet as its header is understood.
+type column struct {
+	review.Column
+	meaning
+}
+
+// header is a row, or a pair of rows, understood as the header of a table.
+type header struct {
+	top, bottom int      // indices of its first and last row in Sheet.Rows
+	columns     []column // index = column-1; NoField with a blank Header where nothing stands
+	findings    []review.Finding
+	score       int // number of distinct fields recognised
+	texts       int // number of columns with a header
+}
+
+// fieldSets are the sets of number columns of which a header must hold one.
+var fieldSets = [][]review.Field{
+	{review.EventsTreated, review.TotalTreated, review.EventsControl, review.TotalControl},
+	{review.MeanTreated, review.SDTreated, review.TotalTreated, review.MeanControl, review.SDControl, review.TotalControl},
+	{review.MeanTreated, review.SETreated, review.TotalTreated, review.MeanControl, review.SEControl, review.TotalControl},
+	{review.Estimate, review.StandardError},
+	{review.Estimate, review.LimitLow, review.LimitHigh},
+	{review.Estimate, review.PValue},
+	{review.AnalysisEstimate, review.StandardError},
+	{review.AnalysisEstimate, review.AnalysisLow, review.AnalysisHigh},
+	{review.AnalysisEstimate, review.PValue},
+}
+
+// usable reports whether the header names the studies and one complete set of
+// numbers.
+func (h *header) usable() bool {
+	have := h.fields()
+	if !have[review.StudyName] {
+		return false
+	}
+	for _, set := range fieldSets {
+		complete := true
+		for _, field := range set {
+			complete = complete && have[field]
+		}
+		if complete {
+			return true
+		}
+	}
+	return false
+}
+
+// fields returns the fields that the header has.
+func (h *header) fields() map[review.Field]bool {
+	have := map[review.Field]bool{}
+	for _, c := range h.columns {
+		if c.field != review.NoField {
+			have[c.field] = true
+		}
+	}
+	return have
+}
+
+// column returns the 1-based number of a field's column, 0 if there is none.
+func (h *header) column(field review.Field) int {
+	for i, c := range h.columns {
+		if c.field == field {
+			return i + 1
+		}
+	}
+	return 0
+}
+
+// headerReader looks for the header of one sheet.
+type headerReader struct {
+	file  string
+	sheet *grid.Sheet
+	asked []request
+}
+
+// request is one wish of Options.Columns or of the plan.
+type request struct {
+	field  review.Field
+	header string // as typed
+}
+
+// find returns the best header: among the usable ones that with the most fields,
+// a single row before a pair and the higher before the lower. Without a usable
+// one, ok is false and the header is the row that looks most like one.
+func (r *headerReader) find() (best *header, ok bool) {
+	limit := min(scanRows, len(r.sheet.Rows))
+	for i := range limit {
+		candidates := []*header{r.single(i)}
+		if i+1 < limit && r.sheet.Rows[i+1].Number == r.sheet.Rows[i].Number+1 {
+			candidates = append(candidates, r.pair(i))
+		}
+		for _, h := range candidates {
+			r.settle(h)
+			if best == nil || r.better(h, best) {
+				best = h
+			}
+		}
+	}
+	return best, best != nil && best.usable()
+}
+
+func (r *headerReader) better(a, b *header) bool {
+	if a.usable() != b.usable() {
+		return a.usable()
+	}
+	if a.score != b.score {
+		return a.score > b.score
+	}
+	if aSingle, bSingle := a.top == a.bottom, b.top == b.bottom; aSingle != bSingle && a.score > 0 {
+		return aSingle
+	}
+	return !a.usable() && a.score == 0 && a.texts > b.texts && a.top == a.bottom
+}
+
+// single understands one row as the header.
+func (r *headerReader) single(i int) *header {
+	row := &r.sheet.Rows[i]
+	h := &header{top: i, bottom: i, columns: make([]column, len(row.Cells))}
+	for c := range row.Cells {
+		h.columns[c] = r.newColumn(headerText(row, c+1), row.Number, c+1)
+	}
+	return h
+}
+
+// newColumn returns a column with what its header alone says.
+func (r *headerReader) newColumn(text string, row, col int) column {
+	c := column{Column: review.Column{Header: text, Place: r.place(row, col, text)}}
+	if text != "" {
+		c.meaning, _ = recognise(text)
+	}
+	return c
+}
+
+func (r *headerReader) place(row, col int, text string) review.Place {
+	return review.Place{File: r.file, Sheet: r.sheet.Name, Row: row, Col: col, Text: text}
+}
+
+// headerText returns the text of a cell that may be a header; numbers and dates
+// of a workbook are none.
+func headerText(row *grid.Row, col int) string {
+	cell := row.Cell(col)
+	if cell.Kind != grid.Text {
+		return ""
+	}
+	return tidy(cell.Text)
+}
+
+// settle applies what was asked for, resolves what several columns claim, and
+// counts.
+func (r *headerReader) settle(h *header) {
+	r.applyRequests(h)
+	r.adoptStudyID(h)
+	r.adoptAnalysisLimits(h)
+	r.resolve(h)
+	h.score = len(h.fields())
+	for _, c := range h.columns {
+		if c.Header != "" {
+			h.texts++
+		}
+	}
+	for i := range h.columns {
+		h.columns[i].Field = h.columns[i].field
+	}
+}
+
+// applyRequests gives columns the fields that the caller asked for; a field asked
+// for is taken from every other column.
+func (r *headerReader) applyRequests(h *header) {
+	for _, want := range r.asked {
+		col := matchHeader(h, want.header)
+		if col == 0 {
+			continue
+		}
+		for i := range h.columns {
+			if h.columns[i].field == want.field {
+				h.columns[i].meaning = meaning{}
+			}
+		}
+		c := &h.columns[col-1]
+		said := c.meaning
+		c.meaning = meaning{field: want.field}
+		if aboutEffect(want.field) {
+			c.measure, c.level = said.measure, said.level
+		}
+	}
+}
+
+func aboutEffect(f review.Field) bool { return f >= review.Estimate && f <= review.AnalysisHigh }
+
+// matchHeader returns the 1-based column whose header is text: as typed if there
+// is one, else as folded; 0 if none.
+func matchHeader(h *header, text string) int {
+	want, _ := fold(text)
+	folded := 0
+	for i, c := range h.columns {
+		if c.Header == tidy(text) {
+			return i + 1
+		}
+		if have, _ := fold(c.Header); folded == 0 && c.Header != "" && have == want && choice.Fold(text) != "" {
+			folded = i + 1
+		}
+	}
+	return folded
+}
+
+// adoptStudyID takes a column such as "study id" for the study's name when no
+// other column names the studies.
+func (r *headerReader) adoptStudyID(h *header) {
+	id := h.column(review.StudyID)
+	if id != 0 && h.column(review.StudyName) == 0 {
+		h.columns[id-1].field = review.StudyName
+	}
+}
+
+// adoptAnalysisLimits takes plain limits beside a logarithm for limits of that
+// logarithm, when there is no estimate in the reader's unit they could belong to.
+func (r *headerReader) adoptAnalysisLimits(h *header) {
+	estimate := h.column(review.AnalysisEstimate)
+	if estimate == 0 || h.column(review.Estimate) != 0 {
+		return
+	}
+	for i := range h.columns {
+		c := &h.columns[i]
+		to := review.AnalysisLow
+		switch c.field {
+		case review.LimitHigh:
+			to = review.AnalysisHigh
+		case review.LimitLow:
+		default:
+			continue
+		}
+		c.field = to
+		if measure := h.columns[estimate-1].measure; measure.Log() {
+			h.note(c.Place, "F9", "the limits in "+quote(c.Header)+" are read as limits of "+quote(h.columns[estimate-1].Header)+
+				", on the same scale; if they are limits of the ratio itself, give the ratio instead of its logarithm")
+		}
+	}
+}
+
+func (h *header) note(place review.Place, rule, message string) {
+	h.findings = append(h.findings, review.Finding{Severity: review.Note, Rule: rule, Place: place, Message: message})
+}
+
+// quote puts a text of the sheet into a message, cut if it is long.
+func quote(text string) string {
+	const most = 60
+	if runes := []rune(text); len(runes) > most {
+		text = string(runes[:most]) + "…"
+	}
+	return `"` + strings.ReplaceAll(text, `"`, `'`) + `"`
+}

@@ -1,0 +1,271 @@
+package ingest
+
+import (
+	"strings"
+	"sync"
+
+	"steelyard/meta/effect"
+	"steelyard/meta/review"
+)
+
+// meaning is what a header says its column holds.
+type meaning struct {
+	field   review.Field
+	measure effect.Measure // of an estimate's column that is named by its measure
+	level   float64        // of limits, 0 when the header does not say
+}
+
+// synonyms lists for each field the plain trade words that name it, folded; the
+// field's own name always does.
+var synonyms = map[review.Field][]string{
+	review.StudyName: {"trial", "author", "authors", "first author", "author year", "author and year", "study name", "trial name",
+		"study author", "name", "name study", "study year", "studies", "study reference", "citation"},
+	review.StudyID:      {"study id", "trial id", "study number", "trial number", "record id"},
+	review.Registration: {"registration number", "registration id", "registry number", "trial registration", "registry id"},
+	review.DateField: {"year", "publication year", "year publication", "pub year", "year published", "publication date", "date publication",
+		"date published", "published", "study date"},
+	review.OutcomeField:     {"outcome name", "outcomes", "endpoint", "end point", "outcome measure"},
+	review.Comparison:       {"contrast", "comparison name"},
+	review.TimePoint:        {"timepoint", "time", "follow up", "followup", "follow up time", "length follow up"},
+	review.Subgroup:         {"sub group", "stratum"},
+	review.MeasureField:     {"effect measure", "measure effect", "type effect", "effect type"},
+	review.Design:           {"study design", "trial design", "study type"},
+	review.BetterField:      {"better direction", "wanted direction", "desired direction", "better values"},
+	review.Cluster:          {"cluster trial", "clustered", "cluster randomised", "cluster randomized"},
+	review.Adjusted:         {"adjusted estimate", "adjustment"},
+	review.ResultType:       {"change or final", "type result"},
+	review.Unit:             {"units", "unit measurement"},
+	review.RiskOfBias:       {"risk bias", "rob", "overall risk bias", "risk bias overall", "bias", "risk bias judgement"},
+	review.SourceField:      {"page", "source data", "data source", "where found"},
+	review.HowObtained:      {"obtained", "how data were obtained", "origin"},
+	review.NoteField:        {"notes", "comment", "comments", "remark", "remarks"},
+	review.Accept:           {"accepted", "accept finding", "accept findings"},
+	review.Estimate:         {"effect", "effect size", "effect estimate", "point estimate", "estimated effect", "treatment effect"},
+	review.AnalysisEstimate: {"y", "log estimate", "log effect", "log effect size", "ln estimate", "ln effect", "log point estimate"},
+	review.StandardError:    {"standard error", "std error", "std err", "stderr", "s e"},
+	review.LimitLevel:       {"level", "confidence level", "level ci", "ci percent"},
+	review.PValue:           {"p value", "pvalue", "p val"},
+	review.AnalysisLow:      {"log ci low", "log ci lower", "ln ci low", "ln ci lower", "log lower limit", "log lower"},
+	review.AnalysisHigh:     {"log ci high", "log ci upper", "ln ci high", "ln ci upper", "log upper limit", "log upper"},
+	review.EventsTreated:    nil, // these are made of a quantity and an arm, below
+	review.EventsControl:    nil,
+	review.TotalTreated:     nil,
+	review.TotalControl:     nil,
+	review.MeanTreated:      nil,
+	review.MeanControl:      nil,
+	review.SDTreated:        nil,
+	review.SDControl:        nil,
+	review.SETreated:        nil,
+	review.SEControl:        nil,
+	review.LimitLow:         nil, // made of a side and a limit, below
+	review.LimitHigh:        nil,
+	review.NoField:          nil,
+}
+
+// quantity is what is given once for each arm.
+type quantity struct {
+	treated, control review.Field
+	words            []string
+}
+
+var quantities = []quantity{
+	{review.EventsTreated, review.EventsControl, []string{"events", "event", "n events", "no events", "number events", "events n", "number with event",
+		"n with event", "deaths", "cases"}},
+	{review.TotalTreated, review.TotalControl, []string{"total", "n", "totals", "total n", "n total", "sample size", "size", "number", "participants", "patients",
+		"subjects", "n patients", "n participants", "number patients", "number participants", "total number", "n analysed", "n analyzed", "analysed", "analyzed"}},
+	{review.MeanTreated, review.MeanControl, []string{"mean", "average", "mean value"}},
+	{review.SDTreated, review.SDControl, []string{"sd", "standard deviation", "std dev", "std deviation", "st dev", "s d", "stdev"}},
+	{review.SETreated, review.SEControl, []string{"se", "standard error", "std error", "sem", "se mean", "standard error mean", "s e"}},
+}
+
+// Words for the arms.
+var (
+	treatedWords = []string{"treated", "treatment", "treatments", "intervention", "experimental", "experiment", "active", "active treatment", "exposed", "verum"}
+	controlWords = []string{"control", "controls", "comparator", "comparison", "placebo", "usual care", "standard care", "no treatment", "no intervention",
+		"unexposed", "untreated", "usual treatment", "standard treatment", "sham"}
+)
+
+// controlHints are words that mark a group's name as the control arm when the
+// reviewer has named the arms.
+var controlHints = map[string]bool{"control": true, "controls": true, "comparator": true, "placebo": true, "usual": true, "standard": true,
+	"without": true, "no": true, "not": true, "non": true, "none": true, "sham": true, "untreated": true, "unexposed": true, "nothing": true, "dummy": true}
+
+// measureWords name an estimate's column by its measure.
+var measureWords = []struct {
+	measure effect.Measure
+	words   []string
+}{
+	{effect.OddsRatio, []string{"odds ratio", "or"}},
+	{effect.RiskRatio, []string{"risk ratio", "relative risk", "rr"}},
+	{effect.RiskDifference, []string{"risk difference", "absolute risk difference", "rd"}},
+	{effect.HazardRatio, []string{"hazard ratio", "hazards ratio", "hr"}},
+	{effect.RateRatio, []string{"incidence rate ratio", "rate ratio", "irr"}},
+	{effect.StandardisedMeanDifference, []string{"standardised mean difference", "standardized mean difference", "smd"}},
+	{effect.MeanDifference, []string{"mean difference", "difference means", "difference between means", "md"}},
+	{effect.RatioOfMeans, []string{"ratio means"}},
+}
+
+// limitForms are the phrases of a limit; the word of the side replaces "*".
+var limitForms = []string{"ci *", "* ci", "* limit", "* bound", "ci * limit", "* ci limit", "* limit ci", "ci * bound", "* ci bound",
+	"* confidence limit", "* confidence bound", "confidence limit *", "confidence *", "limit *"}
+
+// dictionary is the whole vocabulary, folded.
+type dictionary struct {
+	phrases  map[string]meaning
+	measures map[string]effect.Measure // phrases that name a measure
+	bare     map[string]quantity       // quantities without an arm
+	treated  map[string]bool
+	control  map[string]bool
+}
+
+var vocabulary = sync.OnceValue(func() *dictionary {
+	d := &dictionary{phrases: map[string]meaning{}, measures: map[string]effect.Measure{}, bare: map[string]quantity{},
+		treated: map[string]bool{}, control: map[string]bool{}}
+	d.addArms()
+	d.addMeasures()
+	d.addLimits()
+	for field, words := range synonyms {
+		for _, word := range words {
+			d.add(word, meaning{field: field})
+		}
+	}
+	for _, name := range review.FieldNames() {
+		if field, err := review.ParseField(name); err == nil {
+			d.add(name, meaning{field: field})
+		}
+	}
+	return d
+})
+
+func (d *dictionary) add(phrase string, m meaning) {
+	folded, _ := fold(phrase)
+	d.phrases[folded] = m
+}
+
+func (d *dictionary) addArms() {
+	combine := func(arms []string, q quantity, field review.Field) {
+		for _, arm := range arms {
+			for _, word := range q.words {
+				d.add(word+" "+arm, meaning{field: field})
+				d.add(arm+" "+word, meaning{field: field})
+			}
+		}
+	}
+	for _, q := range quantities {
+		combine(treatedWords, q, q.treated)
+		combine(controlWords, q, q.control)
+		for _, word := range q.words {
+			d.bare[word] = q
+		}
+	}
+	for _, word := range treatedWords {
+		d.treated[word] = true
+	}
+	for _, word := range controlWords {
+		d.control[word] = true
+	}
+}
+
+func (d *dictionary) addMeasures() {
+	for _, m := range measureWords {
+		for _, word := range m.words {
+			d.measures[word] = m.measure
+			d.add(word, meaning{field: review.Estimate, measure: m.measure})
+			d.add("adjusted "+word, meaning{field: review.Estimate, measure: m.measure})
+			if !m.measure.Log() {
+				continue
+			}
+			for _, log := range []string{"log ", "ln ", "natural log ", "natural logarithm ", "logarithm ", "log", "ln"} {
+				d.measures[log+word] = m.measure
+				d.add(log+word, meaning{field: review.AnalysisEstimate, measure: m.measure})
+			}
+		}
+	}
+}
+
+func (d *dictionary) addLimits() {
+	sides := []struct {
+		field review.Field
+		words []string
+	}{
+		{review.LimitLow, []string{"low", "lower"}},
+		{review.LimitHigh, []string{"high", "upper"}},
+	}
+	for _, side := range sides {
+		for _, word := range side.words {
+			for _, form := range limitForms {
+				d.add(strings.Replace(form, "*", word, 1), meaning{field: side.field})
+			}
+		}
+	}
+	for word, field := range map[string]review.Field{"lower": review.LimitLow, "upper": review.LimitHigh, "lcl": review.LimitLow, "ucl": review.LimitHigh} {
+		d.add(word, meaning{field: field})
+	}
+}
+
+// recognise returns what a header says; ok is false if it says nothing known.
+func recognise(header string) (m meaning, ok bool) {
+	if len(header) > maxHeaderBytes {
+		return meaning{}, false
+	}
+	phrase, level := fold(header)
+	if phrase == "" {
+		return meaning{}, false
+	}
+	d := vocabulary()
+	m, ok = d.phrases[phrase]
+	if !ok {
+		m, ok = d.aboutEstimate(phrase)
+	}
+	if ok && (m.field == review.LimitLow || m.field == review.LimitHigh || m.field == review.AnalysisLow || m.field == review.AnalysisHigh) {
+		m.level = level
+	}
+	return m, ok
+}
+
+// maxHeaderBytes is the length beyond which a text is no header but a sentence.
+const maxHeaderBytes = 200
+
+// aboutEstimate recognises limits and standard errors that name their measure,
+// such as "hr ci low", "upper limit odds ratio" or "se log or". A standard error
+// of a ratio that is not logged is not taken for one of its logarithm.
+func (d *dictionary) aboutEstimate(phrase string) (meaning, bool) {
+	words := strings.Split(phrase, " ")
+	for cut := 1; cut < len(words); cut++ {
+		head, tail := strings.Join(words[:cut], " "), strings.Join(words[cut:], " ")
+		for _, split := range [2][2]string{{head, tail}, {tail, head}} {
+			measure, known := d.estimateWord(split[0])
+			m, limit := d.phrases[split[1]]
+			if !known || !limit {
+				continue
+			}
+			logged := strings.HasPrefix(split[0], "log") || strings.HasPrefix(split[0], "ln") || strings.HasPrefix(split[0], "natural") || split[0] == "y"
+			switch {
+			case m.field == review.LimitLow && logged:
+				return meaning{field: review.AnalysisLow, measure: measure}, true
+			case m.field == review.LimitHigh && logged:
+				return meaning{field: review.AnalysisHigh, measure: measure}, true
+			case m.field == review.LimitLow || m.field == review.LimitHigh,
+				m.field == review.StandardError && (logged || !measure.Log()):
+				return meaning{field: m.field, measure: measure}, true
+			}
+		}
+	}
+	return meaning{}, false
+}
+
+// estimateWord returns the measure of a phrase that names an estimate.
+func (d *dictionary) estimateWord(phrase string) (effect.Measure, bool) {
+	if measure, ok := d.measures[phrase]; ok {
+		return measure, true
+	}
+	m, ok := d.phrases[phrase]
+	return effect.Unspecified, ok && (m.field == review.Estimate || m.field == review.AnalysisEstimate)
+}
+
+// bareQuantity recognises a quantity named without an arm, as below a group.
+func bareQuantity(header string) (quantity, bool) {
+	phrase, _ := fold(header)
+	q, ok := vocabulary().bare[phrase]
+	return q, ok
+}

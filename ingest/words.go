@@ -1,0 +1,83 @@
+package ingest
+
+import (
+	"strconv"
+	"strings"
+	"unicode"
+)
+
+// fillers are words of a header that carry no meaning of their own.
+var fillers = map[string]bool{"of": true, "the": true, "in": true, "for": true, "group": true, "groups": true, "arm": true, "arms": true}
+
+// fold brings a header to the form in which headers are compared: lower-case
+// words joined by single blanks, without punctuation and fillers, "confidence
+// interval" as "ci". A level such as that of "95% CI low" is taken out and
+// returned as a fraction; it is 0 when there is none.
+func fold(header string) (phrase string, level float64) {
+	words := strings.FieldsFunc(strings.ToLower(header), notInWord)
+	kept := words[:0]
+	for i := 0; i < len(words); i++ {
+		word := strings.Trim(words[i], ".")
+		next := ""
+		if i+1 < len(words) {
+			next = words[i+1]
+		}
+		if (word == "confidence" || word == "conf") && (next == "interval" || next == "int") {
+			word = "ci"
+			i++
+		}
+		if l, rest, ok := levelOf(word, next, kept); ok {
+			level, word = l, rest
+		}
+		if word != "" && !fillers[word] {
+			kept = append(kept, word)
+		}
+	}
+	return strings.Join(kept, " "), level
+}
+
+func notInWord(r rune) bool {
+	return !(unicode.IsLetter(r) || unicode.IsDigit(r) || unicode.IsMark(r) || r == '%' || r == '.')
+}
+
+// levelOf recognises the words "95%", "95" beside "ci", "ci95" and "95ci", and
+// returns the level as a fraction with what is left of the word.
+func levelOf(word, next string, before []string) (level float64, rest string, ok bool) {
+	digits, percent := strings.CutSuffix(word, "%")
+	if trimmed, found := strings.CutPrefix(digits, "ci"); found && trimmed != "" {
+		digits, rest = trimmed, "ci"
+	} else if trimmed, found := strings.CutSuffix(digits, "ci"); found && trimmed != "" {
+		digits, rest = trimmed, "ci"
+	}
+	besideCI := rest == "ci" || next == "ci" || next == "confidence" || next == "conf" || (len(before) > 0 && before[len(before)-1] == "ci")
+	if !percent && !besideCI {
+		return 0, "", false
+	}
+	x, err := strconv.ParseFloat(digits, 64)
+	if err != nil || !(50 <= x && x < 100) {
+		return 0, "", false
+	}
+	return x / 100, rest, true
+}
+
+// tidy returns a cell's text in one line: surrounding blanks gone, every run of
+// white space one blank, control characters dropped.
+func tidy(text string) string {
+	for i := 0; i < len(text); i++ {
+		c := text[i]
+		if c < ' ' || c >= 0x7f || (c == ' ' && (i == 0 || i == len(text)-1 || text[i-1] == ' ')) {
+			return tidySlowly(text)
+		}
+	}
+	return text
+}
+
+func tidySlowly(text string) string {
+	words := strings.FieldsFunc(text, unicode.IsSpace)
+	return strings.Map(func(r rune) rune {
+		if unicode.IsControl(r) {
+			return -1
+		}
+		return r
+	}, strings.Join(words, " "))
+}
