@@ -241,6 +241,8 @@ func (d *dictionary) aboutEstimate(phrase string) (meaning, bool) {
 			}
 			logged := strings.HasPrefix(split[0], "log") || strings.HasPrefix(split[0], "ln") || strings.HasPrefix(split[0], "natural") || split[0] == "y"
 			switch {
+			case m.field == review.Estimate && m.measure == effect.Unspecified && split[0] != "y":
+				return d.phrases[split[0]], true
 			case m.field == review.LimitLow && logged:
 				return meaning{field: review.AnalysisLow, measure: measure}, true
 			case m.field == review.LimitHigh && logged:
