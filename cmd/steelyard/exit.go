@@ -7,7 +7,7 @@ import (
 
 	"github.com/urfave/cli/v2"
 
-	"steelyard/ingest"
+	"steelyard/ingest/grid"
 )
 
 // The exit codes.
@@ -41,6 +41,7 @@ func exitCode(err error) int {
 	var call *callError
 	var file *fileError
 	var path *fs.PathError
+	var unreadable *grid.FileError
 	var exit cli.ExitCoder
 	switch {
 	case err == nil:
@@ -49,7 +50,7 @@ func exitCode(err error) int {
 		return codeInterrupted
 	case errors.As(err, &call):
 		return codeCall
-	case errors.As(err, &file), errors.As(err, &path), ingest.IsFileError(err):
+	case errors.As(err, &file), errors.As(err, &path), errors.As(err, &unreadable):
 		return codeFile
 	case errors.As(err, &exit):
 		return codeCall

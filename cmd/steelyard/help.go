@@ -46,11 +46,14 @@ func entry(term, text string, indent int) string {
 }
 
 // wrap breaks text at blanks into lines of at most width runes; a longer word
-// has a line of its own. It returns at least one line.
+// has a line of its own, and odds such as "29 : 1" stay together. It returns at
+// least one line.
 func wrap(text string, width int) []string {
+	const hold = "\x00"
 	var lines []string
 	line, used := "", 0
-	for _, word := range strings.Fields(text) {
+	for _, word := range strings.Fields(strings.ReplaceAll(text, " : ", hold+":"+hold)) {
+		word = strings.ReplaceAll(word, hold, " ")
 		n := utf8.RuneCountInString(word)
 		if used > 0 && used+1+n > width {
 			lines = append(lines, line)

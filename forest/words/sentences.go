@@ -70,16 +70,16 @@ func plain(x float64) string {
 	return strings.Replace(fmt.Sprintf("%.6g", x), "-", "−", 1)
 }
 
-// Evidence returns an evidence ratio in words: "29 : 1 for an effect against
-// none", "1.5 : 1 for no effect against one".
+// Evidence returns an evidence ratio in words, effect against none: "29 : 1 for an
+// effect", "1.5 : 1 for none".
 func Evidence(r evidence.Ratio) string {
 	switch {
 	case math.Abs(math.Expm1(math.Abs(r.Ln()))) <= even:
-		return "1 : 1, for neither an effect nor none"
+		return "1 : 1, for neither"
 	case r.Favours() == evidence.Effect:
-		return OddsInSentence(r.Ln()) + " for an effect against none"
+		return OddsInSentence(r.Ln()) + " for an effect"
 	}
-	return OddsInSentence(-r.Ln()) + " for no effect against one"
+	return OddsInSentence(-r.Ln()) + " for none"
 }
 
 // Strength returns the word and the steps of an evidence ratio, whichever way it
@@ -129,10 +129,10 @@ func Spread(fit *meta.Fit) string {
 		Percent(i2.Value), Percent(i2.Low), Percent(i2.High), Percent(fit.Heterogeneity.I2Q.Value))
 }
 
-// Doubter says for whom the evidence is not enough: "who starts below 40% stays
-// below 95%".
+// Doubter says for whom the evidence is not enough: "a doubter who starts below 40%
+// stays below 95%".
 func Doubter(b synthesis.Belief) string {
-	return fmt.Sprintf("who starts below %s stays below %s", Probability(b.Prior), Percent(b.Posterior))
+	return fmt.Sprintf("a doubter who starts below %s stays below %s", Probability(b.Prior), Percent(b.Posterior))
 }
 
 // RegionRange says which effects a region holds: "0.80 or less", "between 0.80

@@ -10,6 +10,7 @@ type Conversion struct {
 	From   []Value // what went in
 	To     []Value // what came out
 	Source string  // of the formula
+	Added  bool    // something went in that nobody counted, as in a zero-cell correction
 }
 
 // Value is a named number of a conversion.

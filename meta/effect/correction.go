@@ -72,5 +72,6 @@ func (c Correction) apply(t Table) (cells, Conversion, error) {
 		From:   t.values(),
 		To:     []Value{{"added treated", k1}, {"added control", k2}},
 		Source: source,
+		Added:  true,
 	}, nil
 }

@@ -5,6 +5,7 @@ package review
 import (
 	"fmt"
 	"strconv"
+	"strings"
 )
 
 // Place says where in the reviewer's files something stands.
@@ -31,21 +32,22 @@ func (p Place) Cell() string {
 	return ""
 }
 
-// String returns the full place, such as "Sheet1!C7", or "trials.csv!C7" for a
-// text file.
+// String returns the full place, such as "Sheet1!C7", "Sheet1 row 7", "Sheet1
+// column C", with the file's name in place of a sheet's for a text file.
 func (p Place) String() string {
 	where := p.Sheet
 	if where == "" {
 		where = p.File
 	}
-	cell := p.Cell()
 	switch {
-	case where == "":
-		return cell
-	case cell == "":
-		return where
+	case p.Row > 0 && p.Col > 0:
+		return strings.TrimPrefix(where+"!"+p.Cell(), "!")
+	case p.Row > 0:
+		return strings.TrimSpace(fmt.Sprintf("%s row %d", where, p.Row))
+	case p.Col > 0:
+		return strings.TrimSpace(where + " column " + ColumnLetters(p.Col))
 	}
-	return fmt.Sprintf("%s!%s", where, cell)
+	return where
 }
 
 // ColumnLetters returns a spreadsheet's letters of a 1-based column: 1 is A, 27

@@ -6,13 +6,16 @@ import (
 	"steelyard/meta/review"
 )
 
+// EvidenceCaution says what an evidence ratio is not.
+const EvidenceCaution = "The evidence ratio says how well the data agree with an effect against none under this model: not the probability that a treatment works, no statement of size, harm or certainty. Against no effect it can reach 2.33 : 1 at most."
+
 // cautions returns the short cautions that belong under these results, general
 // ones first.
 func cautions(s *Synthesis) []string {
 	all := []string{
 		"Decision support only: it does not replace a qualified methodologist, clinicians or your body's own procedures, which prevail. Not for decisions on one patient.",
 		"No result can be better than its studies and its sheet: bias, selective reporting and missing trials are not corrected, and a clean check does not mean correct data. Have a second person check every number.",
-		"The evidence ratio says how well the data agree with an effect against none under this model: not the probability that a treatment works, no statement of size, harm or certainty. Against no effect it can reach 2.33 : 1 at most.",
+		EvidenceCaution,
 	}
 	var few, random, corrected, converted bool
 	for i := range s.Outcomes {

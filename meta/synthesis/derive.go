@@ -3,6 +3,7 @@ package synthesis
 import (
 	"errors"
 	"fmt"
+	"slices"
 
 	"steelyard/meta/effect"
 	"steelyard/meta/numeric"
@@ -80,7 +81,7 @@ func deriveOne(row *review.Study, a Analysis) (Study, error) {
 			Events2: value(review.EventsControl), Total2: value(review.TotalControl),
 		}
 		study.Estimate, study.Conversions, err = effect.FromTable(a.Measure, table, a.Correction)
-		study.Corrected = len(study.Conversions) > 0
+		study.Corrected = slices.ContainsFunc(study.Conversions, func(c effect.Conversion) bool { return c.Added })
 	case FromMeans:
 		treated, control, made, problem := arms(row)
 		if problem != nil {

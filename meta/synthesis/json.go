@@ -61,7 +61,7 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 		Excluded: []ExcludedDocument{}, Conversions: []ConversionDocument{}, Studies: []StudyDocument{},
 	}
 	for _, e := range o.Excluded {
-		d.Excluded = append(d.Excluded, ExcludedDocument{Study: e.Study, Cell: e.Place.String(), Reason: e.Reason})
+		d.Excluded = append(d.Excluded, ExcludedDocument{Study: e.Study, Cell: firstCell(e.Place), Reason: e.Reason})
 	}
 	if o.Result == nil {
 		return d
@@ -77,11 +77,17 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 			Estimate: study.Estimate.Y, SE: study.Estimate.SE,
 			Low: study.Interval.Low, High: study.Interval.High,
 			Weight: study.Weight, LnEvidence: study.Evidence.Ln(),
-			Place: study.Source.Row.String(), Converted: study.Converted(o),
+			Place: firstCell(study.Source.Row), Converted: study.Converted(o),
 		})
 	}
 	d.ResultDocument = o.resultDocument(plan)
 	return d
+}
+
+// firstCell names a row by its first cell, such as "Sheet1!A2".
+func firstCell(row review.Place) string {
+	row.Col = max(row.Col, 1)
+	return row.String()
 }
 
 func conversionDocuments(study Study) []ConversionDocument {
@@ -89,16 +95,23 @@ func conversionDocuments(study Study) []ConversionDocument {
 	for _, c := range study.Conversions {
 		all = append(all, ConversionDocument{
 			Study: study.Source.Name, What: c.What, Source: c.Source,
-			From: namedValues(c.From), To: namedValues(c.To),
+			From: namedValues(c.From, study.Source), To: namedValues(c.To, nil),
 		})
 	}
 	return all
 }
 
-func namedValues(values []effect.Value) map[string]float64 {
+// namedValues names numbers by their cell where the row holds them as they are.
+func namedValues(values []effect.Value, row *review.Study) map[string]float64 {
 	named := make(map[string]float64, len(values))
 	for _, v := range values {
-		named[v.Name] = v.Value
+		name := v.Name
+		if field, err := review.ParseField(v.Name); err == nil && row != nil {
+			if n, ok := row.Number(field); ok && n.Value == v.Value {
+				name = n.Place.Cell()
+			}
+		}
+		named[name] = v.Value
 	}
 	return named
 }

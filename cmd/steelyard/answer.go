@@ -1,0 +1,279 @@
+package main
+
+import (
+	"fmt"
+	"slices"
+	"strings"
+	"unicode/utf8"
+
+	"steelyard/forest/words"
+	"steelyard/meta"
+	"steelyard/meta/review"
+	"steelyard/meta/synthesis"
+)
+
+// The shape of the text answer, in characters.
+const (
+	answerWidth = 96
+	labelWidth  = 18
+	valueWidth  = 22
+)
+
+// mostFindings is how many findings an answer shows.
+const mostFindings = 10
+
+// page collects the lines of a text answer.
+type page struct{ strings.Builder }
+
+// line writes one line as it stands.
+func (p *page) line(text string) { p.WriteString(strings.TrimRight(text, " ") + "\n") }
+
+// row writes a label and its text, wrapped under itself.
+func (p *page) row(label, text string) { p.wrapped(pad(label, labelWidth), text) }
+
+// value writes a label, a value and what is to be said about it, in three
+// columns.
+func (p *page) value(label, value, about string) {
+	p.wrapped(pad(label, labelWidth)+pad(value, valueWidth)+"  ", about)
+}
+
+// wrapped writes a head and a text that is wrapped under its own beginning.
+func (p *page) wrapped(head, text string) {
+	indent := utf8.RuneCountInString(head)
+	for i, line := range wrap(text, answerWidth-indent-2) {
+		if i > 0 {
+			head = strings.Repeat(" ", indent)
+		}
+		p.line("  " + head + line)
+	}
+}
+
+// item writes a paragraph with a hanging mark.
+func (p *page) item(mark, text string) {
+	for i, line := range wrap(text, answerWidth-4) {
+		if i > 0 {
+			mark = " "
+		}
+		p.line("  " + mark + " " + line)
+	}
+}
+
+func pad(text string, width int) string {
+	return text + strings.Repeat(" ", max(0, width-utf8.RuneCountInString(text)))
+}
+
+// answer returns the text answer of a synthesis.
+func answer(s *synthesis.Synthesis) string {
+	var p page
+	for i := range s.Outcomes {
+		if i > 0 {
+			p.line("")
+		}
+		p.outcome(s, &s.Outcomes[i])
+	}
+	p.findings(s.Findings)
+	p.line("")
+	p.line("Cautions")
+	for _, c := range s.Cautions {
+		p.item("·", c)
+	}
+	return p.String()
+}
+
+// outcome writes one outcome: what was pooled, how large, how sure, how strong.
+func (p *page) outcome(s *synthesis.Synthesis, o *synthesis.Outcome) {
+	p.line(heading(s, o))
+	p.leftOut(s, o)
+	if o.Result == nil {
+		p.wrapped("", "No result: "+o.Problem)
+		return
+	}
+	fit := o.Result.Fit
+	p.wrapped("", size(s, o))
+	p.line("")
+	p.effect(s, o)
+	p.evidence(s, o)
+	p.beliefs(o.Result)
+	if fit.Mean.K > 1 {
+		p.scatter(fit)
+		p.otherModel(o)
+	}
+	p.regions(o)
+	p.remarks(o)
+}
+
+func heading(s *synthesis.Synthesis, o *synthesis.Outcome) string {
+	if o.Name == "" {
+		return s.Source.File
+	}
+	return o.Name
+}
+
+// leftOut says which rows are not in the result.
+func (p *page) leftOut(s *synthesis.Synthesis, o *synthesis.Outcome) {
+	if len(o.Excluded) == 0 {
+		return
+	}
+	p.wrapped("", fmt.Sprintf("%d of %d rows pooled; left out:", len(o.Studies), len(o.Studies)+len(o.Excluded)))
+	for i, e := range o.Excluded {
+		if i == mostFindings {
+			p.item("-", fmt.Sprintf("and %d more", len(o.Excluded)-i))
+			return
+		}
+		p.item("-", fmt.Sprintf("%s (%s): %s", e.Study, e.Place, e.Reason))
+	}
+}
+
+// size says how much was pooled, and how.
+func size(s *synthesis.Synthesis, o *synthesis.Outcome) string {
+	k := len(o.Studies)
+	text := fmt.Sprintf("%s %s", words.Count(k), words.Noun(s, k))
+	if o.Counts.Participants > 0 {
+		text += fmt.Sprintf(", %s participants", words.Count(o.Counts.Participants))
+	}
+	if o.Counts.Events > 0 {
+		text += fmt.Sprintf(", %s events", words.Count(o.Counts.Events))
+	}
+	return text + "; " + words.Model(o.Result.Fit)
+}
+
+// effect writes the estimate and the prediction.
+func (p *page) effect(s *synthesis.Synthesis, o *synthesis.Outcome) {
+	fit := o.Result.Fit
+	about := words.Measure(o.Analysis.Measure) + ", " + words.Level(fit.Model.Level) + " interval"
+	if wanted := words.Wanted(o); wanted != "" {
+		about += "; " + wanted
+	}
+	p.value("Effect", words.Reader(o, fit.Mean.Estimate, meta.Limits{Low: fit.Mean.Low, High: fit.Mean.High}), about)
+	if fit.Prediction != nil {
+		p.value("In a new setting", words.ReaderInterval(o, meta.Limits{Low: fit.Prediction.Low, High: fit.Prediction.High}),
+			words.Level(fit.Model.Level)+" prediction interval for the true effect")
+	}
+}
+
+// evidence writes how strongly the data favour an effect, or none.
+func (p *page) evidence(s *synthesis.Synthesis, o *synthesis.Outcome) {
+	mean := o.Result.Fit.Mean
+	p.value("Evidence", words.Evidence(mean.Evidence), words.Strength(mean.Evidence)+"; "+words.Test(mean))
+	if remark := words.BiasRemark(o); remark != "" {
+		k := len(o.Studies)
+		p.value("", "", fmt.Sprintf("%s: %d of %d %s at high risk", remark, words.HighRisk(o), k, words.Noun(s, k)))
+	}
+}
+
+// otherModel writes the result of the effects model that was not chosen.
+func (p *page) otherModel(o *synthesis.Outcome) {
+	if other := o.Result.Other; other != nil {
+		interval := meta.Limits{Low: other.Mean.Low, High: other.Mean.High}
+		p.value(otherName(other), words.Reader(o, other.Mean.Estimate, interval), words.Evidence(other.Mean.Evidence)+", for comparison")
+	}
+}
+
+func otherName(other *meta.Fit) string {
+	if other.Model.Effects == meta.CommonEffect {
+		return "Common effect"
+	}
+	return "Random effects"
+}
+
+// beliefs writes what prior probabilities of an effect become.
+func (p *page) beliefs(r *synthesis.Result) {
+	if len(r.Posterior) == 0 {
+		return
+	}
+	const column = 8
+	perLine := (answerWidth - labelWidth) / column
+	for from := 0; from < len(r.Posterior); from += perLine {
+		before, after := "", ""
+		for _, b := range r.Posterior[from:min(from+perLine, len(r.Posterior))] {
+			before += pad(words.Probability(b.Prior), column)
+			after += pad(words.Probability(b.Posterior), column)
+		}
+		p.line("  " + pad("Belief before", labelWidth) + before)
+		p.line("  " + pad("becomes", labelWidth) + after)
+	}
+	p.row("", words.Doubter(r.DoubtersPrior))
+}
+
+// scatter writes how much the studies differ.
+func (p *page) scatter(fit *meta.Fit) {
+	if fit.Model.Effects == meta.RandomEffects {
+		p.row("Spread", words.Spread(fit))
+	}
+	p.row("Heterogeneity", words.Scatter(fit))
+}
+
+// regions writes what the data say of an important difference.
+func (p *page) regions(o *synthesis.Outcome) {
+	for i, r := range o.Result.Regions {
+		label := ""
+		if i == 0 {
+			label = "Large enough?"
+		}
+		text := fmt.Sprintf("%s (%s): %s", r.Name, words.RegionRange(o, r), words.RegionEvidence(r))
+		if r.Settings >= 0 {
+			text += fmt.Sprintf("; %s of settings predicted there", words.Probability(r.Settings))
+		}
+		p.row(label, text)
+	}
+}
+
+// remarks writes the caveats and assumptions.
+func (p *page) remarks(o *synthesis.Outcome) {
+	var all []string
+	for _, c := range o.Result.Fit.Caveats {
+		all = append(all, c.Text())
+	}
+	all = append(all, o.Notes...)
+	if o.Counts.Corrected > 0 {
+		all = append(all, fmt.Sprintf("%d table(s) with a zero cell: correction %q.", o.Counts.Corrected, o.Analysis.Correction))
+	}
+	if len(all) == 0 {
+		return
+	}
+	p.line("")
+	for _, text := range all {
+		p.item("·", text)
+	}
+}
+
+// findings writes the findings, gravest first, grouped by rule.
+func (p *page) findings(findings []review.Finding) {
+	if len(findings) == 0 {
+		return
+	}
+	sorted := slices.Clone(findings)
+	slices.SortStableFunc(sorted, func(a, b review.Finding) int {
+		if a.Severity != b.Severity {
+			return int(a.Severity) - int(b.Severity)
+		}
+		return strings.Compare(a.Rule, b.Rule)
+	})
+	p.line("")
+	p.line("Findings in the sheet")
+	for i, f := range sorted {
+		if i == mostFindings {
+			p.item("·", fmt.Sprintf("and %d more; --format json lists them all", len(sorted)-i))
+			return
+		}
+		p.item("·", findingText(f))
+	}
+}
+
+func findingText(f review.Finding) string {
+	text := f.Severity.String()
+	if f.Rule != "" {
+		text += " " + f.Rule
+	}
+	if where := f.Place.String(); where != "" {
+		text += ", " + where
+	}
+	if f.Study != "" {
+		text += ", " + f.Study
+	}
+	text += ": " + f.Message
+	if f.Accepted != "" {
+		text += " Accepted: " + f.Accepted
+	}
+	return text
+}

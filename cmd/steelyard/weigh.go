@@ -1,0 +1,161 @@
+package main
+
+import (
+	"fmt"
+	"slices"
+	"strings"
+
+	"github.com/urfave/cli/v2"
+
+	"steelyard/forest/words"
+	"steelyard/meta"
+	"steelyard/meta/effect"
+	"steelyard/meta/evidence"
+	"steelyard/meta/review"
+	"steelyard/meta/synthesis"
+)
+
+// Names of weigh's own flags.
+const (
+	flagZ        = "z"
+	flagT        = "t"
+	flagChi2     = "chi2"
+	flagF        = "f"
+	flagP        = "p"
+	flagEstimate = "estimate"
+	flagDF       = "df"
+	flagDF2      = "df2"
+	flagSE       = "se"
+	flagLow      = "ci-low"
+	flagHigh     = "ci-high"
+	flagRatio    = "ratio"
+	flagOneSided = "one-sided"
+)
+
+func weighCommand() *cli.Command {
+	number := func(name, usage string) cli.Flag { return &cli.Float64Flag{Name: name, Usage: usage} }
+	flags := []cli.Flag{
+		number(flagZ, "a normal statistic"),
+		number(flagT, "Student's t; needs --df"),
+		number(flagChi2, "a chi-square statistic; needs --df"),
+		number(flagF, "an F statistic; needs --df and --df2"),
+		number(flagP, "a two-sided p-value, when there is nothing else"),
+		number(flagEstimate, "an estimate; needs --se, or --ci-low and --ci-high"),
+		number(flagDF, "degrees of freedom; beside --estimate, of its standard error"),
+		number(flagDF2, "degrees of freedom of F's denominator"),
+		number(flagSE, "standard error, of the logarithm for a ratio"),
+		number(flagLow, "lower limit of the interval"),
+		number(flagHigh, "upper limit of the interval"),
+		&cli.BoolFlag{Name: flagRatio, Usage: "the estimate, its limits and thresholds are ratios: they are logged, and no effect is 1"},
+		&cli.BoolFlag{Name: flagOneSided, Usage: "weigh an effect above none against none; turn the sign for one below"},
+	}
+	for _, name := range []string{review.SettingNull, review.SettingImportant, review.SettingPrior, review.SettingLevel, review.SettingEvidence} {
+		setting, err := review.FindSetting(name)
+		if err != nil {
+			panic(err) // a name that the table of settings does not have is a bug of this file
+		}
+		flags = append(flags, &cli.StringFlag{Name: name, Usage: settingHelp(setting)})
+	}
+	return &cli.Command{
+		Name:  "weigh",
+		Usage: "weigh the evidence in numbers alone, without a sheet",
+		UsageText: "steelyard weigh --z Z | --t T --df N | --chi2 X --df N | --f F --df N --df2 M | --p P |\n" +
+			"                  --estimate E (--se S | --ci-low L --ci-high U) [--ratio] [flags]",
+		Description: "Example: steelyard weigh --ratio --estimate 0.71 --ci-low 0.58 --ci-high 0.86",
+		Flags:       slices.Concat(flags, []cli.Flag{formatFlag()}, outputFlags()),
+		Action:      weigh,
+	}
+}
+
+func weigh(c *cli.Context) error {
+	if c.NArg() > 0 {
+		return &callError{fmt.Sprintf("weigh takes no file, but %q is given; to pool a sheet: steelyard pool %s", c.Args().First(), c.Args().First())}
+	}
+	wantJSON, err := jsonWanted(c)
+	if err != nil {
+		return err
+	}
+	numbers, prior, err := weighNumbers(c)
+	if err != nil {
+		return err
+	}
+	w, err := synthesis.Weigh(numbers, prior)
+	if err != nil {
+		return &callError{err.Error()}
+	}
+	content := []byte(weighAnswer(w, numbers.Level))
+	if wantJSON {
+		if content, err = indented(w.Document()); err != nil {
+			return err
+		}
+	}
+	return deliver(c, content)
+}
+
+// weighNumbers reads the flags: exactly one statistic with what goes with it.
+func weighNumbers(c *cli.Context) (synthesis.Numbers, []float64, error) {
+	var n synthesis.Numbers
+	statistics := []string{flagZ, flagT, flagChi2, flagF, flagP, flagEstimate} // in the order of synthesis.Statistic
+	given := slices.DeleteFunc(slices.Clone(statistics), func(name string) bool { return !c.IsSet(name) })
+	if len(given) != 1 {
+		return n, nil, &callError{fmt.Sprintf("give one of --%s; %d are given; see: steelyard weigh --help", strings.Join(statistics, ", --"), len(given))}
+	}
+	n.Statistic = synthesis.Statistic(slices.Index(statistics, given[0]))
+	n.Value = c.Float64(given[0])
+	n.DF, n.DF2, n.SE = c.Float64(flagDF), c.Float64(flagDF2), c.Float64(flagSE)
+	n.Ratio, n.OneSided = c.Bool(flagRatio), c.Bool(flagOneSided)
+	if c.IsSet(flagSE) && !(n.SE > 0) {
+		return n, nil, &callError{"--se must be greater than 0"}
+	}
+	if c.IsSet(flagDF) && !(n.DF > 0) {
+		return n, nil, &callError{"--df must be greater than 0"}
+	}
+	if c.IsSet(flagLow) != c.IsSet(flagHigh) {
+		return n, nil, &callError{"both limits are needed: --ci-low and --ci-high"}
+	}
+	if c.IsSet(flagLow) {
+		n.Limits = &meta.Limits{Low: c.Float64(flagLow), High: c.Float64(flagHigh)}
+	}
+	var plan review.Plan
+	if err := applySettings(c, &plan); err != nil {
+		return n, nil, err
+	}
+	a, err := plan.Analysis("")
+	n.Null, n.Important, n.Level, n.Form = a.Null, a.Important, a.Model.Level, a.Model.Evidence
+	return n, a.Prior, err
+}
+
+// weighAnswer is the text answer of weigh.
+func weighAnswer(w *synthesis.Weighing, level float64) string {
+	var p page
+	measure := "estimate"
+	if w.Measure.Log() {
+		measure = "ratio"
+	}
+	if m := w.Mean; m != nil {
+		notation := words.NotationOf(w.Measure, m.SE)
+		reader := func(y float64) float64 { return effect.ToReader(w.Measure, y) }
+		p.value("Effect", notation.Estimate(reader(m.Estimate), reader(m.Low), reader(m.High)),
+			fmt.Sprintf("%s, %s interval; %s", measure, words.Level(level), words.Test(*m)))
+	}
+	p.value("Evidence", words.Evidence(w.Evidence), words.Strength(w.Evidence))
+	p.value("", "", w.Form+" form"+boundText(w))
+	if w.Form == "p-value" && w.Evidence.Favours() == evidence.NoEffect {
+		p.row("", "a p-value alone shows no evidence for an effect here; it is never evidence of none")
+	}
+	r := synthesis.Result{Posterior: w.Posterior, DoubtersPrior: w.Doubter}
+	p.beliefs(&r)
+	for _, region := range w.Regions {
+		p.row(region.Name, words.RegionEvidence(region))
+	}
+	p.line("")
+	p.item("·", synthesis.EvidenceCaution)
+	return p.String()
+}
+
+func boundText(w *synthesis.Weighing) string {
+	if w.Bound == nil {
+		return ""
+	}
+	return fmt.Sprintf("; the most that any prior could give: %s", words.OddsInSentence(w.Bound.Ln()))
+}
