@@ -66,7 +66,7 @@ func TestWriteSVG(t *testing.T) {
 		`<rect x="1" y="1" width="2" height="2" fill="#FFFFFF" stroke="#D55E00" stroke-width="0.9"/>`,
 		`<polygon points="1,1 2,2 3,1" fill="#0072B2"/>`,
 		`<text x="50" y="20" font-size="7.5" fill="#1A1A1A" text-anchor="end" font-weight="bold" font-style="italic">x</text>`,
-		`<tspan x="50" text-anchor="end">11</tspan><tspan x="60" text-anchor="middle" fill="#595959">of</tspan><tspan font-weight="bold"> more</tspan></text>`,
+		`<tspan x="50" text-anchor="end">11</tspan><tspan x="60" text-anchor="middle" fill="#595959">of</tspan> <tspan font-weight="bold">more</tspan></text>`,
 	} {
 		if !strings.Contains(got, want) {
 			t.Errorf("SVG lacks %s\n%s", want, got)

@@ -214,6 +214,9 @@ func (s *svg) text(t Text) {
 
 // span writes one piece of a line with what differs from the line's first piece.
 func (s *svg) span(i int, span, first Span) {
+	if span.Follow && len(span.Text) > 0 && span.Text[0] == ' ' {
+		s.raw(" ") // between the pieces, where viewers keep it
+	}
 	s.raw("<tspan")
 	if i == 0 || !span.Follow {
 		s.number("x", span.X)
@@ -224,9 +227,6 @@ func (s *svg) span(i int, span, first Span) {
 	}
 	s.face(span, first)
 	s.raw(">")
-	if span.Follow && len(span.Text) > 0 && span.Text[0] == ' ' {
-		s.raw(" ") // the blank between two pieces; Clean trims it
-	}
 	s.escaped(Clean(span.Text))
 	s.raw("</tspan>")
 }

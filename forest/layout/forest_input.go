@@ -1,0 +1,188 @@
+package layout
+
+import (
+	"fmt"
+	"math"
+)
+
+// ForestInput is what a forest chart shows, as plain display data. Estimates
+// and limits stand on the analysis scale: natural logs for ratio measures.
+type ForestInput struct {
+	Title, Subtitle string
+	Study           string // what a row is called: "trial" or "study"; empty is "study"
+	Scale           EffectScale
+	Sides           Sides
+	Rows            []ForestRow
+	Pooled          *ForestPooled     // nil: nothing was pooled, as with one study
+	Prediction      *ForestPrediction // nil: no row for it, as under common effects
+	Spread          *ForestSpread     // nil: no row for it
+	BiasOpen        bool              // "bias is not in this number" stands beside the evidence
+	Notes           []Note            // after the notes on key and rail, which the chart writes itself
+	Level           float64           // of all intervals, such as 0.95
+}
+
+// EffectScale says how effects are shown.
+type EffectScale struct {
+	Measure  string  // such as "risk ratio"
+	Ratio    bool    // log axis
+	Null     float64 // the value of no effect, analysis scale
+	Decimals int     // of differences
+}
+
+// Sides holds the words for the directions of the effect and for the arms.
+type Sides struct {
+	Lower, Higher string    // under the line of no effect, such as "fewer flares" and "more"
+	Arms          [2]string // over the counts, treated arm first
+	Counts        string    // head of the counts; empty is "Events of total"
+}
+
+// Count is what one arm of a row counted, as text: "11" of "41". Empty Events
+// beside a Total is shown as a dash.
+type Count struct{ Events, Total string }
+
+// ForestRow is one study.
+type ForestRow struct {
+	Name, Year          string   // shown as "Name Year"; either may be empty
+	Counts              [2]Count // treated arm first; empty if not reported
+	Estimate, Low, High float64  // analysis scale
+	Weight              float64  // share of the pooled result, 0 to 1
+	LnEvidence          float64  // ln of the evidence ratio, effect over none
+	Unwanted            bool     // the effect goes in the direction that is not wanted
+	Dagger              bool     // marked †, explained in a note
+}
+
+// ForestPooled is the pooled result.
+type ForestPooled struct {
+	Estimate, Low, High float64 // analysis scale
+	LnEvidence          float64
+	Unwanted            bool
+	K                   int       // studies pooled
+	Totals              [2]string // people per arm; empty if not known
+}
+
+// ForestPrediction is the interval for the true effect of a new study, or the
+// reason why there is none.
+type ForestPrediction struct {
+	Low, High float64
+	Reason    string // such as "needs 3 trials"; then Low and High are not used
+}
+
+// ForestSpread is the standard deviation τ of the true effects on the analysis
+// scale, with limits where they are known.
+type ForestSpread struct {
+	Tau, Low, High float64
+	HasLimits      bool
+}
+
+// Note is a paragraph under the chart with its bold first word, such as
+// "Model".
+type Note struct{ Head, Text string }
+
+// Limits of what a chart can show: a ratio estimate from a millionth to a
+// million, limits that a float64 still holds as a ratio.
+const (
+	mostLogEstimate = 13.9
+	mostLogLimit    = 700
+	mostDifference  = 1e12
+	mostLnEvidence  = 1e12
+)
+
+// validate refuses numbers that no axis can hold.
+func (in *ForestInput) validate() error {
+	if len(in.Rows) == 0 {
+		return fmt.Errorf("forest chart: no %s to draw; nothing was pooled", in.plural(2))
+	}
+	if !(0 < in.Level && in.Level < 1) {
+		return fmt.Errorf("forest chart: level %v must lie between 0 and 1, such as 0.95", in.Level)
+	}
+	if in.Scale.Decimals < 0 || in.Scale.Decimals > 12 {
+		return fmt.Errorf("forest chart: %d decimals; give 0 to 12", in.Scale.Decimals)
+	}
+	if err := in.checkValue("the value of no effect", in.Scale.Null, true); err != nil {
+		return err
+	}
+	for i, r := range in.Rows {
+		where := fmt.Sprintf("row %d (%s)", i+1, Clean(r.Name))
+		if err := in.checkRow(where, r.Estimate, r.Low, r.High, r.LnEvidence); err != nil {
+			return err
+		}
+		if !(0 <= r.Weight && r.Weight <= 1) {
+			return fmt.Errorf("forest chart: %s: weight %v must lie from 0 to 1", where, r.Weight)
+		}
+	}
+	return in.validateSummary()
+}
+
+func (in *ForestInput) validateSummary() error {
+	if p := in.Pooled; p != nil {
+		if err := in.checkRow("pooled result", p.Estimate, p.Low, p.High, p.LnEvidence); err != nil {
+			return err
+		}
+	}
+	if p := in.Prediction; p != nil && p.Reason == "" {
+		if err := in.checkLimits("prediction interval", p.Low, p.High); err != nil {
+			return err
+		}
+	}
+	if s := in.Spread; s != nil {
+		if !(0 <= s.Tau && s.Tau <= mostDifference) {
+			return fmt.Errorf("forest chart: spread between %s of %v must be 0 or more and finite", in.plural(2), s.Tau)
+		}
+		if s.HasLimits && !(0 <= s.Low && s.Low <= s.High && s.High <= mostDifference) {
+			return fmt.Errorf("forest chart: limits of the spread, %v to %v, must ascend from 0 and be finite", s.Low, s.High)
+		}
+	}
+	return nil
+}
+
+func (in *ForestInput) checkRow(where string, estimate, low, high, ln float64) error {
+	if err := in.checkValue(where+": estimate", estimate, true); err != nil {
+		return err
+	}
+	if err := in.checkLimits(where, low, high); err != nil {
+		return err
+	}
+	if !(math.Abs(ln) <= mostLnEvidence) {
+		return fmt.Errorf("forest chart: %s: ln of the evidence ratio is %v; it must be finite", where, ln)
+	}
+	return nil
+}
+
+func (in *ForestInput) checkLimits(where string, low, high float64) error {
+	if err := in.checkValue(where+": lower limit", low, false); err != nil {
+		return err
+	}
+	if err := in.checkValue(where+": upper limit", high, false); err != nil {
+		return err
+	}
+	if low > high {
+		return fmt.Errorf("forest chart: %s: lower limit %v is above the upper limit %v", where, low, high)
+	}
+	return nil
+}
+
+func (in *ForestInput) checkValue(what string, v float64, estimate bool) error {
+	most, advice := mostDifference, "rescale the unit of the measure"
+	if in.Scale.Ratio {
+		most, advice = mostLogLimit, "ratios enter as natural logs"
+		if estimate {
+			most = mostLogEstimate
+		}
+	}
+	if !(math.Abs(v) <= most) {
+		return fmt.Errorf("forest chart: %s is %v on the analysis scale, beyond what an axis can show (±%v); %s", what, v, most, advice)
+	}
+	return nil
+}
+
+// plural returns the word for n rows.
+func (in *ForestInput) plural(n int) string {
+	one, many := "study", "studies"
+	if in.Study != "" && in.Study != "study" {
+		one, many = Clean(in.Study), Clean(in.Study)+"s"
+	}
+	if n == 1 {
+		return one
+	}
+	return many
+}
