@@ -109,14 +109,14 @@ func newHenmiCopasLaw(data *sample, zero moments, tau2 float64) henmiCopasLaw {
 	return law
 }
 
-// outside returns ln of the density at x of |R|, in units of its standard
-// deviation, times the chance that the interval with x0 = t/√inflation then
-// misses μ.
-func (law henmiCopasLaw) outside(x, x0 float64) float64 {
-	ratio := x / x0
-	bar := law.df + law.gain*(ratio*ratio-1)
+// outside returns, for |R| u beyond x0 = t/√inflation in units of its standard
+// deviation, ln of its density relative to that at x0 times the chance that the
+// interval then misses μ.
+func (law henmiCopasLaw) outside(u, x0 float64) float64 {
+	x, ratio := x0+u, u/x0
+	bar := law.df + law.gain*(2*ratio+ratio*ratio)
 	mean, variance := law.m0+law.m2*x*x, law.v0+law.v2*x*x
-	return -0.5*x*x + logGammaLower(bar*(mean/variance), mean*(mean/variance))
+	return -u*x0 - 0.5*u*u + logGammaLower(bar*(mean/variance), mean*(mean/variance))
 }
 
 // lnP returns ln of the chance that the interval with critical value t misses
@@ -126,9 +126,9 @@ func (law henmiCopasLaw) lnP(t float64) (float64, error) {
 		return 0, nil
 	}
 	x0 := t / math.Sqrt(law.inflation)
-	f := func(x float64) float64 { return law.outside(x, x0) }
-	lnIntegral, err := logIntegral(f, x0)
-	return min(0, math.Ln2+lnIntegral-0.5*math.Log(2*math.Pi)), err
+	lnIntegral, err := logIntegral(func(u float64) float64 { return law.outside(u, x0) })
+	lnDensity := -0.5*x0*x0 - 0.5*math.Log(2*math.Pi)
+	return min(0, math.Ln2+lnDensity+lnIntegral), err
 }
 
 // critical returns the t at which the interval misses μ with chance alpha.

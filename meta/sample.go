@@ -15,8 +15,9 @@ const largest = 1e150
 // error, any distance between estimates, and the distance to the null may be.
 const widest = 1e145
 
-// equalWithin is how far estimates may differ, relative to their magnitude, and
-// still count as all equal: the rounding of the last digits.
+// equalWithin is how far estimates may differ, relative to their magnitude or to
+// the smallest standard error, and still count as all equal: the rounding of the
+// last digits.
 const equalWithin = 1e-15
 
 // sample is a set of studies in working units: estimates measured from that of
@@ -108,7 +109,7 @@ func (d *sample) scale(y, s []float64) error {
 		}
 	}
 	d.spread = high - low
-	d.equal = d.spread*d.unit <= equalWithin*magnitude
+	d.equal = d.spread <= equalWithin*max(1, magnitude/d.unit)
 	return nil
 }
 
