@@ -55,18 +55,17 @@ func parseDate(text string) (date review.Date, letter string, ok bool) {
 	if len(day) == 5 && 'a' <= day[4] && day[4] <= 'z' {
 		day, letter = day[:4], day[4:]
 	}
-	parts := strings.Split(day, "-")
-	widths := []int{4, 2, 2}
 	var values [3]int
-	if len(parts) > len(widths) || (letter != "" && len(parts) > 1) {
-		return review.Date{}, "", false
-	}
-	for i, part := range parts {
+	for i, width := range [3]int{4, 2, 2} {
+		part, rest, more := strings.Cut(day, "-")
 		value, err := strconv.ParseUint(part, 10, 16)
-		if err != nil || len(part) != widths[i] || (i > 0 && value == 0) {
+		if err != nil || len(part) != width || (i > 0 && value == 0) || (more && (i == 2 || letter != "")) {
 			return review.Date{}, "", false
 		}
 		values[i] = int(value)
+		if day = rest; !more {
+			break
+		}
 	}
 	date = review.Date{Year: values[0], Month: values[1], Day: values[2]}
 	return date, letter, date.Month <= 12 && date.Day <= daysIn(date.Year, date.Month)

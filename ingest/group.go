@@ -26,7 +26,7 @@ func (r *headerReader) pair(i int) *header {
 		case group == "":
 			h.columns[c] = r.newColumn(below, sub.Number, col)
 		default:
-			joined, pending := r.joinedColumn(group, below, sub.Number, col, own != "")
+			joined, pending := r.joinedColumn(group, below, sub.Number, col)
 			h.columns[c] = joined
 			if pending != nil {
 				arms = append(arms, *pending)
@@ -47,7 +47,7 @@ type armColumn struct {
 }
 
 // joinedColumn understands a group's header together with the one below it.
-func (r *headerReader) joinedColumn(group, below string, row, col int, own bool) (column, *armColumn) {
+func (r *headerReader) joinedColumn(group, below string, row, col int) (column, *armColumn) {
 	joined := r.newColumn(group+" "+below, row, col)
 	if joined.field != review.NoField {
 		return joined, nil
@@ -59,7 +59,7 @@ func (r *headerReader) joinedColumn(group, below string, row, col int, own bool)
 	if q, ok := bareQuantity(group); ok && !known {
 		return joined, &armColumn{col: col, group: below, quantity: q}
 	}
-	if known || !own {
+	if known {
 		return r.newColumn(below, row, col), nil
 	}
 	return joined, nil

@@ -184,13 +184,13 @@ func (r *headerReader) applyRequests(h *header) {
 		if col == 0 {
 			continue
 		}
+		c := &h.columns[col-1]
+		said := c.meaning
 		for i := range h.columns {
 			if h.columns[i].field == want.field {
 				h.columns[i].meaning = meaning{}
 			}
 		}
-		c := &h.columns[col-1]
-		said := c.meaning
 		c.meaning = meaning{field: want.field}
 		if aboutEffect(want.field) {
 			c.measure, c.level = said.measure, said.level

@@ -3,6 +3,7 @@ package ingest
 import (
 	"strings"
 	"sync"
+	"unicode"
 
 	"steelyard/meta/effect"
 	"steelyard/meta/review"
@@ -71,7 +72,7 @@ type quantity struct {
 var quantities = []quantity{
 	{review.EventsTreated, review.EventsControl, []string{"events", "event", "n events", "no events", "number events", "events n", "number with event",
 		"n with event", "deaths", "cases"}},
-	{review.TotalTreated, review.TotalControl, []string{"total", "n", "totals", "total n", "n total", "sample size", "size", "number", "participants", "patients",
+	{review.TotalTreated, review.TotalControl, []string{"total", "n", "totals", "total n", "n total", "sample size", "size", "number", "participants", "patients", "people",
 		"subjects", "n patients", "n participants", "number patients", "number participants", "total number", "n analysed", "n analyzed", "analysed", "analyzed"}},
 	{review.MeanTreated, review.MeanControl, []string{"mean", "average", "mean value"}},
 	{review.SDTreated, review.SDControl, []string{"sd", "standard deviation", "std dev", "std deviation", "st dev", "s d", "stdev"}},
@@ -205,7 +206,7 @@ func (d *dictionary) addLimits() {
 
 // recognise returns what a header says; ok is false if it says nothing known.
 func recognise(header string) (m meaning, ok bool) {
-	if len(header) > maxHeaderBytes {
+	if len(header) > maxHeaderBytes || strings.IndexFunc(header, unicode.IsLetter) < 0 {
 		return meaning{}, false
 	}
 	phrase, level := fold(header)

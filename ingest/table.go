@@ -3,6 +3,7 @@ package ingest
 import (
 	"context"
 	"fmt"
+	"slices"
 
 	"steelyard/ingest/grid"
 	"steelyard/meta/review"
@@ -62,11 +63,11 @@ func readTable(ctx context.Context, book *grid.Book, sheet *grid.Sheet, h *heade
 	return t.x, nil
 }
 
-// noteSheet hands on what the cell reader remarked, and warns of hidden columns
-// and sheets.
+// noteSheet hands on what the cell reader remarked, except about formulas without
+// a value, which are findings of their own, and warns of hidden columns and sheets.
 func (t *tableReader) noteSheet() {
 	for _, r := range t.book.Remarks {
-		if r.Sheet == t.sheet.Name || r.Sheet == "" {
+		if (r.Sheet == t.sheet.Name || r.Sheet == "") && t.kindAt(r.Row, r.Col) != grid.Uncalculated {
 			t.find(review.Note, "F5", t.place(r.Row, r.Col, ""), "", r.Message)
 		}
 	}
@@ -87,6 +88,15 @@ func (t *tableReader) noteSheet() {
 				"the hidden sheet "+quote(s.Name)+" also holds a table of studies, which was not read; delete it, or choose it with --sheet")
 		}
 	}
+}
+
+// kindAt returns the kind of a cell of the sheet.
+func (t *tableReader) kindAt(row, col int) grid.Kind {
+	i, found := slices.BinarySearchFunc(t.sheet.Rows, row, func(r grid.Row, want int) int { return r.Number - want })
+	if !found {
+		return grid.Blank
+	}
+	return t.sheet.Rows[i].Cell(col).Kind
 }
 
 // sortColumns parts the columns by what is done with them.

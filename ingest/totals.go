@@ -2,29 +2,29 @@ package ingest
 
 import "strings"
 
-// totalWords mark a row of totals; it may have the others beside them.
+// totalWords mark a row of totals, besideTotal may stand with them.
 var (
-	totalWords = map[string]bool{"total": true, "totals": true, "subtotal": true, "subtotals": true, "overall": true, "pooled": true, "summary": true, "sum": true,
-		"combined": true, "sub": false}
-	besideTotal = map[string]bool{"all": true, "studies": true, "trials": true, "study": true, "trial": true, "effect": true, "effects": true, "estimate": true,
-		"result": true, "results": true, "mean": true, "weighted": true, "random": true, "fixed": true, "common": true, "model": true, "grand": true, "sub": true,
-		"ci": true, "events": true, "n": true, "k": true, "meta": true, "analysis": true, "and": true}
+	totalWords  = []string{"total", "totals", "subtotal", "subtotals", "overall", "pooled", "summary", "sum", "combined"}
+	besideTotal = []string{"all", "grand", "sub", "random", "fixed", "common", "weighted", "mean", "meta", "studies", "trials", "study", "trial", "effect", "effects",
+		"estimate", "result", "results", "model", "ci", "events", "n", "k", "analysis", "and"}
+	startOfTotal = besideTotal[:9] // those with which such a name may begin
 )
 
 // namesTotal reports whether a study's name is that of a row of totals, such as
 // "Total", "Subtotal (95% CI)" or "Pooled estimate".
 func namesTotal(name string) bool {
 	const longest = 60
-	if len(name) > longest || !startsLikeTotal(name) {
+	first, _, _ := strings.Cut(name, " ")
+	if len(name) > longest || !(oneOf(first, totalWords) || oneOf(first, startOfTotal) || strings.ContainsAny(first, ":-(,.")) {
 		return false
 	}
 	phrase, _ := fold(name)
 	total := false
 	for _, word := range strings.Fields(phrase) {
 		switch {
-		case totalWords[word]:
+		case oneOf(word, totalWords):
 			total = true
-		case besideTotal[word] || strings.Trim(word, "0123456789.%") == "":
+		case oneOf(word, besideTotal) || strings.Trim(word, "0123456789.%") == "":
 		default:
 			return false
 		}
@@ -32,7 +32,12 @@ func namesTotal(name string) bool {
 	return total
 }
 
-// startsLikeTotal is a quick look at the first letter.
-func startsLikeTotal(name string) bool {
-	return name != "" && strings.IndexByte("tsopgacrfwmTSOPGACRFWM", name[0]) >= 0
+// oneOf reports whether a word is in a list, in any letter case.
+func oneOf(word string, list []string) bool {
+	for _, w := range list {
+		if len(w) == len(word) && strings.EqualFold(w, word) {
+			return true
+		}
+	}
+	return false
 }

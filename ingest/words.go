@@ -14,10 +14,10 @@ var fillers = map[string]bool{"of": true, "the": true, "in": true, "for": true, 
 // interval" as "ci". A level such as that of "95% CI low" is taken out and
 // returned as a fraction; it is 0 when there is none.
 func fold(header string) (phrase string, level float64) {
-	words := strings.FieldsFunc(strings.ToLower(header), notInWord)
+	words := strings.FieldsFunc(strings.ToLower(withoutPoints(header)), notInWord)
 	kept := words[:0]
 	for i := 0; i < len(words); i++ {
-		word := strings.Trim(words[i], ".")
+		word := words[i]
 		next := ""
 		if i+1 < len(words) {
 			next = words[i+1]
@@ -34,6 +34,21 @@ func fold(header string) (phrase string, level float64) {
 		}
 	}
 	return strings.Join(kept, " "), level
+}
+
+// withoutPoints puts a blank for every point that is not within a number.
+func withoutPoints(header string) string {
+	if strings.IndexByte(header, '.') < 0 {
+		return header
+	}
+	digit := func(i int) bool { return 0 <= i && i < len(header) && '0' <= header[i] && header[i] <= '9' }
+	text := []byte(header)
+	for i, c := range text {
+		if c == '.' && !(digit(i-1) && digit(i+1)) {
+			text[i] = ' '
+		}
+	}
+	return string(text)
 }
 
 func notInWord(r rune) bool {

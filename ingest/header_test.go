@@ -1,0 +1,247 @@
+package ingest
+
+import (
+	"context"
+	"errors"
+	"slices"
+	"strings"
+	"testing"
+
+	"github.com/xuri/excelize/v2"
+
+	"steelyard/meta/effect"
+	"steelyard/meta/review"
+)
+
+// TestRecognise goes through headers as people type them.
+func TestRecognise(t *testing.T) {
+	for header, want := range map[string]meaning{
+		"Study":                              {field: review.StudyName},
+		"Author (Year)":                      {field: review.StudyName},
+		"First Author":                       {field: review.StudyName},
+		"Study ID":                           {field: review.StudyID},
+		"Year":                               {field: review.DateField},
+		"Publication-year":                   {field: review.DateField},
+		"Time point":                         {field: review.TimePoint},
+		"Risk of bias (overall)":             {field: review.RiskOfBias},
+		"No. of events (treatment group)":    {field: review.EventsTreated},
+		"Events in the control group":        {field: review.EventsControl},
+		"n events treated":                   {field: review.EventsTreated},
+		"deaths, placebo":                    {field: review.EventsControl},
+		"Intervention N":                     {field: review.TotalTreated},
+		"Sample size control":                {field: review.TotalControl},
+		"Total_control":                      {field: review.TotalControl},
+		"Mean (intervention)":                {field: review.MeanTreated},
+		"SD control":                         {field: review.SDControl},
+		"Std. dev. treated":                  {field: review.SDTreated},
+		"S.D. (control)":                     {field: review.SDControl},
+		"Standard error of the mean treated": {field: review.SETreated},
+		"Effect size":                        {field: review.Estimate},
+		"OR":                                 {field: review.Estimate, measure: effect.OddsRatio},
+		"Odds Ratio":                         {field: review.Estimate, measure: effect.OddsRatio},
+		"adjusted HR":                        {field: review.Estimate, measure: effect.HazardRatio},
+		"Relative risk":                      {field: review.Estimate, measure: effect.RiskRatio},
+		"Mean difference":                    {field: review.Estimate, measure: effect.MeanDifference},
+		"Standardized mean difference":       {field: review.Estimate, measure: effect.StandardisedMeanDifference},
+		"log OR":                             {field: review.AnalysisEstimate, measure: effect.OddsRatio},
+		"ln(RR)":                             {field: review.AnalysisEstimate, measure: effect.RiskRatio},
+		"logHR":                              {field: review.AnalysisEstimate, measure: effect.HazardRatio},
+		"y":                                  {field: review.AnalysisEstimate},
+		"SE":                                 {field: review.StandardError},
+		"Std. error":                         {field: review.StandardError},
+		"SE (log OR)":                        {field: review.StandardError, measure: effect.OddsRatio},
+		"standard error of mean difference":  {field: review.StandardError, measure: effect.MeanDifference},
+		"Lower":                              {field: review.LimitLow},
+		"Upper limit":                        {field: review.LimitHigh},
+		"CI lower":                           {field: review.LimitLow},
+		"95% CI low":                         {field: review.LimitLow, level: 0.95},
+		"95% confidence interval, upper":     {field: review.LimitHigh, level: 0.95},
+		"Lower 90% confidence limit":         {field: review.LimitLow, level: 0.9},
+		"97.5% CI upper":                     {field: review.LimitHigh, level: 0.975},
+		"CI95 low":                           {field: review.LimitLow, level: 0.95},
+		"HR upper limit (99% CI)":            {field: review.LimitHigh, measure: effect.HazardRatio, level: 0.99},
+		"log OR, CI low":                     {field: review.AnalysisLow, measure: effect.OddsRatio},
+		"P-value":                            {field: review.PValue},
+		"p":                                  {field: review.PValue},
+	} {
+		if got, ok := recognise(header); !ok || got != want {
+			t.Errorf("%q is read as %+v, want %+v", header, got, want)
+		}
+	}
+	for _, header := range []string{"", "  ", "Events (%)", "SE of OR", "latitude", "events", "Deaths, drug arm", "95%", "lower back pain", "control", strings.Repeat("study ", 100)} {
+		if got, ok := recognise(header); ok {
+			t.Errorf("%q is read as %v, want nothing", header, got.field)
+		}
+	}
+}
+
+// TestEveryFieldNamesItself holds the synonyms to the fields' own names, and
+// keeps one word from meaning two fields.
+func TestEveryFieldNamesItself(t *testing.T) {
+	for _, name := range review.FieldNames() {
+		m, ok := recognise(name)
+		if !ok || m.field.String() != name {
+			t.Errorf("%q is read as %q", name, m.field)
+		}
+	}
+	owner := map[string]review.Field{}
+	for field, words := range synonyms {
+		for _, word := range words {
+			phrase, _ := fold(word)
+			if other, taken := owner[phrase]; taken && other != field {
+				t.Errorf("%q means both %s and %s", word, other, field)
+			}
+			owner[phrase] = field
+			if m, _ := recognise(word); m.field != field {
+				t.Errorf("%q of %s is read as %s", word, field, m.field)
+			}
+		}
+	}
+}
+
+// TestHeaderError shows the call that says which column is which.
+func TestHeaderError(t *testing.T) {
+	for _, tt := range []struct {
+		name, text string
+		want       []string // --column flags
+	}{
+		{"names of a language unknown", "Title of the sheet\n\nAutor;Jahr;Deaths, drug arm;Patients, drug arm;Deaths, placebo;Patients, placebo\nA;2001;3;40;5;50\nB;2002;4;50;5;55\n",
+			[]string{`"study=Autor"`, `"events treated=Deaths, drug arm"`, `"total treated=Patients, drug arm"`}},
+		{"nothing known", "Autor,Wert,Fehler\nA,0.5,0.2\nB,0.6,0.1\n", []string{`"study=Autor"`, `"estimate=Wert"`, `"se=Fehler"`}},
+		{"order told by words", "Trial,Patients drug,Deaths drug,Patients other,Deaths other\nA,40,3,50,5\nB,50,4,55,5\n",
+			[]string{`"events treated=Deaths drug"`, `"total treated=Patients drug"`, `"events control=Deaths other"`, `"total control=Patients other"`}},
+	} {
+		_, _, err := Read(context.Background(), []byte(tt.text), "trials.csv", Options{})
+		var header *HeaderError
+		if !errors.As(err, &header) {
+			t.Fatalf("%s: error %v", tt.name, err)
+		}
+		call := "steelyard pool trials.csv"
+		for _, flag := range tt.want {
+			call += " --column " + flag
+		}
+		if !strings.HasSuffix(err.Error(), "\n  "+call) {
+			t.Errorf("%s:\n%v\nshould end with\n  %s", tt.name, err, call)
+		}
+		o := Options{Columns: map[string]string{}}
+		for _, c := range header.Columns {
+			field, text, err := ParseColumn(c)
+			if err != nil {
+				t.Errorf("%s: %v", tt.name, err)
+			}
+			o.Columns[field] = text
+		}
+		if x, _, err := Read(context.Background(), []byte(tt.text), "trials.csv", o); err != nil || len(x.Studies) != 2 || len(x.Studies[0].Numbers) < 2 {
+			t.Errorf("%s: the call shown does not work: %v", tt.name, err)
+		}
+	}
+}
+
+// TestNoHeader explains sheets that hold no table.
+func TestNoHeader(t *testing.T) {
+	for _, text := range []string{"hello\n", "1,2,3\n4,5,6\n", "study\nA\nB\n"} {
+		_, _, err := Read(context.Background(), []byte(text), "a.csv", Options{})
+		var header *HeaderError
+		if !errors.As(err, &header) || !strings.Contains(err.Error(), "header") {
+			t.Errorf("%q: %v", text, err)
+		}
+	}
+	_, _, err := Read(context.Background(), []byte("study,y,se\n"), "a.csv", Options{})
+	if !errors.Is(err, ErrNoStudies) || !strings.Contains(err.Error(), "row 1") {
+		t.Errorf("a header alone: %v", err)
+	}
+}
+
+// TestColumnFlag maps a header of a two-row header, and refuses an unknown one.
+func TestColumnFlag(t *testing.T) {
+	rows := table{{"Who", "Drug", nil, "Nothing", nil}, {nil, "Falls", "People", "Falls", "People"}, {"A", 1, 20, 2, 21}}
+	o := Options{Columns: map[string]string{"study": "who", "events treated": "Drug Falls", "total treated": "Drug People", "events control": "Nothing Falls", "total control": "Nothing People"}}
+	want := []string{"A||||unspecified||events treated=1|total treated=20|events control=2|total control=21"}
+	for name, data := range map[string][]byte{"a.csv": rows.csv(t), "a.xlsx": rows.xlsx(t, "B1:C1", "D1:E1")} {
+		if got := lines(mustRead(t, data, name, o)); !slices.Equal(got, want) {
+			t.Errorf("%s: %q", name, got)
+		}
+	}
+	_, _, err := Read(context.Background(), []byte("study,y,se\nA,1,1\n"), "a.csv", Options{Columns: map[string]string{"note": "Remarc"}})
+	var column *ColumnError
+	if !errors.As(err, &column) || column.Header != "Remarc" || !strings.Contains(err.Error(), `"study", "y", "se"`) {
+		t.Errorf("unknown header: %v", err)
+	}
+	if _, _, err := Read(context.Background(), []byte("study,y,se\nA,1,1\n"), "a.csv", Options{Columns: map[string]string{"notes and such": "se"}}); err == nil || !strings.Contains(err.Error(), "risk of bias") {
+		t.Errorf("unknown field: %v", err)
+	}
+}
+
+// TestParseColumn splits at the first equals sign only.
+func TestParseColumn(t *testing.T) {
+	for _, tt := range []struct{ flag, field, header string }{
+		{"events treated=Deaths, drug arm", "events treated", "Deaths, drug arm"},
+		{" Events_Treated = p=0.05 ", "events treated", "p=0.05"},
+		{"year=Published", "date", "Published"},
+	} {
+		field, header, err := ParseColumn(tt.flag)
+		if err != nil || field != tt.field || header != tt.header {
+			t.Errorf("%q: %q, %q, %v", tt.flag, field, header, err)
+		}
+	}
+	for _, flag := range []string{"", "study", "=x", "study=", "nonsense=x"} {
+		if _, _, err := ParseColumn(flag); err == nil {
+			t.Errorf("%q is taken", flag)
+		}
+	}
+}
+
+// book returns a workbook with several sheets.
+func book(t *testing.T, names []string, tables map[string]table, hidden ...string) []byte {
+	t.Helper()
+	f := excelize.NewFile()
+	defer f.Close()
+	for i, name := range names {
+		if i == 0 {
+			if err := f.SetSheetName("Sheet1", name); err != nil {
+				t.Fatal(err)
+			}
+		} else if _, err := f.NewSheet(name); err != nil {
+			t.Fatal(err)
+		}
+		tables[name].fill(t, f, name)
+	}
+	for _, name := range hidden {
+		if err := f.SetSheetVisible(name, false); err != nil {
+			t.Fatal(err)
+		}
+	}
+	return saved(t, f)
+}
+
+// TestSheetChoice takes the one visible sheet with a table, else asks.
+func TestSheetChoice(t *testing.T) {
+	studies := table{{"study", "y", "se"}, {"A", 1, 1}}
+	text := table{{"Read me first"}, {"nothing here"}}
+	tables := map[string]table{"readme": text, "trials": studies, "Guide": studies, "lists": studies, "more trials": studies}
+	x := mustRead(t, book(t, []string{"Guide", "readme", "trials", "lists"}, tables), "a.xlsx", Options{})
+	if x.Source.Sheet != "trials" || x.Studies[0].Row.String() != "trials row 2" {
+		t.Errorf("read %q, first row %s", x.Source.Sheet, x.Studies[0].Row)
+	}
+	x = mustRead(t, book(t, []string{"trials", "more trials"}, tables, "more trials"), "a.xlsx", Options{})
+	if got := said(x); x.Source.Sheet != "trials" || !slices.Equal(got, []string{"warning F9 "}) {
+		t.Errorf("beside a hidden table: %q, findings %q", x.Source.Sheet, got)
+	}
+	both := book(t, []string{"trials", "more trials"}, tables)
+	_, _, err := Read(context.Background(), both, "a.xlsx", Options{})
+	var sheets *SheetError
+	if !errors.As(err, &sheets) || !strings.Contains(err.Error(), `"trials", "more trials"`) || !strings.Contains(err.Error(), "--sheet trials") {
+		t.Errorf("two tables: %v", err)
+	}
+	if x := mustRead(t, both, "a.xlsx", Options{Sheet: "More Trials"}); x.Source.Sheet != "more trials" {
+		t.Errorf("asked for another: %q", x.Source.Sheet)
+	}
+	for _, o := range []Options{{Sheet: "nope"}, {Sheet: "readme"}} {
+		if _, _, err := Read(context.Background(), book(t, []string{"readme", "trials"}, tables), "a.xlsx", o); err == nil {
+			t.Errorf("sheet %q is taken", o.Sheet)
+		}
+	}
+	if _, _, err := Read(context.Background(), studies.csv(t), "a.csv", Options{Sheet: "trials"}); !errors.As(err, &sheets) {
+		t.Errorf("a sheet of a text file: %v", err)
+	}
+}
