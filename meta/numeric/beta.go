@@ -23,18 +23,18 @@ func betaFraction(a, b, x float64) float64 {
 	d = 1 / d
 	f := d
 	for m := 1.0; m < betaSteps; m++ {
-		even := m * (b - m) * x / ((a + 2*m - 1) * (a + 2*m))
+		even := m / (a + 2*m - 1) * ((b - m) / (a + 2*m)) * x
 		d = 1 + even*d
 		c = 1 + even/c
 		d = 1 / d
 		f *= d * c
-		odd := -(a + m) * (a + b + m) * x / ((a + 2*m) * (a + 2*m + 1))
+		odd := -(a + m) / (a + 2*m) * ((a + b + m) / (a + 2*m + 1)) * x
 		d = 1 + odd*d
 		c = 1 + odd/c
 		d = 1 / d
 		step := d * c
 		f *= step
-		if math.Abs(step-1) < 2e-16 {
+		if !(math.Abs(step-1) >= 2e-16) { // NaN ends too
 			return f
 		}
 	}
@@ -49,14 +49,14 @@ func betaFraction(a, b, x float64) float64 {
 func betaFractionRatio(a, b, r float64) float64 {
 	c, d, f := 1.0, 0.0, 1.0
 	for n := 0.0; n < betaSteps; n++ {
-		odd := (n + 1 - b) * (a + n) / ((a + 2*n) * (a + 2*n + 1)) * r
+		odd := (n + 1 - b) / (a + 2*n + 1) * ((a + n) / (a + 2*n)) * r
 		c, d = 1+odd/c, 1/(1+odd*d)
 		f *= c * d
-		even := (n + 1) * (a + b + n) / ((a + 2*n + 1) * (a + 2*n + 2)) * r
+		even := (n + 1) / (a + 2*n + 1) * ((a + b + n) / (a + 2*n + 2)) * r
 		c, d = 1+even/c, 1/(1+even*d)
 		step := c * d
 		f *= step
-		if math.Abs(step-1) < 2e-16 {
+		if !(math.Abs(step-1) >= 2e-16) { // NaN ends too
 			return (1 + r) / f
 		}
 	}
@@ -72,7 +72,8 @@ func lnBeta(a, b float64) float64 {
 }
 
 // LogFTail returns ln P(F > f) for Fisher's F with d1 and d2 degrees of freedom,
-// either of which may be infinite; NaN unless d1, d2 > 0 and f ≥ 0.
+// either of which may be infinite; NaN unless d1, d2 > 0 and f ≥ 0, and where
+// both are finite and beyond about 1e10.
 func LogFTail(f, d1, d2 float64) float64 {
 	switch {
 	case !(f >= 0) || !(d1 > 0) || !(d2 > 0):
@@ -94,6 +95,9 @@ func LogFTail(f, d1, d2 float64) float64 {
 		return logGammaLower(d2/f/2, d2/2)
 	}
 	q := math.Log1p(d1 / d2 * f)
+	if r := math.Log1p(d2 / d1 / f); d1 > 1e8 && d1 > d2 && r < 1e-5 {
+		return logGammaLower((d1+d2/2-1)*r/2, d2/2) // the same for the inverse of F
+	}
 	if d2 > 1e8 && q < 1e-5 {
 		// Twice the rate times ln(1 + d1·f/d2) is chi-square up to a relative
 		// q²·d1/48: the first term of the expansion of the tail in 1/d2.

@@ -41,8 +41,11 @@ func LogGammaRatio(a, b float64) float64 {
 	if !(a > 0) || !(b > 0) {
 		return math.NaN()
 	}
-	if a == b {
+	switch {
+	case a == b:
 		return 0
+	case a < b:
+		return -LogGammaRise(a, b-a)
 	}
 	return LogGammaRise(b, a-b)
 }

@@ -6,15 +6,22 @@ import (
 	"gonum.org/v1/gonum/mathext"
 )
 
+// gammaLargeFrom is the shape from which the normal law with its first
+// correction is as good as the exact function.
+const gammaLargeFrom = 1e10
+
 // GammaTail returns the upper regularised incomplete gamma function, the chance
 // that a gamma variable of the given shape and rate 1 exceeds x; NaN unless
-// x ≥ 0 and shape > 0.
+// x ≥ 0 and shape > 0 is finite.
 func GammaTail(x, shape float64) float64 {
 	switch {
 	case !(x >= 0) || !(shape > 0) || math.IsInf(shape, 1):
 		return math.NaN()
 	case math.IsInf(x, 1):
 		return 0
+	case shape > gammaLargeFrom:
+		upper, _ := logGammaLarge(x, shape)
+		return math.Exp(upper)
 	}
 	return mathext.GammaIncRegComp(shape, x)
 }
@@ -27,6 +34,10 @@ func LogChiSquareTail(x, df float64) float64 { return logGammaUpper(x/2, df/2) }
 // freedom; NaN unless x ≥ 0 and df > 0.
 func ChiSquareTail(x, df float64) float64 { return GammaTail(x/2, df/2) }
 
+// gammaSteps caps the continued fraction of the incomplete gamma function, which
+// needs fewer than 1,000 steps where it is used.
+const gammaSteps = 100_000
+
 // plainTail is the smallest tail that is taken from the plain function before
 // its log; smaller ones come from the continued fraction.
 const plainTail = 1e-200
@@ -37,6 +48,9 @@ func logGammaUpper(x, shape float64) float64 {
 	switch {
 	case math.IsNaN(plain) || math.IsInf(x, 1):
 		return math.Log(plain)
+	case shape > gammaLargeFrom:
+		upper, _ := logGammaLarge(x, shape)
+		return upper
 	case plain > 0.5:
 		return math.Log1p(-mathext.GammaIncReg(shape, x))
 	case plain > plainTail:
@@ -52,6 +66,9 @@ func logGammaLower(x, shape float64) float64 {
 	switch {
 	case math.IsNaN(upper) || x == 0:
 		return math.Log(x * upper) // -Inf at 0
+	case shape > gammaLargeFrom:
+		_, lower := logGammaLarge(x, shape)
+		return lower
 	case upper < 0.5:
 		return math.Log1p(-upper)
 	}
@@ -64,6 +81,34 @@ func logGammaLower(x, shape float64) float64 {
 		sum += term
 	}
 	return gammaLogFront(x, shape) - math.Log(shape) + math.Log(sum)
+}
+
+// logGammaLarge returns the logs of both tails for a large shape: the normal law
+// of the signed root z of twice the deviance, with the first term of its
+// correction in 1/√shape; the next is smaller by 1/shape.
+//
+// Source: Temme (1979), SIAM Journal on Mathematical Analysis 10:757-766.
+func logGammaLarge(x, shape float64) (upper, lower float64) {
+	mu := (x - shape) / shape
+	eta := math.Copysign(math.Sqrt(2*lessLog1p(mu)), mu)
+	z := eta * math.Sqrt(shape)
+	if math.IsInf(z, 0) {
+		return min(0, -z), min(0, z)
+	}
+	fix := math.Log(eta / mu) // where Mills' ratio is 1/z
+	if math.Abs(z) < 1e4 {
+		c := 1/mu - 1/eta
+		if math.Abs(eta) < 1e-4 {
+			c = eta/12 - 1./3
+		}
+		fix = math.Log1p(math.Copysign(c/math.Sqrt(shape), c*z) / math.Exp(LogMills(math.Abs(z))))
+	}
+	near := LogNormalTail(math.Abs(z)) + fix
+	far := math.Log1p(-math.Exp(near))
+	if z < 0 {
+		return far, near
+	}
+	return near, far
 }
 
 // gammaLogFront returns ln(x^shape·exp(-x)/Γ(shape)), keeping its digits where
@@ -79,17 +124,20 @@ func gammaLogFront(x, shape float64) float64 {
 //
 // Source: Abramowitz & Stegun (1964), 6.5.31.
 func gammaFraction(x, a float64) float64 {
+	if x > 1e290 {
+		return 1 / x
+	}
 	b := x + 1 - a
 	c, d := math.Inf(1), 1/b
 	f := d
-	for n := 1.0; n < betaSteps; n++ {
+	for n := 1.0; n < gammaSteps; n++ {
 		an := -n * (n - a)
 		b += 2
 		d = 1 / (an*d + b)
 		c = b + an/c
 		step := c * d
 		f *= step
-		if math.Abs(step-1) < 2e-16 {
+		if !(math.Abs(step-1) >= 2e-16) { // NaN ends too
 			return f
 		}
 	}

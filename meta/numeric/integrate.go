@@ -41,23 +41,26 @@ func Integrate(f func(float64) float64, lo, hi, relTol float64) (value, absErr f
 	switch loInf, hiInf := math.IsInf(lo, -1), math.IsInf(hi, 1); {
 	case math.IsInf(lo, 1) || math.IsInf(hi, -1):
 		return 0, 0, fmt.Errorf("integral from %g to %g: %w", lo, hi, ErrNotFinite)
-	case loInf && hiInf: // x = t/(1-t²)
-		return integrate(func(t float64) float64 {
-			u := (1 - t) * (1 + t)
-			return f(t/u) * (1 + t*t) / (u * u)
-		}, -1, 1, relTol)
-	case hiInf: // x = lo + t/(1-t)
-		return integrate(func(t float64) float64 {
-			u := 1 - t
-			return f(lo+t/u) / (u * u)
+	case loInf && hiInf:
+		return integrate(func(u float64) float64 {
+			x := (1 - u) / u
+			return mapped(f(x), u) + mapped(f(-x), u)
 		}, 0, 1, relTol)
-	case loInf: // x = hi - t/(1-t)
-		return integrate(func(t float64) float64 {
-			u := 1 - t
-			return f(hi-t/u) / (u * u)
-		}, 0, 1, relTol)
+	case hiInf:
+		return integrate(func(u float64) float64 { return mapped(f(lo+(1-u)/u), u) }, 0, 1, relTol)
+	case loInf:
+		return integrate(func(u float64) float64 { return mapped(f(hi-(1-u)/u), u) }, 0, 1, relTol)
 	}
 	return integrate(f, lo, hi, relTol)
+}
+
+// mapped returns the integrand y·|dx/du| of a half line under x = (1-u)/u, which
+// puts infinity at u = 0, where floating-point numbers are finest.
+func mapped(y, u float64) float64 {
+	if y == 0 {
+		return 0
+	}
+	return y / u / u
 }
 
 // integrate is Integrate for finite lo < hi.

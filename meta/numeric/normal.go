@@ -75,7 +75,7 @@ func logNormalAbove(a, b float64) float64 {
 		return -0.5*a*a - lnSqrt2Pi + math.Log(w*sum)
 	}
 	top := LogNormalTail(a)
-	if math.IsInf(b, 1) {
+	if math.IsInf(b, 1) || math.IsInf(top, -1) {
 		return top
 	}
 	return top + math.Log(-math.Expm1(LogNormalTail(b)-top))
@@ -115,8 +115,8 @@ func NormalFromLogTail(lnTail float64) float64 {
 	}
 	// Newton's steps on the log of the tail, whose slope is -1/mills: the log is
 	// concave, so after the first step they come from one side.
-	z := math.Sqrt(-2 * (lnTail + lnSqrt2Pi))
-	z = math.Sqrt(-2 * (lnTail + lnSqrt2Pi + math.Log(z)))
+	z := math.Sqrt2 * math.Sqrt(-lnTail)
+	z = math.Sqrt2 * math.Sqrt(-lnTail-lnSqrt2Pi-math.Log(z))
 	for range 6 {
 		step := (LogNormalTail(z) - lnTail) * mills(z)
 		z += step

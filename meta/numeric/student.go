@@ -135,7 +135,7 @@ func logStudentAbove(a, b, df float64) float64 {
 		return LogStudentDensity(a, df) + math.Log(w*sum)
 	}
 	top := LogStudentTail(a, df)
-	if math.IsInf(b, 1) {
+	if math.IsInf(b, 1) || math.IsInf(top, -1) {
 		return top
 	}
 	return top + math.Log(-math.Expm1(LogStudentTail(b, df)-top))
