@@ -12,7 +12,7 @@ help: ## list the targets
 	@awk -F ':.*## ' '/^[a-z]+:.*## / { printf "  make %-8s %s\n", $$1, $$2 }' $(MAKEFILE_LIST)
 
 build: ## build ./steelyard
-	go build -trimpath -ldflags "-s -w -X main.version=$(VERSION)" -o steelyard ./cmd/steelyard
+	@go build -trimpath -ldflags "-s -w -X main.version=$(VERSION)" -o steelyard ./cmd/steelyard
 
 demo: build ## pool the published BCG trials and an invented workbook; charts go to out/
 	@mkdir -p out

@@ -3,7 +3,7 @@ package main
 import (
 	"fmt"
 	"io"
-	"path/filepath"
+	"os"
 
 	"github.com/urfave/cli/v2"
 
@@ -20,6 +20,9 @@ func analyse(c *cli.Context) (*synthesis.Synthesis, error) {
 	path, err := oneFile(c)
 	if err != nil {
 		return nil, err
+	}
+	if sameFile(path, c.String(flagOut)) {
+		return nil, &callError{"the input is never overwritten; choose another name for --out"}
 	}
 	x, plan, err := readSheet(c, path)
 	if err != nil {
@@ -71,7 +74,7 @@ func incomplete(s *synthesis.Synthesis) error {
 
 // sameFile reports whether an output would replace the input.
 func sameFile(input, output string) bool {
-	a, errA := filepath.Abs(input)
-	b, errB := filepath.Abs(output)
-	return errA == nil && errB == nil && a == b
+	a, errA := os.Stat(input)
+	b, errB := os.Stat(output)
+	return errA == nil && errB == nil && os.SameFile(a, b)
 }

@@ -71,7 +71,7 @@ func answer(s *synthesis.Synthesis) string {
 		}
 		p.outcome(s, &s.Outcomes[i])
 	}
-	p.findings(s.Findings)
+	p.findings(s)
 	p.line("")
 	p.line("Cautions")
 	for _, c := range s.Cautions {
@@ -237,13 +237,20 @@ func (p *page) remarks(o *synthesis.Outcome) {
 	}
 }
 
-// findings writes the findings, gravest first, grouped by rule.
-func (p *page) findings(findings []review.Finding) {
-	if len(findings) == 0 {
+// findings writes the findings, gravest first, grouped by rule; those that an
+// outcome has named as the reason for leaving a row out are not said twice.
+func (p *page) findings(s *synthesis.Synthesis) {
+	said := map[string]bool{}
+	for _, o := range s.Outcomes {
+		for _, e := range o.Excluded {
+			said[e.Study+e.Reason] = true
+		}
+	}
+	rest := slices.DeleteFunc(slices.Clone(s.Findings), func(f review.Finding) bool { return said[f.Study+f.Message] })
+	if len(rest) == 0 {
 		return
 	}
-	sorted := slices.Clone(findings)
-	slices.SortStableFunc(sorted, func(a, b review.Finding) int {
+	slices.SortStableFunc(rest, func(a, b review.Finding) int {
 		if a.Severity != b.Severity {
 			return int(a.Severity) - int(b.Severity)
 		}
@@ -251,9 +258,9 @@ func (p *page) findings(findings []review.Finding) {
 	})
 	p.line("")
 	p.line("Findings in the sheet")
-	for i, f := range sorted {
+	for i, f := range rest {
 		if i == mostFindings {
-			p.item("·", fmt.Sprintf("and %d more; --format json lists them all", len(sorted)-i))
+			p.item("·", fmt.Sprintf("and %d more; --format json lists them all", len(rest)-i))
 			return
 		}
 		p.item("·", findingText(f))

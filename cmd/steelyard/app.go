@@ -63,18 +63,19 @@ func newApp(s streams) *cli.App {
 		OnUsageError:   usageError,
 	}
 	for _, command := range app.Commands {
-		prepare(command)
+		prepare(command, command.Name)
 	}
 	return app
 }
 
-// prepare gives a command and its subcommands the same manners.
-func prepare(command *cli.Command) {
+// prepare gives a command and its subcommands the same manners; path is what is
+// typed to call it.
+func prepare(command *cli.Command, path string) {
 	command.OnUsageError = usageError
 	command.HideHelpCommand = true
-	command.CustomHelpTemplate = strings.ReplaceAll(commandHelp(command), "{{", `{{"{{"}}`)
+	command.CustomHelpTemplate = strings.ReplaceAll(commandHelp(command, path), "{{", `{{"{{"}}`)
 	for _, sub := range command.Subcommands {
-		prepare(sub)
+		prepare(sub, path+" "+sub.Name)
 	}
 }
 

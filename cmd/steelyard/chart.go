@@ -54,13 +54,6 @@ func chartForest(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	input, err := oneFile(c)
-	if err != nil {
-		return err
-	}
-	if sameFile(input, out) {
-		return &callError{"the input is never overwritten; choose another name for --out"}
-	}
 	style, err := forestStyle(c)
 	if err != nil {
 		return err

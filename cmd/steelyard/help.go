@@ -11,10 +11,10 @@ import (
 // helpWidth is the widest line of a help text.
 const helpWidth = 96
 
-// commandHelp returns a command's help text.
-func commandHelp(c *cli.Command) string {
+// commandHelp returns the help text of the command that path calls.
+func commandHelp(c *cli.Command, path string) string {
 	var b strings.Builder
-	fmt.Fprintf(&b, "steelyard %s - %s\n\nUSAGE\n  %s\n", c.FullName(), c.Usage, c.UsageText)
+	fmt.Fprintf(&b, "steelyard %s - %s\n\nUSAGE\n  %s\n", path, c.Usage, c.UsageText)
 	if c.Description != "" {
 		fmt.Fprintf(&b, "\n%s\n", c.Description)
 	}

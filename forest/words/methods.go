@@ -32,10 +32,11 @@ func IntervalMethod(m meta.IntervalMethod) string {
 }
 
 // Model returns the model and methods of a fit: "random effects, restricted
-// maximum likelihood; Hartung–Knapp interval, evidence matched to it".
+// maximum likelihood; Hartung–Knapp interval, evidence matched to it"; for a
+// single study "its own result: there is nothing to pool".
 func Model(fit *meta.Fit) string {
 	if fit.Mean.K == 1 {
-		return "one study, nothing to pool"
+		return "its own result: there is nothing to pool"
 	}
 	model := "common effect"
 	if fit.Model.Effects == meta.RandomEffects {

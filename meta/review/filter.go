@@ -87,6 +87,9 @@ func parseCondition(text string) (condition, error) {
 		operator: strings.TrimSpace(operator),
 		value:    unquote(padded[at+len(operator):]),
 	}
+	if !strings.Contains(padded, `"`) && strings.ContainsAny(c.value, "<>=!") {
+		return condition{}, fmt.Errorf("%q has two operators in a row; the operators are is, is not, =, !=, <, <=, >, >= and contains; quote a value that holds such signs", strings.TrimSpace(text))
+	}
 	if c.column == "" || (c.value == "" && c.operator != "is" && c.operator != "is not") {
 		return condition{}, fmt.Errorf("%q lacks a column or a value; write COLUMN OPERATOR VALUE", strings.TrimSpace(text))
 	}

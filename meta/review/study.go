@@ -96,6 +96,18 @@ type Column struct {
 	Place  Place
 }
 
+// Names returns the names by which filters call the column: its field's, and
+// "year" beside "date"; a covariate's is its header.
+func (c Column) Names() []string {
+	switch c.Field {
+	case NoField:
+		return []string{c.Header}
+	case DateField:
+		return []string{"date", "year"}
+	}
+	return []string{c.Field.String()}
+}
+
 // Extraction is a whole sheet as read: the studies in the order of the file,
 // rows with findings included.
 type Extraction struct {

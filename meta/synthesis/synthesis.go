@@ -140,6 +140,9 @@ func wanted(x *review.Extraction, want Want) ([]string, error) {
 	if len(want.Outcomes) == 0 {
 		return all, nil
 	}
+	if len(all) == 1 && all[0] == "" {
+		return nil, fmt.Errorf("the sheet has no column of outcomes: all its rows are one outcome")
+	}
 	var names []string
 	for _, name := range want.Outcomes {
 		found := false
@@ -200,6 +203,10 @@ func (s *Synthesis) outcome(x *review.Extraction, plan *review.Plan, name string
 		return nil, fmt.Errorf("outcome %q: %w", name, err)
 	}
 	o := &Outcome{Name: name}
+	if err := knownColumns(asked.Where, x.Columns); err != nil {
+		o.Problem = err.Error()
+		return o, nil
+	}
 	rows := o.rows(x, asked.Where, blocked)
 	if f, refused := refusal(x.Findings, name); refused {
 		o.Problem = f.Message
@@ -219,6 +226,24 @@ func (s *Synthesis) outcome(x *review.Extraction, plan *review.Plan, name string
 		o.Problem = err.Error()
 	}
 	return o, nil
+}
+
+// knownColumns refuses a filter on a column that the sheet does not have: it
+// would keep or drop every row.
+func knownColumns(where *review.Filter, columns []review.Column) error {
+	if where == nil {
+		return nil
+	}
+	var names []string
+	for _, c := range columns {
+		names = append(names, c.Names()...)
+	}
+	for _, name := range where.Columns() {
+		if !slices.ContainsFunc(names, func(have string) bool { return choice.Fold(have) == name }) {
+			return fmt.Errorf("the filter %q looks at a column %q that the sheet does not have; its columns are: %s", where, name, strings.Join(names, ", "))
+		}
+	}
+	return nil
 }
 
 // rows returns the rows of the outcome that may be pooled, and lists the others.
