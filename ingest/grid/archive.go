@@ -101,7 +101,7 @@ func (a *archive) explain(part string, err error) *FileError {
 	case errors.As(err, &known):
 		return known
 	case a.ctx.Err() != nil:
-		return interrupted(a.file, a.ctx.Err()).(*FileError)
+		return interrupted(a.file, a.ctx.Err())
 	case errors.Is(err, zip.ErrChecksum):
 		e.Problem = "is damaged: its checksum is not that of its content, so that values may have changed"
 	case errors.As(err, &corrupt), errors.Is(err, io.ErrUnexpectedEOF), errors.Is(err, zip.ErrFormat):

@@ -35,7 +35,7 @@ func (s *sheetReader) readCell(e xml.StartElement, before int) (col int, err err
 			if !ok {
 				return 0, s.refuse(fmt.Sprintf("has a cell of the reference %q, which is none", value))
 			}
-			if row != s.row.Number {
+			if row != s.row {
 				return 0, s.refuse(fmt.Sprintf("has the cell %s, which belongs to another row", value))
 			}
 			col = refCol
@@ -45,7 +45,7 @@ func (s *sheetReader) readCell(e xml.StartElement, before int) (col int, err err
 			c.style = value
 		}
 	}
-	s.place = reference(s.row.Number, col)
+	s.col = col
 	if col > formatColumns {
 		return 0, s.refuse(fmt.Sprintf("has more than the %d columns of a sheet", formatColumns))
 	}
@@ -94,7 +94,7 @@ func (s *sheetReader) interpret(c *stored, col int) (Cell, error) {
 	}
 	value := strings.TrimSpace(c.value)
 	if c.hasFormula && (!c.hasValue || value == "" && c.kind != "str") {
-		s.book.remarks.add(s.sheet.Name, s.row.Number, col, neverCalculated, "")
+		s.book.remarks.add(s.sheet.Name, s.row, col, neverCalculated, "")
 		formula, _ := cleanText(c.formula)
 		return Cell{Kind: Uncalculated, Text: "=" + formula}, nil
 	}
@@ -156,7 +156,7 @@ func (s *sheetReader) textCell(text sharedString, col int) (Cell, error) {
 		return Cell{}, s.refuse(fmt.Sprintf("holds a text longer than the %d bytes a cell can have", MaxFieldBytes))
 	}
 	if text.removed {
-		s.book.remarks.add(s.sheet.Name, s.row.Number, col, removedCharacters, "")
+		s.book.remarks.add(s.sheet.Name, s.row, col, removedCharacters, "")
 	}
 	if isBlank(text.text) {
 		return Cell{}, nil
@@ -174,7 +174,7 @@ func (s *sheetReader) number(value string, format dateFormat, col int) (Cell, er
 		if iso, ok := isoDate(serial, format, s.book.from1904); ok && err == nil {
 			return Cell{Kind: Date, Text: iso}, nil
 		}
-		s.book.remarks.add(s.sheet.Name, s.row.Number, col, "a number shown as date is no date and was read as a number", value)
+		s.book.remarks.add(s.sheet.Name, s.row, col, "a number shown as date is no date and was read as a number", value)
 	}
 	return Cell{Kind: Number, Text: value}, nil
 }

@@ -3,7 +3,10 @@ package grid
 import (
 	"archive/zip"
 	"bytes"
+	"context"
 	"hash/crc32"
+	"math/rand/v2"
+	"slices"
 	"strings"
 	"testing"
 
@@ -49,7 +52,9 @@ var tableDamages = []struct {
 	{"negative text index", func(tb testing.TB, p parts) { p.change(tb, sheet1, `<v>4</v>`, `<v>-1</v>`) },
 		[]string{"Sheet1", sheet1, "A3", `text "-1"`}},
 	{"string table missing", func(_ testing.TB, p parts) { delete(p, shared) }, []string{shared, "missing"}},
-	{"string table not listed", func(tb testing.TB, p parts) { p.change(tb, "xl/_rels/workbook.xml.rels", "relationships/sharedStrings", "relationships/theme") },
+	{"string table not listed", func(tb testing.TB, p parts) {
+		p.change(tb, "xl/_rels/workbook.xml.rels", "relationships/sharedStrings", "relationships/theme")
+	},
 		[]string{"Sheet1", sheet1, "A1", "0 texts"}},
 	{"string table broken", func(_ testing.TB, p parts) { p[shared] = p[shared][:len(p[shared])-20] }, []string{shared, "cut short"}},
 	{"string table of another kind", func(_ testing.TB, p parts) { p[shared] = []byte("<html/>") }, []string{shared, "<sst>"}},
@@ -172,4 +177,58 @@ func TestOutOfOrderIsPlacedByReference(t *testing.T) {
 func TestReferencesMayBeLeftOut(t *testing.T) {
 	book := mustRead(t, rows(`<row><c><v>1</v></c><c t="s"><v>1</v></c></row><row r="5"><c r="C5"><v>3</v></c><c><v>4</v></c></row><row><c><v>6</v></c></row>`).pack(t), "a.xlsx")
 	equal(t, "counted on (ECMA-376 part 1, 18.3.1.4 and 18.3.1.73: r is optional)", texts(book.Sheets[0]), []string{"1: 1|beta", "5: ||3|4", "6: 6"})
+}
+
+// TestEveryFlippedBitIsSeenOrHarmless: a file in which one bit of any byte is
+// flipped is refused, or its cells are those of the original.
+func TestEveryFlippedBitIsSeenOrHarmless(t *testing.T) {
+	data := rows(`<row r="1"><c r="A1" t="s"><v>0</v></c><c r="B1"><v>0.25</v></c></row><row r="2"><c r="A2" s="1"><v>42707</v></c></row>`).pack(t)
+	want := []string{"1: alpha|0.25", "2: 2016-12-03"}
+	equal(t, "the original", texts(mustRead(t, data, "a.xlsx").Sheets[0]), want)
+	refused := 0
+	for i := range data {
+		flipped := bytes.Clone(data)
+		flipped[i] ^= 1 << (i % 8)
+		book, err := Read(context.Background(), flipped, "a.xlsx")
+		checkBook(t, book, err)
+		if err != nil {
+			refused++
+		} else if got := texts(book.Sheets[0]); book.Text || !slices.Equal(got, want) {
+			t.Fatalf("bit %d of byte %d flipped: read as %q without an error", i%8, i, got)
+		}
+	}
+	if refused < len(data)/3 {
+		t.Errorf("%d of %d flips refused: hardly any was seen", refused, len(data))
+	}
+}
+
+// TestMutatedPartsNeverPanic splices the XML of parts at random, with checksums
+// that fit, so that only the readers themselves can notice.
+func TestMutatedPartsNeverPanic(t *testing.T) {
+	base := trials(t)
+	names := []string{sheet1, shared, styles, mainPart, "xl/_rels/workbook.xml.rels", "_rels/.rels"}
+	random := rand.New(rand.NewPCG(1, 2))
+	for range 2000 {
+		p := parts{}
+		for name, content := range base {
+			p[name] = content
+		}
+		name := names[random.IntN(len(names))]
+		content := bytes.Clone(p[name])
+		for range 1 + random.IntN(3) {
+			from, to := random.IntN(len(content)), random.IntN(len(content))
+			length := min(random.IntN(30), len(content)-max(from, to))
+			switch random.IntN(3) {
+			case 0:
+				copy(content[to:to+length], content[from:from+length])
+			case 1:
+				content = slices.Insert(content, to, content[from:from+length]...)
+			case 2:
+				content[to] = byte(random.IntN(128))
+			}
+		}
+		p[name] = content
+		book, err := Read(context.Background(), p.packStored(t), "a.xlsx")
+		checkBook(t, book, err)
+	}
 }

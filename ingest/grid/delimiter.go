@@ -9,6 +9,7 @@ import (
 const delimiters = "\t;|,"
 
 const (
+	commaIndex  = 3 // in delimiters
 	sampleBytes = 64 << 10
 	sampleLines = 200
 )
@@ -62,23 +63,13 @@ func (t *tally) settle() {
 	}
 }
 
-// first returns the index of the first line of the commonest count.
-func (t *tally) first() int {
-	for i, n := range t.counts {
-		if n == t.mode {
-			return i
-		}
-	}
-	return -1
-}
-
 // sniffDelimiter tells the delimiter by the first lines of the text. The one
-// that splits most lines into the same number of fields wins; a decimal comma or
-// a list in a cell splits data rows as regularly, so that the first line that
-// commas split regularly, commonly the header, must hold the other mark too.
+// that splits most lines into the same number of fields wins. Where commas and
+// another mark fit alike, as with a list in a cell of every row, the first line
+// that commas split so, commonly the header, must hold the other mark too.
 func sniffDelimiter(text string, tabsHint bool) byte {
 	tallies := tallyDelimiters(text)
-	comma, best := &tallies[3], 0
+	best := 0
 	for i := range tallies {
 		tallies[i].settle()
 		best = max(best, tallies[i].agree)
@@ -86,28 +77,45 @@ func sniffDelimiter(text string, tabsHint bool) byte {
 	if tabsHint && tallies[0].mode > 0 {
 		return '\t'
 	}
-	for i := range tallies[:3] {
+	comma := &tallies[commaIndex]
+	for i := range tallies[:commaIndex] {
 		t := &tallies[i]
-		if t.mode > 0 && t.agree*5 >= best*4 && (comma.mode == 0 || t.counts[comma.first()] > 0) {
+		if t.mode > 0 && t.agree*5 >= best*4 && (t.agree >= 2*comma.agree || t.heads(comma)) {
 			return delimiters[i]
 		}
 	}
 	return ','
 }
 
-// tallyDelimiters counts the delimiters outside quotes in each line that is not blank.
+// heads reports whether the first line that holds as many commas as most do
+// holds this delimiter too.
+func (t *tally) heads(comma *tally) bool {
+	for i, n := range comma.counts {
+		if n >= comma.mode {
+			return t.counts[i] > 0
+		}
+	}
+	return false
+}
+
+// tallyDelimiters counts the delimiters outside quotes in each line that is not
+// blank. In a line that holds another one, commas that mark decimals or part
+// words do not count.
 func tallyDelimiters(text string) (tallies [4]tally) {
 	whole := len(text) <= sampleBytes
 	text = text[:min(len(text), sampleBytes)]
 	var counts [4]int
-	start, quoted := 0, false
+	start, weak, quoted := 0, 0, false
 	flush := func(end int) {
 		if strings.TrimSpace(text[start:end]) != "" {
+			if counts[0]+counts[1]+counts[2] > 0 {
+				counts[commaIndex] -= weak
+			}
 			for i := range tallies {
 				tallies[i].counts = append(tallies[i].counts, counts[i])
 			}
 		}
-		start, counts = end+1, [4]int{}
+		start, weak, counts = end+1, 0, [4]int{}
 	}
 	for i := 0; i < len(text) && len(tallies[0].counts) < sampleLines; i++ {
 		c := text[i]
@@ -122,6 +130,9 @@ func tallyDelimiters(text string) (tallies [4]tally) {
 		default:
 			if d := strings.IndexByte(delimiters, c); d >= 0 {
 				counts[d]++
+				if d == commaIndex && isWeakComma(text, i) {
+					weak++
+				}
 			}
 		}
 	}
@@ -129,4 +140,12 @@ func tallyDelimiters(text string) (tallies [4]tally) {
 		flush(len(text))
 	}
 	return tallies
+}
+
+// isWeakComma reports whether the comma at i stands between digits or before a blank.
+func isWeakComma(text string, i int) bool {
+	if i+1 >= len(text) {
+		return false
+	}
+	return text[i+1] == ' ' || i > 0 && allDigits(text[i-1:i]) && allDigits(text[i+1:i+2])
 }

@@ -12,7 +12,7 @@ const (
 	MaxPartBytes = 128 << 20
 	// MaxRatio is how many times larger than packed a part may get, once it is
 	// larger than RatioFreeBytes. Spreadsheets stay below 100.
-	MaxRatio = 400
+	MaxRatio = 200
 	// RatioFreeBytes is the unpacked size up to which MaxRatio is not asked.
 	RatioFreeBytes = 8 << 20
 	// MaxEntries is the number of entries of the workbook's package.

@@ -1,6 +1,7 @@
 package grid
 
 import (
+	"bytes"
 	"context"
 	"crypto/sha256"
 	"encoding/hex"
@@ -25,24 +26,39 @@ func Open(ctx context.Context, path string) (*Book, error) {
 	case mode.Type()&^fs.ModeNamedPipe != 0:
 		return nil, &FileError{File: name, Problem: "is a device or socket, not a file", Remedy: "name a workbook or text file"}
 	}
+	if info.Size() > MaxFileBytes {
+		return nil, tooLarge(name)
+	}
 	f, err := os.Open(path)
 	if err != nil {
 		return nil, openError(name, err)
 	}
 	defer f.Close()
-	return ReadFrom(ctx, f, name)
+	return readSized(ctx, f, name, info.Size())
 }
 
 // ReadFrom reads r to its end, see Read. It stops at MaxFileBytes.
 func ReadFrom(ctx context.Context, r io.Reader, name string) (*Book, error) {
-	data, err := io.ReadAll(io.LimitReader(contextReader{ctx, r}, MaxFileBytes+1))
+	return readSized(ctx, r, name, 0)
+}
+
+// readSized reads r, of which size is the length if it is known.
+func readSized(ctx context.Context, r io.Reader, name string, size int64) (*Book, error) {
+	var data bytes.Buffer
+	data.Grow(int(size) + bytes.MinRead)
+	_, err := data.ReadFrom(io.LimitReader(contextReader{ctx, r}, MaxFileBytes+1))
 	switch {
 	case ctx.Err() != nil:
-		return nil, interrupted(name, ctx.Err())
+		return nil, interrupted(filepath.Base(name), ctx.Err())
 	case err != nil:
 		return nil, &FileError{File: filepath.Base(name), Problem: "cannot be read: " + err.Error(), Remedy: "check the disk or the connection and try again", Err: err}
 	}
-	return Read(ctx, data, name)
+	return Read(ctx, data.Bytes(), name)
+}
+
+func tooLarge(name string) *FileError {
+	return &FileError{File: name, Problem: fmt.Sprintf("is larger than %d MB, the limit", MaxFileBytes>>20),
+		Remedy: "keep only the sheet of studies, or split it"}
 }
 
 // contextReader ends with the context.
@@ -73,16 +89,15 @@ func openError(name string, err error) error {
 	return e
 }
 
-func interrupted(name string, err error) error {
-	return &FileError{File: filepath.Base(name), Problem: "reading was interrupted (" + err.Error() + ")", Remedy: "run it again, or with more time", Err: err}
+func interrupted(name string, err error) *FileError {
+	return &FileError{File: name, Problem: "reading was interrupted (" + err.Error() + ")", Remedy: "run it again, or with more time", Err: err}
 }
 
 // readContent decides what the bytes are and has them read.
 func readContent(ctx context.Context, data []byte, name string) (*Book, error) {
 	name = filepath.Base(name)
 	if len(data) > MaxFileBytes {
-		return nil, &FileError{File: name, Problem: fmt.Sprintf("is larger than %d MB, the limit", MaxFileBytes>>20),
-			Remedy: "keep only the sheet of studies, or split it"}
+		return nil, tooLarge(name)
 	}
 	if err := refuseForeign(data, name); err != nil {
 		return nil, err

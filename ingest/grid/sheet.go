@@ -16,7 +16,7 @@ type sheetReader struct {
 	seen     [MaxRows/64 + 1]uint64 // rows met
 	last     int                    // number of the row before
 	order    bool                   // rows or cells stand out of order
-	row      Row
+	current  Row
 	record   []Cell
 	filled   [formatColumns/64 + 1]uint64 // columns of the row met
 	formulas bool
@@ -113,7 +113,7 @@ func (s *sheetReader) readRow(e xml.StartElement) error {
 			return s.refuse(fmt.Sprintf("has a row of the number %q after row %d", text, s.last))
 		}
 	}
-	s.place = fmt.Sprintf("row %d", number)
+	s.place, s.row, s.col = "", number, 0
 	if number < 1 || number > MaxRows {
 		return s.refuse(fmt.Sprintf("has a row number beyond the %d rows of a sheet", MaxRows))
 	}
@@ -122,7 +122,7 @@ func (s *sheetReader) readRow(e xml.StartElement) error {
 	}
 	s.order = s.order || number < s.last
 	s.last = number
-	s.row = Row{Number: number, Hidden: truth(attribute(e, "hidden"))}
+	s.current = Row{Number: number, Hidden: truth(attribute(e, "hidden"))}
 	s.record = s.record[:0]
 	clear(s.filled[:])
 	col := 0
@@ -141,10 +141,10 @@ func (s *sheetReader) readRow(e xml.StartElement) error {
 		return nil
 	}
 	var ok bool
-	if s.row.Cells, ok = s.book.cells.keep(s.record); !ok {
+	if s.current.Cells, ok = s.book.cells.keep(s.record); !ok {
 		return s.tooMany(fmt.Sprintf("the workbook has more than %d cells, the limit", MaxWorkbookCells), "save the sheet of studies alone, as .csv")
 	}
-	s.sheet.Rows = append(s.sheet.Rows, s.row)
+	s.sheet.Rows = append(s.sheet.Rows, s.current)
 	return nil
 }
 

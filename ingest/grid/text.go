@@ -13,7 +13,7 @@ func readText(ctx context.Context, data []byte, book *Book) error {
 	if err != nil {
 		return err
 	}
-	s := &splitter{ctx: ctx, file: book.File, line: 1}
+	s := &splitter{ctx: ctx, file: book.File, line: 1, cells: cellStore{limit: MaxTextCells}}
 	if remark != "" {
 		s.remarks.add("", 0, 0, remark, "")
 	}
@@ -54,19 +54,18 @@ func (s *splitter) chooseDelimiter(text string) error {
 	tabs := ending == ".tsv" || ending == ".tab"
 	if ok {
 		s.delim, s.line = delim, 2
-		s.remarks.add("", 0, 0, fmt.Sprintf("fields are separated by %q, as the first line says", delim), "")
+		s.remarks.add("", 0, 0, fmt.Sprintf("fields are separated by %q, as the first line says", string(delim)), "")
 		return nil
 	}
 	s.delim = sniffDelimiter(text, tabs)
 	if s.delim != ',' && !(tabs && s.delim == '\t') {
-		s.remarks.add("", 0, 0, fmt.Sprintf("fields are separated by %q", s.delim), "")
+		s.remarks.add("", 0, 0, fmt.Sprintf("fields are separated by %q", string(s.delim)), "")
 	}
 	return nil
 }
 
 // split reads all records.
 func (s *splitter) split() error {
-	s.cells.limit = MaxTextCells
 	for number := 1; s.pos < len(s.text); number++ {
 		if number%1024 == 0 && s.ctx.Err() != nil {
 			return interrupted(s.file, s.ctx.Err())
@@ -83,7 +82,7 @@ func (s *splitter) split() error {
 		}
 		cells, ok := s.cells.keep(s.record)
 		if !ok {
-			return s.refuse(line, fmt.Sprintf("has more than %d cells, the limit", MaxTextCells), "keep only the columns of the studies, or split the file")
+			return s.refuse(line, fmt.Sprintf("has more than %d cells, the limit", s.cells.limit), "keep only the columns of the studies, or split the file")
 		}
 		s.rows = append(s.rows, Row{Number: number, Line: line, Cells: cells})
 	}

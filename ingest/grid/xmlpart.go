@@ -2,6 +2,7 @@ package grid
 
 import (
 	"encoding/xml"
+	"fmt"
 	"io"
 	"slices"
 	"strings"
@@ -22,11 +23,25 @@ type xmlPart struct {
 	archive *archive
 	part    string
 	sheet   string
-	place   string // where reading stands, for messages
+	place   string // where reading stands, for messages; blank where row and col say it
+	row     int    // of the cell being read, 0 for none
+	col     int
 	r       *partReader
 	d       *xml.Decoder
 	spaces  []string // namespaces whose elements are read
 	depth   int
+	text    []byte // scratch of content
+}
+
+// where names the place where reading stands.
+func (x *xmlPart) where() string {
+	switch {
+	case x.place != "" || x.row == 0:
+		return x.place
+	case x.col == 0:
+		return fmt.Sprintf("row %d", x.row)
+	}
+	return reference(x.row, x.col)
 }
 
 // read opens a part, demands its root element, has body read the root's content
@@ -44,8 +59,8 @@ func (a *archive) read(part, sheet string, spaces []string, root string, body fu
 		if e.Sheet == "" {
 			e.Sheet = sheet
 		}
-		if x.place != "" && (e.Place == "" || strings.HasPrefix(e.Place, "line ")) {
-			e.Place = x.place
+		if place := x.where(); place != "" && (e.Place == "" || strings.HasPrefix(e.Place, "line ")) {
+			e.Place = place
 		}
 		return e
 	}
@@ -105,7 +120,7 @@ func (x *xmlPart) root() (xml.StartElement, error) {
 
 func (x *xmlPart) refuse(problem string) *FileError {
 	e := x.archive.refuse(x.part, problem)
-	e.Sheet, e.Place = x.sheet, x.place
+	e.Sheet, e.Place = x.sheet, x.where()
 	return e
 }
 
@@ -176,19 +191,20 @@ func (x *xmlPart) skip() error {
 	return nil
 }
 
-// content returns the text of the current element without that of its children.
+// content returns the text of the current element without that of its children;
+// it is valid until the next call.
 func (x *xmlPart) content() ([]byte, error) {
-	var text []byte
+	x.text = x.text[:0]
 	for end := x.depth - 1; x.depth > end; {
 		token, err := x.inside()
 		if err != nil {
 			return nil, err
 		}
 		if t, ok := token.(xml.CharData); ok && x.depth == end+1 {
-			text = append(text, t...)
+			x.text = append(x.text, t...)
 		}
 	}
-	return text, nil
+	return x.text, nil
 }
 
 // attribute returns an attribute without namespace, blank if there is none.
