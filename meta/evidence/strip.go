@@ -59,7 +59,8 @@ func (l Location) matched(r Region) strips {
 	return s
 }
 
-// nearest returns the point of the region nearest to the estimate.
+// nearest returns the point of the region nearest to the estimate; the lower of
+// two that are equally near.
 func (s strips) nearest() float64 {
 	best := math.Inf(1)
 	for _, x := range s {
