@@ -94,12 +94,9 @@ func (f *forest) arrange() error {
 	f.texts()
 	f.railSteps = railSpan(railStart, f.allEvidence())
 	if !f.arrangeWide() {
-		f.metrics = narrowMetrics(f.style.TypeSize)
-		c, err := narrowColumns(f, f.measured())
-		if err != nil {
+		if err := f.arrangeNarrow(); err != nil {
 			return err
 		}
-		f.columns = c
 	}
 	f.cutNames()
 	low, high := axisLimits(&f.in)
@@ -125,6 +122,28 @@ func (f *forest) arrangeWide() bool {
 		}
 	}
 	return false
+}
+
+// arrangeNarrow places rows of two lines, in smaller type down to the least in
+// print if the width asks for it.
+func (f *forest) arrangeNarrow() error {
+	f.metrics = narrowMetrics(f.style.TypeSize)
+	for {
+		c, ok := narrowColumns(f, f.measured(), f.width)
+		if ok {
+			f.columns = c
+			return nil
+		}
+		if f.metrics.row <= minType {
+			break
+		}
+		f.metrics = narrowMetrics(max(minType, f.metrics.row-0.25))
+	}
+	least := f.width
+	for ok := false; !ok; least++ {
+		_, ok = narrowColumns(f, f.measured(), least+1)
+	}
+	return &TooNarrowError{Width: f.width, Least: least}
 }
 
 func (f *forest) hasCounts() bool {
@@ -163,8 +182,13 @@ func (f *forest) paginate() []Drawing {
 	if k > 48 && !f.metrics.twoLine {
 		per = 40
 	}
+	f.pages = 1
 	for ; per > 5; per = (per - 1) / 5 * 5 {
-		if f.page(pageRange{number: 1, from: 0, to: min(per, k), last: true}).Height <= maxPageHeight {
+		page := f.page(pageRange{number: 1, from: 0, to: per, last: true})
+		if page.Height <= maxPageHeight && per == k {
+			return []Drawing{page}
+		}
+		if page.Height <= maxPageHeight {
 			break
 		}
 	}

@@ -102,7 +102,7 @@ func wideColumns(f *forest, rows []rowText, counts, weight bool) columns {
 		c.counts = placeCounts(f, rows, m.margin+c.nameWidth+countsBefore)
 		c.zone.low = c.counts.right + zoneBefore
 	}
-	c.zone.low = max(c.zone.low, m.margin+f.labelWidth()+zoneBefore)
+	c.zone.low = max(c.zone.low, m.margin+f.labelWidth(f.width)+zoneBefore)
 	return c
 }
 
@@ -134,30 +134,26 @@ func placeCounts(f *forest, rows []rowText, left float64) countColumns {
 	return c
 }
 
-// narrowColumns places the columns of rows of two lines: names with their
-// numbers, effect axis, rail with the odds under the bars.
-func narrowColumns(f *forest, rows []rowText) (columns, error) {
+// narrowColumns places the columns of rows of two lines on a chart of a width:
+// names with their numbers, effect axis, rail with the odds under the bars. It
+// reports false if effect axis and rail do not find room.
+func narrowColumns(f *forest, rows []rowText, width float64) (columns, bool) {
+	const stepLeast = 8
 	m := f.metrics
-	right := f.width - m.margin
 	c := columns{}
 	lastLabel := Width(railLabel(f.railSteps.high), m.second, false)
-	c.rail.high = right - lastLabel/2
-	numbers := 0.0
+	c.rail.high = width - m.margin - lastLabel/2
+	numbers := f.labelWidth(width)
 	for _, r := range rows {
 		numbers = max(numbers, Width(r.estimate+" "+r.between, m.second, r.bold))
 	}
-	numbers = max(numbers, f.labelWidth())
-	c.nameWidth = max(numbers, min(widest(rows, m.row, func(r rowText) string { return r.fullName }), nameShare*f.width))
+	c.nameWidth = max(numbers, min(widest(rows, m.row, func(r rowText) string { return r.fullName }), nameShare*width))
 	c.zone.low = m.margin + c.nameWidth + 3
 	room := c.rail.high - c.zone.low - zoneBefore
 	zone := max(minZone, 0.53*room)
-	steps := f.railSteps.high - f.railSteps.low
-	if least := 8 * steps; room-zone < least {
-		return c, &TooNarrowError{Width: f.width, Least: f.width + least - (room - zone)}
-	}
 	c.zone.high = c.zone.low + zone
 	c.rail.low = c.zone.high + zoneBefore
-	return c, nil
+	return c, room-zone >= stepLeast*(f.railSteps.high-f.railSteps.low)
 }
 
 // cut shortens a name to a width by "…" before the year, and reports whether it

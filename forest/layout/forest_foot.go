@@ -1,36 +1,57 @@
 package layout
 
+import "slices"
+
 // footItems draws both axes at a height, and the directions under them; it
 // returns the lowest baseline.
 func (f *forest) footItems(y float64) (items []Item, bottom float64) {
-	a, r, m := f.axis, f.rail, f.metrics
+	r, m := f.rail, f.metrics
 	const tickLength = 2.2
 	numbers := y + tickLength + m.second
-	axisLine := func(from, to float64) { items = append(items, Line{X1: from, Y1: y, X2: to, Y2: y, Width: 0.5}) }
-	mark := func(t tick, ink Ink) {
-		items = append(items, Line{X1: t.x, Y1: y, X2: t.x, Y2: y + tickLength, Width: 0.5})
-		if t.label != "" {
-			items = append(items, label(t.x, numbers, m.second, Middle, ink, t.label))
+	items = append(items, Line{X1: r.zero(), Y1: f.heads.rule, X2: r.zero(), Y2: y, Width: 0.75})
+	draw := func(from, to float64, ticks []tick, ink Ink) {
+		if from < to {
+			items = append(items, Line{X1: from, Y1: y, X2: to, Y2: y, Width: 0.5})
+		}
+		for _, t := range ticks {
+			items = append(items, Line{X1: t.x, Y1: y, X2: t.x, Y2: y + tickLength, Width: 0.5})
+			if t.label != "" {
+				items = append(items, label(t.x, numbers, m.second, Middle, ink, t.label))
+			}
 		}
 	}
-	items = append(items, Line{X1: r.zero(), Y1: f.heads.rule, X2: r.zero(), Y2: y, Width: 0.75})
-	axisLine(a.x0, a.x1)
-	for _, t := range a.ticks {
-		mark(t, Ordinary)
-	}
-	axisLine(r.place.low, r.place.high)
-	whole, bound := r.labels(m.second)
-	for _, t := range whole {
-		mark(t, Ordinary)
-	}
+	effects, whole, bound := f.axisLabels()
+	draw(f.axis.x0, f.axis.x1, effects, Ordinary)
+	draw(r.place.low, r.place.high, whole, Ordinary)
 	if bound.label != "" {
-		mark(bound, Soft)
+		draw(0, 0, []tick{bound}, Soft)
 	}
 	bottom = numbers + m.second + 3.5
 	if m.twoLine {
 		bottom += 0.5
 	}
 	return append(items, f.directions(bottom)...), bottom
+}
+
+// axisLabels returns the ticks of both axes. Where the last label of the effect
+// axis reaches the rail, the label of the bound gives way, and before the rail's
+// zero the label of the effect.
+func (f *forest) axisLabels() (effects, whole []tick, bound tick) {
+	size := f.metrics.second
+	half := func(t tick) float64 { return Width(t.label, size, false) / 2 }
+	whole, bound = f.rail.labels(size)
+	effects = slices.Clone(f.axis.ticks)
+	if len(effects) == 0 {
+		return effects, whole, bound
+	}
+	last := &effects[len(effects)-1]
+	if last.x+half(*last) > whole[0].x-half(whole[0])-lastApart {
+		last.label = ""
+	}
+	if last.label != "" && last.x+half(*last) > bound.x-half(bound)-lastApart {
+		bound.label = ""
+	}
+	return effects, whole, bound
 }
 
 // direction is a label under a zero line with the arrow that points away from

@@ -111,7 +111,9 @@ func (f *forest) headItems() []Item {
 				boldLabel(c.weightEnd, h.first, m.head, End, "Weight"),
 				label(c.weightEnd, h.second, m.second, End, Soft, "%"))
 		}
-		items = append(items, f.spanHead(f.rail.zero(), right, "Evidence ratio, effect : none")...)
+		const title = "Evidence ratio, effect : none"
+		from := min(f.rail.zero(), right-Width(title, m.head, true))
+		items = append(items, f.spanHead(from, right, title)...)
 	}
 	for _, w := range h.words {
 		y := h.second

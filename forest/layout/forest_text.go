@@ -107,8 +107,9 @@ func (f *forest) afterRows() []afterRow {
 	return rows
 }
 
-// labelWidth is the widest label at the left of the pooled block.
-func (f *forest) labelWidth() float64 {
+// labelWidth is the widest label at the left of the pooled block on a chart of a
+// width, of which it may take two fifths.
+func (f *forest) labelWidth(width float64) float64 {
 	most := 0.0
 	for _, r := range f.afterRows() {
 		most = max(most, Width(r.label, f.metrics.row, false))
@@ -119,7 +120,7 @@ func (f *forest) labelWidth() float64 {
 	if f.pooled != nil {
 		most = max(most, Width(f.pooled.name, f.metrics.row, true))
 	}
-	return min(most, 0.4*f.width)
+	return min(most, 0.4*width)
 }
 
 // railLines is the number of lines beside the rail under the pooled bar: word
