@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"slices"
 	"time"
 
 	"codeberg.org/go-fonts/liberation/liberationsansbold"
@@ -41,10 +42,9 @@ func WritePDF(w io.Writer, doc layout.Document, theme layout.Theme) error {
 	f.SetProducer("steelyard", true)
 	f.SetMargins(0, 0, 0)
 	f.SetAutoPageBreak(false, 0)
-	f.AddUTF8FontFromBytes(pdfFamily, "", liberationsansregular.TTF)
-	f.AddUTF8FontFromBytes(pdfFamily, "B", liberationsansbold.TTF)
-	f.AddUTF8FontFromBytes(pdfFamily, "I", liberationsansitalic.TTF)
-	f.AddUTF8FontFromBytes(pdfFamily, "BI", liberationsansbolditalic.TTF)
+	for _, style := range usedStyles(doc) {
+		f.AddUTF8FontFromBytes(pdfFamily, style, pdfFonts[style])
+	}
 	ink := pdfInk{f: f, theme: theme}
 	for _, page := range doc.Pages {
 		f.AddPageFormat("P", fpdf.SizeType{Wd: page.Width, Ht: page.Height})
@@ -58,6 +58,41 @@ func WritePDF(w io.Writer, doc layout.Document, theme layout.Theme) error {
 }
 
 const pdfFamily = "LiberationSans"
+
+// pdfFonts are the faces by the PDF library's letters for bold and italic.
+var pdfFonts = map[string][]byte{
+	"":   liberationsansregular.TTF,
+	"B":  liberationsansbold.TTF,
+	"I":  liberationsansitalic.TTF,
+	"BI": liberationsansbolditalic.TTF,
+}
+
+func pdfStyle(s layout.Span) string {
+	style := ""
+	if s.Bold {
+		style += "B"
+	}
+	if s.Italic {
+		style += "I"
+	}
+	return style
+}
+
+// usedStyles returns the faces that a document needs, in order.
+func usedStyles(doc layout.Document) []string {
+	var used []string
+	for _, page := range doc.Pages {
+		page.Each(func(it layout.Item) {
+			if t, ok := it.(layout.Text); ok {
+				for _, s := range t.Spans {
+					used = append(used, pdfStyle(s))
+				}
+			}
+		})
+	}
+	slices.Sort(used)
+	return slices.Compact(used)
+}
 
 // pdfInk draws items on the current page.
 type pdfInk struct {
@@ -124,16 +159,9 @@ func (p pdfInk) paint(paint layout.Paint) string {
 
 func (p pdfInk) text(t layout.Text) {
 	for _, run := range t.Runs() {
-		style := ""
-		if run.Bold {
-			style += "B"
-		}
-		if run.Italic {
-			style += "I"
-		}
 		c := colourOf(p.theme, run.Ink)
 		p.f.SetTextColor(int(c.R), int(c.G), int(c.B))
-		p.f.SetFont(pdfFamily, style, t.Size)
+		p.f.SetFont(pdfFamily, pdfStyle(run.Span), t.Size)
 		p.f.Text(run.Left, t.Y, layout.Printable(run.Text))
 	}
 }

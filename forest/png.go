@@ -160,9 +160,9 @@ func (p pngInk) area(path vg.Path, paint layout.Paint) {
 	}
 }
 
-// text draws each run between the edges that the width table gives it. The
-// canvas sets pairs of letters closer (kerning), which the table does not know;
-// the anchored edge stays in place.
+// text draws each character where the width table puts it. A whole string would
+// be set with pairs of letters drawn closer (kerning), which moves digits out of
+// their columns.
 func (p pngInk) text(t layout.Text) {
 	for _, run := range t.Runs() {
 		what := font.Font{Typeface: "Liberation", Variant: "Sans"}
@@ -173,18 +173,13 @@ func (p pngInk) text(t layout.Text) {
 			what.Style = xfont.StyleItalic
 		}
 		face := p.faces.Lookup(what, vg.Length(t.Size))
-		text := layout.Printable(run.Text)
-		left := run.Left
-		slack := run.Width - float64(face.Width(text))
-		switch {
-		case run.Follow:
-		case run.Anchor == layout.Middle:
-			left += slack / 2
-		case run.Anchor == layout.End:
-			left += slack
-		}
 		p.canvas.SetColor(colourOf(p.theme, run.Ink))
-		p.canvas.FillString(face, p.at(left, t.Y), text)
+		x := run.Left
+		for _, r := range run.Text {
+			shown := layout.Printable(string(r))
+			p.canvas.FillString(face, p.at(x, t.Y), shown)
+			x += layout.Width(string(r), t.Size, run.Bold)
+		}
 	}
 }
 
