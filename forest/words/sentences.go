@@ -100,7 +100,15 @@ func Test(m meta.Mean) string {
 	if math.IsInf(m.DF, 1) {
 		return fmt.Sprintf("z = %s, %s", statistic, PValue(m.LnP))
 	}
-	return fmt.Sprintf("t = %s on %s df, %s", statistic, plain(m.DF), PValue(m.LnP))
+	return fmt.Sprintf("t = %s on %s df, %s", statistic, degrees(m.DF), PValue(m.LnP))
+}
+
+// degrees writes degrees of freedom, whole ones with commas.
+func degrees(df float64) string {
+	if df == math.Trunc(df) && df < 1e15 {
+		return Count(int(df))
+	}
+	return plain(df)
 }
 
 // Scatter words the chi-square form of a fit's heterogeneity as what it compares,
@@ -108,16 +116,16 @@ func Test(m meta.Mean) string {
 // its degrees of freedom.
 func Scatter(fit *meta.Fit) string {
 	h := fit.Heterogeneity
-	k := h.DF + 1
+	k := Count(h.DF + 1)
 	ratio := h.Evidence.Ln()
-	test := fmt.Sprintf("Q = %s on %d df, %s", Linear(h.Q, 2), h.DF, PValue(h.LnP))
+	test := fmt.Sprintf("Q = %s on %s df, %s", Linear(h.Q, 2), Count(h.DF), PValue(h.LnP))
 	switch {
 	case math.Abs(math.Expm1(math.Abs(ratio))) <= even:
-		return fmt.Sprintf("%s; %d unrelated effects and one common effect fit alike", test, k)
+		return fmt.Sprintf("%s; %s unrelated effects and one common effect fit alike", test, k)
 	case ratio > 0:
-		return fmt.Sprintf("%s; %d unrelated effects against one common effect: %s", test, k, OddsInSentence(ratio))
+		return fmt.Sprintf("%s; %s unrelated effects against one common effect: %s", test, k, OddsInSentence(ratio))
 	}
-	return fmt.Sprintf("%s; one common effect against %d unrelated ones: %s (no proof that the effects are alike)", test, k, OddsInSentence(-ratio))
+	return fmt.Sprintf("%s; one common effect against %s unrelated ones: %s (no proof that the effects are alike)", test, k, OddsInSentence(-ratio))
 }
 
 // Spread returns τ with its limits and the share of the scatter that it makes up:

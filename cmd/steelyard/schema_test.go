@@ -1,0 +1,91 @@
+package main
+
+import (
+	"bytes"
+	"encoding/json"
+	"os"
+	"strings"
+	"testing"
+
+	"github.com/santhosh-tekuri/jsonschema/v6"
+
+	"steelyard/meta/synthesis"
+)
+
+// schemaFiles are the schemas that stand beside the code.
+var schemaFiles = map[string]any{
+	"../../meta/synthesis/steelyard-1.schema.json":       synthesis.Document{},
+	"../../meta/synthesis/steelyard-weigh-1.schema.json": synthesis.WeighingDocument{},
+}
+
+// TestGoldenSchemas: the schema files are those of the types; -update rewrites
+// them.
+func TestGoldenSchemas(t *testing.T) {
+	for path, document := range schemaFiles {
+		want, err := indented(synthesis.Schema(document))
+		if err != nil {
+			t.Fatal(err)
+		}
+		if *update {
+			if err := writeWhole(path, want, true); err != nil {
+				t.Fatal(err)
+			}
+			continue
+		}
+		got, err := os.ReadFile(path)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if !bytes.Equal(got, want) {
+			t.Errorf("%s is not the types' schema; run: make golden", path)
+		}
+	}
+}
+
+// TestSchema validates real output against the schema files with a
+// general-purpose validator, and checks that they can refuse.
+func TestSchema(t *testing.T) {
+	compiler := jsonschema.NewCompiler()
+	pool, err := compiler.Compile("../../meta/synthesis/steelyard-1.schema.json")
+	if err != nil {
+		t.Fatal(err)
+	}
+	weigh, err := compiler.Compile("../../meta/synthesis/steelyard-weigh-1.schema.json")
+	if err != nil {
+		t.Fatal(err)
+	}
+	header := "study,estimate,se\n"
+	for _, c := range []struct {
+		schema *jsonschema.Schema
+		stdin  string
+		args   string
+	}{
+		{pool, "", "pool " + data + "demo.xlsx"},
+		{pool, "", "pool " + data + "checks/bcg_counts.csv --effects common"},
+		{pool, "", "pool " + data + "checks/bcg_lor.csv --interval henmi-copas"},
+		{pool, "", "pool " + data + "checks/eight_schools.csv --important 5 --prediction bootstrap"},
+		{pool, header + "A,1,0.5\n", "pool -"},
+		{pool, header + "A,1,0.5\nB,x,1\n", "pool -"},
+		{pool, header + "A,700,0.5\nB,-700,1\n", "pool - --measure hazard_ratio"},
+		{pool, header, "pool -"},
+		{weigh, "", "weigh --z 20000"},
+		{weigh, "", "weigh --ratio --estimate 0.7 --se 0.1 --important 0.8 --df 5"},
+		{weigh, "", "weigh --p 0.03"},
+	} {
+		stdout, stderr, code := call(t, c.stdin, strings.Fields(c.args+" --format json")...)
+		if stdout == "" && code == codeData {
+			continue // refused as a whole: there is no document
+		}
+		value, err := jsonschema.UnmarshalJSON(strings.NewReader(stdout))
+		if err != nil {
+			t.Errorf("%s: %v, %s", c.args, err, stderr)
+			continue
+		}
+		if err := c.schema.Validate(value); err != nil {
+			t.Errorf("%s: %v", c.args, err)
+		}
+	}
+	if err := pool.Validate(map[string]any{"format": "steelyard/1", "unknown": json.Number("1")}); err == nil {
+		t.Error("the schema takes a document with an unknown field and without the needed ones")
+	}
+}
