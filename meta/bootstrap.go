@@ -74,29 +74,32 @@ func gammaDraw(random *rand.Rand, shape float64) float64 {
 	}
 }
 
-// tau2Confidence is the confidence distribution of τ², tabulated as ln P(Q ≤
-// observed | τ²), which falls from left to right.
+// tau2Confidence is the confidence distribution of τ², P(Q > observed | τ²),
+// tabulated by its logit, which rises from left to right.
 type tau2Confidence struct {
-	tau2, lnBelow []float64
+	tau2, logit []float64
 }
 
-// confidenceStep is the ratio of neighbouring τ² in the table; ln P is close to
-// straight in ln τ², so that τ² between them is right to about 0.5 %.
-const confidenceStep = 1.2
+// confidenceStep is the ratio of neighbouring τ² in the table; the logit is close
+// to straight in ln τ², so that confidences between them are right to about 1 %.
+const confidenceStep = 1.15
 
-// confidenceFloor is the chance below which the table ends: no draw reaches it
-// more often than once in forty runs.
+// confidenceFloor is the chance of Q ≤ observed below which the table ends: one
+// draw in forty runs would fall there. Chances are known to better than its
+// thousandth part, which bounds the logit.
 const confidenceFloor = 1e-6
 
 // newTau2Confidence tabulates from τ² = 0 up to where P(Q ≤ observed) is
-// negligible, in the unit of the typical variance (k−1)/(Σw − Σw²/Σw).
+// negligible, in steps from a small part of the typical variance
+// (k−1)/(Σw − Σw²/Σw) on.
 func newTau2Confidence(d *sample, zero moments) tau2Confidence {
 	law := newLawOfQ(d)
 	var table tau2Confidence
 	add := func(tau2 float64) float64 {
 		below := law.below(zero.q, tau2)
+		least := 1e-3 * confidenceFloor
 		table.tau2 = append(table.tau2, tau2)
-		table.lnBelow = append(table.lnBelow, math.Log(max(below, math.SmallestNonzeroFloat64)))
+		table.logit = append(table.logit, math.Log(max(1-below, least)/max(below, least)))
 		return below
 	}
 	add(0)
@@ -108,20 +111,15 @@ func newTau2Confidence(d *sample, zero moments) tau2Confidence {
 // quantile returns the τ² whose confidence is u in (0, 1); 0 where the
 // confidence is above u from τ² = 0 on.
 func (c tau2Confidence) quantile(u float64) float64 {
-	want := math.Log1p(-u)
-	above, _ := slices.BinarySearchFunc(c.lnBelow, want, func(have, want float64) int {
-		if have > want {
-			return -1
-		}
-		return 1
-	})
+	want := math.Log(u) - math.Log1p(-u)
+	above, _ := slices.BinarySearch(c.logit, want)
 	switch above {
 	case 0:
 		return 0
 	case len(c.tau2):
 		return c.tau2[above-1]
 	}
-	share := (c.lnBelow[above-1] - want) / (c.lnBelow[above-1] - c.lnBelow[above])
+	share := (want - c.logit[above-1]) / (c.logit[above] - c.logit[above-1])
 	if above == 1 {
 		return share * c.tau2[1]
 	}
