@@ -28,9 +28,9 @@ var filterOperators = []string{" is not ", " is ", "!=", "<=", ">=", "=", "<", "
 // and contains; a value may stand in double quotes.
 func ParseFilter(text string) (*Filter, error) {
 	f := &Filter{text: strings.TrimSpace(text)}
-	for _, alternative := range splitWord(f.text, "or") {
+	for _, alternative := range splitWord(" "+f.text+" ", "or") {
 		var all []condition
-		for _, part := range splitWord(alternative, "and") {
+		for _, part := range splitWord(" "+alternative+" ", "and") {
 			c, err := parseCondition(part)
 			if err != nil {
 				return nil, err

@@ -104,9 +104,10 @@ func choiceSetting(name string, values []string, fallback, meaning string) Setti
 }
 
 var synonymParsers = map[string]func(string) error{
-	SettingMeasure: func(t string) error { _, err := effect.ParseMeasure(t); return err },
-	SettingEffects: func(t string) error { _, err := meta.ParseEffects(t); return err },
-	SettingTau:     func(t string) error { _, err := meta.ParseTau(t); return err },
+	SettingMeasure:    func(t string) error { _, err := effect.ParseMeasure(t); return err },
+	SettingEffects:    func(t string) error { _, err := meta.ParseEffects(t); return err },
+	SettingTau:        func(t string) error { _, err := meta.ParseTau(t); return err },
+	SettingCorrection: func(t string) error { _, err := effect.ParseCorrection(t); return err },
 }
 
 func freeSetting(name, fallback, meaning, unit string, check func(string) error) Setting {
