@@ -57,6 +57,8 @@ func TestFindings(t *testing.T) {
 		{"beyond all numbers", results([]any{"A", "1e999", "", "", "", 1}), []string{"error F6 B3"}, "not a number"},
 		{"two faults of a row", counts([]any{"A", 2002, "<3", 40, "x", 41}), []string{"error F6 C3", "error F6 E3"}, "bound"},
 		{"year", counts([]any{"A", 215, 3, 40, 5, 41}), []string{"warning F12 B3"}, "date"},
+		{"year too early", counts([]any{"A", 1066, 3, 40, 5, 41}), []string{"warning F12 B3"}, "year"},
+		{"column without header", append(table{{"study", "y", nil, "se"}}, []any{"A", 1, 7, 1}), []string{"warning F9 C:C"}, "no header"},
 		{"year too late", counts([]any{"A", 3015, 3, 40, 5, 41}), []string{"warning F12 B3"}, "year"},
 		{"year with letter", counts([]any{"A", "2015a", 3, 40, 5, 41}), []string{"note F12 B3"}, "2015"},
 		{"events above total", counts([]any{"A", 2002, 42, 40, 5, 41}), []string{"error C1 C3"}, "42 events among 40"},

@@ -108,6 +108,7 @@ func TestHeaderError(t *testing.T) {
 		{"names of a language unknown", "Title of the sheet\n\nAutor;Jahr;Deaths, drug arm;Patients, drug arm;Deaths, placebo;Patients, placebo\nA;2001;3;40;5;50\nB;2002;4;50;5;55\n",
 			[]string{`"study=Autor"`, `"events treated=Deaths, drug arm"`, `"total treated=Patients, drug arm"`}},
 		{"nothing known", "Autor,Wert,Fehler\nA,0.5,0.2\nB,0.6,0.1\n", []string{`"study=Autor"`, `"estimate=Wert"`, `"se=Fehler"`}},
+		{"years are no results", "Autor,Jahr,Wert,Fehler\nA,2001,0.5,0.2\nB,2002,0.6,0.1\n", []string{`"study=Autor"`, `"estimate=Wert"`, `"se=Fehler"`}},
 		{"order told by words", "Trial,Patients drug,Deaths drug,Patients other,Deaths other\nA,40,3,50,5\nB,50,4,55,5\n",
 			[]string{`"events treated=Deaths drug"`, `"total treated=Patients drug"`, `"events control=Deaths other"`, `"total control=Patients other"`}},
 	} {

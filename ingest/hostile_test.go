@@ -3,12 +3,14 @@ package ingest
 import (
 	"bytes"
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"strings"
 	"testing"
 	"time"
 
+	"steelyard/ingest/grid"
 	"steelyard/meta/review"
 )
 
@@ -75,9 +77,15 @@ func TestEveryBadCellIsReported(t *testing.T) {
 func TestInterrupted(t *testing.T) {
 	ctx, cancel := context.WithCancel(context.Background())
 	cancel()
-	x, _, err := Read(ctx, manyStudies(10_000), "a.csv", Options{})
-	if err == nil || x != nil {
-		t.Errorf("read to the end: %v", err)
+	if x, _, err := Read(ctx, manyStudies(10_000), "a.csv", Options{}); !errors.Is(err, context.Canceled) || x != nil {
+		t.Errorf("the cells are read to the end: %v", err)
+	}
+	cells, err := grid.Read(context.Background(), manyStudies(10_000), "a.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	if x, _, err := read(ctx, cells, nil, Options{}); !errors.Is(err, context.Canceled) || x != nil {
+		t.Errorf("the studies are read to the end: %v", err)
 	}
 }
 

@@ -157,3 +157,39 @@ func TestStoredDigits(t *testing.T) {
 		t.Errorf("%v as %q", n.Value, n.Place.Text)
 	}
 }
+
+// TestStudyID takes the identifier for the name when nothing else names the study.
+func TestStudyID(t *testing.T) {
+	x := mustRead(t, []byte("Study ID,y,se\nA 17,1,1\n"), "a.csv", Options{})
+	if got := lines(x); !slices.Equal(got, []string{"A 17||||unspecified||analysis estimate=1|se=1"}) {
+		t.Errorf("alone: %q", got)
+	}
+	x = mustRead(t, []byte("Study ID,Study,y,se\n17,A,1,1\n"), "a.csv", Options{})
+	if got := lines(x); !slices.Equal(got, []string{"A|17|||unspecified||analysis estimate=1|se=1"}) {
+		t.Errorf("beside a name: %q", got)
+	}
+}
+
+// TestGroupEndsWithItsMerge keeps a group from reaching over a column beside it.
+func TestGroupEndsWithItsMerge(t *testing.T) {
+	rows := table{{"Study", "Result", nil, nil}, {nil, "Estimate", "SE", "Latitude"}, {"A", 1, 2, 3}}
+	x := mustRead(t, rows.xlsx(t, "B1:C1"), "a.xlsx", Options{})
+	if got := lines(x); !slices.Equal(got, []string{"A||||unspecified||estimate=1|se=2|Latitude: 3"}) {
+		t.Errorf("%q", got)
+	}
+}
+
+// TestColumns lists the columns as they were understood.
+func TestColumns(t *testing.T) {
+	rows := table{{"Trial", "Treated", nil, "Control", nil, "Latitude"}, {nil, "Events", "N", "Events", "N"}, {"A", 1, 20, 2, 21, 44}}
+	for name, data := range map[string][]byte{"a.csv": rows.csv(t), "a.xlsx": rows.xlsx(t, "A1:A2", "B1:C1", "D1:E1", "F1:F2")} {
+		var got []string
+		for _, c := range mustRead(t, data, name, Options{}).Columns {
+			got = append(got, c.Header+" = "+c.Field.String()+" "+c.Place.Cell())
+		}
+		want := []string{"Trial = study A1", "Treated Events = events treated B2", "Treated N = total treated C2", "Control Events = events control D2", "Control N = total control E2", "Latitude =  F1"}
+		if !slices.Equal(got, want) {
+			t.Errorf("%s: %q, want %q", name, got, want)
+		}
+	}
+}

@@ -76,23 +76,13 @@ func levelOf(word, next string, before []string) (level float64, rest string, ok
 }
 
 // tidy returns a cell's text in one line: surrounding blanks gone, every run of
-// white space one blank, control characters dropped.
+// white space one blank. Control characters are gone already.
 func tidy(text string) string {
 	for i := 0; i < len(text); i++ {
 		c := text[i]
 		if c < ' ' || c >= 0x7f || (c == ' ' && (i == 0 || i == len(text)-1 || text[i-1] == ' ')) {
-			return tidySlowly(text)
+			return strings.Join(strings.FieldsFunc(text, unicode.IsSpace), " ")
 		}
 	}
 	return text
-}
-
-func tidySlowly(text string) string {
-	words := strings.FieldsFunc(text, unicode.IsSpace)
-	return strings.Map(func(r rune) rune {
-		if unicode.IsControl(r) {
-			return -1
-		}
-		return r
-	}, strings.Join(words, " "))
 }
