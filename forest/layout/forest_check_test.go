@@ -8,10 +8,9 @@ import (
 
 // box is the room that a piece of a drawing takes.
 type box struct {
-	what             string
-	x1, y1, x2, y2   float64
-	text             bool
-	height, baseline float64
+	what           string
+	x1, y1, x2, y2 float64
+	text           bool
 }
 
 // boxes returns the room of every item; text as its letters stand, from the
