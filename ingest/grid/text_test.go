@@ -114,6 +114,7 @@ func TestDelimiters(t *testing.T) {
 		{"authors parted by semicolons, several numbers", "study,authors,n,e,m\na,X; Y,5,6,7\nb,X; Y,6,1,2\nc,Z; Y,7,2,2\nd,Z; Y,7,2,2\ne,Z; Y,7,2,2\nf,Z; Y,7,2,2\n", "a.csv", "study|authors|n|e|m"},
 		{"authors parted by semicolons", "study,authors,n\na,\"X; Y\",5\nb,X; Y,6\nc,Z; Y,7\n", "a.csv", "study|authors|n"},
 		{"rows without their last fields", "a;b;c;d\n1;2\n1,5;2;3\n1,5;2\n1,2;2;3;4\n", "a.csv", "a|b|c|d"},
+		{"lists with commas in every row", "study\twho\na\tX,Y\nb\tZ,Y\n", "a.txt", "study|who"},
 		{"tabs and commas", "study\test\nA, B\t1\nC, D\t2\n", "a.txt", "study|est"},
 		{"a .tsv with one tab", "x, y, z\n1, 2, 3\tq\n", "a.tsv", "x, y, z"},
 		{"pipes", "study|n\na|4\n", "a.txt", "study|n"},
