@@ -21,3 +21,22 @@ func BenchmarkFromArms(b *testing.B) {
 		}
 	}
 }
+
+func BenchmarkFisher(b *testing.B) {
+	studies := []Signed{{1.5, 40}, {2.2, 100}, {-0.3, 60}, {40, 1000}}
+	b.ReportAllocs()
+	for b.Loop() {
+		if _, _, err := Fisher(studies); err != nil {
+			b.Fatal(err)
+		}
+	}
+}
+
+func BenchmarkFromFiveNumbers(b *testing.B) {
+	b.ReportAllocs()
+	for b.Loop() {
+		if _, _, err := FromFiveNumbers(2, 8, 10, 16, 22, 25); err != nil {
+			b.Fatal(err)
+		}
+	}
+}

@@ -61,6 +61,31 @@ func checkPositive(what string, x float64, do string) error {
 	return &InputError{What: what, Value: x, Why: "is not above 0", Do: do}
 }
 
+// checkFreedom returns an *InputError unless df > 0; +Inf stands for the normal
+// law.
+func checkFreedom(df float64) error {
+	if df > 0 {
+		return nil
+	}
+	return &InputError{What: "degrees of freedom", Value: df, Why: "is not above 0", Do: "enter the number of people less 2, or leave it out"}
+}
+
+// checkP returns an *InputError unless p is above 0 and below 1.
+func checkP(p float64, kind string) error {
+	if p > 0 && p < 1 {
+		return nil
+	}
+	return &InputError{What: "p", Value: p, Why: "is not between 0 and 1", Do: "enter the exact " + kind + " p-value"}
+}
+
+// checkCorrelation returns an *InputError unless -1 ≤ r ≤ 1.
+func checkCorrelation(what string, r float64) error {
+	if r >= -1 && r <= 1 {
+		return nil
+	}
+	return &InputError{What: what, Value: r, Why: "is not between -1 and 1", Do: "enter the correlation coefficient"}
+}
+
 // checked passes an estimate on if both its numbers are usable: numbers that
 // are legal one by one can still be too large or too small together.
 func checked(e Estimate, steps []Conversion) (Estimate, []Conversion, error) {

@@ -1,6 +1,9 @@
 package effect
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // Table is a 2×2 table: people with the event and people in all, in the
 // treated arm (1) and in the control arm (2).
@@ -14,31 +17,63 @@ const largestCount = 1e15
 // 0 ≤ events ≤ total and total > 0.
 func (t Table) Check() error {
 	for _, v := range t.values() {
-		switch x := v.Value; {
-		case !finite(x):
-			return checkFinite(v.Name, x)
-		case x < 0:
-			return &InputError{What: v.Name, Value: x, Why: "is below 0", Do: "enter a count of people"}
-		case x != math.Trunc(x):
-			return &InputError{What: v.Name, Value: x, Why: "is not a whole number", Do: "enter a count of people, not a percentage or a rate"}
-		case x > largestCount:
-			return &InputError{What: v.Name, Value: x, Why: "is too large for a count of people", Do: "enter the count as the report prints it"}
+		if err := checkCount(v.Name, v.Value); err != nil {
+			return err
 		}
 	}
-	if err := checkCounts("treated", t.Events1, t.Total1); err != nil {
-		return err
-	}
-	return checkCounts("control", t.Events2, t.Total2)
+	return t.checkArms()
 }
 
-func checkCounts(arm string, events, total float64) error {
-	if total == 0 {
-		return &InputError{What: "total " + arm, Value: total, Why: "is 0", Do: "enter how many people were in the arm"}
+// checkArms returns an *InputError unless 0 < total and events ≤ total.
+func (t Table) checkArms() error {
+	if err := checkEvents("treated", t.Events1, t.Total1); err != nil {
+		return err
 	}
-	if events > total {
-		return &InputError{What: "events " + arm, Value: events, Why: "is more than total " + arm, Do: "check both; the total counts everybody in the arm, with the event or without"}
+	return checkEvents("control", t.Events2, t.Total2)
+}
+
+// checkCount returns an *InputError unless x is a count of people or events.
+func checkCount(what string, x float64) error {
+	if err := checkAmount(what, x); err != nil {
+		return err
+	}
+	if x != math.Trunc(x) {
+		return &InputError{What: what, Value: x, Why: "is not a whole number", Do: "enter a count of people, not a percentage or a rate"}
 	}
 	return nil
+}
+
+// checkAmount returns an *InputError unless 0 ≤ x ≤ largestCount.
+func checkAmount(what string, x float64) error {
+	switch {
+	case !finite(x):
+		return checkFinite(what, x)
+	case x < 0:
+		return &InputError{What: what, Value: x, Why: "is below 0", Do: "enter a count of people"}
+	case x > largestCount:
+		return &InputError{What: what, Value: x, Why: "is too large for a count of people", Do: "enter the count as the report prints it"}
+	}
+	return nil
+}
+
+// checkEvents names the numbers after the arm, or after none if arm is blank.
+func checkEvents(arm string, events, total float64) error {
+	if total == 0 {
+		return &InputError{What: named("total", arm), Value: total, Why: "is 0", Do: "enter how many people were in the arm"}
+	}
+	if events > total {
+		return &InputError{What: named("events", arm), Value: events, Why: "is more than " + named("total", arm),
+			Do: "check both; the total counts everybody in the arm, with the event or without"}
+	}
+	return nil
+}
+
+// named is the name of a number of an arm, or of the only arm if arm is blank.
+func named(what, arm string) string {
+	if arm == "" {
+		return what
+	}
+	return what + " " + arm
 }
 
 func (t Table) values() []Value {
@@ -61,13 +96,14 @@ func (x cells) values() []Value {
 func (t Table) bothEmpty() bool { return t.Events1 == 0 && t.Events2 == 0 }
 func (t Table) bothFull() bool  { return t.Events1 == t.Total1 && t.Events2 == t.Total2 }
 
-// FromTable returns the log odds ratio, the log risk ratio or the risk
-// difference of a table, treated against control, with its standard error. With
-// cells a, b of the treated arm (events, non-events) and c, d of the control arm:
+// FromTable returns the log odds ratio, the log risk ratio, the risk difference
+// or the arcsine difference of a table, treated against control, with its
+// standard error. With cells a, b of the treated arm (events, non-events) and c, d of the control arm:
 //
 //	log odds ratio   ln(ad/bc)              variance 1/a + 1/b + 1/c + 1/d
 //	log risk ratio   ln(a/n₁) − ln(c/n₂)    variance b/(a n₁) + d/(c n₂)
 //	risk difference  a/n₁ − c/n₂            variance ab/n₁³ + cd/n₂³
+//	arcsine          asin√(a/n₁) − asin√(c/n₂)  variance 1/(4n₁) + 1/(4n₂)
 //
 // The correction c is used only where the estimate or its variance would
 // otherwise be undefined or 0, and is always recorded:
@@ -76,7 +112,8 @@ func (t Table) bothFull() bool  { return t.Events1 == t.Total1 && t.Events2 == t
 //   - risk ratio: an arm has no events, or everybody in both arms has one;
 //   - risk difference: each arm has either no events or nothing but events (so
 //     that the variance is 0); the estimate stays that of the raw counts and
-//     only the variance is taken from the corrected ones.
+//     only the variance is taken from the corrected ones;
+//   - arcsine difference: never.
 //
 // Errors: a *MeasureError for another measure; an *InputError for a table that
 // fails Check, or one that needs a correction when c is NoCorrection;
@@ -84,14 +121,29 @@ func (t Table) bothFull() bool  { return t.Events1 == t.Total1 && t.Events2 == t
 // ratio also if everybody in both arms has one.
 //
 // Source: Cochrane Handbook 6.4.1, 10.4.4.2; Deeks, Altman & Bradburn (2001),
-// in Systematic Reviews in Health Care, chapter 15.
+// in Systematic Reviews in Health Care, chapter 15; Rücker, Schwarzer, Carpenter
+// & Olkin (2009), Statistics in Medicine 28:721-738 (arcsine).
 func FromTable(m Measure, t Table, c Correction) (Estimate, []Conversion, error) {
-	if m != OddsRatio && m != RiskRatio && m != RiskDifference {
-		return Estimate{}, nil, &MeasureError{Measure: m, From: "a 2×2 table", Valid: []Measure{OddsRatio, RiskRatio, RiskDifference}}
+	if err := m.checkTable(); err != nil {
+		return Estimate{}, nil, err
 	}
 	if err := t.Check(); err != nil {
 		return Estimate{}, nil, err
 	}
+	return fromTable(m, t, c)
+}
+
+// checkTable returns a *MeasureError for a measure that no 2×2 table informs.
+func (m Measure) checkTable() error {
+	valid := []Measure{OddsRatio, RiskRatio, RiskDifference, ArcsineDifference}
+	if slices.Contains(valid, m) {
+		return nil
+	}
+	return &MeasureError{Measure: m, From: "a 2×2 table", Valid: valid}
+}
+
+// fromTable is FromTable for a measure and a table that were checked.
+func fromTable(m Measure, t Table, c Correction) (Estimate, []Conversion, error) {
 	if m.Log() && t.bothEmpty() || m == OddsRatio && t.bothFull() {
 		return Estimate{}, nil, ErrNothingToCompare
 	}
@@ -111,9 +163,13 @@ func FromTable(m Measure, t Table, c Correction) (Estimate, []Conversion, error)
 	if m == RiskDifference {
 		e.Y = t.cells().estimate(m).Y
 	}
+	source := "Cochrane Handbook 6.4.1"
+	if m == ArcsineDifference {
+		source = "Rücker et al. 2009"
+	}
 	steps = append(steps, Conversion{
 		What: m.scaled() + " and its standard error from a 2×2 table",
-		From: used.values(), To: e.values(), Source: "Cochrane Handbook 6.4.1",
+		From: used.values(), To: e.values(), Source: source,
 	})
 	return checked(e, steps)
 }
@@ -135,6 +191,8 @@ func needsCorrection(m Measure, t Table) (culprit Value, needed bool) {
 			return treated, true
 		}
 		return control, x.c == 0
+	case ArcsineDifference:
+		return Value{}, false
 	}
 	return treated, treatedEnd && controlEnd
 }
@@ -147,6 +205,14 @@ func (x cells) estimate(m Measure) Estimate {
 		return Estimate{Y: logQuotient(a*d, b*c), SE: math.Sqrt(1/a + 1/b + 1/c + 1/d)}
 	case RiskRatio:
 		return Estimate{Y: logQuotient(a*n2, c*n1), SE: math.Sqrt(b/(a*n1) + d/(c*n2))}
+	case ArcsineDifference:
+		// The difference of two angles as one angle, so that it keeps its digits.
+		ad, bc := math.Sqrt(a)*math.Sqrt(d), math.Sqrt(b)*math.Sqrt(c)
+		rise := 0.0
+		if a*d != b*c {
+			rise = (a*d - b*c) / (ad + bc)
+		}
+		return Estimate{Y: math.Atan2(rise, math.Sqrt(a)*math.Sqrt(c)+math.Sqrt(b)*math.Sqrt(d)), SE: math.Sqrt(1/n1+1/n2) / 2}
 	}
 	return Estimate{Y: (a*n2 - c*n1) / (n1 * n2), SE: math.Sqrt(a/n1*(b/n1)/n1 + c/n2*(d/n2)/n2)}
 }
@@ -160,37 +226,4 @@ func logQuotient(x, y float64) float64 {
 	return math.Log(x) - math.Log(y)
 }
 
-// scaled names a measure on its analysis scale.
-func (m Measure) scaled() string {
-	if m.Log() {
-		return "log " + m.String()
-	}
-	return m.String()
-}
-
 func (e Estimate) values() []Value { return []Value{{"estimate", e.Y}, {"se", e.SE}} }
-
-// Peto returns the observed minus the expected events of the treated arm, and
-// the variance of that difference given the margins of the table:
-//
-//	O − E = a − n₁m/N    V = n₁n₂m(N−m) / (N²(N−1)),  m events among N people
-//
-// so that (O−E)/V estimates the log odds ratio with standard error 1/√V. No
-// correction is ever needed. It returns an *InputError for a table that fails
-// Check and ErrNothingToCompare if V is 0.
-//
-// Source: Yusuf, Peto, Lewis, Collins & Sleight (1985), Progress in
-// Cardiovascular Diseases 27:335-371.
-func Peto(t Table) (observedMinusExpected, variance float64, err error) {
-	if err := t.Check(); err != nil {
-		return 0, 0, err
-	}
-	if t.bothEmpty() || t.bothFull() {
-		return 0, 0, ErrNothingToCompare
-	}
-	n1, n2 := t.Total1, t.Total2
-	n, m := n1+n2, t.Events1+t.Events2
-	observedMinusExpected = (t.Events1*n2 - t.Events2*n1) / n
-	variance = n1 / n * (n2 / n) * m * (n - m) / (n - 1)
-	return observedMinusExpected, variance, nil
-}

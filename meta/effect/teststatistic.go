@@ -43,11 +43,11 @@ func SEFromT(estimate, t float64) (float64, Conversion, error) {
 //
 // Source: Cochrane Handbook 6.5.2.3.
 func SEFromP(estimate, p, df float64) (float64, Conversion, error) {
-	if !(p > 0 && p < 1) {
-		return 0, Conversion{}, &InputError{What: "p", Value: p, Why: "is not between 0 and 1", Do: "enter the exact two-sided p-value"}
+	if err := checkP(p, "two-sided"); err != nil {
+		return 0, Conversion{}, err
 	}
-	if !(df > 0) {
-		return 0, Conversion{}, &InputError{What: "degrees of freedom", Value: df, Why: "is not above 0", Do: "enter the number of people less 2, or leave it out"}
+	if err := checkFreedom(df); err != nil {
+		return 0, Conversion{}, err
 	}
 	t := numeric.StudentCritical(p, df)
 	se, _, err := SEFromT(estimate, math.Copysign(t, estimate))
@@ -59,6 +59,74 @@ func SEFromP(estimate, p, df float64) (float64, Conversion, error) {
 		From: []Value{{"estimate", estimate}, {"p", p}, {"degrees of freedom", df}},
 		To:   []Value{{"t", t}, {"se", se}}, Source: "Cochrane Handbook 6.5.2.3",
 	}, nil
+}
+
+// SEFromOneSidedP returns the standard error of an effect from the effect and an
+// exact one-sided p-value of the test for an effect in the direction tested:
+// se = estimate/t, t the upper quantile of p by Student's t on df degrees of
+// freedom (+Inf for the normal), turned where lower was tested. estimate is on
+// the analysis scale; it lies in the direction tested where p < ½ and in the
+// other where p > ½. It returns an *InputError unless that is so, 0 < p < 1,
+// p is not ½ and df > 0, and for an unknown direction.
+//
+// Source: Cochrane Handbook 6.5.2.3, with one tail.
+func SEFromOneSidedP(estimate, p, df float64, tested Direction) (float64, Conversion, error) {
+	if err := checkP(p, "one-sided"); err != nil {
+		return 0, Conversion{}, err
+	}
+	if err := checkFreedom(df); err != nil {
+		return 0, Conversion{}, err
+	}
+	if err := tested.check(); err != nil {
+		return 0, Conversion{}, err
+	}
+	t := tested.Sign() * numeric.StudentFromLogTail(math.Log(p), df)
+	se, _, err := SEFromT(estimate, t)
+	if err != nil {
+		return 0, Conversion{}, err
+	}
+	return se, Conversion{
+		What: "standard error from a one-sided p-value, tested for " + tested.String(),
+		From: []Value{{"estimate", estimate}, {"p", p}, {"degrees of freedom", df}},
+		To:   []Value{{"t", t}, {"se", se}}, Source: "Cochrane Handbook 6.5.2.3",
+	}, nil
+}
+
+// FromT returns the estimate of a study, given in the reader's unit, with its
+// standard error from a t (or z) statistic of the test against no effect on the
+// analysis scale. Errors: a *MeasureError for a measure without a null, which
+// no such test can be of; else as SEFromT.
+//
+// Source: Cochrane Handbook 6.5.2.3.
+func FromT(m Measure, estimate, t float64) (Estimate, []Conversion, error) {
+	return fromTest(m, estimate, "a test against no effect", func(y float64) (float64, Conversion, error) { return SEFromT(y, t) })
+}
+
+// FromP is FromT with an exact two-sided p-value on df degrees of freedom in
+// place of the statistic; see SEFromP.
+func FromP(m Measure, estimate, p, df float64) (Estimate, []Conversion, error) {
+	return fromTest(m, estimate, "a p-value", func(y float64) (float64, Conversion, error) { return SEFromP(y, p, df) })
+}
+
+// FromOneSidedP is FromT with an exact one-sided p-value of the test for an
+// effect in the direction tested; see SEFromOneSidedP.
+func FromOneSidedP(m Measure, estimate, p, df float64, tested Direction) (Estimate, []Conversion, error) {
+	return fromTest(m, estimate, "a p-value", func(y float64) (float64, Conversion, error) { return SEFromOneSidedP(y, p, df, tested) })
+}
+
+func fromTest(m Measure, estimate float64, from string, se func(y float64) (float64, Conversion, error)) (Estimate, []Conversion, error) {
+	if !m.HasNull() {
+		return Estimate{}, nil, &MeasureError{Measure: m, From: from, Valid: measuresWithNull()}
+	}
+	y, err := fromReader(m, "estimate", estimate)
+	if err != nil {
+		return Estimate{}, nil, err
+	}
+	s, step, err := se(y)
+	if err != nil {
+		return Estimate{}, nil, err
+	}
+	return checked(Estimate{Y: y, SE: s}, append(scaleStep(m, Value{"estimate", estimate}), step))
 }
 
 // SDFromDifferenceSE returns the standard deviation, taken to be the same in
