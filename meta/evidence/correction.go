@@ -7,7 +7,7 @@ const (
 	// density times G is below 1e-14.
 	correctionReach = 8.5
 	// correctionStep is the widest step of the sum.
-	correctionStep = 0.25
+	correctionStep = 0.35
 )
 
 // correction returns β of a region in standard errors from the estimate; see

@@ -27,10 +27,4 @@ func DoubtersPrior(r Ratio, level float64) float64 { return Posterior(level, r.I
 func logit(p float64) float64 { return math.Log(p) - math.Log1p(-p) }
 
 // logistic returns the probability with the given log odds.
-func logistic(x float64) float64 {
-	if x >= 0 {
-		return 1 / (1 + math.Exp(-x))
-	}
-	odds := math.Exp(x)
-	return odds / (1 + odds)
-}
+func logistic(x float64) float64 { return 1 / (1 + math.Exp(-x)) }

@@ -182,6 +182,8 @@ func TestPosterior(t *testing.T) {
 		{"1 : 3, 9 : 1", 0.25, math.Log(9), 0.75},
 		{"certain stays certain", 1, -1e9, 1},
 		{"excluded stays excluded", 0, 1e9, 0},
+		{"excluded stays excluded by p = 0", 0, math.Inf(1), 0},
+		{"certain stays certain against anything", 1, math.Inf(-1), 1},
 		{"overwhelming", 0.01, 2e8, 1},
 		{"overwhelming against", 0.99, -2e8, 0},
 		{"no evidence", 0.3, 0, 0.3},

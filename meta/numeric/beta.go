@@ -6,6 +6,10 @@ import "math"
 // needs about √max(a, b) steps near the mean and few in the tails.
 const betaSteps = 2_000_000
 
+// fractionEnough is how near to 1 the last factor of a continued fraction must
+// be: above the spacing of float64 there, so that rounding cannot keep it away.
+const fractionEnough = 4e-16
+
 // betaFraction returns the continued fraction K of the incomplete beta function,
 //
 //	I_x(a, b) = x^a·y^b/(a·B(a, b))·K,  y = 1 - x,
@@ -34,7 +38,7 @@ func betaFraction(a, b, x float64) float64 {
 		d = 1 / d
 		step := d * c
 		f *= step
-		if !(math.Abs(step-1) >= 2e-16) { // NaN ends too
+		if !(math.Abs(step-1) > fractionEnough) { // NaN ends too
 			return f
 		}
 	}
@@ -56,7 +60,7 @@ func betaFractionRatio(a, b, r float64) float64 {
 		c, d = 1+even/c, 1/(1+even*d)
 		step := c * d
 		f *= step
-		if !(math.Abs(step-1) >= 2e-16) { // NaN ends too
+		if !(math.Abs(step-1) > fractionEnough) { // NaN ends too
 			return (1 + r) / f
 		}
 	}

@@ -102,7 +102,8 @@ func TestGammaRecurrence(t *testing.T) {
 		if x < 1e6 {
 			left := 2*LogGamma(x) + LogGammaRise(x, 0.5)
 			right := (1-2*x)*math.Ln2 + lnSqrtPi + LogGamma(2*x)
-			if !(math.Abs(left-right) <= 1e-14*max(1, math.Abs(LogGamma(2*x)))) {
+			// Shifting to a large argument rounds about a dozen logarithms.
+			if !(math.Abs(left-right) <= 5e-14*max(1, math.Abs(LogGamma(2*x)))) {
 				t.Errorf("duplication at %g: %.17g and %.17g", x, left, right)
 			}
 		}

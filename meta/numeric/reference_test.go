@@ -30,6 +30,7 @@ var referenced = map[string]func(a [3]float64) float64{
 	"log_student_tail":          func(a [3]float64) float64 { return LogStudentTail(a[0], a[1]) },
 	"student_critical":          func(a [3]float64) float64 { return StudentCritical(a[0], a[1]) },
 	"log_chi_square_tail":       func(a [3]float64) float64 { return LogChiSquareTail(a[0], a[1]) },
+	"log_chi_square_lower":      func(a [3]float64) float64 { return logGammaLower(a[0]/2, a[1]/2) },
 	"chi_square_tail":           func(a [3]float64) float64 { return ChiSquareTail(a[0], a[1]) },
 	"chi_square_quantile":       func(a [3]float64) float64 { return ChiSquareQuantile(a[0], a[1]) },
 	"chi_square_upper_quantile": func(a [3]float64) float64 { return ChiSquareUpperQuantile(a[0], a[1]) },

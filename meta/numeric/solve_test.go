@@ -16,6 +16,7 @@ func TestRoot(t *testing.T) {
 		{"square root of 2", func(x float64) float64 { return x*x - 2 }, 0, 2, math.Sqrt2, 1e-15},
 		{"ends swapped", func(x float64) float64 { return x*x - 2 }, 2, 0, math.Sqrt2, 1e-15},
 		{"root at the low end", func(x float64) float64 { return x }, 0, 1, 0, 0},
+		{"root at the low end of a falling function", func(x float64) float64 { return -x }, 0, 1, 0, 0},
 		{"root at the high end", func(x float64) float64 { return x - 1 }, 0, 1, 1, 0},
 		{"cos x = x: 0.7390851332151607 (Dottie's number)", func(x float64) float64 { return math.Cos(x) - x }, 0, 1, 0.73908513321516064, 1e-15},
 		{"triple root", func(x float64) float64 { return (x - 3) * (x - 3) * (x - 3) }, 0, 10, 3, 1e-5},

@@ -2,6 +2,10 @@ package numeric
 
 import "math"
 
+// newtonEnough is the relative step of Newton's method after which the point
+// reached is exact: the error is of the order of the step's square.
+const newtonEnough = 1e-10
+
 // StudentCritical returns the t whose two-sided tail is alpha: P(|T| > t) =
 // alpha. df may be any positive number, +Inf means the normal law. NaN unless
 // 0 ≤ alpha ≤ 1.
@@ -54,7 +58,7 @@ func studentInverse(lnTail, df float64) float64 {
 				next = 0.5 * (low + high)
 			}
 		}
-		if math.Abs(next-s) <= 2e-16*s {
+		if math.Abs(next-s) <= newtonEnough*s {
 			return next
 		}
 		s = next
