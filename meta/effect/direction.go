@@ -16,7 +16,7 @@ const (
 
 var directionNames = choice.Of[Direction]("direction", "", "higher", "lower").
 	With(map[string]Direction{
-		"more": Higher, "increase": Higher, "positive": Higher, "above": Higher, "up": Higher, "+": Higher,
+		"more": Higher, "increase": Higher, "positive": Higher, "above": Higher, "up": Higher,
 		"less": Lower, "fewer": Lower, "decrease": Lower, "negative": Lower, "below": Lower, "down": Lower,
 	})
 
