@@ -114,7 +114,19 @@ func mustForest(t testing.TB, in ForestInput, style ForestStyle) Document {
 	return doc
 }
 
-// of returns the items of a kind and an ink.
+// effectAxis returns the line of the effect axis, the first level one.
+func effectAxis(t *testing.T, d Drawing) Line {
+	t.Helper()
+	for _, l := range linesOf(group(t, d, "axes").Items, Ordinary) {
+		if l.Y1 == l.Y2 {
+			return l
+		}
+	}
+	t.Fatal("no effect axis")
+	return Line{}
+}
+
+// linesOf, polygonsOf and rectsOf return the items of a kind and an ink.
 func linesOf(items []Item, ink Ink) []Line {
 	var all []Line
 	each(items, func(it Item) {

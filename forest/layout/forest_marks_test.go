@@ -3,6 +3,7 @@ package layout
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 	"testing"
 )
@@ -33,6 +34,8 @@ func TestForestNinePlaces(t *testing.T) {
 	square := rectsOf(group(t, page, "row-9").Items, Solid(Estimate))[0]
 	near("Obradović's square", square.X, 208.84)
 	near("its side", square.Width, 9)
+	near("Halvorsen's side", rectsOf(group(t, page, "row-1").Items, Solid(Estimate))[0].Width, 5.5)
+	near("start of Okwuosa's clipped whisker", linesOf(group(t, page, "row-3").Items, Estimate)[0].X1, 164.33)
 	head := polygonsOf(group(t, page, "row-3").Items, Estimate)[0]
 	near("tip of Okwuosa's clipped whisker", head.Points[0].X, 162.33)
 	axes := group(t, page, "axes")
@@ -120,5 +123,61 @@ func TestForestBars(t *testing.T) {
 	}
 	if notes := strings.Join(textsOf(group(t, page, "notes").Items), " "); !strings.Contains(notes, "hollow") {
 		t.Error("a hollow bar, and no word about it in the notes")
+	}
+}
+
+// TestForestPooledClipped holds the pooled marks to the axis: both ends of a
+// diamond and of a prediction interval past it stop in heads whose tips stand at
+// the ends of the axis, while the numbers stay whole.
+func TestForestPooledClipped(t *testing.T) {
+	in := nineTrials()
+	in.Pooled.Low, in.Pooled.High = -9, 8
+	in.Prediction = &ForestPrediction{Low: -20, High: 20}
+	page := mustForest(t, in, ForestStyle{}).Pages[0]
+	axis := effectAxis(t, page)
+	pooled := group(t, page, "pooled").Items
+	marks := polygonsOf(pooled, Estimate)
+	heads := append(marks[1:], polygonsOf(pooled, Prediction)...)
+	if len(marks) != 3 || len(heads) != 4 {
+		t.Fatalf("%d marks of the pooled effect and %d heads, want a diamond with two heads and two of the prediction", len(marks), len(heads))
+	}
+	for i, head := range heads {
+		want := axis.X1
+		if i%2 == 1 {
+			want = axis.X2
+		}
+		if tip := head.Points[0].X; !(math.Abs(tip-want) < 1e-9) {
+			t.Errorf("head %d ends at %.2f, the axis at %.2f", i, tip, want)
+		}
+	}
+	for _, p := range marks[0].Points {
+		if p.X < axis.X1 || p.X > axis.X2 {
+			t.Errorf("corner of the diamond at %.2f, the axis runs from %.2f to %.2f", p.X, axis.X1, axis.X2)
+		}
+	}
+	if texts := strings.Join(textsOf(pooled), " "); !strings.Contains(texts, "2,981)") { // e⁸ = 2980.96
+		t.Errorf("the limit is not whole in %q", texts)
+	}
+}
+
+// TestForestNoPrediction gives the reason in place of the interval.
+func TestForestNoPrediction(t *testing.T) {
+	in := manyTrials(2)
+	in.Prediction = &ForestPrediction{Reason: "needs 3 trials"}
+	for _, tt := range []struct {
+		width float64
+		want  string
+	}{{WideWidth, "Prediction interval: needs 3 trials"}, {NarrowWidth, "needs 3 trials"}} {
+		page := mustForest(t, in, ForestStyle{Width: tt.width}).Pages[0]
+		pooled := group(t, page, "pooled").Items
+		if texts := textsOf(pooled); !slices.Contains(texts, tt.want) {
+			t.Errorf("no %q in %q", tt.want, texts)
+		}
+		if bars := rectsOf(pooled, Solid(Prediction)); len(bars) != 0 {
+			t.Errorf("a bar for no interval: %+v", bars)
+		}
+		if strings.Contains(strings.Join(textsOf(page.Items), " "), "pale bar") {
+			t.Error("the key explains a bar that is not there")
+		}
 	}
 }

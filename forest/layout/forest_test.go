@@ -133,6 +133,9 @@ func TestForestDropsColumns(t *testing.T) {
 	has := func(width float64) (counts, weight, oneLine bool) {
 		page := mustForest(t, nineTrials(), ForestStyle{Width: width}).Pages[0]
 		checkPage(t, fmt.Sprintf("width %.0f", width), page)
+		if axis := effectAxis(t, page); !(axis.X2-axis.X1 >= 85-1e-9) {
+			t.Errorf("width %.0f: effect axis of %.1f pt, never below 85", width, axis.X2-axis.X1)
+		}
 		heads := textsOf(group(t, page, "heads").Items)
 		return slices.Contains(heads, "Events of total"), slices.Contains(heads, "Weight"), slices.Contains(heads, "Evidence ratio, effect : none")
 	}
