@@ -79,7 +79,7 @@ func (f *forest) railNote() string {
 	}
 	text += "; to the left, for none (dotted: the most there can be, " + words.Odds(mostForNone) + "). A step is 3.73-fold."
 	if f.pooled != nil && len(f.in.Rows) > 1 {
-		text += " Bars of " + f.in.plural(2) + " do not add up to the pooled one."
+		text += " Single bars do not add up to the pooled one."
 	}
 	return text
 }
