@@ -138,13 +138,13 @@ func weighAnswer(w *synthesis.Weighing, level float64) string {
 		p.value("Effect", notation.Estimate(reader(m.Estimate), reader(m.Low), reader(m.High)),
 			fmt.Sprintf("%s, %s interval; %s", measure, words.Level(level), words.Test(*m)))
 	}
-	p.value("Evidence", words.Evidence(w.Evidence), words.Strength(w.Evidence))
-	p.value("", "", w.Form+" form"+boundText(w))
-	if w.Form == "p-value" && w.Evidence.Favours() == evidence.NoEffect {
-		p.row("", "a p-value alone shows no evidence for an effect here; it is never evidence of none")
+	if w.Sellke != nil && w.Evidence.Favours() == evidence.NoEffect {
+		p.value("Evidence", "none for an effect", "a p-value this large is no evidence for an effect; alone it is never evidence of none")
+	} else {
+		p.value("Evidence", words.Evidence(w.Evidence), words.Strength(w.Evidence))
+		p.value("", "", w.Form+" form"+boundText(w))
+		p.beliefs(&synthesis.Result{Posterior: w.Posterior, DoubtersPrior: w.Doubter})
 	}
-	r := synthesis.Result{Posterior: w.Posterior, DoubtersPrior: w.Doubter}
-	p.beliefs(&r)
 	for _, region := range w.Regions {
 		p.row(region.Name, words.RegionEvidence(region))
 	}
@@ -153,9 +153,14 @@ func weighAnswer(w *synthesis.Weighing, level float64) string {
 	return p.String()
 }
 
+// boundText says what stands beside the evidence: the most that any prior could
+// give, or the other calibration of a p-value alone.
 func boundText(w *synthesis.Weighing) string {
-	if w.Bound == nil {
-		return ""
+	switch {
+	case w.Bound != nil:
+		return "; the most that any prior could give: " + words.OddsInSentence(w.Bound.Ln())
+	case w.Sellke != nil:
+		return fmt.Sprintf(", from 10p; by −e·p·ln p (Sellke, Bayarri & Berger 2001): %s", words.OddsInSentence(w.Sellke.Ln()))
 	}
-	return fmt.Sprintf("; the most that any prior could give: %s", words.OddsInSentence(w.Bound.Ln()))
+	return ""
 }

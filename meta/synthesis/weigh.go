@@ -55,6 +55,7 @@ type Weighing struct {
 	Doubter   Belief
 	Regions   []Region
 	Bound     *evidence.Ratio // what no prior could beat; nil where there is none
+	Sellke    *evidence.Ratio // of a p-value alone: the other published calibration
 }
 
 // Weigh returns the evidence in numbers alone, for the given prior
@@ -126,8 +127,8 @@ func (w *Weighing) fromStatistic(n Numbers) {
 		}
 	case StatisticP:
 		w.Form, w.Evidence = "p-value", evidence.PValue(n.Value)
-		bound := evidence.PValueBound(n.Value)
-		w.Bound = &bound
+		other := evidence.PValueBound(n.Value)
+		w.Sellke = &other
 	}
 }
 
@@ -225,6 +226,7 @@ type WeighingDocument struct {
 	Favours    string              `json:"favours"`
 	Estimate   *MeanDocument       `json:"estimate,omitempty"`
 	LnBound    *float64            `json:"ln_bound,omitempty"`
+	LnSellke   *float64            `json:"ln_sellke_bayarri_berger,omitempty"`
 	Posterior  []PosteriorDocument `json:"posterior"`
 	Doubter    DoubterDocument     `json:"doubters_prior"`
 	Regions    []RegionDocument    `json:"regions,omitempty"`
@@ -245,6 +247,10 @@ func (w *Weighing) Document() WeighingDocument {
 	if w.Bound != nil {
 		ln := w.Bound.Ln()
 		d.LnBound = &ln
+	}
+	if w.Sellke != nil {
+		ln := w.Sellke.Ln()
+		d.LnSellke = &ln
 	}
 	for _, b := range w.Posterior {
 		d.Posterior = append(d.Posterior, PosteriorDocument(b))
