@@ -145,10 +145,19 @@ func TestMaximumIsGlobal(t *testing.T) {
 			if other := plainLogL(y, s, 0, restricted); other > height+1e-9 {
 				t.Errorf("%v: likelihood %v at τ² = %v, %v at 0", tau, height, best, other)
 			}
+			seen, rising, before := 0, false, math.Inf(1)
 			for tau2 := 1e-8; tau2 < 100; tau2 *= 1.02 {
-				if other := plainLogL(y, s, tau2, restricted); other > height+1e-9 {
+				other := plainLogL(y, s, tau2, restricted)
+				if other > height+1e-9 {
 					t.Errorf("%v: likelihood %v at τ² = %v, %v at %v", tau, height, best, other, tau2)
 				}
+				if rising && other < before-1e-10 {
+					seen++
+				}
+				rising, before = other > before+1e-10 || rising && other >= before-1e-10, other
+			}
+			if len(p.modes) < seen {
+				t.Errorf("%v: %d maxima found, %d on the grid", tau, len(p.modes), seen)
 			}
 		}
 	})
@@ -157,28 +166,80 @@ func TestMaximumIsGlobal(t *testing.T) {
 	}
 }
 
-// TestNarrowPeakBetweenGridPoints: four maxima of the likelihood by construction
-// are all found: groups of pairs, each pair far apart beside its own precision
-// and close beside that of the next.
+// TestAllMaximaAreFound compares the number of maxima with that seen on a grid of
+// 20,000 points: six precise studies agree while two less precise ones lie far
+// out on both sides, so that τ² is either near 0 or large.
 func TestAllMaximaAreFound(t *testing.T) {
-	y := []float64{0, 0, 0, 0, 0, 0, 30, -30}
-	s := []float64{1, 1, 1, 1, 1, 1, 0.3, 0.3}
-	var p Pooler
-	if err := p.prepare(with(MaximumLikelihood, Wald), y, s); err != nil {
-		t.Fatal(err)
-	}
-	found := len(p.modes)
-	signs, before := 0, math.Inf(1) // count maxima on a grid of 20,000 points
+	y := []float64{-0.3, 0.2, 0.1, -0.1, 0.3, -0.2, 60, -60}
+	s := []float64{0.1, 0.1, 0.1, 0.1, 0.1, 0.1, 8, 8}
+	p := prepared(t, with(MaximumLikelihood, Wald), y, s)
+	seen, before := 0, plainLogL(y, s, 1e-7, false)
 	rising := false
 	for tau2 := 1e-7; tau2 < 1e5; tau2 *= 1.0014 {
 		l := plainLogL(y, s, tau2, false)
 		if rising && l < before {
-			signs++
+			seen++
 		}
 		rising, before = l > before, l
 	}
-	if found != signs {
-		t.Errorf("%d maxima found, %d on the grid", found, signs)
+	if seen != 2 || len(p.modes) != seen {
+		t.Errorf("%d maxima found, %d on the grid, want 2", len(p.modes), seen)
+	}
+}
+
+// TestMaximumBetweenGridPoints moves the two outlying studies to where a second
+// maximum has just appeared, so that the slope is above 0 only over a stretch of
+// τ² far shorter than a step of the search.
+func TestMaximumBetweenGridPoints(t *testing.T) {
+	s := []float64{0.1, 0.1, 0.1, 0.1, 0.1, 0.1, 8, 8}
+	at := func(far float64) (*Pooler, float64) {
+		p := prepared(t, with(MaximumLikelihood, Wald), []float64{-0.3, 0.2, 0.1, -0.1, 0.3, -0.2, far, -far}, s)
+		l := likelihood{data: &p.data, kind: fullLikelihood}
+		square := p.data.unit * p.data.unit
+		_, top, err := numeric.Minimum(func(x float64) float64 { return -l.slope(math.Exp(x)) }, math.Log(1/square), math.Log(1000/square), 1e-8)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return p, -top
+	}
+	for _, height := range []float64{1e-7, 1e-5, 1e-4, 1e-3} {
+		far, err := numeric.Root(func(far float64) float64 {
+			_, top := at(far)
+			return top - height
+		}, 10, 100, 1e-13)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if p, top := at(far); len(p.modes) != 2 {
+			t.Errorf("%d maxima found where the slope rises to %v, want 2", len(p.modes), top)
+		}
+	}
+}
+
+// TestHiddenMaximum: aspirin_lor has maxima at τ² = 0 and 0.00751638 and between
+// them a minimum (30-digit values of the likelihood, see extra_test.go). A grid so
+// coarse that it sees one sign of the slope on both sides must not lose them.
+func TestHiddenMaximum(t *testing.T) {
+	d := readStudies(t, "aspirin_lor")
+	p := prepared(t, with(MaximumLikelihood, Wald), d.y, d.s)
+	l := likelihood{data: &p.data, kind: fullLikelihood}
+	square := p.data.unit * p.data.unit
+	point := func(tau2 float64) slopeAt { return slopeAt{tau2 / square, l.slope(tau2 / square)} }
+
+	falling, fallingAgain := point(0.0005), point(0.03)
+	if falling.slope >= 0 || fallingAgain.slope >= 0 {
+		t.Fatalf("slopes %v and %v, want both below 0", falling.slope, fallingAgain.slope)
+	}
+	from, to, found, err := l.hidden(falling, fallingAgain)
+	if err != nil || !found || from.slope <= 0 || to != fallingAgain {
+		t.Errorf("from %v to %v, %v, %v; want a rise and the right end", from, to, found, err)
+	}
+	if _, _, found, err := l.hidden(point(0.01), point(0.03)); found || err != nil {
+		t.Errorf("a maximum found where the likelihood only falls; %v", err)
+	}
+	if !touches(slopeAt{1, -0.3}, slopeAt{2, -0.05}, slopeAt{3, -0.2}) || touches(slopeAt{1, -0.3}, slopeAt{2, -0.29}, slopeAt{3, -0.31}) ||
+		touches(slopeAt{1, -0.3}, slopeAt{2, 0.05}, slopeAt{3, -0.2}) {
+		t.Error("touches: want a near touch of one sign alone")
 	}
 }
 

@@ -53,7 +53,11 @@ func TestTwoStudies(t *testing.T) {
 // TestEqualEstimates: nothing scatters, so τ² is 0 by every estimator, and every
 // interval keeps the width of the common effect, or of Student's t by it.
 func TestEqualEstimates(t *testing.T) {
-	y, s := []float64{0.3, 0.3, 0.1 + 0.2}, []float64{0.1, 0.2, 0.2} // the last differs by rounding
+	tenth, fifth := 0.1, 0.2 // variables, as the sum of the constants is exact
+	y, s := []float64{0.3, 0.3, tenth + fifth}, []float64{0.1, 0.2, 0.2}
+	if y[2] == y[0] {
+		t.Fatal("the last estimate should differ by rounding")
+	}
 	se := 1 / math.Sqrt(150)
 	for tau := DerSimonianLaird; tau <= RestrictedML; tau++ {
 		if mean := mustPool(t, with(tau, Wald), y, s); mean.Tau2 > 1e-30 || !near(mean.SE, se, 1e-12) {

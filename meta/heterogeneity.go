@@ -15,7 +15,8 @@ import (
 //
 // The limits of I² by Q are the test-based ones of ln H (see shareByQ), those of
 // I² by τ follow from the limits of τ². A single study has no scatter: Q and
-// both I² are 0, both H² 1, and its typical v is its own.
+// both I² are 0, both H² 1, and its typical v is its own. Beside a common effect
+// I² by τ is 0 as assumed, while its limits are those of the data.
 //
 // Source: Higgins & Thompson (2002), Statistics in Medicine 21:1539-1558.
 func (p *Pooler) heterogeneity(limits Limits) Heterogeneity {

@@ -61,5 +61,8 @@ func (a answer) located(z, null, level float64) answer {
 	if !(a.locationSE > 0) {
 		a.locationSE = (a.high - a.low) / (2 * numeric.NormalCritical(1-level))
 	}
+	if !(a.locationSE > 0) { // a level so low that the interval has no width
+		a.locationSE = a.se
+	}
 	return a
 }

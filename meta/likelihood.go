@@ -99,7 +99,7 @@ func (l likelihood) modes(into []mode) ([]mode, error) {
 	for i, tau2 := 0.0, low; i <= steps; i, tau2 = i+1, tau2*factor {
 		now := slopeAt{tau2, l.slope(tau2)}
 		from, to, found := left, now, left.slope > 0 && now.slope <= 0
-		if !found && i > 1 && touches(before, left, now) {
+		if !found && i > 0 && touches(before, left, now) {
 			var err error
 			if from, to, found, err = l.hidden(before, now); err != nil {
 				return into, err

@@ -167,7 +167,10 @@ type Model struct {
 	Seed        uint64        // of the bootstrap prediction interval
 }
 
-// Mean is a pooled mean effect on the analysis scale.
+// Mean is a pooled mean effect on the analysis scale. What its interval rests on
+// differs by method: beside a profile likelihood SE is the model's 1/√Σw, and the
+// Statistic the signed root of the likelihood ratio; beside Henmi–Copas LnP is
+// that of its own law, not the normal one.
 type Mean struct {
 	K         int
 	Estimate  float64
@@ -176,7 +179,7 @@ type Mean struct {
 	DF        float64 // of the statistic; +Inf for a normal one
 	LnP       float64 // natural log of the two-sided p-value
 	Low, High float64
-	Tau2      float64 // between-study variance used for the weights; 0 for a common effect
+	Tau2      float64 // between-study variance used; 0 for a common effect
 	Q         float64 // Cochran's Q
 	Evidence  evidence.Ratio
 
@@ -187,7 +190,7 @@ type Mean struct {
 type Fit struct {
 	Model         Model // as resolved: the methods really used
 	Mean          Mean
-	Tau2          Limits // of τ² by the model's TauInterval
+	Tau2          Limits // of τ² by the model's TauInterval, also beside a common effect
 	Heterogeneity Heterogeneity
 	Prediction    *Prediction // nil when there is none: fewer than 3 studies, or a common effect
 	Weights       []float64   // per study, summing to 1

@@ -3,6 +3,7 @@ package meta
 import (
 	"math"
 	"math/rand/v2"
+	"slices"
 	"testing"
 
 	"steelyard/meta/numeric"
@@ -53,51 +54,63 @@ func TestNoPrediction(t *testing.T) {
 	}
 }
 
-// TestBootstrapAgainstItsDefinition compares the limits with those of the
-// definition drawn straight: τ² by bisection of a chi-square law (equal s), t as a
-// normal over the root of a sum of squares.
+// TestBootstrapAgainstItsDefinition compares the limits with draws straight from
+// the definition. With equal s it needs no numerical law of Q: τ² is drawn as
+// max(0, Σ(y−ȳ)²/χ² − s²), χ² on k − 1 df, the mean is ȳ, and se² is
+// Σ(y−ȳ)²/(k(k−1)), at any τ².
 func TestBootstrapAgainstItsDefinition(t *testing.T) {
-	y, s := []float64{-1.2, 0.4, 0.9, 2.5, 0.1, -0.3}, []float64{0.6, 0.6, 0.6, 0.6, 0.6, 0.6}
-	m := at95
-	m.Prediction, m.Seed = PredictionBootstrap, 7
-	f := mustFit(t, m, y, s)
-	// With equal s: mean 0.4, se² of Hartung and Knapp Σ(y−ȳ)²/(k(k−1)) at any τ²;
-	// the confidence draw of τ² is max(0, Σ(y−ȳ)²/χ² − s²), χ² on k − 1 df.
-	const k, draws = 6, 400_000
-	mean, squares := 0.4, 0.0
+	for name, y := range map[string][]float64{
+		"much scatter":   {-1.2, 0.4, 0.9, 2.5, 0.1, -0.3},
+		"little scatter": {-0.3, 0.5, 0.1},
+	} {
+		s := slices.Repeat([]float64{0.6}, len(y))
+		m := with(DefaultTau, HartungKnapp)
+		m.Prediction, m.Seed = PredictionBootstrap, 7
+		f := mustFit(t, m, y, s)
+		below, above := bootstrapShares(y, 0.6, f.Prediction)
+		// 25,000 draws place a 2.5 % quantile to 0.1 % in probability (one standard error).
+		if !within(below, 0.025, 0.004) || !within(above, 0.025, 0.004) {
+			t.Errorf("%s: %.4f of the draws below, %.4f above, want 0.025", name, below, above)
+		}
+		if !math.IsInf(f.Prediction.DF, 1) || f.Prediction.Method != PredictionBootstrap || f.Prediction.Widened {
+			t.Errorf("%s: prediction %+v", name, *f.Prediction)
+		}
+	}
+}
+
+// bootstrapShares returns the shares of draws from the definition, for equal
+// standard errors s, that fall below and above a prediction interval.
+func bootstrapShares(y []float64, s float64, interval *Prediction) (below, above float64) {
+	const draws = 400_000
+	k := float64(len(y))
+	mean, squares := 0.0, 0.0
+	for _, x := range y {
+		mean += x / k
+	}
 	for _, x := range y {
 		squares += (x - mean) * (x - mean)
 	}
-	se := math.Sqrt(squares / (k * (k - 1)))
 	random := rand.New(rand.NewPCG(1, 2))
 	chiSquare := func() float64 {
 		sum := 0.0
-		for range k - 1 {
+		for range len(y) - 1 {
 			z := random.NormFloat64()
 			sum += z * z
 		}
 		return sum
 	}
-	below, above := 0, 0
+	se := math.Sqrt(squares / (k * (k - 1)))
 	for range draws {
-		tau := math.Sqrt(max(0, squares/chiSquare()-0.36))
+		tau := math.Sqrt(max(0, squares/chiSquare()-s*s))
 		theta := mean + tau*random.NormFloat64() - se*random.NormFloat64()/math.Sqrt(chiSquare()/(k-1))
-		if theta < f.Prediction.Low {
-			below++
+		if theta < interval.Low {
+			below += 1. / draws
 		}
-		if theta > f.Prediction.High {
-			above++
-		}
-	}
-	// 25,000 draws place a 2.5 % quantile to 0.1 % in probability (one standard error).
-	for side, n := range map[string]int{"below": below, "above": above} {
-		if share := float64(n) / draws; !within(share, 0.025, 0.004) {
-			t.Errorf("%s: %.4f of the definition's draws, want 0.025", side, share)
+		if theta > interval.High {
+			above += 1. / draws
 		}
 	}
-	if !math.IsInf(f.Prediction.DF, 1) || f.Prediction.Method != PredictionBootstrap {
-		t.Errorf("prediction %+v", *f.Prediction)
-	}
+	return below, above
 }
 
 func TestBootstrapFollowsItsSeed(t *testing.T) {
@@ -131,6 +144,22 @@ func TestGammaDraw(t *testing.T) {
 		}
 		if variance := squares / n; !near(variance, shape, 0.03) {
 			t.Errorf("shape %v: variance %v", shape, variance)
+		}
+	}
+}
+
+func TestStudentDraw(t *testing.T) {
+	random := rand.New(rand.NewPCG(5, 6))
+	for _, df := range []float64{2, 5, 30} { // two-sided 5 % lies beyond the critical value
+		const n = 100_000
+		critical, beyond := numeric.StudentCritical(0.05, df), 0
+		for range n {
+			if math.Abs(studentDraw(random, df)) > critical {
+				beyond++
+			}
+		}
+		if share := float64(beyond) / n; !within(share, 0.05, 5*math.Sqrt(0.05*0.95/n)) {
+			t.Errorf("%v df: %v beyond the critical value, want 0.05", df, share)
 		}
 	}
 }
