@@ -89,8 +89,8 @@ func (p *Pooler) profileEnd(l likelihood, cut float64, limits Limits, side float
 
 // tau2Above returns the smallest and the largest τ² whose likelihood is at least
 // cut. p.modes must hold all maxima of l with their heights, and cut lie at or
-// below the highest: next to a maximum above the cut, and before the next one
-// above it, the likelihood crosses the cut once.
+// below the highest: before the first maximum above the cut, and past the last,
+// the likelihood crosses the cut once.
 func (p *Pooler) tau2Above(l likelihood, cut float64) (Limits, error) {
 	first, last := -1, -1
 	for i, m := range p.modes {
@@ -108,21 +108,13 @@ func (p *Pooler) tau2Above(l likelihood, cut float64) (Limits, error) {
 	over := func(tau2 float64) float64 { return l.value(tau2) - cut }
 	var err error
 	if over(0) < 0 {
-		from := 0.0
-		if first > 0 {
-			from = p.modes[first-1].tau2
-		}
-		if limits.Low, err = numeric.Root(over, from, p.modes[first].tau2, rootTolerance); err != nil {
+		if limits.Low, err = numeric.Root(over, 0, p.modes[first].tau2, rootTolerance); err != nil {
 			return limits, fmt.Errorf("profile-likelihood limit of τ²: %w", err)
 		}
 	}
 	beyond := 2*p.modes[last].tau2 + p.data.v[p.data.best]
-	if last+1 < len(p.modes) {
-		beyond = p.modes[last+1].tau2
-	} else {
-		for over(beyond) > 0 {
-			beyond *= 4
-		}
+	for over(beyond) > 0 {
+		beyond *= 4
 	}
 	if limits.High, err = numeric.Root(over, p.modes[last].tau2, beyond, rootTolerance); err != nil {
 		return limits, fmt.Errorf("profile-likelihood limit of τ²: %w", err)
