@@ -14,7 +14,9 @@ import (
 func (r *rowReader) checkNumbers() {
 	r.checkArm(review.EventsTreated, review.TotalTreated)
 	r.checkArm(review.EventsControl, review.TotalControl)
-	for _, field := range []review.Field{review.SDTreated, review.SDControl} {
+	r.checkArm(review.Events, review.Total)
+	r.checkKinds()
+	for _, field := range []review.Field{review.SDTreated, review.SDControl, review.BaselineSDTreated, review.BaselineSDControl, review.SDDifference} {
 		if sd, ok := r.values.has(field); ok && !(sd > 0) {
 			r.wrong("M6", field, "a standard deviation of "+shortest(sd)+" says that nobody differed; check whether it was reported, and leave it blank if not")
 		}
@@ -31,6 +33,26 @@ func (r *rowReader) checkNumbers() {
 	r.checkLimits(review.Estimate, review.LimitLow, review.LimitHigh)
 	r.checkLimits(review.AnalysisEstimate, review.AnalysisLow, review.AnalysisHigh)
 	r.checkRatio()
+}
+
+// checkKinds checks the numbers of the rarer kinds for what none of them can be.
+func (r *rowReader) checkKinds() {
+	for _, field := range []review.Field{review.PersonTimeTreated, review.PersonTimeControl, review.PersonTime} {
+		if time, ok := r.values.has(field); ok && !(time > 0) {
+			r.wrong("C1", field, "a person time of "+shortest(time)+" cannot be; write how long all people were followed, added up")
+		}
+	}
+	for _, field := range []review.Field{review.WithinCorrelation, review.Coefficient} {
+		if x, ok := r.values.has(field); ok && !(-1 <= x && x <= 1) {
+			r.wrong("I4", field, "a correlation lies between -1 and 1, not at "+shortest(x)+"; check the column and the decimal mark")
+		}
+	}
+	if x, ok := r.values.has(review.ICC); ok && !(0 <= x && x <= 1) {
+		r.wrong("D7", review.ICC, "an intracluster correlation lies between 0 and 1, not at "+shortest(x)+"; write it such as 0.05")
+	}
+	if sides, ok := r.values.has(review.PSides); ok && sides != 1 && sides != 2 {
+		r.wrong("I9", review.PSides, "a p-value has 1 or 2 sides, not "+shortest(sides))
+	}
 }
 
 // wrong records an error of a number.

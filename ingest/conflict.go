@@ -14,6 +14,7 @@ import (
 func (r *headerReader) resolve(h *header) {
 	r.resolveLetterCase(h, review.TotalTreated, review.EventsTreated)
 	r.resolveLetterCase(h, review.TotalControl, review.EventsControl)
+	r.resolveLetterCase(h, review.Total, review.Events)
 	r.resolveYear(h)
 	first := map[review.Field]int{}
 	unknown := map[string]int{}

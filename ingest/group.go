@@ -130,6 +130,8 @@ func (r *headerReader) assignArms(h *header, columns []armColumn) {
 			m.field = c.quantity.treated
 		case ok && c.group == control:
 			m.field = c.quantity.control
+		case c.alone.field == review.Events || c.alone.field == review.Total || c.alone.field == review.PersonTime:
+			*m = meaning{} // of one of several groups, and not of the only one
 		default:
 			*m = c.alone
 		}

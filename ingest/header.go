@@ -1,6 +1,7 @@
 package ingest
 
 import (
+	"slices"
 	"strings"
 
 	"steelyard/ingest/grid"
@@ -39,6 +40,32 @@ var fieldSets = [][]review.Field{
 	{review.AnalysisEstimate, review.PValue},
 }
 
+// rareSets are further sets of which a header may hold one; they are no help in
+// guessing what unknown columns mean.
+var rareSets = [][]review.Field{
+	{review.MedianTreated, review.Q1Treated, review.Q3Treated, review.TotalTreated, review.MedianControl, review.Q1Control, review.Q3Control, review.TotalControl},
+	{review.MedianTreated, review.MinTreated, review.MaxTreated, review.TotalTreated, review.MedianControl, review.MinControl, review.MaxControl, review.TotalControl},
+	{review.MeanTreated, review.SDTreated, review.MeanControl, review.SDControl, review.Total},
+	{review.MeanTreated, review.TotalTreated, review.MeanControl, review.TotalControl, review.PValue},
+	{review.MeanTreated, review.TotalTreated, review.MeanControl, review.TotalControl, review.TestStatistic},
+	{review.MeanTreated, review.MeanControl, review.StandardError},
+	{review.MeanTreated, review.MeanControl, review.LimitLow, review.LimitHigh},
+	{review.MeanTreated, review.MeanControl, review.SDDifference},
+	{review.EventsTreated, review.PersonTimeTreated, review.EventsControl, review.PersonTimeControl},
+	{review.Coefficient, review.Total},
+	{review.Events, review.Total},
+	{review.Events, review.PersonTime},
+	{review.ObservedMinusExpected, review.Variance},
+	{review.Estimate, review.TestStatistic},
+	{review.AnalysisEstimate, review.TestStatistic},
+	{review.Estimate, review.SDDifference},
+	{review.Estimate, review.Events},
+	{review.Estimate, review.EventsTreated, review.EventsControl},
+	{review.PValue, review.Direction, review.Total},
+	{review.PValue, review.Direction, review.TotalTreated, review.TotalControl},
+	{review.PValue, review.Direction, review.Events},
+}
+
 // usable reports whether the header names the studies and one complete set of
 // numbers.
 func (h *header) usable() bool {
@@ -46,7 +73,7 @@ func (h *header) usable() bool {
 	if !have[review.StudyName] {
 		return false
 	}
-	for _, set := range fieldSets {
+	for _, set := range slices.Concat(fieldSets, rareSets) {
 		complete := true
 		for _, field := range set {
 			complete = complete && have[field]

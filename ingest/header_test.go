@@ -68,7 +68,7 @@ func TestRecognise(t *testing.T) {
 			t.Errorf("%q is read as %+v, want %+v", header, got, want)
 		}
 	}
-	for _, header := range []string{"", "  ", "Events (%)", "SE of OR", "latitude", "events", "Deaths, drug arm", "95%", "lower back pain", "control", strings.Repeat("study ", 100)} {
+	for _, header := range []string{"", "  ", "Events (%)", "SE of OR", "latitude", "events per arm", "Deaths, drug arm", "95%", "lower back pain", "control", strings.Repeat("study ", 100)} {
 		if got, ok := recognise(header); ok {
 			t.Errorf("%q is read as %v, want nothing", header, got.field)
 		}

@@ -22,11 +22,10 @@ type numberColumn struct {
 // doubt says why a cell's decimal mark cannot be told.
 type doubt struct{ rule, message string }
 
-// fieldCount is the number of fields, NoField included.
-const fieldCount = int(review.SEControl) + 1
-
 // rowValues finds a row's numbers by their field.
-type rowValues struct{ at [fieldCount]*review.Number }
+type rowValues struct {
+	at [review.FieldCount]*review.Number
+}
 
 // has returns the value of a field and whether the row has it.
 func (v *rowValues) has(f review.Field) (float64, bool) {
@@ -241,16 +240,24 @@ func (r *rowReader) sized(c *numberColumn, value float64) (float64, bool) {
 	return value, true
 }
 
-// refuse reports a cell whose number cannot be read. A p-value serves only where
-// nothing better is given, so it does not keep its row from being pooled.
+// refuse reports a cell whose number cannot be read. One that serves only where
+// nothing better is given, or for comparison, does not keep its row from being
+// pooled.
 func (r *rowReader) refuse(c *numberColumn, rule, message string) (float64, bool) {
 	severity := review.Error
-	if c.field == review.PValue {
+	if c.field.Aside() {
 		severity = review.Warning
-		message += "; the p-value is left aside"
+		message += "; the " + asideName(c.field) + " is left aside"
 	} else {
 		r.unreadable = true
 	}
 	r.find(severity, rule, c.col, message)
 	return 0, false
+}
+
+func asideName(f review.Field) string {
+	if f == review.PValue {
+		return "p-value"
+	}
+	return f.String()
 }

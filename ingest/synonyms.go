@@ -48,19 +48,32 @@ var synonyms = map[review.Field][]string{
 	review.PValue:           {"p value", "pvalue", "p val"},
 	review.AnalysisLow:      {"log ci low", "log ci lower", "ln ci low", "ln ci lower", "log lower limit", "log lower"},
 	review.AnalysisHigh:     {"log ci high", "log ci upper", "ln ci high", "ln ci upper", "log upper limit", "log upper"},
-	review.EventsTreated:    nil, // these are made of a quantity and an arm, below
-	review.EventsControl:    nil,
-	review.TotalTreated:     nil,
-	review.TotalControl:     nil,
-	review.MeanTreated:      nil,
-	review.MeanControl:      nil,
-	review.SDTreated:        nil,
-	review.SDControl:        nil,
-	review.SETreated:        nil,
-	review.SEControl:        nil,
-	review.LimitLow:         nil, // made of a side and a limit, below
-	review.LimitHigh:        nil,
-	review.NoField:          nil,
+	// What is given for each arm is made of a quantity and an arm, below; limits are
+	// made of a side and a limit.
+	review.Direction:         {"direction effect", "effect direction", "direction result", "sign"},
+	review.TestStatistic:     {"z", "t statistic", "z statistic", "t value", "z value", "test statistic", "t test", "z score", "log rank z", "logrank z"},
+	review.PSides:            {"sides", "sided", "p value sides", "tails", "tailed", "sides p", "sides test"},
+	review.WithinCorrelation: {"corr", "correlation baseline", "correlation baseline end", "within person correlation", "correlation within people", "pre post correlation", "rho"},
+	review.SDDifference: {"sd difference", "sd differences", "sd within person difference", "sd paired difference", "sd paired differences", "standard deviation difference",
+		"standard deviation differences", "sd diff"},
+	review.Coefficient: {"correlation coefficient", "pearson r", "pearson correlation", "spearman r", "r value"},
+	review.Events:      {"event", "number events", "n events", "deaths", "cases", "number cases", "number with event", "total events", "events total"},
+	review.Total: {"n", "sample size", "n total", "total n", "number participants", "number patients", "participants", "patients", "n patients", "n participants",
+		"total participants", "n analysed", "n analyzed", "total number"},
+	review.PersonTime:            {"person years", "patient years", "person months", "person days", "patient months", "patient days", "time at risk", "total person time"},
+	review.ObservedMinusExpected: {"o e", "o minus e", "observed expected", "o less e", "logrank o e", "log rank o e"},
+	review.Variance:              {"v", "variance o e", "variance o minus e", "v o e", "hypergeometric variance", "logrank variance", "log rank variance"},
+	review.ClusterSize:           {"mean cluster size", "average cluster size", "people per cluster"},
+	review.ICC:                   {"intracluster correlation", "intra cluster correlation", "intraclass correlation", "intracluster correlation coefficient", "intraclass correlation coefficient"},
+	review.DesignEffect:          {"deff", "variance inflation"},
+	review.ReportedEstimate:      {"published estimate", "reported effect", "published effect", "estimate reported", "estimate as reported"},
+	review.ReportedLow:           {"reported ci lower", "reported lower", "reported low", "published ci low", "published ci lower", "ci low reported", "reported lower limit"},
+	review.ReportedHigh:          {"reported ci upper", "reported upper", "reported high", "published ci high", "published ci upper", "ci high reported", "reported upper limit"},
+	review.ReportedP:             {"reported p value", "published p", "published p value", "p reported", "p value reported"},
+	review.ScaleLow:              {"scale minimum", "scale min", "lowest score", "lowest possible score", "minimum possible", "scale lower end"},
+	review.ScaleHigh:             {"scale maximum", "scale max", "highest score", "highest possible score", "maximum possible", "scale upper end"},
+	review.Items:                 {"number items", "n items", "scale items", "items scale"},
+	review.NoField:               nil,
 }
 
 // quantity is what is given once for each arm.
@@ -77,6 +90,17 @@ var quantities = []quantity{
 	{review.MeanTreated, review.MeanControl, []string{"mean", "average", "mean value"}},
 	{review.SDTreated, review.SDControl, []string{"sd", "standard deviation", "std dev", "std deviation", "st dev", "s d", "stdev"}},
 	{review.SETreated, review.SEControl, []string{"se", "standard error", "std error", "sem", "se mean", "standard error mean", "s e"}},
+	{review.BaselineMeanTreated, review.BaselineMeanControl, []string{"baseline mean", "mean baseline", "mean at baseline", "pre mean", "initial mean"}},
+	{review.BaselineSDTreated, review.BaselineSDControl, []string{"baseline sd", "sd baseline", "sd at baseline", "pre sd", "initial sd", "baseline standard deviation"}},
+	{review.MedianTreated, review.MedianControl, []string{"median", "med"}},
+	{review.Q1Treated, review.Q1Control, []string{"q1", "lower quartile", "first quartile", "25th percentile", "25th centile", "p25", "quartile 1"}},
+	{review.Q3Treated, review.Q3Control, []string{"q3", "upper quartile", "third quartile", "75th percentile", "75th centile", "p75", "quartile 3"}},
+	{review.MinTreated, review.MinControl, []string{"min", "minimum", "smallest", "lowest"}},
+	{review.MaxTreated, review.MaxControl, []string{"max", "maximum", "largest", "highest"}},
+	{review.PersonTimeTreated, review.PersonTimeControl, []string{"person time", "person years", "patient years", "person months", "person days", "patient months", "patient days", "time at risk"}},
+	{review.ShareTreated, review.ShareControl, []string{"share", "share people", "allocation share"}},
+	{review.RandomisedTreated, review.RandomisedControl, []string{"randomised", "randomized", "n randomised", "n randomized", "number randomised", "number randomized",
+		"randomly assigned", "allocated"}},
 }
 
 // Words for the arms.

@@ -102,7 +102,7 @@ func mustRead(t testing.TB, data []byte, name string, o Options) *review.Extract
 // line is what a study says, without its place in the file.
 func line(s *review.Study) string {
 	text := fmt.Sprintf("%s|%s|%s|%s|%s|%s", s.Name, s.ID, s.Date, s.Outcome, s.Measure, s.Better)
-	for f := review.Estimate; int(f) < fieldCount; f++ {
+	for f := review.Estimate; int(f) < review.FieldCount; f++ {
 		if n, ok := s.Number(f); ok {
 			text += fmt.Sprintf("|%s=%g", f, n.Value)
 		}

@@ -20,7 +20,7 @@ type sheet struct{ review.Extraction }
 func (s *sheet) row(name, outcome string, numbers map[review.Field]float64) *review.Study {
 	place := review.Place{File: "t.csv", Row: len(s.Studies) + 2}
 	study := review.Study{Name: name, Outcome: outcome, Row: place}
-	for f := review.NoField; f < review.NoField+60; f++ {
+	for f := review.NoField; int(f) < review.FieldCount; f++ {
 		if v, ok := numbers[f]; ok {
 			place.Col = int(f)
 			study.Numbers = append(study.Numbers, review.Number{Field: f, Value: v, Place: place})
