@@ -8,7 +8,7 @@ import (
 // forest is a forest chart while it is laid out.
 type forest struct {
 	in        ForestInput // cleaned
-	style     ForestStyle
+	style     Style
 	width     float64
 	metrics   metrics
 	columns   columns
@@ -18,6 +18,7 @@ type forest struct {
 	rows      []rowText
 	pooled    *rowText
 	heads     headings
+	titles    titleBlock
 	pages     int
 }
 
@@ -36,16 +37,11 @@ func Forest(in ForestInput, style ForestStyle) (Document, error) {
 	if err := in.validate(); err != nil {
 		return Document{}, err
 	}
+	style, err := style.settled("forest", "forest chart")
+	if err != nil {
+		return Document{}, err
+	}
 	f := &forest{in: in.cleaned(), style: style, width: style.Width}
-	if f.width == 0 {
-		f.width = WideWidth
-	}
-	if !(f.width >= 40 && f.width <= 5000) || !(style.TypeSize == 0 || style.TypeSize >= minType && style.TypeSize <= 40) {
-		return Document{}, fmt.Errorf("forest chart: width of %v pt with type of %v pt; give a width of 40 to 5000 pt and a type size of %v to 40 pt", style.Width, style.TypeSize, minType)
-	}
-	if f.style.ID == "" {
-		f.style.ID = "forest"
-	}
 	if err := f.arrange(); err != nil {
 		return Document{}, err
 	}
@@ -143,7 +139,7 @@ func (f *forest) arrangeNarrow() error {
 	for ok := false; !ok; least++ {
 		_, ok = narrowColumns(f, f.measured(), least+1)
 	}
-	return &TooNarrowError{Width: f.width, Least: least}
+	return &TooNarrowError{Chart: "forest chart", Width: f.width, Least: least}
 }
 
 func (f *forest) hasCounts() bool {
@@ -218,7 +214,7 @@ func (f *forest) page(p pageRange) Drawing {
 		d.Title = "Forest chart"
 	}
 	y := f.vertical(p)
-	d.Items = append(d.Items, f.titles(p)...)
+	d.Items = append(d.Items, f.titles.items(p.number, f.pages)...)
 	d.Items = append(d.Items,
 		Group{ID: "heads", Items: f.headItems()},
 		Group{ID: "grid", Items: f.gridItems(p, y)},

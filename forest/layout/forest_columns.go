@@ -1,9 +1,6 @@
 package layout
 
-import (
-	"fmt"
-	"strings"
-)
+import "strings"
 
 // rowText holds the texts of one row, so that columns can be measured before
 // anything is placed.
@@ -53,14 +50,6 @@ const (
 	railBefore   = 10
 	oddsBefore   = 8
 )
-
-// TooNarrowError reports a width into which a forest chart does not fit.
-type TooNarrowError struct{ Width, Least float64 } // points
-
-func (e *TooNarrowError) Error() string {
-	return fmt.Sprintf("forest chart: a width of %.0f mm is too narrow; these rows need at least %.0f mm",
-		e.Width*millimetresPerPoint, e.Least*millimetresPerPoint+0.5)
-}
 
 // widest returns the largest width of a text of the rows at the row size.
 func widest(rows []rowText, size float64, text func(rowText) string) float64 {

@@ -1,30 +1,15 @@
 package layout
 
-import "fmt"
-
-// headings are the baselines and rules above the rows, with the wrapped titles.
+// headings are the baselines and rules above the rows.
 type headings struct {
-	title, subtitle []string
-	first           float64 // baseline of the bold heads
-	spanRule        float64
-	highWords       float64 // baseline of the upper line of staggered words
-	second          float64 // baseline of the second heads
-	rule            float64
-	rowsTop         float64
-	words           []word
+	first     float64 // baseline of the bold heads
+	spanRule  float64
+	highWords float64 // baseline of the upper line of staggered words
+	second    float64 // baseline of the second heads
+	rule      float64
+	rowsTop   float64
+	words     []word
 }
-
-// titleSizes returns the type sizes of title and subtitle.
-func (f *forest) titleSizes() (title, subtitle float64) {
-	if f.metrics.twoLine {
-		u := f.metrics.row / 7.25
-		return 8.5 * u, max(minType, 6.75*u)
-	}
-	return 9, 7
-}
-
-// pageMark is the width kept free at the right of the subtitle for "page 2 of 3".
-const pageMark = 50
 
 // placeHeads places everything above the rows. Without a title the heads move
 // up.
@@ -37,17 +22,8 @@ func (f *forest) placeHeads() headings {
 	}
 	var lines int
 	h.words, lines = f.rail.words(m.second)
-	at := -5.0
-	if !f.style.NoTitle {
-		size, subSize := f.titleSizes()
-		room := f.width - 2*m.margin
-		h.title = wrapPlain(f.in.Title, room, size, true)
-		h.subtitle = wrapPlain(f.in.Subtitle, room-pageMark, subSize, false)
-		at = u * (11*float64(len(h.title)) + 11*float64(len(h.subtitle)))
-		if m.twoLine {
-			at = u * (10*float64(len(h.title)) + 10*float64(len(h.subtitle)))
-		}
-	}
+	f.titles = placeTitles(f.in.Title, f.in.Subtitle, f.style, m)
+	at := f.titles.bottom
 	if m.twoLine {
 		h.first = at + 16.38*u
 		h.highWords, h.second = h.first+8.5*u, h.first+15.65*u
@@ -67,29 +43,6 @@ func (f *forest) placeHeads() headings {
 	h.rule = h.second + 4.5*u
 	h.rowsTop = h.rule + 3
 	return h
-}
-
-// titles draws title and subtitle, and which page this is of several.
-func (f *forest) titles(p pageRange) []Item {
-	size, subSize := f.titleSizes()
-	lead := 11.0
-	if f.metrics.twoLine {
-		lead = 10 * f.metrics.row / 7.25
-	}
-	x, y := f.metrics.margin, 0.0
-	var items []Item
-	for _, line := range f.heads.title {
-		y += lead
-		items = append(items, boldLabel(x, y, size, Start, line))
-	}
-	for i, line := range f.heads.subtitle {
-		y += lead
-		items = append(items, label(x, y, subSize, Start, Soft, line))
-		if i == 0 && f.pages > 1 {
-			items = append(items, label(f.width-x, y, subSize, End, Soft, fmt.Sprintf("page %d of %d", p.number, f.pages)))
-		}
-	}
-	return items
 }
 
 // headItems draws the heads of the columns.

@@ -1,9 +1,6 @@
 package layout
 
-import (
-	"fmt"
-	"math"
-)
+import "fmt"
 
 // ForestInput is what a forest chart shows, as plain display data. Estimates
 // and limits stand on the analysis scale: natural logs for ratio measures.
@@ -78,32 +75,18 @@ type ForestSpread struct {
 // "Model".
 type Note struct{ Head, Text string }
 
-// Limits of what a chart can show: a ratio estimate from a millionth to a
-// million, limits that a float64 still holds as a ratio.
-const (
-	mostLogEstimate = 13.9
-	mostLogLimit    = 700
-	mostDifference  = 1e12
-	mostLnEvidence  = 1e12
-)
-
 // validate refuses numbers that no axis can hold.
 func (in *ForestInput) validate() error {
 	if len(in.Rows) == 0 {
 		return fmt.Errorf("forest chart: no %s to draw; nothing was pooled", in.plural(2))
 	}
-	if !(0 < in.Level && in.Level < 1) {
-		return fmt.Errorf("forest chart: level %v must lie between 0 and 1, such as 0.95", in.Level)
-	}
-	if in.Scale.Decimals < 0 || in.Scale.Decimals > 12 {
-		return fmt.Errorf("forest chart: %d decimals; give 0 to 12", in.Scale.Decimals)
-	}
-	if err := in.checkValue("the value of no effect", in.Scale.Null, true); err != nil {
+	c := in.checks()
+	if err := c.frame(in.Scale, in.Level); err != nil {
 		return err
 	}
 	for i, r := range in.Rows {
 		where := fmt.Sprintf("row %d (%s)", i+1, Clean(r.Name))
-		if err := in.checkRow(where, r.Estimate, r.Low, r.High, r.LnEvidence); err != nil {
+		if err := c.result(where, r.Estimate, r.Low, r.High, r.LnEvidence); err != nil {
 			return err
 		}
 		if !(0 <= r.Weight && r.Weight <= 1) {
@@ -115,12 +98,12 @@ func (in *ForestInput) validate() error {
 
 func (in *ForestInput) validateSummary() error {
 	if p := in.Pooled; p != nil {
-		if err := in.checkRow("pooled result", p.Estimate, p.Low, p.High, p.LnEvidence); err != nil {
+		if err := in.checks().result("pooled result", p.Estimate, p.Low, p.High, p.LnEvidence); err != nil {
 			return err
 		}
 	}
 	if p := in.Prediction; p != nil && p.Reason == "" {
-		if err := in.checkLimits("prediction interval", p.Low, p.High); err != nil {
+		if err := in.checks().limits("prediction interval", p.Low, p.High); err != nil {
 			return err
 		}
 	}
@@ -135,51 +118,18 @@ func (in *ForestInput) validateSummary() error {
 	return nil
 }
 
-func (in *ForestInput) checkRow(where string, estimate, low, high, ln float64) error {
-	if err := in.checkValue(where+": estimate", estimate, true); err != nil {
-		return err
-	}
-	if err := in.checkLimits(where, low, high); err != nil {
-		return err
-	}
-	if !(math.Abs(ln) <= mostLnEvidence) {
-		return fmt.Errorf("forest chart: %s: ln of the evidence ratio is %v; it must be finite", where, ln)
-	}
-	return nil
-}
-
-func (in *ForestInput) checkLimits(where string, low, high float64) error {
-	if err := in.checkValue(where+": lower limit", low, false); err != nil {
-		return err
-	}
-	if err := in.checkValue(where+": upper limit", high, false); err != nil {
-		return err
-	}
-	if low > high {
-		return fmt.Errorf("forest chart: %s: lower limit %v is above the upper limit %v", where, low, high)
-	}
-	return nil
-}
-
-func (in *ForestInput) checkValue(what string, v float64, estimate bool) error {
-	most, advice := mostDifference, "rescale the unit of the measure"
-	if in.Scale.Ratio {
-		most, advice = mostLogLimit, "ratios enter as natural logs"
-		if estimate {
-			most = mostLogEstimate
-		}
-	}
-	if !(math.Abs(v) <= most) {
-		return fmt.Errorf("forest chart: %s is %v on the analysis scale, beyond what an axis can show (±%v); %s", what, v, most, advice)
-	}
-	return nil
+func (in *ForestInput) checks() checks {
+	return checks{chart: "forest chart", ratio: in.Scale.Ratio}
 }
 
 // plural returns the word for n rows.
-func (in *ForestInput) plural(n int) string {
+func (in *ForestInput) plural(n int) string { return noun(in.Study, n) }
+
+// noun returns what a chart calls n of its rows: study is the word for one.
+func noun(study string, n int) string {
 	one, many := "study", "studies"
-	if in.Study != "" && in.Study != "study" {
-		one, many = Clean(in.Study), Clean(in.Study)+"s"
+	if study != "" && study != "study" {
+		one, many = Clean(study), Clean(study)+"s"
 	}
 	if n == 1 {
 		return one

@@ -1,26 +1,5 @@
 package layout
 
-// The two widths of the charts in points: 180 mm across a page, 85 mm in a
-// column.
-const (
-	WideWidth   = 180 / millimetresPerPoint
-	NarrowWidth = 85 / millimetresPerPoint
-)
-
-// maxPageHeight is the height beyond which a chart goes on to a new page, 230 mm.
-const maxPageHeight = 230 / millimetresPerPoint
-
-// minType is the least type size in print.
-const minType = 6.5
-
-// ForestStyle says how a forest chart is to look.
-type ForestStyle struct {
-	ID       string  // prefix of the ids in the SVG; empty is "forest"
-	Width    float64 // points; 0 is WideWidth
-	NoTitle  bool    // leave title and subtitle to the caption
-	TypeSize float64 // points, of the rows; 0 chooses by width and number of rows
-}
-
 // metrics are the sizes of a forest chart that follow from its width and its
 // number of rows, in points.
 type metrics struct {

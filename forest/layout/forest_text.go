@@ -137,9 +137,11 @@ func (f *forest) railLines() int {
 	return lines
 }
 
-// level writes the level of the intervals, such as "95%".
-func (f *forest) level() string {
-	return strconv.FormatFloat(float64(int64(f.in.Level*1e6+0.5))/1e4, 'f', -1, 64) + "%"
+func (f *forest) level() string { return levelText(f.in.Level) }
+
+// levelText writes the level of the intervals, such as "95%".
+func levelText(level float64) string {
+	return strconv.FormatFloat(float64(int64(level*1e6+0.5))/1e4, 'f', -1, 64) + "%"
 }
 
 // capital returns text with its first letter in upper case.
