@@ -167,7 +167,7 @@ func (t *tableReader) checkNames() {
 			f.Severity, f.Rule = review.Error, "D1"
 			f.Message = fmt.Sprintf("the row repeats row %d with the same name and numbers, so its people would count twice; take one of them out", before.Row.Row)
 		}
-		f.Accepted = acceptedReason(s, f.Rule)
+		f.Accepted = s.AcceptedReason(f.Rule)
 		t.x.Findings = append(t.x.Findings, f)
 	}
 }

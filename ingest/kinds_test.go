@@ -56,9 +56,9 @@ func TestRecogniseKinds(t *testing.T) {
 	}
 }
 
-// TestKinds reads a small sheet of each kind of numbers: the header is understood,
+// TestReadKinds reads a small sheet of each kind of numbers: the header is understood,
 // and every number reaches its field.
-func TestKinds(t *testing.T) {
+func TestReadKinds(t *testing.T) {
 	for _, tt := range []struct {
 		name string
 		text string
