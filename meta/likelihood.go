@@ -26,24 +26,62 @@ type likelihood struct {
 // mode is a local maximum of a likelihood.
 type mode struct{ tau2, logL float64 }
 
-// scanSteps is how many points per factor e in τ² the search for maxima takes.
-// As a function of ln τ² the slope is made of logistic curves of width 1, so
-// that four points per unit follow every turn of it.
-const scanSteps = 4
+// Between two values of τ² whose ratio is at most crossingRatio, a change of sign
+// of the slope is taken for one maximum; between two whose ratio is at most
+// narrowRatio, a stretch of one sign is not divided further.
+var (
+	crossingRatio = math.Exp(1. / 4)
+	narrowRatio   = math.Exp(1. / 32)
+)
 
 // slope has the sign of the derivative in τ². It is the score divided by ½Σw
 // (restricted: by ½(Σw − Σw²/Σw)), so that it is at least -1 and free of units.
-func (l likelihood) slope(tau2 float64) float64 {
-	switch l.kind {
-	case restrictedLikelihood:
-		m := l.data.at(tau2)
-		return m.s/m.c - 1
-	case fixedMeanLikelihood:
-		m := l.data.about(l.mean, tau2)
-		return m.s/m.w - 1
+func (l likelihood) slope(tau2 float64) float64 { return l.point(tau2).slope }
+
+// straightSlope has the sign of the slope, and is a straight line in τ² where all
+// studies are of equal precision.
+func (l likelihood) straightSlope(tau2 float64) float64 {
+	p := l.point(tau2)
+	return 1 - p.weight/p.scatter
+}
+
+// slopeAt is the slope at one τ².
+type slopeAt struct{ tau2, slope float64 }
+
+// slopePoint is a slope with what it is made of: slope = scatter/weight − 1, both
+// of which fall as τ² grows. For P = W − W11ᵀW/(1ᵀW1), scatter is |Py|² and weight
+// tr P (restricted), and dP/dτ² = −P².
+type slopePoint struct {
+	slopeAt
+	scatter, weight float64
+}
+
+func (l likelihood) point(tau2 float64) slopePoint {
+	if l.kind == fixedMeanLikelihood {
+		return l.pointOf(l.data.about(l.mean, tau2))
 	}
-	m := l.data.at(tau2)
-	return m.s/m.w - 1
+	return l.pointOf(l.data.at(tau2))
+}
+
+func (l likelihood) pointOf(m moments) slopePoint {
+	p := slopePoint{scatter: m.s, weight: m.w}
+	if l.kind == restrictedLikelihood {
+		p.weight = m.c
+	}
+	p.slopeAt = slopeAt{m.tau2, p.scatter/p.weight - 1}
+	return p
+}
+
+// scout is point by plain sums where these leave no doubt about the sign.
+func (l likelihood) scout(tau2 float64) slopePoint {
+	if l.kind != fixedMeanLikelihood {
+		if m, ok := l.data.quick(tau2); ok {
+			if p := l.pointOf(m); math.Abs(p.slope) > 1e-6 {
+				return p
+			}
+		}
+	}
+	return l.point(tau2)
 }
 
 // value returns the log-likelihood without its constant.
@@ -80,59 +118,69 @@ func (l likelihood) top() float64 {
 }
 
 // modes appends all local maxima in τ² ≥ 0 to into[:0], in ascending order,
-// without their heights. The slope is followed over a grid equal in ln τ²;
-// every change of its sign is solved for, and every near touch of 0 looked into.
+// without their heights.
 func (l likelihood) modes(into []mode) ([]mode, error) {
 	into = into[:0]
-	left := slopeAt{0, l.slope(0)}
-	if !(left.slope > 0) {
+	zero := l.point(0)
+	if !(zero.slope > 0) {
 		into = append(into, mode{})
 	}
 	smallest, top := l.data.v[l.data.best], l.top()
 	if top <= smallest {
 		return into, nil // falling from 0 on
 	}
-	low := 0.01 * smallest // below it the slope is straight to 1 %
-	steps := math.Ceil(scanSteps * math.Log(top/low))
-	factor := math.Exp(math.Log(top/low) / steps)
-	before := left
-	for i, tau2 := 0.0, low; i <= steps; i, tau2 = i+1, tau2*factor {
-		now := slopeAt{tau2, l.slope(tau2)}
-		from, to, found := left, now, left.slope > 0 && now.slope <= 0
-		if !found && i > 0 && touches(before, left, now) {
-			var err error
-			if from, to, found, err = l.hidden(before, now); err != nil {
-				return into, err
-			}
+	low := l.scout(0.01 * smallest) // below it the slope is straight to 1 %
+	var err error
+	if zero.slope > 0 && low.slope <= 0 {
+		if into, err = l.peak(into, zero.slopeAt, low.slopeAt); err != nil {
+			return into, err
 		}
-		if found {
-			peak, err := numeric.Root(l.slope, from.tau2, to.tau2, rootTolerance)
-			if err != nil {
-				return into, fmt.Errorf("maximum of the likelihood of τ²: %w", err)
-			}
-			into = append(into, mode{tau2: peak})
-		}
-		before, left = left, now
 	}
-	return into, nil
+	return l.search(into, low, l.scout(top))
 }
 
-// slopeAt is the slope at one τ².
-type slopeAt struct{ tau2, slope float64 }
-
-// touches reports whether the slope comes so near to 0 at b, without changing
-// sign at a, b or c, that it may have crossed 0 and come back in between.
-func touches(a, b, c slopeAt) bool {
-	if a.slope*b.slope <= 0 || b.slope*c.slope <= 0 {
-		return false
+// search appends the maxima between two points. Scatter and weight fall, so that
+// the slope keeps its sign where one stays above the other whatever they do in
+// between; other stretches are divided.
+func (l likelihood) search(into []mode, left, right slopePoint) ([]mode, error) {
+	const margin = 1 + 1e-8 // over what scout may be off
+	if margin*left.scatter < right.weight || right.scatter > margin*left.weight {
+		return into, nil
 	}
-	near, fromA, fromC := math.Abs(b.slope), math.Abs(a.slope), math.Abs(c.slope)
-	return near < fromA && near < fromC && near <= 2*(max(fromA, fromC)-near)
+	ratio := right.tau2 / left.tau2
+	if left.slope > 0 && right.slope <= 0 && ratio <= crossingRatio {
+		return l.peak(into, left.slopeAt, right.slopeAt)
+	}
+	if ratio <= narrowRatio {
+		from, to, found, err := l.hidden(left.slopeAt, right.slopeAt)
+		if err != nil || !found {
+			return into, err
+		}
+		return l.peak(into, from, to)
+	}
+	middle := l.scout(math.Sqrt(left.tau2) * math.Sqrt(right.tau2))
+	into, err := l.search(into, left, middle)
+	if err != nil {
+		return into, err
+	}
+	return l.search(into, middle, right)
+}
+
+// peak appends the maximum where the slope changes its sign.
+func (l likelihood) peak(into []mode, from, to slopeAt) ([]mode, error) {
+	tau2, err := numeric.Root(l.straightSlope, from.tau2, to.tau2, rootTolerance)
+	if err != nil {
+		return into, fmt.Errorf("maximum of the likelihood of τ²: %w", err)
+	}
+	return append(into, mode{tau2: tau2}), nil
 }
 
 // hidden looks between a and c, where the slope has one sign, for a maximum of
-// the likelihood that the grid has stepped over.
+// the likelihood between them.
 func (l likelihood) hidden(a, c slopeAt) (from, to slopeAt, found bool, err error) {
+	if (a.slope > 0) != (c.slope > 0) {
+		return a, c, false, nil
+	}
 	sign := math.Copysign(1, a.slope)
 	x, height, err := numeric.Minimum(func(t float64) float64 { return sign * l.slope(t) }, a.tau2, c.tau2, 1e-8)
 	if err != nil {

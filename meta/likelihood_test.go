@@ -1,0 +1,92 @@
+package meta
+
+import (
+	"math"
+	"testing"
+
+	"steelyard/meta/numeric"
+)
+
+// TestSearchDividesToTheMaximum: aspirin_lor has maxima at τ² = 0 and 0.00751638
+// (30-digit values of the likelihood, see extra_test.go). Between two points on
+// whose both sides the likelihood falls, the second is found; where it only falls,
+// none is.
+func TestSearchDividesToTheMaximum(t *testing.T) {
+	d := readStudies(t, "aspirin_lor")
+	p := prepared(t, with(MaximumLikelihood, Wald), d.y, d.s)
+	l := likelihood{data: &p.data, kind: fullLikelihood}
+	square := p.data.unit * p.data.unit
+	for _, tt := range []struct {
+		from, to float64
+		want     []float64
+	}{{0.0005, 0.03, []float64{0.00751638}}, {0.008, 0.03, nil}, {0.0005, 0.001, nil}} {
+		found, err := l.search(nil, l.point(tt.from/square), l.point(tt.to/square))
+		if err != nil || len(found) != len(tt.want) {
+			t.Fatalf("%v to %v: %v, %v", tt.from, tt.to, found, err)
+		}
+		for i, want := range tt.want {
+			if got := found[i].tau2 * square; !near(got, want, 1e-6) {
+				t.Errorf("maximum at %v, want %v", got, want)
+			}
+		}
+	}
+}
+
+// TestScatterAndWeightFall: the search rests on it, for every kind of likelihood.
+func TestScatterAndWeightFall(t *testing.T) {
+	for _, name := range checkNames {
+		d := readStudies(t, name)
+		p := prepared(t, with(RestrictedML, Wald), d.y, d.s)
+		for kind := fullLikelihood; kind <= fixedMeanLikelihood; kind++ {
+			l := likelihood{data: &p.data, kind: kind, mean: 0.3}
+			before := l.point(0)
+			for tau2 := 1e-3; tau2 < 1e6; tau2 *= 1.1 {
+				now := l.point(tau2)
+				if !(now.scatter < before.scatter && now.weight < before.weight) {
+					t.Fatalf("%s, kind %d, τ² %v: %+v after %+v", name, kind, tau2, now, before)
+				}
+				before = now
+			}
+		}
+	}
+}
+
+// TestQuickMoments: where the plain sums are trusted, they agree with the
+// compensated ones, also with an outlying precise study.
+func TestQuickMoments(t *testing.T) {
+	y, s := drawn(50)
+	far := append([]float64{1e6}, y...)
+	trusted := 0
+	for _, d := range []studies{{y: y, s: s}, readStudies(t, "bcg_lor"), readStudies(t, "eight_schools"), {y: far, s: append([]float64{0.001}, s...)}} {
+		p := prepared(t, with(RestrictedML, Wald), d.y, d.s)
+		for tau2 := 1e-4; tau2 < 1e14; tau2 *= 3 {
+			got, ok := p.data.quick(tau2)
+			if !ok {
+				continue
+			}
+			trusted++
+			want := p.data.at(tau2)
+			c := checker{t, 1e-9}
+			c.near("Σw", got.w, want.w)
+			c.near("Σw − Σw²/Σw", got.c, want.c)
+			c.near("Σw²(y − mean)²", got.s, want.s)
+		}
+	}
+	if trusted != 152 {
+		t.Errorf("%d sums of 152 trusted", trusted)
+	}
+}
+
+// TestPlusIsAdd: the two ways to add give the same bits.
+func TestPlusIsAdd(t *testing.T) {
+	y, s := drawn(500)
+	var added, plus numeric.Sum
+	for i := range y {
+		x := y[i] * math.Pow(10, 12*s[i]-10)
+		added.Add(x)
+		plus = plus.Plus(x)
+		if added != plus {
+			t.Fatalf("after %d terms: %v, want %v", i+1, plus, added)
+		}
+	}
+}
