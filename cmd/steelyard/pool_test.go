@@ -1,10 +1,12 @@
 package main
 
 import (
+	"encoding/csv"
 	"encoding/json"
 	"math"
 	"os"
 	"slices"
+	"strconv"
 	"strings"
 	"testing"
 )
@@ -209,6 +211,32 @@ func TestGoldenAnswers(t *testing.T) {
 		for i, line := range strings.Split(stdout, "\n") {
 			if n := len([]rune(line)); n > 100 {
 				t.Errorf("%s, line %d is %d characters wide", name, i+1, n)
+			}
+		}
+	}
+}
+
+// TestPoolCommonEvidence: under a common effect the evidence integrated over τ is
+// the normal form; the 40-digit values stand in the *.integrated.csv files.
+func TestPoolCommonEvidence(t *testing.T) {
+	for name, measure := range map[string]string{"bcg_lor": "odds ratio", "aspirin_lor": "odds ratio", "eight_schools": "mean difference"} {
+		raw, err := os.ReadFile(data + "checks/" + name + ".integrated.csv")
+		if err != nil {
+			t.Fatal(err)
+		}
+		rows, err := csv.NewReader(strings.NewReader(string(raw))).ReadAll()
+		if err != nil {
+			t.Fatal(err)
+		}
+		column := slices.Index(rows[0], "ln_er_effect_common")
+		if column < 0 || len(rows) < 2 {
+			t.Fatalf("%s: no row of ln_er_effect_common", name)
+		}
+		got := pooled(t, data+"checks/"+name+".csv", "--measure", measure, "--effects", "common").Outcomes[0].Pooled.LnEvidence
+		for _, row := range rows[1:] {
+			want, err := strconv.ParseFloat(row[column], 64)
+			if err != nil || !near(got, want, 1e-9) {
+				t.Errorf("%s, %s: %v, want %v (%v)", name, row[0], got, want, err)
 			}
 		}
 	}
