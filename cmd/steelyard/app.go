@@ -52,6 +52,7 @@ func newApp(s streams) *cli.App {
 			poolCommand(),
 			weighCommand(),
 			chartCommand(),
+			templateCommand(),
 		},
 		Action: func(c *cli.Context) error {
 			if c.NArg() > 0 {
