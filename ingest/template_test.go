@@ -176,6 +176,9 @@ func TestTemplateColumnsAreKnown(t *testing.T) {
 			if (field.Numeric() || help.choices != nil) && checked[cellAt(i+1, 2)+":"+cellAt(i+1, templateRows)] == nil {
 				t.Errorf("%s: neither limit nor list for %s", m, field)
 			}
+			if !field.Numeric() && !keepsText(t, f, review.ColumnLetters(i+1)) {
+				t.Errorf("%s: a program may turn what is typed into %s into a date", m, field)
+			}
 			if slices.Index(fields, field) != i {
 				t.Errorf("%s: %s stands twice", m, field)
 			}
@@ -190,6 +193,21 @@ func TestTemplateColumnsAreKnown(t *testing.T) {
 			t.Errorf("there is help for %s, which no template has", field)
 		}
 	}
+}
+
+// keepsText reports whether a column's cells keep what is typed: number format 49
+// is "@" (ISO/IEC 29500, 18.8.30).
+func keepsText(t testing.TB, f *excelize.File, column string) bool {
+	t.Helper()
+	id, err := f.GetColStyle(studiesSheet, column)
+	if err != nil {
+		t.Fatal(err)
+	}
+	style, err := f.GetStyle(id)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return style.NumFmt == 49
 }
 
 // validated returns the data validations of a sheet by their range.
