@@ -86,6 +86,7 @@ func (p *page) outcome(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	p.leftOut(s, o)
 	if o.Result == nil {
 		p.wrapped("", "No result: "+o.Problem)
+		p.pValues(o)
 		return
 	}
 	fit := o.Result.Fit
@@ -98,6 +99,8 @@ func (p *page) outcome(s *synthesis.Synthesis, o *synthesis.Outcome) {
 		p.scatter(fit)
 		p.otherModel(o)
 	}
+	p.converted(o)
+	p.pValues(o)
 	p.regions(o)
 	p.remarks(o)
 }
@@ -154,6 +157,10 @@ func (p *page) effect(s *synthesis.Synthesis, o *synthesis.Outcome) {
 // evidence writes how strongly the data favour an effect, or none.
 func (p *page) evidence(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	mean := o.Result.Fit.Mean
+	if o.Analysis.NullMissing {
+		p.row("Evidence", words.NotWeighed(o))
+		return
+	}
 	p.value("Evidence", words.Evidence(mean.Evidence), words.Strength(mean.Evidence)+"; "+words.Test(mean))
 	if remark := words.BiasRemark(o); remark != "" {
 		k := len(o.Studies)
@@ -165,8 +172,44 @@ func (p *page) evidence(s *synthesis.Synthesis, o *synthesis.Outcome) {
 func (p *page) otherModel(o *synthesis.Outcome) {
 	if other := o.Result.Other; other != nil {
 		interval := meta.Limits{Low: other.Mean.Low, High: other.Mean.High}
-		p.value(otherName(other), words.Reader(o, other.Mean.Estimate, interval), words.Evidence(other.Mean.Evidence)+", for comparison")
+		about := "for comparison"
+		if !o.Analysis.NullMissing {
+			about = words.Evidence(other.Mean.Evidence) + ", " + about
+		}
+		p.value(otherName(other), words.Reader(o, other.Mean.Estimate, interval), about)
 	}
+}
+
+// converted writes what the answer is without the converted studies.
+func (p *page) converted(o *synthesis.Outcome) {
+	n := o.CountConverted()
+	if n == 0 {
+		return
+	}
+	if o.Result.Without == nil {
+		p.row("Converted", "every study rests on an assumption: "+words.Converted(o))
+		return
+	}
+	m := o.Result.Without.Mean
+	about := "without " + words.Converted(o)
+	if !o.Analysis.NullMissing {
+		about = words.Evidence(m.Evidence) + ", " + about
+	}
+	p.value("Unconverted only", words.Reader(o, m.Estimate, meta.Limits{Low: m.Low, High: m.High}), about)
+}
+
+// pValues writes the evidence of studies that give a p-value alone.
+func (p *page) pValues(o *synthesis.Outcome) {
+	if o.PValues == nil {
+		return
+	}
+	label := "Evidence alone"
+	for _, s := range o.PValues.Studies {
+		p.row(label, fmt.Sprintf("%s, p-value alone: %s; z = %s, %s participants", s.Source.Name, words.Evidence(s.Evidence), words.Linear(s.Z, 2), words.People(s.N)))
+		label = ""
+	}
+	p.row("", "together by Stouffer: "+words.PCombined(o.PValues.Stouffer)+"; not in the result above, and not to be multiplied with it")
+	p.row("", "by Fisher: "+words.PCombined(o.PValues.Fisher))
 }
 
 func otherName(other *meta.Fit) string {
@@ -246,11 +289,17 @@ func (p *page) findings(s *synthesis.Synthesis) {
 			said[e.Study+e.Reason] = true
 		}
 	}
-	rest := slices.DeleteFunc(slices.Clone(s.Findings), func(f review.Finding) bool { return said[f.Study+f.Message] })
+	var rest []int // indices of the findings
+	for i, f := range s.Findings {
+		if !said[f.Study+f.Message] || len(f.Readings) > 0 {
+			rest = append(rest, i)
+		}
+	}
 	if len(rest) == 0 {
 		return
 	}
-	slices.SortStableFunc(rest, func(a, b review.Finding) int {
+	slices.SortStableFunc(rest, func(i, j int) int {
+		a, b := &s.Findings[i], &s.Findings[j]
 		if a.Severity != b.Severity {
 			return int(a.Severity) - int(b.Severity)
 		}
@@ -263,7 +312,28 @@ func (p *page) findings(s *synthesis.Synthesis) {
 			p.item("·", fmt.Sprintf("and %d more; --format json lists them all", len(rest)-i))
 			return
 		}
-		p.item("·", findingText(f))
+		p.item("·", findingText(s.Findings[f]))
+		p.readings(s, f)
+	}
+}
+
+// readings writes what the answer is under each reading of a finding.
+func (p *page) readings(s *synthesis.Synthesis, finding int) {
+	for i := range s.Readings {
+		r := &s.Readings[i]
+		if r.Finding != finding {
+			continue
+		}
+		text := r.Label + ": "
+		if r.Outcome.Name != "" {
+			text = r.Outcome.Name + ", " + text
+		}
+		if r.Outcome.Result == nil {
+			p.item(" ", text+"no result: "+r.Outcome.Problem)
+			continue
+		}
+		k := r.Outcome.Result.Fit.Mean.K
+		p.item(" ", fmt.Sprintf("%s%s, from %s %s", text, words.Answer(&r.Outcome, r.Outcome.Result.Fit.Mean), words.Count(k), words.Noun(s, k)))
 	}
 }
 

@@ -23,6 +23,9 @@ func ForestOf(s *synthesis.Synthesis, o *synthesis.Outcome) (ForestInput, error)
 	if o.Result == nil {
 		return ForestInput{}, fmt.Errorf("outcome %q has no result to draw: %s", o.Name, o.Problem)
 	}
+	if o.Analysis.NullMissing {
+		return ForestInput{}, fmt.Errorf("outcome %q: a %s has no value of no effect, and the chart needs a null for its evidence rail: give --null", o.Name, o.Analysis.Measure)
+	}
 	fit := o.Result.Fit
 	notation := words.OutcomeNotation(o)
 	in := ForestInput{
@@ -49,7 +52,36 @@ func ForestOf(s *synthesis.Synthesis, o *synthesis.Outcome) (ForestInput, error)
 		in.Prediction, in.Spread = forestSpread(fit, words.Noun(s, 3))
 	}
 	in.Notes = forestNotes(o)
+	in.toReader(o.Analysis.Measure)
 	return in, nil
+}
+
+// toReader puts the effects of a measure whose scale is no logarithm, such as a
+// correlation, into the reader's unit: a linear axis shows them as they are. The
+// spread stays on the analysis scale.
+func (in *ForestInput) toReader(m effect.Measure) {
+	if m.Log() {
+		return
+	}
+	for _, value := range in.effects() {
+		*value = effect.ToReader(m, *value)
+	}
+}
+
+// effects returns every effect and limit that the chart shows.
+func (in *ForestInput) effects() []*float64 {
+	all := []*float64{&in.Scale.Null}
+	for i := range in.Rows {
+		r := &in.Rows[i]
+		all = append(all, &r.Estimate, &r.Low, &r.High)
+	}
+	if p := in.Pooled; p != nil {
+		all = append(all, &p.Estimate, &p.Low, &p.High)
+	}
+	if p := in.Prediction; p != nil {
+		all = append(all, &p.Low, &p.High)
+	}
+	return all
 }
 
 // chartTitle is the outcome's name, or the file's where the sheet has none.
@@ -101,7 +133,7 @@ func forestRow(o *synthesis.Outcome, study synthesis.Study) ForestRow {
 	row := ForestRow{
 		Name: study.Source.Name, Estimate: study.Estimate.Y, Low: study.Interval.Low, High: study.Interval.High,
 		Weight: study.Weight, LnEvidence: study.Evidence.Ln(),
-		Unwanted: unwanted(o, study.Estimate.Y), Dagger: study.Converted(o),
+		Unwanted: unwanted(o, study.Estimate.Y), Dagger: study.Converted(),
 	}
 	if year := study.Source.Date.Year; year > 0 && !strings.Contains(row.Name, strconv.Itoa(year)) {
 		row.Year = strconv.Itoa(year)
@@ -153,21 +185,42 @@ func forestSpread(fit *meta.Fit, noun string) (*ForestPrediction, *ForestSpread)
 
 func forestNotes(o *synthesis.Outcome) []Note {
 	notes := []Note{{Head: "Model", Text: words.Model(o.Result.Fit) + "."}}
-	var reported, corrected bool
-	for _, study := range o.Studies {
-		corrected = corrected || study.Corrected
-		reported = reported || (study.Converted(o) && !study.Corrected)
-	}
-	switch {
-	case reported && corrected:
-		notes[0].Text += " † Effect as reported, or a zero cell corrected."
-	case reported:
-		notes[0].Text += " † Effect as reported; events or means not given."
-	case corrected:
-		notes[0].Text += " † A zero cell was corrected."
+	if text := daggerNote(o); text != "" {
+		notes[0].Text += " † " + text
 	}
 	if o.Result.Fit.Model.Evidence == evidence.StudentForm {
 		notes = append(notes, Note{Head: "Evidence", Text: "Student-t form in place of the matched form."})
 	}
 	return notes
+}
+
+// daggerNote explains the daggers of an outcome: what the marked studies rest on.
+func daggerNote(o *synthesis.Outcome) string {
+	var reported, corrected, converted bool
+	for i := range o.Studies {
+		study := &o.Studies[i]
+		for _, a := range study.Assumptions {
+			switch {
+			case study.Corrected && a == synthesis.AssumedCorrection:
+				corrected = true
+			case a == synthesis.AssumedReport:
+				reported = true
+			default:
+				converted = true
+			}
+		}
+	}
+	switch {
+	case converted && (reported || corrected):
+		return "Converted, taken as reported, or a zero cell corrected."
+	case converted:
+		return "Converted, with an assumption."
+	case reported && corrected:
+		return "Effect as reported, or a zero cell corrected."
+	case reported:
+		return "Effect as reported; events or means not given."
+	case corrected:
+		return "A zero cell was corrected."
+	}
+	return ""
 }

@@ -14,13 +14,19 @@ import (
 // even is how far from 1 odds may lie to be called even.
 const even = 0.05
 
-// OutcomeNotation returns how the values of an outcome are written.
+// OutcomeNotation returns how the values of an outcome are written: by the smallest
+// standard error as it shows in the reader's unit.
 func OutcomeNotation(o *synthesis.Outcome) Notation {
+	m := o.Analysis.Measure
 	smallest := math.Inf(1)
 	for _, study := range o.Studies {
-		smallest = min(smallest, study.Estimate.SE)
+		y, se := study.Estimate.Y, study.Estimate.SE
+		if !m.Log() && m != effect.Unspecified {
+			se = (effect.ToReader(m, y+se) - effect.ToReader(m, y-se)) / 2
+		}
+		smallest = min(smallest, se)
 	}
-	return NotationOf(o.Analysis.Measure, smallest)
+	return NotationOf(m, smallest)
 }
 
 // Reader returns an estimate on the analysis scale, with its limits, as a reader
@@ -60,6 +66,9 @@ func Wanted(o *synthesis.Outcome) string {
 	side := wantedSide(o.Analysis.Better)
 	if side == "" {
 		return ""
+	}
+	if o.Analysis.NullMissing {
+		return o.Analysis.Better.String() + " is better"
 	}
 	null := effect.ToReader(o.Analysis.Measure, o.Analysis.Model.Null)
 	return fmt.Sprintf("%s %s is better", side, plain(null))
@@ -164,6 +173,45 @@ func RegionEvidence(r synthesis.Region) string {
 		return OddsInSentence(r.Evidence.Ln()) + " for it"
 	}
 	return OddsInSentence(-r.Evidence.Ln()) + " against it"
+}
+
+// NotWeighed says why an outcome without a null has no evidence.
+func NotWeighed(o *synthesis.Outcome) string {
+	return fmt.Sprintf("not weighed: a %s has no value of no effect; state one with --null", Measure(o.Analysis.Measure))
+}
+
+// Answer returns a pooled mean of an outcome with its evidence: "0.71 (0.58 to
+// 0.86), 29 : 1 for an effect".
+func Answer(o *synthesis.Outcome, m meta.Mean) string {
+	text := Reader(o, m.Estimate, meta.Limits{Low: m.Low, High: m.High})
+	if o.Analysis.NullMissing {
+		return text
+	}
+	return text + ", " + Evidence(m.Evidence)
+}
+
+// mostNamed is how many studies a sentence names.
+const mostNamed = 5
+
+// Converted names the converted studies of an outcome with what each rests on:
+// "A (zero-cell correction), B (mean and SD worked out from a median)".
+func Converted(o *synthesis.Outcome) string {
+	var named []string
+	for i := range o.Studies {
+		if s := &o.Studies[i]; s.Converted() {
+			named = append(named, fmt.Sprintf("%s (%s)", s.Source.Name, strings.Join(s.Assumptions, "; ")))
+		}
+	}
+	if more := len(named) - mostNamed; more > 0 {
+		named = append(named[:mostNamed], fmt.Sprintf("%d more", more))
+	}
+	return strings.Join(named, ", ")
+}
+
+// PCombined returns what p-values say together: "12 : 1 for an effect; z = −2.60, p =
+// 0.009".
+func PCombined(c synthesis.Combined) string {
+	return fmt.Sprintf("%s; z = %s, %s", Evidence(c.Evidence), Linear(c.Z, 2), PValue(c.LnP))
 }
 
 // HighRisk counts the pooled studies whose risk of bias is called high.

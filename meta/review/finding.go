@@ -36,10 +36,19 @@ type Finding struct {
 	Severity Severity
 	Rule     string // of the catalogue, such as "C1"; a finding of the reader has the nearest rule
 	Place    Place
-	Study    string // blank when it concerns no single study
-	Outcome  string // the outcome refused or remarked on; blank when it concerns the row or the file
-	Message  string // what was found, why it matters, what to do; one or two sentences, no place in it
-	Accepted string // the reviewer's reason for keeping the row, blank if none
+	Study    string    // blank when it concerns no single study
+	Outcome  string    // the outcome refused or remarked on; blank when it concerns the row or the file
+	Message  string    // what was found, why it matters, what to do; one or two sentences, no place in it
+	Accepted string    // the reviewer's reason for keeping the row, blank if none
+	Readings []Reading // what the numbers may be instead; nil where there is one reading
+}
+
+// Reading is one way to read the numbers that a finding doubts: the numbers that
+// it changes, each with the place of its row. A number that the row lacks is
+// added.
+type Reading struct {
+	Label   string // such as "commas as decimal marks"
+	Numbers []Number
 }
 
 // Blocks reports whether the finding keeps its row or outcome from being pooled.

@@ -28,7 +28,7 @@ func cautions(s *Synthesis) []string {
 		random = random || (o.Result.Fit.Prediction != nil)
 		corrected = corrected || o.Counts.Corrected > 0
 		for _, study := range o.Studies {
-			converted = converted || study.Converted(o)
+			converted = converted || study.Converted()
 		}
 	}
 	if random {
@@ -57,21 +57,4 @@ func overrides(findings []review.Finding) int {
 		}
 	}
 	return n
-}
-
-// Converted reports whether a study's effect was taken as reported while others
-// of the outcome come from counts or means, or needed a correction.
-func (s Study) Converted(o *Outcome) bool {
-	if s.Corrected {
-		return true
-	}
-	if s.Basis == FromCounts || s.Basis == FromMeans {
-		return false
-	}
-	for i := range o.Studies {
-		if b := o.Studies[i].Basis; b == FromCounts || b == FromMeans {
-			return true
-		}
-	}
-	return false
 }

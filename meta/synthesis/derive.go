@@ -2,9 +2,10 @@ package synthesis
 
 import (
 	"errors"
-	"fmt"
 	"slices"
+	"strings"
 
+	"steelyard/meta/choice"
 	"steelyard/meta/effect"
 	"steelyard/meta/numeric"
 	"steelyard/meta/review"
@@ -13,40 +14,163 @@ import (
 // Basis says which of a row's numbers its effect was taken from.
 type Basis int
 
-// The bases, in the order of preference: what was counted or measured goes
-// before what was reported about it.
+// The bases, in the order of the table of kinds.
 const (
 	NoBasis Basis = iota
 	FromCounts
+	FromPersonTime
+	FromPairedMeans
 	FromMeans
+	FromCoefficient
+	FromOneArm
+	FromOneArmTime
+	FromObserved
 	FromEstimateSE
 	FromEstimateLimits
+	FromEstimateStatistic
+	FromEstimatePaired
+	FromEstimateP
+	FromEstimateEvents
+	FromMeansTest
+	FromHazardTest
+	FromCountsAsMeans
+	FromMeansAsCounts
+	FromPValue
 )
 
-// basisOf returns the best basis that a row's numbers make complete.
-func basisOf(row *review.Study) Basis {
-	has := func(fields ...review.Field) bool {
-		for _, f := range fields {
-			if _, ok := row.Number(f); !ok {
-				return false
-			}
+var basisNames = choice.Of[Basis]("basis", "", "counts", "person time", "paired means", "means", "correlation", "one arm", "one arm, person time",
+	"observed minus expected", "estimate with se", "estimate with limits", "estimate with test statistic", "estimate with paired differences",
+	"estimate with p", "estimate with events", "means with test", "log-rank test with events", "counts as means", "means as counts", "p alone")
+
+// String returns the name of the basis.
+func (b Basis) String() string { return basisNames.String(b) }
+
+// Counted reports whether the numbers were counted or measured, not reported as
+// a result.
+func (b Basis) Counted() bool { return FromCounts <= b && b <= FromObserved }
+
+// kind is one kind of numbers that a row may give.
+type kind struct {
+	basis    Basis
+	complete func(d *derivation) bool // the row has all its numbers
+	suits    func(d *derivation) bool // the outcome's measure can be had from them
+	derive   func(d *derivation) (effect.Estimate, error)
+	suggests effect.Measure // where nobody states a measure
+}
+
+// kinds is the order of preference among the numbers of a row: what was counted
+// or measured goes before what was reported about it, a standard error before
+// limits before a test, and an approximate change of measure comes last. The first
+// kind that is complete and suits the measure is taken.
+var kinds = []kind{
+	{FromCounts, (*derivation).hasCounts, only(effect.OddsRatio, effect.RiskRatio, effect.RiskDifference, effect.ArcsineDifference), (*derivation).fromCounts, effect.RiskRatio},
+	{FromPersonTime, (*derivation).hasPersonTime, only(effect.RateRatio), (*derivation).fromPersonTime, effect.RateRatio},
+	{FromPairedMeans, (*derivation).hasPairedMeans, only(effect.MeanDifference, effect.StandardisedMeanDifference), (*derivation).fromPairedMeans, effect.MeanDifference},
+	{FromMeans, (*derivation).hasArms, only(effect.MeanDifference, effect.StandardisedMeanDifference, effect.RatioOfMeans), (*derivation).fromArms, effect.MeanDifference},
+	{FromCoefficient, has(review.Coefficient, review.Total), only(effect.Correlation), (*derivation).fromCoefficient, effect.Correlation},
+	{FromOneArm, has(review.Events, review.Total), only(effect.Proportion, effect.ArcsineProportion, effect.DoubleArcsineProportion), (*derivation).fromOneArm, effect.Proportion},
+	{FromOneArmTime, has(review.Events, review.PersonTime), only(effect.Rate), (*derivation).fromOneArmTime, effect.Rate},
+	{FromObserved, has(review.ObservedMinusExpected, review.Variance), only(effect.HazardRatio, effect.OddsRatio, effect.RateRatio), (*derivation).fromObserved, effect.Unspecified},
+	{FromEstimateSE, (*derivation).hasEstimateSE, (*derivation).reportable, (*derivation).fromSE, effect.Unspecified},
+	{FromEstimateLimits, (*derivation).hasEstimateLimits, (*derivation).reportable, (*derivation).fromLimits, effect.Unspecified},
+	{FromEstimateStatistic, (*derivation).hasEstimateStatistic, (*derivation).reportable, (*derivation).fromStatistic, effect.Unspecified},
+	{FromEstimatePaired, (*derivation).hasEstimatePaired, only(effect.MeanDifference), (*derivation).fromDifferences, effect.MeanDifference},
+	{FromEstimateP, (*derivation).hasEstimateP, (*derivation).reportable, (*derivation).fromP, effect.Unspecified},
+	{FromEstimateEvents, (*derivation).hasEstimateEvents, only(effect.HazardRatio), (*derivation).fromHazardEvents, effect.HazardRatio},
+	{FromMeansTest, (*derivation).hasMeansTest, only(effect.MeanDifference, effect.StandardisedMeanDifference), (*derivation).fromMeansTest, effect.MeanDifference},
+	{FromHazardTest, (*derivation).hasHazardTest, only(effect.HazardRatio), (*derivation).fromHazardTest, effect.Unspecified},
+	{FromCountsAsMeans, (*derivation).hasCounts, only(effect.StandardisedMeanDifference), (*derivation).fromCountsAsMeans, effect.RiskRatio},
+	{FromMeansAsCounts, (*derivation).hasArms, only(effect.OddsRatio), (*derivation).fromMeansAsCounts, effect.MeanDifference},
+	{FromPValue, (*derivation).hasPValue, func(*derivation) bool { return true }, nil, effect.Unspecified},
+}
+
+// has returns a test for rows that give all of some fields.
+func has(fields ...review.Field) func(*derivation) bool {
+	return func(d *derivation) bool { return d.has(fields...) }
+}
+
+// only returns a test for outcomes of some measures.
+func only(measures ...effect.Measure) func(*derivation) bool {
+	return func(d *derivation) bool { return slices.Contains(measures, d.measure) }
+}
+
+// derivation is the way from one row's numbers to its effect, with what was done
+// and assumed on it.
+type derivation struct {
+	row         *review.Study
+	measure     effect.Measure // of the outcome
+	correction  effect.Correction
+	steps       []effect.Conversion
+	assumptions []string
+	findings    []review.Finding
+}
+
+func (d *derivation) has(fields ...review.Field) bool {
+	for _, f := range fields {
+		if _, ok := d.row.Number(f); !ok {
+			return false
 		}
-		return true
 	}
-	spread := func(sd, se review.Field) bool { return has(sd) || has(se) }
-	estimate := has(review.Estimate) || has(review.AnalysisEstimate)
-	switch {
-	case has(review.EventsTreated, review.TotalTreated, review.EventsControl, review.TotalControl):
-		return FromCounts
-	case has(review.MeanTreated, review.TotalTreated, review.MeanControl, review.TotalControl) &&
-		spread(review.SDTreated, review.SETreated) && spread(review.SDControl, review.SEControl):
-		return FromMeans
-	case estimate && has(review.StandardError):
-		return FromEstimateSE
-	case estimate && (has(review.LimitLow, review.LimitHigh) || has(review.AnalysisLow, review.AnalysisHigh)):
-		return FromEstimateLimits
+	return true
+}
+
+// value returns the row's number of a field, 0 where it has none.
+func (d *derivation) value(f review.Field) float64 {
+	n, _ := d.row.Number(f)
+	return n.Value
+}
+
+// remark returns the folded text of a context column.
+func (d *derivation) remark(f review.Field) string {
+	r, _ := d.row.Remark(f.String())
+	return choice.Fold(r.Text)
+}
+
+func (d *derivation) log(steps ...effect.Conversion) { d.steps = append(d.steps, steps...) }
+
+// assume records, once, what the number rests on besides the report.
+func (d *derivation) assume(what string) {
+	if !slices.Contains(d.assumptions, what) {
+		d.assumptions = append(d.assumptions, what)
 	}
-	return NoBasis
+}
+
+// find records a finding about the row; the reviewer may have accepted it.
+func (d *derivation) find(severity review.Severity, rule, message string, readings ...review.Reading) {
+	d.findings = append(d.findings, review.Finding{Severity: severity, Rule: rule, Place: d.row.Row, Study: d.row.Name, Outcome: d.row.Outcome,
+		Message: message, Accepted: d.row.AcceptedReason(rule), Readings: readings})
+}
+
+// made records the steps of a function of effect and hands its estimate on.
+func (d *derivation) made(e effect.Estimate, steps []effect.Conversion, err error) (effect.Estimate, error) {
+	d.log(steps...)
+	if slices.ContainsFunc(steps, func(c effect.Conversion) bool { return c.Added }) {
+		d.assume(AssumedCorrection)
+	}
+	return e, err
+}
+
+// choose returns the best kind of numbers that the row makes complete: among
+// those that suit the measure, else the first, whose derivation will say which
+// measures it gives.
+func (d *derivation) choose() (kind, bool) {
+	var first *kind
+	for i := range kinds {
+		k := &kinds[i]
+		if !k.complete(d) {
+			continue
+		}
+		if k.suits(d) && (k.basis != FromPValue || first == nil) {
+			return *k, true
+		}
+		if first == nil {
+			first = k
+		}
+	}
+	if first == nil {
+		return kind{}, false
+	}
+	return *first, true
 }
 
 // derive turns the rows into effects; a row that yields none is excluded, with a
@@ -54,102 +178,94 @@ func basisOf(row *review.Study) Basis {
 func (o *Outcome) derive(rows []*review.Study) []review.Finding {
 	var findings []review.Finding
 	for _, row := range rows {
-		study, err := deriveOne(row, o.Analysis)
-		if err == nil {
+		d := &derivation{row: row, measure: o.Analysis.Measure, correction: o.Analysis.Correction}
+		study, err := d.study()
+		findings = append(findings, d.findings...)
+		switch {
+		case study.Basis == FromPValue && err == nil:
+			err = o.addPValue(d)
+			if err == nil {
+				o.exclude(row, "gives a p-value and no estimate: weighed as evidence alone", false)
+				continue
+			}
+		case err == nil:
 			o.Studies = append(o.Studies, study)
 			continue
 		}
 		f := review.Finding{Severity: review.Error, Rule: "I20", Place: row.Row, Study: row.Name, Outcome: o.Name, Message: err.Error()}
-		if errors.Is(err, effect.ErrNothingToCompare) {
+		var missing *missingError
+		switch {
+		case errors.Is(err, effect.ErrNothingToCompare):
 			f.Severity, f.Rule = review.Note, "C8"
+		case errors.As(err, &missing):
+			f.Rule, f.Readings = missing.rule, missing.readings
 		}
 		o.exclude(row, f.Message, f.Severity == review.Error)
 		findings = append(findings, f)
 	}
-	return findings
+	return append(findings, o.mixedScores()...)
 }
 
-// deriveOne turns one row into an effect of the outcome's measure.
-func deriveOne(row *review.Study, a Analysis) (Study, error) {
-	study := Study{Source: row, Basis: basisOf(row)}
-	value := func(f review.Field) float64 { n, _ := row.Number(f); return n.Value }
-	var err error
-	switch study.Basis {
-	case FromCounts:
-		table := effect.Table{
-			Events1: value(review.EventsTreated), Total1: value(review.TotalTreated),
-			Events2: value(review.EventsControl), Total2: value(review.TotalControl),
-		}
-		study.Estimate, study.Conversions, err = effect.FromTable(a.Measure, table, a.Correction)
-		study.Corrected = slices.ContainsFunc(study.Conversions, func(c effect.Conversion) bool { return c.Added })
-	case FromMeans:
-		treated, control, made, problem := arms(row)
-		if problem != nil {
-			return study, problem
-		}
-		study.Estimate, study.Conversions, err = effect.FromArms(a.Measure, treated, control)
-		study.Conversions = append(made, study.Conversions...)
-	case FromEstimateSE, FromEstimateLimits:
-		if row.Measure != effect.Unspecified && a.Measure != effect.Unspecified && row.Measure != a.Measure {
-			return study, fmt.Errorf("the row gives a %s, which cannot be pooled as a %s", row.Measure, a.Measure)
-		}
-		study.Estimate, study.Conversions, err = reported(row, a)
-	default:
-		return study, errors.New("the row has no complete set of numbers: give an estimate with se or both limits, events and totals of both arms, or means, SDs and totals of both arms")
-	}
-	return study, err
-}
-
-// arms returns both arms of a row with means, with the conversions of standard
-// errors to standard deviations.
-func arms(row *review.Study) (treated, control effect.Arm, made []effect.Conversion, err error) {
-	arm := func(mean, sd, se, total review.Field) effect.Arm {
-		m, _ := row.Number(mean)
-		n, _ := row.Number(total)
-		a := effect.Arm{Mean: m.Value, N: n.Value}
-		if s, ok := row.Number(sd); ok {
-			a.SD = s.Value
-			return a
-		}
-		s, _ := row.Number(se)
-		value, conversion, problem := effect.SDFromSE(s.Value, n.Value)
-		if problem != nil && err == nil {
-			err = problem
-		}
-		a.SD, made = value, append(made, conversion)
-		return a
-	}
-	treated = arm(review.MeanTreated, review.SDTreated, review.SETreated, review.TotalTreated)
-	control = arm(review.MeanControl, review.SDControl, review.SEControl, review.TotalControl)
-	return treated, control, made, err
-}
-
-// reported takes the row's own estimate with its standard error or limits. What
-// stands on the analysis scale already is not logged again.
-func reported(row *review.Study, a Analysis) (effect.Estimate, []effect.Conversion, error) {
-	measure := a.Measure
-	estimate, ok := row.Number(review.Estimate)
-	lowField, highField := review.LimitLow, review.LimitHigh
+// study turns the row into an effect of the outcome's measure.
+func (d *derivation) study() (Study, error) {
+	study := Study{Source: d.row}
+	k, ok := d.choose()
 	if !ok {
-		measure = effect.Unspecified // linear: the numbers are on the analysis scale
-		estimate, _ = row.Number(review.AnalysisEstimate)
+		return study, d.incomplete()
 	}
-	if _, ok := row.Number(review.AnalysisLow); ok {
-		lowField, highField = review.AnalysisLow, review.AnalysisHigh
+	study.Basis = k.basis
+	if k.basis == FromPValue {
+		return study, nil
 	}
-	if se, ok := row.Number(review.StandardError); ok {
-		return effect.FromSE(measure, estimate.Value, se.Value)
+	e, err := k.derive(d)
+	if err != nil {
+		return study, err
 	}
-	low, _ := row.Number(lowField)
-	high, _ := row.Number(highField)
-	level := 0.95
-	if l, ok := row.Number(review.LimitLevel); ok {
-		level = l.Value
+	if !slices.Contains(clusteredCounts, k.basis) {
+		if e, err = d.clustered(e); err != nil {
+			return study, err
+		}
 	}
-	if measure.Log() && lowField == review.AnalysisLow {
-		return effect.Estimate{}, nil, errors.New("the estimate is a ratio but its limits are logarithms; give both in the same form")
+	study.Estimate, study.Conversions, study.Assumptions = e, d.steps, d.assumptions
+	study.Corrected = slices.ContainsFunc(d.steps, func(c effect.Conversion) bool { return c.Added })
+	return study, nil
+}
+
+// missingError says which number a row lacks, under the rule that asks for it and
+// with values to try.
+type missingError struct {
+	rule, message string
+	readings      []review.Reading
+}
+
+func (e *missingError) Error() string { return e.message }
+
+// incomplete says what is missing from a row without a complete set of numbers.
+func (d *derivation) incomplete() error {
+	switch {
+	case d.crossover() && d.hasBothMeans():
+		return d.unpaired()
+	case d.crossover():
+		return &missingError{rule: "D8", message: "the row is of a cross-over trial, whose arms are the same people: give an estimate with its se or limits from a paired analysis"}
+	case d.has(review.Variance) && d.hasEstimate():
+		return errors.New("the row has a variance, which is read as that of observed minus expected events, and none of these: give observed minus expected beside it, or the square root of the variance as se")
+	case d.has(review.PValue) && !d.hasEstimate():
+		return errors.New("the row has a p-value alone: give the estimate beside it, or the direction of the effect (higher or lower) and the total of people to weigh it as evidence alone")
 	}
-	return effect.FromLimits(measure, estimate.Value, low.Value, high.Value, level)
+	return errors.New("the row has no complete set of numbers: give an estimate with se or both limits, events and totals of both arms, or means, SDs and totals of both arms")
+}
+
+// armed gives the values of a step about one arm the names of that arm's
+// columns, where there are such columns.
+func armed(step effect.Conversion, arm string) effect.Conversion {
+	for _, values := range [][]effect.Value{step.From, step.To} {
+		for i, v := range values {
+			if _, err := review.ParseField(v.Name + " " + arm); err == nil && !strings.HasSuffix(v.Name, arm) {
+				values[i].Name += " " + arm
+			}
+		}
+	}
+	return step
 }
 
 // studyInterval returns the Wald interval of a single study.

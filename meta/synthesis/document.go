@@ -35,14 +35,35 @@ type PlanDocument struct {
 
 // FindingDocument is a finding with its place.
 type FindingDocument struct {
-	Severity string `json:"severity"`
-	Rule     string `json:"rule,omitempty"`
-	Sheet    string `json:"sheet,omitempty"`
-	Cell     string `json:"cell,omitempty"`
-	Study    string `json:"study,omitempty"`
-	Outcome  string `json:"outcome,omitempty"`
-	Message  string `json:"message"`
-	Accepted string `json:"accepted,omitempty"`
+	Severity string            `json:"severity"`
+	Rule     string            `json:"rule,omitempty"`
+	Sheet    string            `json:"sheet,omitempty"`
+	Cell     string            `json:"cell,omitempty"`
+	Study    string            `json:"study,omitempty"`
+	Outcome  string            `json:"outcome,omitempty"`
+	Message  string            `json:"message"`
+	Accepted string            `json:"accepted,omitempty"`
+	Readings []ReadingDocument `json:"readings,omitempty"`
+}
+
+// ReadingDocument is the pooled answer of an outcome under one reading of what a
+// finding doubts.
+type ReadingDocument struct {
+	Label   string `json:"label"`
+	Outcome string `json:"outcome"`
+	Problem string `json:"problem,omitempty"`
+	*SubsetDocument
+}
+
+// SubsetDocument is a pooled mean by the outcome's own methods from other rows, or
+// from other numbers of them. The evidence is absent where there is no null.
+type SubsetDocument struct {
+	K        int     `json:"k"`
+	Estimate float64 `json:"estimate"`
+	SE       float64 `json:"se"`
+	Low      float64 `json:"ci_low"`
+	High     float64 `json:"ci_high"`
+	*EvidenceDocument
 }
 
 // OutcomeDocument is one outcome.
@@ -59,6 +80,7 @@ type OutcomeDocument struct {
 	Notes        []string             `json:"notes,omitempty"`
 	Excluded     []ExcludedDocument   `json:"excluded"`
 	Conversions  []ConversionDocument `json:"conversions"`
+	POnly        *POnlyDocument       `json:"p_only,omitempty"`
 	*ResultDocument
 	Studies []StudyDocument `json:"studies"`
 }
@@ -71,10 +93,12 @@ type ResultDocument struct {
 	Tau           *TauDocument            `json:"tau,omitempty"`
 	Heterogeneity *HeterogeneityDocument  `json:"heterogeneity,omitempty"`
 	Prediction    *PredictionDocument     `json:"prediction,omitempty"`
-	Posterior     []PosteriorDocument     `json:"posterior"`
-	Doubter       DoubterDocument         `json:"doubters_prior"`
+	Without       *SubsetDocument         `json:"without_converted,omitempty"`
+	Posterior     []PosteriorDocument     `json:"posterior,omitempty"`
+	Doubter       *DoubterDocument        `json:"doubters_prior,omitempty"`
 	Regions       []RegionDocument        `json:"regions,omitempty"`
 	Caveats       []string                `json:"caveats,omitempty"`
+	*AccrualDocument
 }
 
 // ExcludedDocument is a row that was not pooled.
@@ -101,28 +125,60 @@ type EvidenceDocument struct {
 
 // PooledDocument is a pooled mean with the methods that gave it.
 type PooledDocument struct {
-	Effects  string  `json:"effects"`
-	Method   string  `json:"method"`
-	Tau      string  `json:"tau,omitempty"`
-	Interval string  `json:"interval"`
-	Level    float64 `json:"level"`
-	Null     float64 `json:"null"`
+	Effects  string   `json:"effects"`
+	Method   string   `json:"method"`
+	Tau      string   `json:"tau,omitempty"`
+	Interval string   `json:"interval"`
+	Level    float64  `json:"level"`
+	Null     *float64 `json:"null,omitempty"`
 	MeanDocument
-	EvidenceFormDocument
+	*EvidenceFormDocument
 	Display DisplayDocument `json:"display"`
 }
 
 // MeanDocument holds the numbers of a pooled mean. DF is absent for a normal
-// statistic; LnP is always there, P where it does not underflow.
+// statistic; the test where there is no null.
 type MeanDocument struct {
-	Estimate  float64  `json:"estimate"`
-	SE        float64  `json:"se"`
-	Statistic float64  `json:"statistic"`
-	DF        *float64 `json:"df,omitempty"`
-	P         float64  `json:"p"`
-	LnP       float64  `json:"ln_p"`
-	Low       float64  `json:"ci_low"`
-	High      float64  `json:"ci_high"`
+	Estimate float64 `json:"estimate"`
+	SE       float64 `json:"se"`
+	*TestDocument
+	DF   *float64 `json:"df,omitempty"`
+	Low  float64  `json:"ci_low"`
+	High float64  `json:"ci_high"`
+}
+
+// TestDocument is the test against the null. LnP is always there, P where it does
+// not underflow.
+type TestDocument struct {
+	Statistic float64 `json:"statistic"`
+	P         float64 `json:"p"`
+	LnP       float64 `json:"ln_p"`
+}
+
+// POnlyDocument is the evidence of studies that give a p-value and no estimate,
+// by themselves; it is not in the pooled result.
+type POnlyDocument struct {
+	Studies  []POnlyStudyDocument `json:"studies"`
+	Stouffer CombinedDocument     `json:"stouffer"`
+	Fisher   CombinedDocument     `json:"fisher"`
+}
+
+// POnlyStudyDocument is one of them.
+type POnlyStudyDocument struct {
+	Study        string             `json:"study"`
+	Place        string             `json:"place"`
+	Participants float64            `json:"participants"`
+	Z            float64            `json:"z"`
+	LnEvidence   float64            `json:"ln_evidence"`
+	Conversion   ConversionDocument `json:"conversion"`
+}
+
+// CombinedDocument is what p-values say together.
+type CombinedDocument struct {
+	Z   float64 `json:"z"`
+	P   float64 `json:"p"`
+	LnP float64 `json:"ln_p"`
+	EvidenceDocument
 }
 
 // EvidenceFormDocument is the evidence beside a pooled mean.
@@ -202,14 +258,16 @@ type RegionDocument struct {
 
 // StudyDocument is one pooled study.
 type StudyDocument struct {
-	Study      string  `json:"study"`
-	Date       string  `json:"date,omitempty"`
-	Estimate   float64 `json:"estimate"`
-	SE         float64 `json:"se"`
-	Low        float64 `json:"ci_low"`
-	High       float64 `json:"ci_high"`
-	Weight     float64 `json:"weight"`
-	LnEvidence float64 `json:"ln_evidence"`
-	Place      string  `json:"place"`
-	Converted  bool    `json:"converted"`
+	Study       string   `json:"study"`
+	Date        string   `json:"date,omitempty"`
+	Estimate    float64  `json:"estimate"`
+	SE          float64  `json:"se"`
+	Low         float64  `json:"ci_low"`
+	High        float64  `json:"ci_high"`
+	Weight      float64  `json:"weight"`
+	LnEvidence  *float64 `json:"ln_evidence,omitempty"`
+	Place       string   `json:"place"`
+	Basis       string   `json:"basis"`
+	Converted   bool     `json:"converted"`
+	Assumptions []string `json:"assumptions,omitempty"`
 }

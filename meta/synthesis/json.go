@@ -24,6 +24,10 @@ func (s *Synthesis) Document(version string) Document {
 		Cautions: s.Cautions,
 		Outcomes: []OutcomeDocument{},
 	}
+	for i := range s.Readings {
+		r := &s.Readings[i]
+		d.Findings[r.Finding].Readings = append(d.Findings[r.Finding].Readings, r.document())
+	}
 	for i := range s.Outcomes {
 		d.Outcomes = append(d.Outcomes, s.Outcomes[i].document(s.Plan))
 	}
@@ -63,25 +67,85 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 	for _, e := range o.Excluded {
 		d.Excluded = append(d.Excluded, ExcludedDocument{Study: e.Study, Cell: firstCell(e.Place), Reason: e.Reason})
 	}
+	d.POnly = o.PValues.document()
 	if o.Result == nil {
 		return d
 	}
-	d.Measure, d.Scale = o.Analysis.Measure.String(), "linear"
-	if o.Analysis.Measure.Log() {
-		d.Scale = "log"
-	}
+	d.Measure, d.Scale = o.Analysis.Measure.String(), scaleName(o.Analysis.Measure)
 	for _, study := range o.Studies {
 		d.Conversions = append(d.Conversions, conversionDocuments(study)...)
-		d.Studies = append(d.Studies, StudyDocument{
+		entry := StudyDocument{
 			Study: study.Source.Name, Date: study.Source.Date.String(),
 			Estimate: study.Estimate.Y, SE: study.Estimate.SE,
 			Low: study.Interval.Low, High: study.Interval.High,
-			Weight: study.Weight, LnEvidence: study.Evidence.Ln(),
-			Place: firstCell(study.Source.Row), Converted: study.Converted(o),
-		})
+			Weight: study.Weight, Place: firstCell(study.Source.Row),
+			Basis: study.Basis.String(), Converted: study.Converted(), Assumptions: study.Assumptions,
+		}
+		if !o.Analysis.NullMissing {
+			ln := study.Evidence.Ln()
+			entry.LnEvidence = &ln
+		}
+		d.Studies = append(d.Studies, entry)
 	}
 	d.ResultDocument = o.resultDocument(plan)
 	return d
+}
+
+// scaleName names the scale on which a measure is analysed.
+func scaleName(m effect.Measure) string {
+	switch m {
+	case effect.Correlation:
+		return "fisher-z"
+	case effect.Proportion:
+		return "logit"
+	case effect.ArcsineProportion, effect.DoubleArcsineProportion, effect.ArcsineDifference:
+		return "arcsine"
+	}
+	if m.Log() {
+		return "log"
+	}
+	return "linear"
+}
+
+// document returns a reading's answer; where there is none it says why.
+func (r *ReadingEffect) document() ReadingDocument {
+	d := ReadingDocument{Label: r.Label, Outcome: r.Outcome.Name, Problem: r.Outcome.Problem}
+	if r.Outcome.Result != nil {
+		d.SubsetDocument = subsetDocument(r.Outcome.Result.Fit, r.Outcome.Analysis.NullMissing)
+	}
+	return d
+}
+
+func subsetDocument(fit *meta.Fit, nullMissing bool) *SubsetDocument {
+	if fit == nil {
+		return nil
+	}
+	m := fit.Mean
+	d := &SubsetDocument{K: m.K, Estimate: m.Estimate, SE: m.SE, Low: m.Low, High: m.High}
+	if !nullMissing {
+		weighed := evidenceDocument(m.Evidence)
+		d.EvidenceDocument = &weighed
+	}
+	return d
+}
+
+// document returns the studies known by a p-value; nil if there is none.
+func (p *PValues) document() *POnlyDocument {
+	if p == nil {
+		return nil
+	}
+	d := &POnlyDocument{Stouffer: p.Stouffer.document(), Fisher: p.Fisher.document()}
+	for _, s := range p.Studies {
+		d.Studies = append(d.Studies, POnlyStudyDocument{
+			Study: s.Source.Name, Place: firstCell(s.Source.Row), Participants: s.N, Z: s.Z, LnEvidence: s.Evidence.Ln(),
+			Conversion: conversionDocument(s.Conversion, s.Source),
+		})
+	}
+	return d
+}
+
+func (c Combined) document() CombinedDocument {
+	return CombinedDocument{Z: c.Z, P: math.Exp(c.LnP), LnP: c.LnP, EvidenceDocument: evidenceDocument(c.Evidence)}
 }
 
 // firstCell names a row by its first cell, such as "Sheet1!A2".
@@ -93,20 +157,29 @@ func firstCell(row review.Place) string {
 func conversionDocuments(study Study) []ConversionDocument {
 	var all []ConversionDocument
 	for _, c := range study.Conversions {
-		all = append(all, ConversionDocument{
-			Study: study.Source.Name, What: c.What, Source: c.Source,
-			From: namedValues(c.From, study.Source), To: namedValues(c.To, nil),
-		})
+		all = append(all, conversionDocument(c, study.Source))
 	}
 	return all
 }
 
-// namedValues names numbers by their cell where the row holds them as they are.
+func conversionDocument(c effect.Conversion, row *review.Study) ConversionDocument {
+	return ConversionDocument{
+		Study: row.Name, What: c.What, Source: c.Source,
+		From: namedValues(c.From, row), To: namedValues(c.To, nil),
+	}
+}
+
+// namedValues names numbers by their cell where the row holds them as they are,
+// under the number's name or under that of its form on the analysis scale.
 func namedValues(values []effect.Value, row *review.Study) map[string]float64 {
 	named := make(map[string]float64, len(values))
 	for _, v := range values {
 		name := v.Name
-		if field, err := review.ParseField(v.Name); err == nil && row != nil {
+		for _, title := range []string{v.Name, "analysis " + v.Name} {
+			field, err := review.ParseField(title)
+			if err != nil || row == nil {
+				continue
+			}
 			if n, ok := row.Number(field); ok && n.Value == v.Value {
 				name = n.Place.Cell()
 			}
@@ -118,10 +191,9 @@ func namedValues(values []effect.Value, row *review.Study) map[string]float64 {
 
 func (o *Outcome) resultDocument(plan *review.Plan) *ResultDocument {
 	r, fit := o.Result, o.Result.Fit
-	d := &ResultDocument{
-		Pooled:    o.pooledDocument(fit),
-		Posterior: []PosteriorDocument{},
-		Doubter:   DoubterDocument{Level: r.DoubtersPrior.Posterior, Prior: r.DoubtersPrior.Prior},
+	d := &ResultDocument{Pooled: o.pooledDocument(fit), Without: subsetDocument(r.Without, o.Analysis.NullMissing)}
+	if !o.Analysis.NullMissing {
+		d.Doubter = &DoubterDocument{Level: r.DoubtersPrior.Posterior, Prior: r.DoubtersPrior.Prior}
 	}
 	if own := planDocument(plan, o.Name); o.Name != "" {
 		d.Plan = own
@@ -148,6 +220,7 @@ func (o *Outcome) resultDocument(plan *review.Plan) *ResultDocument {
 	for _, c := range fit.Caveats {
 		d.Caveats = append(d.Caveats, c.Text())
 	}
+	d.AccrualDocument = o.accrualDocument()
 	return d
 }
 
@@ -174,9 +247,9 @@ func (o *Outcome) pooledDocument(fit *meta.Fit) PooledDocument {
 	m := fit.Mean
 	d := PooledDocument{
 		Effects: fit.Model.Effects.String(), Method: review.InverseVariance.String(),
-		Interval: fit.Model.Interval.String(), Level: fit.Model.Level, Null: fit.Model.Null,
+		Interval: fit.Model.Interval.String(), Level: fit.Model.Level, Null: &fit.Model.Null,
 		MeanDocument: meanDocument(m),
-		EvidenceFormDocument: EvidenceFormDocument{
+		EvidenceFormDocument: &EvidenceFormDocument{
 			Evidence: fit.Model.Evidence.String(), EvidenceDocument: evidenceDocument(m.Evidence),
 			Word: m.Evidence.Word().String(), Favours: m.Evidence.Favours().String(),
 		},
@@ -190,13 +263,16 @@ func (o *Outcome) pooledDocument(fit *meta.Fit) PooledDocument {
 	if fit.Model.Effects == meta.RandomEffects {
 		d.Tau = fit.Model.Tau.String()
 	}
+	if o.Analysis.NullMissing {
+		d.Null, d.TestDocument, d.EvidenceFormDocument = nil, nil, nil
+	}
 	return d
 }
 
 func meanDocument(m meta.Mean) MeanDocument {
 	return MeanDocument{
-		Estimate: m.Estimate, SE: m.SE, Statistic: m.Statistic, DF: finite(m.DF),
-		P: math.Exp(m.LnP), LnP: m.LnP, Low: m.Low, High: m.High,
+		Estimate: m.Estimate, SE: m.SE, DF: finite(m.DF), Low: m.Low, High: m.High,
+		TestDocument: &TestDocument{Statistic: m.Statistic, P: math.Exp(m.LnP), LnP: m.LnP},
 	}
 }
 

@@ -12,28 +12,36 @@ import (
 
 // pool fits the model and what stands beside it.
 func (o *Outcome) pool(asked review.Analysis) error {
-	y, s := make([]float64, len(o.Studies)), make([]float64, len(o.Studies))
-	for i, study := range o.Studies {
-		y[i], s[i] = study.Estimate.Y, study.Estimate.SE
-	}
+	y, s := estimates(o.Studies)
 	fit, err := o.Analysis.Model.Fit(y, s)
 	if err != nil {
 		return o.explain(err)
 	}
+	o.Result = &Result{Fit: fit, Other: otherFit(asked.Model, fit.Model.Null, y, s), Without: o.withoutConverted()}
 	o.Analysis.Model = fit.Model
-	o.Result = &Result{Fit: fit, Other: otherFit(asked.Model, fit.Model.Null, y, s)}
 	for i := range o.Studies {
 		study := &o.Studies[i]
 		study.Weight = fit.Weights[i]
 		study.Interval.Low, study.Interval.High = studyInterval(study.Estimate, fit.Model.Level)
-		study.Evidence = evidence.Normal((study.Estimate.Y - fit.Model.Null) / study.Estimate.SE)
+		if !o.Analysis.NullMissing {
+			study.Evidence = evidence.Normal((study.Estimate.Y - fit.Model.Null) / study.Estimate.SE)
+		}
 	}
-	for _, prior := range o.Analysis.Prior {
-		o.Result.Posterior = append(o.Result.Posterior, Belief{Prior: prior, Posterior: evidence.Posterior(prior, fit.Mean.Evidence)})
+	if o.Analysis.NullMissing {
+		return nil
 	}
+	o.Result.Posterior = o.posterior(fit.Mean.Evidence)
 	o.Result.DoubtersPrior = Belief{Prior: evidence.DoubtersPrior(fit.Mean.Evidence, believed), Posterior: believed}
 	o.Result.Regions, err = o.regions()
 	return err
+}
+
+// estimates returns the effects and standard errors of studies.
+func estimates(studies []Study) (y, s []float64) {
+	for _, study := range studies {
+		y, s = append(y, study.Estimate.Y), append(s, study.Estimate.SE)
+	}
+	return y, s
 }
 
 // explain names the study that a model's complaint is about.

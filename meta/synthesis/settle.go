@@ -24,6 +24,13 @@ func (o *Outcome) settle(asked review.Analysis, rows []*review.Study) error {
 		Prior:      asked.Prior,
 		Correction: asked.Correction,
 	}
+	if !measure.HasNull() && asked.Null == nil {
+		o.Analysis.NullMissing = true
+		if len(asked.Important) > 0 {
+			return fmt.Errorf("important: a %s has no value of no effect to measure a difference from; give one with --null", measure)
+		}
+		return nil
+	}
 	null := measure.Null()
 	if asked.Null != nil {
 		null = *asked.Null
@@ -42,7 +49,6 @@ func (o *Outcome) measure(asked review.Analysis, rows []*review.Study) (effect.M
 		return asked.Measure, nil
 	}
 	stated := map[effect.Measure]string{}
-	bases := map[Basis]bool{}
 	var names []string
 	for _, row := range rows {
 		if row.Measure != effect.Unspecified {
@@ -51,7 +57,6 @@ func (o *Outcome) measure(asked review.Analysis, rows []*review.Study) (effect.M
 			}
 			stated[row.Measure] = row.Name
 		}
-		bases[basisOf(row)] = true
 	}
 	switch len(stated) {
 	case 1:
@@ -62,16 +67,40 @@ func (o *Outcome) measure(asked review.Analysis, rows []*review.Study) (effect.M
 	default:
 		return 0, fmt.Errorf("the rows state different measures: %s; pool one measure at a time, or choose with --measure where the numbers allow it", strings.Join(names, ", "))
 	}
-	switch {
-	case bases[FromCounts]:
-		o.note("No measure is stated: counts are pooled as a risk ratio. Choose another with --measure.")
-		return effect.RiskRatio, nil
-	case bases[FromMeans]:
-		o.note("No measure is stated: means are pooled as a mean difference. Choose another with --measure.")
-		return effect.MeanDifference, nil
+	suggested, basis := suggestion(rows)
+	switch suggested {
+	case effect.Unspecified:
+		o.note("No measure is stated: estimates are pooled as they stand, on a linear scale. State one with --measure if they are ratios.")
+	default:
+		o.note(fmt.Sprintf("No measure is stated: %s are pooled as a %s. Choose another with --measure.", basisWords[basis], suggested))
 	}
-	o.note("No measure is stated: estimates are pooled as they stand, on a linear scale. State one with --measure if they are ratios.")
-	return effect.Unspecified, nil
+	return suggested, nil
+}
+
+// basisWords says what numbers suggest a measure.
+var basisWords = map[Basis]string{
+	FromCounts: "counts", FromPersonTime: "events with person time", FromPairedMeans: "means", FromMeans: "means",
+	FromCoefficient: "correlation coefficients", FromOneArm: "events of one arm", FromOneArmTime: "events of one arm with person time",
+	FromMeansTest: "means", FromEstimatePaired: "mean differences", FromEstimateEvents: "estimates with events",
+}
+
+// suggestion returns the measure that the rows' numbers suggest: that of the kind
+// highest in the table that any row makes complete; one arm gives way to an
+// estimate.
+func suggestion(rows []*review.Study) (effect.Measure, Basis) {
+	best, measure := FromPValue, effect.Unspecified
+	for _, row := range rows {
+		d := &derivation{row: row}
+		for _, k := range kinds {
+			oneArm := k.basis == FromOneArm || k.basis == FromOneArmTime
+			if k.basis >= best || !k.complete(d) || (oneArm && d.hasEstimate()) {
+				continue
+			}
+			best, measure = k.basis, k.suggests
+			break
+		}
+	}
+	return measure, best
 }
 
 func (o *Outcome) note(sentence string) { o.Notes = append(o.Notes, sentence) }

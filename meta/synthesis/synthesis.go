@@ -16,9 +16,16 @@ import (
 	"steelyard/meta/review"
 )
 
-// Want says which outcomes are asked for; none named means all.
+// Want says which outcomes are asked for, none named meaning all, and what beside
+// the pooled result.
 type Want struct {
-	Outcomes []string
+	Outcomes    []string
+	Cumulative  bool
+	LeaveOneOut bool
+	Influence   bool
+	Subsets     *SubsetsWanted // nil: not wanted
+	Below       *float64       // steps under which the tipping set brings the evidence; nil: not wanted
+	Work        meta.Work      // how all this is done; its progress starts anew with each part
 }
 
 // Synthesis is the result of an analysis. Every output prints its numbers.
@@ -28,8 +35,9 @@ type Synthesis struct {
 	Findings []review.Finding // of the sheet and of the analysis
 	Cautions []string
 	Outcomes []Outcome
-	Trials   bool      // the sheet calls its rows trials
-	Arms     [2]string // what the sheet calls the treated and the control arm
+	Readings []ReadingEffect // of the findings that have some
+	Trials   bool            // the sheet calls its rows trials
+	Arms     [2]string       // what the sheet calls the treated and the control arm
 }
 
 // Outcome is one pooled outcome.
@@ -39,9 +47,11 @@ type Outcome struct {
 	Counts   Counts
 	Studies  []Study // pooled, in the order of the sheet
 	Excluded []Excluded
-	Result   *Result // nil when nothing could be pooled; Problem then says why
+	PValues  *PValues // studies weighed by their p-value alone; nil if there is none
+	Result   *Result  // nil when nothing could be pooled; Problem then says why
 	Problem  string
 	Notes    []string // what was assumed, in sentences
+	Accrual  *Accrual // nil unless some of it was wanted
 }
 
 // Analysis is what was settled before pooling, null and thresholds on the
@@ -53,6 +63,9 @@ type Analysis struct {
 	Important  *meta.Limits // the trivial zone's limits; nil without an important difference
 	Prior      []float64
 	Correction effect.Correction
+	// NullMissing: the measure has no value of no effect and none is given, so
+	// that nothing is weighed; Model.Null then means nothing.
+	NullMissing bool
 }
 
 // Counts counts an outcome's rows and people.
@@ -73,7 +86,8 @@ type Study struct {
 	Evidence    evidence.Ratio // normal form, of this study alone
 	Basis       Basis
 	Conversions []effect.Conversion
-	Corrected   bool // a zero cell was corrected
+	Corrected   bool     // a zero cell was corrected
+	Assumptions []string // what the number rests on besides the report; see Converted
 }
 
 // Excluded is a row that was not pooled.
@@ -91,6 +105,7 @@ type Result struct {
 	Posterior     []Belief
 	DoubtersPrior Belief // Posterior is the level, Prior the doubter's prior
 	Regions       []Region
+	Without       *meta.Fit // without the converted studies; nil if there are none, or no others
 }
 
 // Belief is a probability of an effect before and after the data.
@@ -124,11 +139,18 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 		if err := ctx.Err(); err != nil {
 			return nil, err
 		}
-		o, err := s.outcome(x, plan, name, blocked)
+		o, findings, err := runOutcome(x, plan, name, blocked)
 		if err != nil {
 			return nil, err
 		}
+		if err := o.accrue(ctx, x.Columns, plan, want); err != nil {
+			return nil, err
+		}
 		s.Outcomes = append(s.Outcomes, *o)
+		s.Findings = append(s.Findings, findings...)
+	}
+	if err := s.read(ctx, x, plan); err != nil {
+		return nil, err
 	}
 	s.Cautions = cautions(s)
 	return s, nil
@@ -196,36 +218,43 @@ func blockedRows(findings []review.Finding) map[rowKey]review.Finding {
 	return blocked
 }
 
-// outcome pools one outcome.
-func (s *Synthesis) outcome(x *review.Extraction, plan *review.Plan, name string, blocked map[rowKey]review.Finding) (*Outcome, error) {
+// runOutcome pools one outcome, with what was found on the way.
+func runOutcome(x *review.Extraction, plan *review.Plan, name string, blocked map[rowKey]review.Finding) (*Outcome, []review.Finding, error) {
 	asked, err := plan.Analysis(name)
 	if err != nil {
-		return nil, fmt.Errorf("outcome %q: %w", name, err)
+		return nil, nil, fmt.Errorf("outcome %q: %w", name, err)
 	}
 	o := &Outcome{Name: name}
 	if err := knownColumns(asked.Where, x.Columns); err != nil {
 		o.Problem = err.Error()
-		return o, nil
+		return o, nil, nil
 	}
-	rows := o.rows(x, asked.Where, blocked)
+	where := newRowFilter(asked.Where, x.Columns)
+	rows := o.rows(x, where, blocked)
 	if f, refused := refusal(x.Findings, name); refused {
 		o.Problem = f.Message
-		return o, nil
+		return o, nil, nil
 	}
 	if err := o.settle(asked, rows); err != nil {
 		o.Problem = err.Error()
-		return o, nil
+		return o, nil, nil
 	}
-	s.Findings = append(s.Findings, o.derive(rows)...)
+	findings := o.derive(rows)
+	o.markReported()
+	o.filterConverted(where)
+	if err := o.PValues.combine(); err != nil {
+		o.Problem = err.Error()
+		return o, findings, nil
+	}
 	if len(o.Studies) == 0 {
 		o.Problem = o.nothingLeft()
-		return o, nil
+		return o, findings, nil
 	}
 	o.count()
 	if err := o.pool(asked); err != nil {
 		o.Problem = err.Error()
 	}
-	return o, nil
+	return o, findings, nil
 }
 
 // knownColumns refuses a filter on a column that the sheet does not have: it
@@ -234,7 +263,7 @@ func knownColumns(where *review.Filter, columns []review.Column) error {
 	if where == nil {
 		return nil
 	}
-	var names []string
+	names := []string{convertedColumn}
 	for _, c := range columns {
 		names = append(names, c.Names()...)
 	}
@@ -247,15 +276,15 @@ func knownColumns(where *review.Filter, columns []review.Column) error {
 }
 
 // rows returns the rows of the outcome that may be pooled, and lists the others.
-func (o *Outcome) rows(x *review.Extraction, where *review.Filter, blocked map[rowKey]review.Finding) []*review.Study {
+func (o *Outcome) rows(x *review.Extraction, where rowFilter, blocked map[rowKey]review.Finding) []*review.Study {
 	var rows []*review.Study
 	for i := range x.Studies {
 		row := &x.Studies[i]
 		if row.Outcome != o.Name {
 			continue
 		}
-		if where != nil && !where.Match(row.Cell) {
-			o.exclude(row, fmt.Sprintf("left out by the filter %q", where), false)
+		if !where.mayKeep(row) {
+			o.exclude(row, where.reason(), false)
 			continue
 		}
 		o.Counts.Rows++
@@ -297,13 +326,12 @@ func (o *Outcome) nothingLeft() string {
 func (o *Outcome) count() {
 	for i := range o.Studies {
 		study := &o.Studies[i]
-		for _, n := range study.Source.Numbers {
-			switch n.Field {
-			case review.TotalTreated, review.TotalControl:
-				o.Counts.Participants += int(n.Value)
-			case review.EventsTreated, review.EventsControl:
-				o.Counts.Events += int(n.Value)
-			}
+		d := derivation{row: study.Source}
+		o.Counts.Participants += int(d.bothArms())
+		if d.has(review.EventsTreated) || d.has(review.EventsControl) {
+			o.Counts.Events += int(d.value(review.EventsTreated)) + int(d.value(review.EventsControl))
+		} else {
+			o.Counts.Events += int(d.value(review.Events))
 		}
 		if study.Corrected {
 			o.Counts.Corrected++

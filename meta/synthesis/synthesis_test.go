@@ -81,7 +81,7 @@ func TestMixedKinds(t *testing.T) {
 		if math.Abs(study.Estimate.Y-y) > 1e-12 || math.Abs(study.Estimate.SE-se) > 1e-9 {
 			t.Errorf("%s: %v, want %v, %v", study.Source.Name, study.Estimate, y, se)
 		}
-		if got, want := study.Converted(o), study.Basis != FromCounts; got != want {
+		if got, want := study.Converted(), study.Basis != FromCounts; got != want {
 			t.Errorf("%s: converted %v, want %v", study.Source.Name, got, want)
 		}
 	}
@@ -166,9 +166,9 @@ func TestRefusals(t *testing.T) {
 		{"a column is unknown", "does not have", func(s *sheet) { s.row("a", "", estimate(1, 1)) }, []string{"where", "yaer > 2"}},
 		{"null of a ratio", "null", func(s *sheet) { s.row("a", "", estimate(1, 1)) }, []string{"measure", "odds ratio", "null", "-1"}},
 		{"important beside the null", "both sides", func(s *sheet) { s.row("a", "", estimate(1, 1)) }, []string{"important", "2, 3"}},
-		{"means as odds ratio", "odds ratio", func(s *sheet) {
+		{"means as risk ratio", "risk ratio", func(s *sheet) {
 			s.row("a", "", map[review.Field]float64{review.MeanTreated: 1, review.SDTreated: 1, review.TotalTreated: 9, review.MeanControl: 1, review.SDControl: 1, review.TotalControl: 9})
-		}, []string{"measure", "odds ratio"}},
+		}, []string{"measure", "risk ratio"}},
 		{"tau against interval", "maximum-likelihood", func(s *sheet) {
 			s.row("a", "", estimate(1, 1))
 			s.row("b", "", estimate(2, 1))
