@@ -147,7 +147,7 @@ func TestDecimalMarks(t *testing.T) {
 		value      float64 // of the first number of the first row
 	}{
 		{"comma", "study;y;se\nA;0,5;0,25\nB;1,125;1\n", []string{"note F3 B:B", "note F3 C:C"}, 0.5},
-		{"ambiguous", "study;y;se\nA;1;1\nB;1,234;1\n", []string{"error F3 B3"}, 1},
+		{"ambiguous", "study;y;se\nA;1;1\nB;1,234;1\n", []string{"warning F3 B:B", "error F3 B3"}, 1},
 		{"thousands", "study;y;se\nA;1,234;1\nB;1,234,567;1\n", nil, 1234},
 		{"mixed", "study;y;se\nA;1;1\nB;0,5;1\nC;0.5;1\n", []string{"error F4 B3", "error F4 B4"}, 1},
 	} {

@@ -2,9 +2,11 @@ package ingest
 
 import (
 	"context"
+	"encoding/binary"
 	"slices"
 	"strings"
 	"testing"
+	"unicode/utf16"
 
 	"steelyard/meta/review"
 )
@@ -121,4 +123,71 @@ func TestThreeGroups(t *testing.T) {
 	if err == nil {
 		t.Errorf("read as %q with %q", lines(x), said(x))
 	}
+}
+
+// TestReadings: a column of commas that may mean either is offered with both
+// readings of every such cell.
+func TestReadings(t *testing.T) {
+	x := mustRead(t, []byte("study;mean difference;se\nA;1,234;1\nB;5;1\nC;-2,500;1\n"), "t.csv", Options{})
+	var f review.Finding
+	for _, have := range x.Findings {
+		if have.Readings != nil {
+			f = have
+		}
+	}
+	if f.Rule != "F3" || f.Severity != review.Warning || f.Place.Cell() != "B:B" || len(f.Readings) != 2 {
+		t.Fatalf("finding %+v", f)
+	}
+	for i, want := range [][]float64{{1.234, -2.5}, {1234, -2500}} {
+		r := f.Readings[i]
+		if len(r.Numbers) != 2 || r.Numbers[0].Value != want[0] || r.Numbers[1].Value != want[1] ||
+			r.Numbers[0].Place.Cell() != "B2" || r.Numbers[1].Place.Cell() != "B4" || r.Numbers[0].Field != review.Estimate {
+			t.Errorf("%s: %+v, want %v", r.Label, r.Numbers, want)
+		}
+	}
+}
+
+// TestSameTable: one table as text in three encodings and with two decimal marks,
+// and as a workbook, gives the same studies.
+func TestSameTable(t *testing.T) {
+	rows := table{{"study", "estimate", "se", "events treated", "total treated", "note"},
+		{"Müller 1999", 0.75, 0.125, 3, 40, "é"}, {"O'Brien", -1.5, 0.25, 12, 1000, "naïve"}}
+	want := lines(mustRead(t, rows.xlsx(t), "t.xlsx", Options{}))
+	point := string(rows.csv(t))
+	comma := strings.NewReplacer(",", ";", ".", ",").Replace(point)
+	for name, text := range map[string]string{"point": point, "comma": comma} {
+		for encoding, data := range map[string][]byte{
+			"UTF-8":                    []byte(text),
+			"UTF-8 with a mark":        []byte("\ufeff" + text),
+			"UTF-16, little end first": utf16Bytes(text, binary.LittleEndian),
+			"UTF-16, big end first":    utf16Bytes(text, binary.BigEndian),
+			"Windows-1252":             latinBytes(text),
+		} {
+			if got := lines(mustRead(t, data, "t.csv", Options{})); !slices.Equal(got, want) {
+				t.Errorf("%s, %s:\n got %q\nwant %q", name, encoding, got, want)
+			}
+		}
+	}
+	if len(want) != 2 || !strings.Contains(want[0], "Müller 1999") || !strings.Contains(want[1], "estimate=-1.5|se=0.25|events treated=12|total treated=1000") {
+		t.Errorf("the workbook is read as %q", want)
+	}
+}
+
+// utf16Bytes encodes text with a byte-order mark.
+func utf16Bytes(text string, order binary.ByteOrder) []byte {
+	var data []byte
+	for _, unit := range utf16.Encode([]rune("\ufeff" + text)) {
+		data = append(data, 0, 0)
+		order.PutUint16(data[len(data)-2:], unit)
+	}
+	return data
+}
+
+// latinBytes encodes text of the first 256 characters, one byte each.
+func latinBytes(text string) []byte {
+	var data []byte
+	for _, r := range text {
+		data = append(data, byte(r))
+	}
+	return data
 }

@@ -59,6 +59,7 @@ func (t *tableReader) chooseDecimals() {
 			t.decide(c, texts, numbers)
 		}
 	}
+	t.offerReadings()
 }
 
 // hasComma reports whether a text may use a comma, or groups parted by points.
