@@ -113,81 +113,42 @@ func (a *archive) explain(part string, err error) *FileError {
 	return e
 }
 
-// maxTokenBytes is the length of the longest tag or text within a part.
-const maxTokenBytes = 2 << 20
-
-// partReader unpacks a part byte by byte and enforces the limits.
+// partReader unpacks a part and enforces the limits.
 type partReader struct {
 	archive *archive
 	part    string
 	r       io.ReadCloser
 	packed  int64
 	offset  int64 // unpacked so far
-	token   int64 // offset at which the current token began
-	buffer  [16 << 10]byte
-	pos     int
-	end     int
 	err     error
 }
 
-// ReadByte serves the XML decoder, which then does not read ahead.
-func (p *partReader) ReadByte() (byte, error) {
-	if p.pos == p.end {
-		if err := p.fill(); err != nil {
-			return 0, err
-		}
-	}
-	c := p.buffer[p.pos]
-	p.pos++
-	return c, nil
-}
-
-// Read completes the decoder's interface.
+// Read unpacks on.
 func (p *partReader) Read(b []byte) (int, error) {
-	if p.pos == p.end {
-		if err := p.fill(); err != nil {
-			return 0, err
-		}
+	if p.err == nil {
+		p.err = p.archive.ctx.Err()
 	}
-	n := copy(b, p.buffer[p.pos:p.end])
-	p.pos += n
-	return n, nil
-}
-
-func (p *partReader) fill() error {
 	if p.err != nil {
-		return p.err
+		return 0, p.err
 	}
-	if p.err = p.archive.ctx.Err(); p.err != nil {
-		return p.err
-	}
-	var n int
-	for n == 0 && p.err == nil {
-		n, p.err = p.r.Read(p.buffer[:])
-	}
+	n, err := p.r.Read(b)
 	p.offset += int64(n)
 	p.archive.unzipped += int64(n)
 	switch {
 	case p.offset > MaxPartBytes:
-		p.err = p.archive.tooLarge(p.part, MaxPartBytes)
+		err = p.archive.tooLarge(p.part, MaxPartBytes)
 	case p.archive.unzipped > MaxUnzippedBytes:
-		p.err = p.archive.tooLarge("", MaxUnzippedBytes)
+		err = p.archive.tooLarge("", MaxUnzippedBytes)
 	case p.offset > RatioFreeBytes && p.offset > MaxRatio*p.packed:
-		p.err = &FileError{File: p.archive.file, Part: p.part, Problem: fmt.Sprintf("unpacks to more than %d times its size, as only files made to exhaust a computer do", MaxRatio),
+		err = &FileError{File: p.archive.file, Part: p.part, Problem: fmt.Sprintf("unpacks to more than %d times its size, as only files made to exhaust a computer do", MaxRatio),
 			Remedy: "get the file from a source you trust"}
-	case p.offset-p.token > maxTokenBytes:
-		p.err = p.archive.refuse(p.part, fmt.Sprintf("holds a single value of more than %d MB", maxTokenBytes>>20))
 	default:
-		p.pos, p.end = 0, n
-		if n > 0 {
-			return nil
-		}
+		p.err = err
+		return n, err
 	}
-	return p.err
+	p.err = err
+	return 0, err
 }
-
-// begin marks the start of a token.
-func (p *partReader) begin() { p.token = p.offset - int64(p.end-p.pos) }
 
 func (p *partReader) close() { p.r.Close() }
 

@@ -10,7 +10,7 @@ import (
 )
 
 // Kind says what a cell holds.
-type Kind int
+type Kind uint8
 
 // The kinds. A text file has only Blank and Text cells: what its digits mean is
 // decided by whoever knows the column, see ParseNumber and Decimal.
@@ -28,7 +28,7 @@ var kindNames = [...]string{"blank", "text", "number", "boolean", "date", "error
 
 // String names the kind in a word or two.
 func (k Kind) String() string {
-	if k < 0 || int(k) >= len(kindNames) {
+	if int(k) >= len(kindNames) {
 		return fmt.Sprintf("kind %d", int(k))
 	}
 	return kindNames[k]
@@ -36,13 +36,13 @@ func (k Kind) String() string {
 
 // Cell is one cell. The zero Cell is blank.
 type Cell struct {
-	Kind Kind
 	// Text is the value exactly as stored: numbers with all digits of the file,
 	// text as typed (line ends as "\n"; control, invisible and direction-override
 	// characters removed, which is remarked), dates as "2016-12-03",
 	// "2016-12-03T10:30:00", "10:30:00" (a time of day) or "PT36H0M0S" (a length
 	// of time, from formats such as [h]:mm).
 	Text string
+	Kind Kind
 	// Formula says that the value is a formula's stored result.
 	Formula bool
 }

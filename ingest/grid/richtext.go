@@ -31,12 +31,13 @@ func (x *xmlPart) richText() (string, error) {
 // appendText adds the content of an element <t>; white space around it counts
 // only where it is declared to be kept.
 func (x *xmlPart) appendText(text *[]byte, e xml.StartElement) error {
+	kept := preserves(e)
 	content, err := x.content()
 	if err != nil {
 		return err
 	}
 	part := string(content)
-	if !preserves(e) {
+	if !kept {
 		part = strings.Trim(part, " \t\r\n")
 	}
 	*text = append(*text, part...)

@@ -1,6 +1,7 @@
 package grid
 
 import (
+	"bytes"
 	"encoding/xml"
 	"fmt"
 	"io"
@@ -27,7 +28,7 @@ type xmlPart struct {
 	row     int    // of the cell being read, 0 for none
 	col     int
 	r       *partReader
-	d       *xml.Decoder
+	d       *xmlScanner
 	spaces  []string // namespaces whose elements are read
 	depth   int
 	text    []byte // scratch of content
@@ -53,7 +54,7 @@ func (a *archive) read(part, sheet string, spaces []string, root string, body fu
 		return err
 	}
 	defer r.close()
-	x := &xmlPart{archive: a, part: part, sheet: sheet, r: r, d: xml.NewDecoder(r), spaces: spaces}
+	x := &xmlPart{archive: a, part: part, sheet: sheet, r: r, d: newXMLScanner(r), spaces: spaces}
 	if err := x.document(root, body); err != nil {
 		e := a.explain(part, err)
 		if e.Sheet == "" {
@@ -79,20 +80,14 @@ func (x *xmlPart) document(root string, body func(*xmlPart) error) error {
 		return err
 	}
 	for {
-		token, err := x.token()
-		if err == io.EOF {
+		kind, err := x.token()
+		switch {
+		case err == io.EOF:
 			return nil
-		}
-		if err != nil {
+		case err != nil:
 			return err
-		}
-		switch t := token.(type) {
-		case xml.StartElement:
+		case kind == startToken, kind == textToken && len(bytes.TrimSpace(x.d.text)) > 0:
 			return x.refuse("goes on after its end")
-		case xml.CharData:
-			if strings.TrimSpace(string(t)) != "" {
-				return x.refuse("goes on after its end")
-			}
 		}
 	}
 }
@@ -100,20 +95,16 @@ func (x *xmlPart) document(root string, body func(*xmlPart) error) error {
 // root returns the root element.
 func (x *xmlPart) root() (xml.StartElement, error) {
 	for {
-		token, err := x.token()
-		switch t := token.(type) {
-		case xml.StartElement:
-			return t, nil
-		case xml.CharData:
-			if text := strings.TrimLeft(string(t), "\ufeff \t\r\n"); text != "" {
-				return xml.StartElement{}, x.refuse("does not begin as XML")
-			}
-		}
+		kind, err := x.token()
 		switch {
 		case err == io.EOF:
 			return xml.StartElement{}, x.refuse("is empty")
 		case err != nil:
 			return xml.StartElement{}, err
+		case kind == startToken:
+			return x.d.element, nil
+		case len(bytes.TrimLeft(x.d.text, "\ufeff \t\r\n")) > 0:
+			return xml.StartElement{}, x.refuse("does not begin as XML")
 		}
 	}
 }
@@ -124,59 +115,57 @@ func (x *xmlPart) refuse(problem string) *FileError {
 	return e
 }
 
-// token returns the next token; it refuses document types and deep nesting.
-func (x *xmlPart) token() (xml.Token, error) {
-	x.r.begin()
-	token, err := x.d.Token()
-	if err != nil {
-		return nil, err
-	}
-	switch token.(type) {
-	case xml.StartElement:
+// token returns the next token, of which the scanner holds the content; it refuses
+// document types and deep nesting.
+func (x *xmlPart) token() (tokenKind, error) {
+	kind, err := x.d.next()
+	switch {
+	case err == errDocumentType || err == errTokenTooLong:
+		return noToken, x.refuse(err.Error())
+	case err != nil:
+		return noToken, err
+	case kind == startToken:
 		if x.depth++; x.depth > maxDepth {
-			return nil, x.refuse("nests elements too deep")
+			return noToken, x.refuse("nests elements too deep")
 		}
-	case xml.EndElement:
+	case kind == endToken:
 		x.depth--
-	case xml.Directive:
-		return nil, x.refuse("declares a document type, which no workbook needs")
 	}
-	return token, nil
+	return kind, nil
 }
 
 // inside returns the next token within an open element, where the part may not end.
-func (x *xmlPart) inside() (xml.Token, error) {
-	token, err := x.token()
+func (x *xmlPart) inside() (tokenKind, error) {
+	kind, err := x.token()
 	if err == io.EOF {
 		err = io.ErrUnexpectedEOF
 	}
-	return token, err
+	return kind, err
 }
 
 // knows reports whether an element belongs to a namespace that is read.
 func (x *xmlPart) knows(e xml.StartElement) bool { return slices.Contains(x.spaces, e.Name.Space) }
 
 // children calls visit for every child element of the current element, up to
-// and with its end; visit must read to the child's end. Elements of other
-// namespaces are passed over.
+// and with its end; visit must read to the child's end, and have looked at its
+// attributes before. Elements of other namespaces are passed over.
 func (x *xmlPart) children(visit func(xml.StartElement) error) error {
 	for {
-		token, err := x.inside()
+		kind, err := x.inside()
+		switch {
+		case err != nil:
+			return err
+		case kind == endToken:
+			return nil
+		case kind == textToken:
+			continue
+		case x.knows(x.d.element):
+			err = visit(x.d.element)
+		default:
+			err = x.skip()
+		}
 		if err != nil {
 			return err
-		}
-		switch t := token.(type) {
-		case xml.EndElement:
-			return nil
-		case xml.StartElement:
-			if x.knows(t) {
-				err = visit(t)
-			} else {
-				err = x.skip()
-			}
-			if err != nil {
-				return err
-			}
 		}
 	}
 }
@@ -196,12 +185,12 @@ func (x *xmlPart) skip() error {
 func (x *xmlPart) content() ([]byte, error) {
 	x.text = x.text[:0]
 	for end := x.depth - 1; x.depth > end; {
-		token, err := x.inside()
+		kind, err := x.inside()
 		if err != nil {
 			return nil, err
 		}
-		if t, ok := token.(xml.CharData); ok && x.depth == end+1 {
-			x.text = append(x.text, t...)
+		if kind == textToken && x.depth == end+1 {
+			x.text = append(x.text, x.d.text...)
 		}
 	}
 	return x.text, nil
