@@ -223,6 +223,27 @@ func TestGreedyTippingSet(t *testing.T) {
 	}
 }
 
+// TestTippingSetMayLeaveOneStudy: only the study with z = 0 alone favours no
+// effect as much as (0 − 1 − ln 2)/2/1.317 = −0.643 steps.
+func TestTippingSetMayLeaveOneStudy(t *testing.T) {
+	r := pairs(t, Model{Level: 0.95, Effects: CommonEffect}, []float64{3, 0, 3}, []float64{1, 1, 1})
+	got, err := TippingSet(background, r, -0.6, Work{})
+	if err != nil || !slices.Equal(got.Rows, []int{0, 2}) || got.Ways != 1 || got.Mean.K != 1 {
+		t.Errorf("%+v, %v", got, err)
+	}
+}
+
+// TestGreedyTippingSetTakesTheHeaviest: of 25 studies one alone carries all the
+// evidence.
+func TestGreedyTippingSetTakesTheHeaviest(t *testing.T) {
+	y, s := make([]float64, 25), slices.Repeat([]float64{1}, 25)
+	y[7] = 30
+	got, err := TippingSet(background, pairs(t, Model{Level: 0.95, Effects: CommonEffect}, y, s), 0, Work{})
+	if err != nil || !got.Found || !slices.Equal(got.Rows, []int{7}) {
+		t.Errorf("%+v, %v", got, err)
+	}
+}
+
 // TestInfluenceOfCommonEffect: closed forms. With leverage h = w/W and residual
 // r = y − μ: μ − μᵢ = hr/(1 − h), var μᵢ = 1/(W − w), so that the deleted residual
 // is r/√(v(1 − h)), the covariance ratio 1/(1 − h), and so on.

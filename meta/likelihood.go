@@ -28,7 +28,8 @@ type mode struct{ tau2, logL float64 }
 
 // Between two values of τ² whose ratio is at most crossingRatio, a change of sign
 // of the slope is taken for one maximum; between two whose ratio is at most
-// narrowRatio, a stretch of one sign is not divided further.
+// narrowRatio, a stretch of one sign is not divided further but looked through,
+// which costs more than a few divisions.
 var (
 	crossingRatio = math.Exp(1. / 4)
 	narrowRatio   = math.Exp(1. / 32)

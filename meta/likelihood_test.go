@@ -32,6 +32,30 @@ func TestSearchDividesToTheMaximum(t *testing.T) {
 	}
 }
 
+// TestSearchWhereBothEndsRise: six precise studies put a maximum near τ² = 0.05,
+// two that lie far out make the likelihood rise again.
+func TestSearchWhereBothEndsRise(t *testing.T) {
+	y := []float64{-0.3, 0.2, 0.1, -0.1, 0.3, -0.2, 60, -60}
+	s := []float64{0.1, 0.1, 0.1, 0.1, 0.1, 0.1, 8, 8}
+	p := prepared(t, with(MaximumLikelihood, Wald), y, s)
+	l := likelihood{data: &p.data, kind: fullLikelihood}
+	square := p.data.unit * p.data.unit
+	from, to := l.point(1e-4/square), l.point(100/square)
+	if from.slope <= 0 || to.slope <= 0 {
+		t.Fatalf("slopes %v and %v, want both above 0", from.slope, to.slope)
+	}
+	best, logL := 0.0, math.Inf(-1) // on a fine grid of the plain likelihood
+	for tau2 := 1e-4; tau2 < 1; tau2 *= 1.001 {
+		if l := plainLogL(y, s, tau2, false); l > logL {
+			best, logL = tau2, l
+		}
+	}
+	found, err := l.search(nil, from, to)
+	if err != nil || len(found) != 1 || !near(found[0].tau2*square, best, 0.002) {
+		t.Errorf("%v, %v; want one maximum at %v", found, err, best)
+	}
+}
+
 // TestScatterAndWeightFall: the search rests on it, for every kind of likelihood.
 func TestScatterAndWeightFall(t *testing.T) {
 	for _, name := range checkNames {

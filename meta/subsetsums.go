@@ -96,7 +96,7 @@ func (f *subsetSums) pool(mask uint32) (subsetPoint, bool) {
 	mean := wy / w
 	n := bits.OnesCount32(mask)
 	if n == 1 {
-		return f.point(mean, 1/w, 0), true
+		return f.point(mean, 1/w, 0)
 	}
 	q, df := wyy-wy*mean, float64(n-1)
 	if !(q > scatterKept*wyy) {
@@ -113,9 +113,9 @@ func (f *subsetSums) pool(mask uint32) (subsetPoint, bool) {
 		}
 	}
 	if !f.knapp {
-		return f.point(mean, 1/w, 0), true
+		return f.point(mean, 1/w, 0)
 	}
-	return f.point(mean, max(f.least, q/df)/w, n-1), true
+	return f.point(mean, max(f.least, q/df)/w, n-1)
 }
 
 // spread returns mean, Σw and Q at a τ² above 0, summed about a mean near by.
@@ -134,8 +134,8 @@ func (f *subsetSums) spread(mask uint32, tau2, near float64) (mean, w, q float64
 }
 
 // point returns the result at a mean with its variance: normal, or Student-t with
-// df > 0 degrees of freedom.
-func (f *subsetSums) point(mean, variance float64, df int) subsetPoint {
+// df > 0 degrees of freedom; false if it is out of range.
+func (f *subsetSums) point(mean, variance float64, df int) (subsetPoint, bool) {
 	t := (mean - f.null) / math.Sqrt(variance)
 	p := subsetPoint{estimate: f.centre + mean*f.unit, statistic: t}
 	switch {
@@ -146,7 +146,7 @@ func (f *subsetSums) point(mean, variance float64, df int) subsetPoint {
 	default:
 		p.ln = f.matched[df].ln(t)
 	}
-	return p
+	return p, math.Abs(p.ln) <= math.MaxFloat64
 }
 
 // matchedCurve is the matched evidence of Student's t at one number of degrees of

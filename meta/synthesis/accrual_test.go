@@ -181,6 +181,7 @@ func TestOrderOfAccrual(t *testing.T) {
 		{"numbers", make([]review.Date, 4), []string{"10", "9.5", "-1", "1e1"}, []string{review.SettingOrder, "Dose"}, "c b a+d", "Dose", ""},
 		{"a minus sign", make([]review.Date, 4), []string{"10", "9.5", "\u22121", "1e2"}, []string{review.SettingOrder, "dose"}, "c b a d", "dose", ""},
 		{"texts", make([]review.Date, 4), []string{"Wave 10", "wave 9", "Wave 010", "first"}, []string{review.SettingOrder, "dose"}, "d b a+c", "dose", ""},
+		{"numbers and a text", make([]review.Date, 4), []string{"x", "10", "9", "8"}, []string{review.SettingOrder, "dose"}, "d c b a", "dose", ""},
 		{"dates as texts", make([]review.Date, 4), []string{"1990-12-01", "1990-02-11", "1989-12", "1990-2-3"}, []string{review.SettingOrder, "dose"}, "c d b a", "dose", ""},
 		{"blank cells", make([]review.Date, 4), []string{"2", "", "1", "3"}, []string{review.SettingOrder, "dose"}, "c a d b", "dose", "One study without a value of \"dose\" enters last: b."},
 		{"all blank", make([]review.Date, 4), make([]string, 4), []string{review.SettingOrder, "dose"}, "a b c d", "file", "No study has a value of \"dose\""},
