@@ -32,7 +32,8 @@ type Tipping struct {
 // With more, studies are removed one by one, each time the one without which the
 // least evidence is left: that set may not be the smallest.
 //
-// Sets that leave what cannot be pooled do not count. It returns the error of
+// Sets that leave what cannot be pooled do not count; progress starts anew with
+// each size. It returns the error of
 // pooling all studies, and the cause if ctx ends.
 func TippingSet(ctx context.Context, r Refit, below float64, work Work) (*Tipping, error) {
 	k := r.K()
