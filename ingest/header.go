@@ -43,8 +43,6 @@ var fieldSets = [][]review.Field{
 // rareSets are further sets of which a header may hold one; they are no help in
 // guessing what unknown columns mean.
 var rareSets = [][]review.Field{
-	{review.MedianTreated, review.Q1Treated, review.Q3Treated, review.TotalTreated, review.MedianControl, review.Q1Control, review.Q3Control, review.TotalControl},
-	{review.MedianTreated, review.MinTreated, review.MaxTreated, review.TotalTreated, review.MedianControl, review.MinControl, review.MaxControl, review.TotalControl},
 	{review.MeanTreated, review.SDTreated, review.MeanControl, review.SDControl, review.Total},
 	{review.MeanTreated, review.TotalTreated, review.MeanControl, review.TotalControl, review.PValue},
 	{review.MeanTreated, review.TotalTreated, review.MeanControl, review.TotalControl, review.TestStatistic},
@@ -59,11 +57,29 @@ var rareSets = [][]review.Field{
 	{review.Estimate, review.TestStatistic},
 	{review.AnalysisEstimate, review.TestStatistic},
 	{review.Estimate, review.SDDifference},
+	{review.TestStatistic, review.EventsTreated, review.EventsControl},
+	{review.TestStatistic, review.Events},
 	{review.Estimate, review.Events},
 	{review.Estimate, review.EventsTreated, review.EventsControl},
 	{review.PValue, review.Direction, review.Total},
 	{review.PValue, review.Direction, review.TotalTreated, review.TotalControl},
 	{review.PValue, review.Direction, review.Events},
+}
+
+// armSets returns the sets of two arms of which each gives its mean in one of
+// several forms.
+func armSets() [][]review.Field {
+	treated := [][]review.Field{{review.MeanTreated, review.SDTreated}, {review.MeanTreated, review.SETreated},
+		{review.MedianTreated, review.Q1Treated, review.Q3Treated}, {review.MedianTreated, review.MinTreated, review.MaxTreated}}
+	control := [][]review.Field{{review.MeanControl, review.SDControl}, {review.MeanControl, review.SEControl},
+		{review.MedianControl, review.Q1Control, review.Q3Control}, {review.MedianControl, review.MinControl, review.MaxControl}}
+	var sets [][]review.Field
+	for _, a := range treated {
+		for _, b := range control {
+			sets = append(sets, slices.Concat(a, b, []review.Field{review.TotalTreated, review.TotalControl}))
+		}
+	}
+	return sets
 }
 
 // usable reports whether the header names the studies and one complete set of
@@ -73,7 +89,7 @@ func (h *header) usable() bool {
 	if !have[review.StudyName] {
 		return false
 	}
-	for _, set := range slices.Concat(fieldSets, rareSets) {
+	for _, set := range slices.Concat(fieldSets, rareSets, armSets()) {
 		complete := true
 		for _, field := range set {
 			complete = complete && have[field]

@@ -24,7 +24,7 @@ func ForestOf(s *synthesis.Synthesis, o *synthesis.Outcome) (ForestInput, error)
 		return ForestInput{}, fmt.Errorf("outcome %q has no result to draw: %s", o.Name, o.Problem)
 	}
 	if o.Analysis.NullMissing {
-		return ForestInput{}, fmt.Errorf("outcome %q: a %s has no value of no effect, and the chart needs a null for its evidence rail: give --null", o.Name, o.Analysis.Measure)
+		return ForestInput{}, fmt.Errorf("outcome %q: the measure, %s, has no value of no effect, and the chart needs a null for its evidence rail: give --null", o.Name, o.Analysis.Measure)
 	}
 	fit := o.Result.Fit
 	notation := words.OutcomeNotation(o)

@@ -177,7 +177,7 @@ func RegionEvidence(r synthesis.Region) string {
 
 // NotWeighed says why an outcome without a null has no evidence.
 func NotWeighed(o *synthesis.Outcome) string {
-	return fmt.Sprintf("not weighed: a %s has no value of no effect; state one with --null", Measure(o.Analysis.Measure))
+	return fmt.Sprintf("not weighed: the measure, %s, has no value of no effect; state one with --null", Measure(o.Analysis.Measure))
 }
 
 // Answer returns a pooled mean of an outcome with its evidence: "0.71 (0.58 to

@@ -31,7 +31,7 @@ func (o *Outcome) markReported() {
 		return
 	}
 	for i := range o.Studies {
-		if s := &o.Studies[i]; !s.Basis.Counted() {
+		if s := &o.Studies[i]; !s.Basis.Counted() && !s.Converted() {
 			s.Assumptions = append(s.Assumptions, AssumedReport)
 		}
 	}

@@ -149,7 +149,7 @@ func (d *derivation) tested() error {
 	if d.own().HasNull() {
 		return nil
 	}
-	return fmt.Errorf("a test says nothing of the standard error of a %s, which has no value of no effect; give se, limits, or the counts", d.own())
+	return fmt.Errorf("a test says nothing of the standard error where no effect has no value, as with %s; give se, limits, or the counts", d.own())
 }
 
 func (d *derivation) fromP() (effect.Estimate, error) {
@@ -212,7 +212,7 @@ func (d *derivation) toMeasure(e effect.Estimate, own effect.Measure) (effect.Es
 	case own == effect.MeanDifference && d.measure == effect.StandardisedMeanDifference:
 		return d.standardise(e)
 	}
-	return e, fmt.Errorf("the row gives a %s, which cannot be pooled as a %s", own, d.measure)
+	return e, fmt.Errorf("the row gives its effect as %s, which cannot be pooled as %s", own, d.measure)
 }
 
 // standardise divides a difference in means by the standard deviation that its
@@ -271,7 +271,7 @@ func (d *derivation) hazardVariance() (float64, error) {
 
 func (d *derivation) fromHazardEvents() (effect.Estimate, error) {
 	if d.own() != effect.HazardRatio {
-		return effect.Estimate{}, fmt.Errorf("the row gives a %s without a standard error or limits; give one of them", d.own())
+		return effect.Estimate{}, fmt.Errorf("the row gives its effect as %s without a standard error or limits; give one of them", d.own())
 	}
 	v, err := d.hazardVariance()
 	if err != nil {

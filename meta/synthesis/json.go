@@ -171,9 +171,13 @@ func conversionDocument(c effect.Conversion, row *review.Study) ConversionDocume
 
 // namedValues names numbers by their cell where the row holds them as they are,
 // under the number's name or under that of its form on the analysis scale.
+// Infinite degrees of freedom, which stand for the normal law, are absent.
 func namedValues(values []effect.Value, row *review.Study) map[string]float64 {
 	named := make(map[string]float64, len(values))
 	for _, v := range values {
+		if math.IsInf(v.Value, 0) {
+			continue
+		}
 		name := v.Name
 		for _, title := range []string{v.Name, "analysis " + v.Name} {
 			field, err := review.ParseField(title)

@@ -27,7 +27,7 @@ func (o *Outcome) settle(asked review.Analysis, rows []*review.Study) error {
 	if !measure.HasNull() && asked.Null == nil {
 		o.Analysis.NullMissing = true
 		if len(asked.Important) > 0 {
-			return fmt.Errorf("important: a %s has no value of no effect to measure a difference from; give one with --null", measure)
+			return fmt.Errorf("important: the measure, %s, has no value of no effect to measure a difference from; give one with --null", measure)
 		}
 		return nil
 	}
