@@ -26,6 +26,14 @@ func (a axis) x(v float64) float64 {
 	return a.x0 + (v-a.low)/(a.high-a.low)*(a.x1-a.x0)
 }
 
+// shift moves an axis with its ticks.
+func (a *axis) shift(by float64) {
+	a.x0, a.x1 = a.x0+by, a.x1+by
+	for i := range a.ticks {
+		a.ticks[i].x += by
+	}
+}
+
 // holds reports whether v lies on the axis.
 func (a axis) holds(v float64) bool { return a.low <= v && v <= a.high }
 
@@ -47,8 +55,26 @@ const maxTicks = 200
 
 // setTicks chooses the densest labels that keep labelGap apart at a type size.
 func (a *axis) setTicks(size float64) {
+	a.choose(func(ticks []tick) bool { return fits(ticks, size) })
+}
+
+// setUprightTicks chooses the densest labels that stand twice a type size apart
+// on an axis that runs upwards.
+func (a *axis) setUprightTicks(size float64) {
+	a.choose(func(ticks []tick) bool {
+		for i := 1; i < len(ticks); i++ {
+			if math.Abs(ticks[i].x-ticks[i-1].x) < 2*size {
+				return false
+			}
+		}
+		return true
+	})
+}
+
+// choose takes the densest labels that fit.
+func (a *axis) choose(fit func([]tick) bool) {
 	for _, candidate := range a.candidates() {
-		if fits(candidate, size) {
+		if fit(candidate) {
 			a.ticks = candidate
 			return
 		}

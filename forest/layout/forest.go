@@ -54,22 +54,7 @@ func Forest(in ForestInput, style ForestStyle) (Document, error) {
 func (in *ForestInput) cleaned() ForestInput {
 	out := *in
 	out.Title, out.Subtitle, out.Study = Clean(in.Title), Clean(in.Subtitle), Clean(in.Study)
-	out.Scale.Measure = Clean(in.Scale.Measure)
-	if out.Scale.Measure == "" {
-		out.Scale.Measure = "effect"
-	}
-	s := &out.Sides
-	s.Lower, s.Higher, s.Counts = Clean(s.Lower), Clean(s.Higher), Clean(s.Counts)
-	s.Arms = [2]string{Clean(s.Arms[0]), Clean(s.Arms[1])}
-	if s.Counts == "" {
-		s.Counts = "Events of total"
-	}
-	if s.Lower == "" {
-		s.Lower = "lower"
-	}
-	if s.Higher == "" {
-		s.Higher = "higher"
-	}
+	out.Scale, out.Sides, out.Notes = in.Scale.cleaned(), in.Sides.cleaned(), cleanNotes(in.Notes)
 	out.Rows = make([]ForestRow, len(in.Rows))
 	for i, r := range in.Rows {
 		r.Name, r.Year = Clean(r.Name), Clean(r.Year)
@@ -77,10 +62,6 @@ func (in *ForestInput) cleaned() ForestInput {
 			r.Counts[arm] = Count{Events: Clean(c.Events), Total: Clean(c.Total)}
 		}
 		out.Rows[i] = r
-	}
-	out.Notes = make([]Note, len(in.Notes))
-	for i, n := range in.Notes {
-		out.Notes[i] = Note{Head: Clean(n.Head), Text: Clean(n.Text)}
 	}
 	return out
 }

@@ -22,7 +22,7 @@ func (f *forest) placeHeads() headings {
 	}
 	var lines int
 	h.words, lines = f.rail.words(m.second)
-	f.titles = placeTitles(f.in.Title, f.in.Subtitle, f.style, m)
+	f.titles = placeTitles(f.in.Title, f.in.Subtitle, pageMark, f.style, m)
 	at := f.titles.bottom
 	if m.twoLine {
 		h.first = at + 16.38*u

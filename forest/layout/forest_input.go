@@ -136,3 +136,32 @@ func noun(study string, n int) string {
 	}
 	return many
 }
+
+// cleaned returns a scale whose name may stand in a drawing.
+func (s EffectScale) cleaned() EffectScale {
+	if s.Measure = Clean(s.Measure); s.Measure == "" {
+		s.Measure = "effect"
+	}
+	return s
+}
+
+// cleaned returns words that may stand in a drawing, none of them missing.
+func (s Sides) cleaned() Sides {
+	clean := func(text, otherwise string) string {
+		if text = Clean(text); text == "" {
+			return otherwise
+		}
+		return text
+	}
+	s.Lower, s.Higher, s.Counts = clean(s.Lower, "lower"), clean(s.Higher, "higher"), clean(s.Counts, "Events of total")
+	s.Arms = [2]string{Clean(s.Arms[0]), Clean(s.Arms[1])}
+	return s
+}
+
+func cleanNotes(notes []Note) []Note {
+	clean := make([]Note, len(notes))
+	for i, n := range notes {
+		clean[i] = Note{Head: Clean(n.Head), Text: Clean(n.Text)}
+	}
+	return clean
+}

@@ -11,7 +11,6 @@ import (
 // A page that is not the last says that the chart goes on.
 func (f *forest) noteItems(p pageRange, bottom float64) (items []Item, height float64) {
 	m := f.metrics
-	lead := m.lead * m.note
 	y := bottom + m.note + 7
 	if m.twoLine {
 		y--
@@ -20,10 +19,17 @@ func (f *forest) noteItems(p pageRange, bottom float64) (items []Item, height fl
 	if !p.last {
 		notes = []Note{{Text: "Continued on the next page."}}
 	}
-	last := bottom
+	return placeNotes(notes, m, f.width, y)
+}
+
+// placeNotes draws notes from a first baseline on; it returns the height of a
+// page that ends with them.
+func placeNotes(notes []Note, m metrics, width, y float64) (items []Item, height float64) {
+	lead := m.lead * m.note
+	last := y - lead
 	for _, n := range notes {
 		var lines []Item
-		lines, last = wrapNote(n, m.margin, y, f.width-2*m.margin, m.note, lead)
+		lines, last = wrapNote(n, m.margin, y, width-2*m.margin, m.note, lead)
 		items = append(items, lines...)
 		y = last + lead
 	}

@@ -11,7 +11,7 @@ func (f *forest) pooledItems(y levels) []Item {
 		p := f.in.Pooled
 		items = append(items, Line{X1: m.margin, Y1: y.rule, X2: right, Y2: y.rule, Width: 0.5})
 		items = append(items, f.rowTexts(*f.pooled, y.pooled, PooledBand)...)
-		items = append(items, f.diamond(p.Estimate, p.Low, p.High, y.pooled, f.diamondHalf())...)
+		items = append(items, diamond(f.axis, p.Estimate, p.Low, p.High, y.pooled, f.diamondHalf())...)
 		items = append(items, f.rail.bar(p.LnEvidence, y.pooled, m.pooledBar, p.Unwanted)...)
 	}
 	for i, r := range f.afterRows() {
@@ -56,8 +56,7 @@ func (f *forest) afterItems(r afterRow, y float64) []Item {
 
 // diamond draws the pooled effect from limit to limit; a side past the axis
 // stops in a head.
-func (f *forest) diamond(estimate, low, high, y, half float64) []Item {
-	a := f.axis
+func diamond(a axis, estimate, low, high, y, half float64) []Item {
 	x, left, right := a.x(estimate), a.x(low), a.x(high)
 	leftHalf, rightHalf := 0.0, 0.0
 	var heads []Item

@@ -69,7 +69,7 @@ func (f *forest) rowItems(p pageRange) []Item {
 			g.Title = t.fullName
 		}
 		g.Items = append(g.Items, f.rowTexts(t, y, Paper)...)
-		g.Items = append(g.Items, f.whisker(r, y)...)
+		g.Items = append(g.Items, whisker(f.axis, r.Low, r.High, y)...)
 		g.Items = append(g.Items, f.square(r, y, heaviest)...)
 		g.Items = append(g.Items, f.rail.bar(r.LnEvidence, y, f.metrics.bar, r.Unwanted)...)
 		items = append(items, g)
@@ -179,15 +179,14 @@ const (
 
 // whisker draws a row's interval without end caps; an end past the axis stops
 // in a head.
-func (f *forest) whisker(r ForestRow, y float64) []Item {
-	a := f.axis
-	x1, x2 := a.x(clamp(r.Low, a.low, a.high)), a.x(clamp(r.High, a.low, a.high))
+func whisker(a axis, low, high, y float64) []Item {
+	x1, x2 := a.x(clamp(low, a.low, a.high)), a.x(clamp(high, a.low, a.high))
 	var heads []Item
-	if r.Low < a.low {
+	if low < a.low {
 		heads = append(heads, head(a.x0, y, -headDepth, headHeight, Estimate))
 		x1 = a.x0 + headShort
 	}
-	if r.High > a.high {
+	if high > a.high {
 		heads = append(heads, head(a.x1, y, headDepth, headHeight, Estimate))
 		x2 = a.x1 - headShort
 	}

@@ -15,8 +15,8 @@ type titleBlock struct {
 }
 
 // placeTitles wraps title and subtitle for a chart; without them the chart moves
-// up.
-func placeTitles(title, subtitle string, style Style, m metrics) titleBlock {
+// up. The subtitle keeps a width free at its right.
+func placeTitles(title, subtitle string, free float64, style Style, m metrics) titleBlock {
 	b := titleBlock{size: 9, subSize: 7, lead: 11, left: m.margin, right: style.Width - m.margin, bottom: -5}
 	u := max(1, m.row/7.5)
 	if m.twoLine {
@@ -28,7 +28,7 @@ func placeTitles(title, subtitle string, style Style, m metrics) titleBlock {
 	}
 	room := b.right - b.left
 	b.title = wrapPlain(title, room, b.size, true)
-	b.subtitle = wrapPlain(subtitle, room-pageMark, b.subSize, false)
+	b.subtitle = wrapPlain(subtitle, room-free, b.subSize, false)
 	lead := b.lead
 	if !m.twoLine {
 		lead *= u
