@@ -1,6 +1,7 @@
 package main
 
 import (
+	"errors"
 	"fmt"
 	"io"
 	"os"
@@ -8,6 +9,7 @@ import (
 	"github.com/urfave/cli/v2"
 
 	"steelyard/ingest"
+	"steelyard/meta/choice"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
 )
@@ -15,8 +17,9 @@ import (
 // mostInput bounds what is read from standard input, in bytes.
 const mostInput = 200 << 20
 
-// analyse reads the call's file and runs the plan over it.
-func analyse(c *cli.Context) (*synthesis.Synthesis, error) {
+// analyse reads the call's file and runs the plan over it; want says which parts
+// beyond the pooled results.
+func analyse(c *cli.Context, want synthesis.Want) (*synthesis.Synthesis, error) {
 	path, err := oneFile(c)
 	if err != nil {
 		return nil, err
@@ -31,9 +34,14 @@ func analyse(c *cli.Context) (*synthesis.Synthesis, error) {
 	if err := applySettings(c, plan); err != nil {
 		return nil, err
 	}
-	s, err := synthesis.Run(c.Context, x, plan, synthesis.Want{Outcomes: c.StringSlice(flagOutcome)})
-	if err != nil && len(c.StringSlice(flagOutcome)) > 0 && c.Context.Err() == nil {
-		return nil, &callError{"--outcome: " + err.Error()}
+	want.Outcomes = c.StringSlice(flagOutcome)
+	if want.Work, err = work(c); err != nil {
+		return nil, err
+	}
+	s, err := synthesis.Run(c.Context, x, plan, want)
+	var unknown *choice.UnknownError
+	if errors.As(err, &unknown) {
+		return nil, &callError{err.Error()}
 	}
 	return s, err
 }

@@ -58,7 +58,7 @@ func chartForest(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	s, err := analyse(c)
+	s, err := analyse(c, synthesis.Want{})
 	if err != nil {
 		return err
 	}

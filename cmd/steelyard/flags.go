@@ -17,7 +17,6 @@ const (
 	flagFormat    = "format"
 	flagOut       = "out"
 	flagOverwrite = "overwrite"
-	flagQuiet     = "quiet"
 )
 
 // settingFlags returns a flag for every setting that the command uses: those of

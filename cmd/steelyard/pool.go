@@ -5,6 +5,8 @@ import (
 	"slices"
 
 	"github.com/urfave/cli/v2"
+
+	"steelyard/meta/synthesis"
 )
 
 func poolCommand() *cli.Command {
@@ -25,7 +27,7 @@ func pool(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	s, err := analyse(c)
+	s, err := analyse(c, synthesis.Want{})
 	if err != nil {
 		return err
 	}

@@ -77,5 +77,8 @@ type UnknownError struct {
 }
 
 func (e *UnknownError) Error() string {
+	if len(e.Valid) == 0 {
+		return fmt.Sprintf("%q is not a known %s", e.Text, e.What)
+	}
 	return fmt.Sprintf("%q is not a known %s; use one of: %s", e.Text, e.What, strings.Join(e.Valid, ", "))
 }

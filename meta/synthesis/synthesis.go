@@ -163,7 +163,7 @@ func wanted(x *review.Extraction, want Want) ([]string, error) {
 		return all, nil
 	}
 	if len(all) == 1 && all[0] == "" {
-		return nil, fmt.Errorf("the sheet has no column of outcomes: all its rows are one outcome")
+		return nil, &choice.UnknownError{What: "outcome of this sheet, which has no column of outcomes: all its rows are one; leave the name away", Text: want.Outcomes[0]}
 	}
 	var names []string
 	for _, name := range want.Outcomes {
