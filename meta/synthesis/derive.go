@@ -76,7 +76,7 @@ var kinds = []kind{
 	{FromEstimateStatistic, (*derivation).hasEstimateStatistic, (*derivation).reportable, (*derivation).fromStatistic, effect.Unspecified},
 	{FromEstimatePaired, (*derivation).hasEstimatePaired, only(effect.MeanDifference), (*derivation).fromDifferences, effect.MeanDifference},
 	{FromEstimateP, (*derivation).hasEstimateP, (*derivation).reportable, (*derivation).fromP, effect.Unspecified},
-	{FromEstimateEvents, (*derivation).hasEstimateEvents, only(effect.HazardRatio), (*derivation).fromHazardEvents, effect.HazardRatio},
+	{FromEstimateEvents, (*derivation).hasEstimateEvents, only(effect.HazardRatio), (*derivation).fromHazardEvents, effect.Unspecified},
 	{FromMeansTest, (*derivation).hasMeansTest, only(effect.MeanDifference, effect.StandardisedMeanDifference), (*derivation).fromMeansTest, effect.MeanDifference},
 	{FromHazardTest, (*derivation).hasHazardTest, only(effect.HazardRatio), (*derivation).fromHazardTest, effect.Unspecified},
 	{FromCountsAsMeans, (*derivation).hasCounts, only(effect.StandardisedMeanDifference), (*derivation).fromCountsAsMeans, effect.RiskRatio},

@@ -33,11 +33,7 @@ func (d *derivation) cluster() bool {
 
 // yes reports whether a folded text says so.
 func yes(text string) bool {
-	switch text {
-	case "yes", "y", "true", "1", "adjusted":
-		return true
-	}
-	return false
+	return strings.HasPrefix(text, "yes") || text == "y" || text == "true" || text == "adjusted"
 }
 
 // designEffect returns the factor by which clusters multiply the row's variance;

@@ -38,9 +38,6 @@ func (d *derivation) hasPValue() bool {
 
 // bothArms returns how many people a row's result is of.
 func (d *derivation) bothArms() float64 {
-	if d.has(review.Total) {
-		return d.value(review.Total)
-	}
 	if d.has(review.TotalTreated, review.TotalControl) && !d.crossover() {
 		return d.value(review.TotalTreated) + d.value(review.TotalControl)
 	}

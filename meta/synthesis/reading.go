@@ -2,6 +2,7 @@ package synthesis
 
 import (
 	"context"
+	"fmt"
 	"slices"
 
 	"steelyard/meta/review"
@@ -30,6 +31,8 @@ func (s *Synthesis) read(ctx context.Context, x *review.Extraction, plan *review
 					return err
 				}
 				if len(s.Readings) == mostReadings {
+					s.Findings = append(s.Findings, review.Finding{Severity: review.Note, Rule: s.Findings[i].Rule,
+						Message: fmt.Sprintf("only the first %d readings of findings were worked out; mend some of them and run again", mostReadings)})
 					return nil
 				}
 				o, _, err := runOutcome(changed, plan, name, blockedRows(changed.Findings))

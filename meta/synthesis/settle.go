@@ -81,7 +81,7 @@ func (o *Outcome) measure(asked review.Analysis, rows []*review.Study) (effect.M
 var basisWords = map[Basis]string{
 	FromCounts: "counts", FromPersonTime: "events with person time", FromPairedMeans: "means", FromMeans: "means",
 	FromCoefficient: "correlation coefficients", FromOneArm: "events of one arm", FromOneArmTime: "events of one arm with person time",
-	FromMeansTest: "means", FromEstimatePaired: "mean differences", FromEstimateEvents: "estimates with events",
+	FromMeansTest: "means", FromEstimatePaired: "mean differences",
 }
 
 // suggestion returns the measure that the rows' numbers suggest: that of the kind
