@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"slices"
 	"strings"
 
 	"github.com/urfave/cli/v2"
@@ -48,12 +49,11 @@ func newApp(s streams) *cli.App {
 		HideHelpCommand:           true,
 		CustomAppHelpTemplate:     appHelp,
 		DisableSliceFlagSeparator: true,
-		Commands: []*cli.Command{
-			poolCommand(),
-			weighCommand(),
-			chartCommand(),
-			templateCommand(),
-		},
+		Commands: slices.Concat(
+			[]*cli.Command{poolCommand()},
+			accrualCommands(),
+			[]*cli.Command{weighCommand(), chartCommand(), templateCommand()},
+		),
 		Action: func(c *cli.Context) error {
 			if c.NArg() > 0 {
 				return unknownCommand(c.App, c.Args().First())
@@ -97,7 +97,7 @@ USAGE
   Start with: steelyard pool FILE
 
 COMMANDS{{range .VisibleCommands}}
-  {{printf "%-10s" .Name}}{{.Usage}}{{end}}
+  {{printf "%-15s" .Name}}{{.Usage}}{{end}}
 
   {{.Name}} COMMAND --help explains a command and its flags.
 

@@ -190,18 +190,24 @@ func TestPoolLast(t *testing.T) {
 
 func TestGoldenAnswers(t *testing.T) {
 	for name, args := range map[string][]string{
-		"pool-bcg.txt":     {"pool", data + "checks/bcg_counts.csv"},
-		"pool-bcg-or.txt":  {"pool", data + "checks/bcg_counts.csv", "--measure", "odds ratio", "--better", "lower", "--important", "0.8"},
-		"pool-demo.txt":    {"pool", data + "demo.xlsx"},
-		"pool-schools.txt": {"pool", data + "checks/eight_schools.csv", "--measure", "mean difference", "--effects", "common"},
-		"weigh-ratio.txt":  {"weigh", "--ratio", "--estimate", "0.71", "--ci-low", "0.58", "--ci-high", "0.86", "--important", "0.8"},
-		"weigh-z.txt":      {"weigh", "--z", "2"},
-		"weigh-f.txt":      {"weigh", "--f", "4.1", "--df", "2", "--df2", "30"},
-		"help.txt":         {"--help"},
-		"help-pool.txt":    {"pool", "--help"},
-		"help-weigh.txt":   {"weigh", "--help"},
-		"help-chart.txt":   {"chart", "--help"},
-		"help-forest.txt":  {"chart", "forest", "--help"},
+		"pool-bcg.txt":        {"pool", data + "checks/bcg_counts.csv"},
+		"pool-bcg-or.txt":     {"pool", data + "checks/bcg_counts.csv", "--measure", "odds ratio", "--better", "lower", "--important", "0.8"},
+		"pool-demo.txt":       {"pool", data + "demo.xlsx"},
+		"pool-schools.txt":    {"pool", data + "checks/eight_schools.csv", "--measure", "mean difference", "--effects", "common"},
+		"weigh-ratio.txt":     {"weigh", "--ratio", "--estimate", "0.71", "--ci-low", "0.58", "--ci-high", "0.86", "--important", "0.8"},
+		"weigh-z.txt":         {"weigh", "--z", "2"},
+		"weigh-f.txt":         {"weigh", "--f", "4.1", "--df", "2", "--df2", "30"},
+		"cumulative.txt":      {"cumulative", data + "demo.xlsx"},
+		"cumulative-bcg.txt":  {"cumulative", data + "checks/bcg_counts.csv", "--order", "latitude", "--ties", "file"},
+		"leave-one-out.txt":   {"leave-one-out", data + "demo.xlsx", "--below", "2"},
+		"influence.txt":       {"influence", data + "checks/bcg_counts.csv"},
+		"subsets.txt":         {"subsets", data + "demo.xlsx", "--outcome", "flare within 24 weeks"},
+		"help-cumulative.txt": {"cumulative", "--help"},
+		"help.txt":            {"--help"},
+		"help-pool.txt":       {"pool", "--help"},
+		"help-weigh.txt":      {"weigh", "--help"},
+		"help-chart.txt":      {"chart", "--help"},
+		"help-forest.txt":     {"chart", "forest", "--help"},
 	} {
 		stdout, stderr, code := call(t, "", args...)
 		if code != codeDone || stderr != "" {

@@ -42,8 +42,8 @@ func ReaderInterval(o *synthesis.Outcome, limits meta.Limits) string {
 	return OutcomeNotation(o).Interval(effect.ToReader(m, limits.Low), effect.ToReader(m, limits.High))
 }
 
-// readerValue returns one value on the analysis scale as a reader sees it.
-func readerValue(o *synthesis.Outcome, y float64) string {
+// ReaderValue returns one value on the analysis scale as a reader sees it.
+func ReaderValue(o *synthesis.Outcome, y float64) string {
 	return OutcomeNotation(o).Value(effect.ToReader(o.Analysis.Measure, y))
 }
 
@@ -157,11 +157,11 @@ func Doubter(b synthesis.Belief) string {
 func RegionRange(o *synthesis.Outcome, r synthesis.Region) string {
 	switch {
 	case math.IsInf(r.Low, -1):
-		return readerValue(o, r.High) + " or less"
+		return ReaderValue(o, r.High) + " or less"
 	case math.IsInf(r.High, 1):
-		return readerValue(o, r.Low) + " or more"
+		return ReaderValue(o, r.Low) + " or more"
 	}
-	return fmt.Sprintf("between %s and %s", readerValue(o, r.Low), readerValue(o, r.High))
+	return fmt.Sprintf("between %s and %s", ReaderValue(o, r.Low), ReaderValue(o, r.High))
 }
 
 // RegionEvidence weighs a region against all other effects.

@@ -9,6 +9,9 @@ import (
 // EvidenceCaution says what an evidence ratio is not.
 const EvidenceCaution = "The evidence ratio says how well the data agree with an effect against none under this model: not the probability that a treatment works, no statement of size, harm or certainty. Against no effect it can reach 2.33 : 1 at most."
 
+// AccrualCaution belongs under cumulative, leave-one-out and subset results.
+const AccrualCaution = "Cumulative, leave-one-out and subset results describe and are correlated; repeated looks raise false positives. Do not stop or start trials on them."
+
 // cautions returns the short cautions that belong under these results, general
 // ones first.
 func cautions(s *Synthesis) []string {

@@ -1,0 +1,146 @@
+package main
+
+import (
+	"fmt"
+	"slices"
+
+	"github.com/urfave/cli/v2"
+
+	"steelyard/meta/synthesis"
+)
+
+// Names of the flags of the accrual commands.
+const (
+	flagBelow  = "below"
+	flagStudy  = "study"
+	flagSample = "sample"
+)
+
+// accrualKind is a command that shows how the evidence came about.
+type accrualKind struct {
+	name, usage, description string
+	flags                    []cli.Flag
+	want                     func(c *cli.Context) (synthesis.Want, error)
+	write                    func(p *page, s *synthesis.Synthesis, o *synthesis.Outcome)
+}
+
+func accrualCommands() []*cli.Command {
+	var commands []*cli.Command
+	for _, kind := range []accrualKind{
+		{
+			name: "cumulative", usage: "the result as each study arrived",
+			description: "Studies enter by date; those of one date together unless --ties file. Without dates, and beyond\n" +
+				"a column named by --order, they enter in the order of the file. The model is refitted at each step.",
+			want:  func(*cli.Context) (synthesis.Want, error) { return synthesis.Want{Cumulative: true}, nil },
+			write: (*page).cumulative,
+		},
+		{
+			name: "leave-one-out", usage: "the result without each study, and what each carries",
+			description: "With --below the tipping set too: the fewest studies whose removal brings the evidence for an\n" +
+				"effect below that many steps (exact up to 20 studies, by greedy removal beyond).",
+			flags: []cli.Flag{&cli.Float64Flag{Name: flagBelow, Usage: "steps of evidence for the tipping set, such as 2 (14 : 1)"}},
+			want: func(c *cli.Context) (synthesis.Want, error) {
+				want := synthesis.Want{LeaveOneOut: true}
+				if c.IsSet(flagBelow) {
+					below := c.Float64(flagBelow)
+					if !(-1e6 < below && below < 1e6) {
+						return want, &callError{fmt.Sprintf("--below %v: give a number of steps, such as 2", below)}
+					}
+					want.Below = &below
+				}
+				return want, nil
+			},
+			write: (*page).leaveOneOut,
+		},
+		{
+			name: "influence", usage: "how each study pulls on the result",
+			want:  func(*cli.Context) (synthesis.Want, error) { return synthesis.Want{Influence: true}, nil },
+			write: (*page).influence,
+		},
+		{
+			name: "subsets", usage: "the result of every subset of the studies",
+			description: "Every subset of up to 24 studies; a seeded sample beyond.",
+			flags: []cli.Flag{
+				&cli.StringFlag{Name: flagStudy, Usage: "a study: subsets with and without it are counted apart"},
+				&cli.IntFlag{Name: flagSample, Usage: "subsets to draw of more than 24 studies"},
+			},
+			want:  wantSubsets,
+			write: (*page).subsets,
+		},
+	} {
+		commands = append(commands, kind.command())
+	}
+	return commands
+}
+
+func wantSubsets(c *cli.Context) (synthesis.Want, error) {
+	wanted := &synthesis.SubsetsWanted{Study: c.String(flagStudy), Sample: c.Int(flagSample)}
+	if c.IsSet(flagSample) && (wanted.Sample < 100 || wanted.Sample > 1<<26) {
+		return synthesis.Want{}, &callError{fmt.Sprintf("--sample %d: give 100 to %d", wanted.Sample, 1<<26)}
+	}
+	return synthesis.Want{Subsets: wanted}, nil
+}
+
+func (k accrualKind) command() *cli.Command {
+	return &cli.Command{
+		Name:        k.name,
+		Usage:       k.usage,
+		UsageText:   fmt.Sprintf("steelyard %s FILE [flags]", k.name),
+		Description: k.description,
+		Flags:       slices.Concat(k.flags, sheetFlags(), settingFlags(k.name), []cli.Flag{formatFlag()}, outputFlags(), workFlags()),
+		Action: func(c *cli.Context) error {
+			wantJSON, err := jsonWanted(c)
+			if err != nil {
+				return err
+			}
+			want, err := k.want(c)
+			if err != nil {
+				return err
+			}
+			s, err := analyse(c, want)
+			if err != nil {
+				return err
+			}
+			content := []byte(accrualAnswer(s, k.write))
+			if wantJSON {
+				if content, err = indented(s.Document(version)); err != nil {
+					return err
+				}
+			}
+			if err := deliver(c, content); err != nil {
+				return err
+			}
+			return incomplete(s)
+		},
+	}
+}
+
+// accrualAnswer is the text of an accrual command: each outcome's table, and the
+// cautions that belong to it.
+func accrualAnswer(s *synthesis.Synthesis, write func(*page, *synthesis.Synthesis, *synthesis.Outcome)) string {
+	var p page
+	for i := range s.Outcomes {
+		o := &s.Outcomes[i]
+		if i > 0 {
+			p.line("")
+		}
+		p.line(heading(s, o))
+		p.leftOut(s, o)
+		if o.Result == nil {
+			p.wrapped("", "No result: "+o.Problem)
+			continue
+		}
+		p.wrapped("", size(s, o))
+		p.line("")
+		if o.Accrual != nil {
+			write(&p, s, o)
+		}
+		for _, note := range o.Notes {
+			p.item("·", note)
+		}
+	}
+	p.line("")
+	p.item("·", synthesis.AccrualCaution)
+	p.item("·", synthesis.EvidenceCaution)
+	return p.String()
+}

@@ -1,0 +1,69 @@
+package main
+
+import (
+	"strings"
+
+	"github.com/rivo/uniseg"
+)
+
+// column is a column of a text table: its head, and whether its cells stand at
+// the right.
+type column struct {
+	head  string
+	right bool
+}
+
+// widestName is how wide the first column of a table may become.
+const widestName = 28
+
+// table writes rows under their heads, each column as wide as its widest cell.
+// Names in the first column are cut to fit.
+func (p *page) table(columns []column, rows [][]string) {
+	widths := make([]int, len(columns))
+	for i, c := range columns {
+		widths[i] = width(c.head)
+	}
+	for _, row := range rows {
+		row[0] = cut(row[0], widestName)
+		for i, cell := range row {
+			widths[i] = max(widths[i], width(cell))
+		}
+	}
+	heads := make([]string, len(columns))
+	for i, c := range columns {
+		heads[i] = c.head
+	}
+	for _, row := range append([][]string{heads}, rows...) {
+		line := "  "
+		for i, cell := range row {
+			space := strings.Repeat(" ", widths[i]-width(cell))
+			if columns[i].right {
+				cell = space + cell
+			} else {
+				cell += space
+			}
+			line += cell + "  "
+		}
+		p.line(line)
+	}
+}
+
+// width is the number of columns that text takes on a terminal.
+func width(text string) int { return uniseg.StringWidth(text) }
+
+// cut shortens text to a width, with "…" in place of what is lost.
+func cut(text string, most int) string {
+	if width(text) <= most {
+		return text
+	}
+	var kept strings.Builder
+	used := 0
+	for graphemes := uniseg.NewGraphemes(text); graphemes.Next(); {
+		used += graphemes.Width()
+		if used > most-1 {
+			break
+		}
+		kept.WriteString(graphemes.Str())
+	}
+	return strings.TrimRight(kept.String(), " ") + "…"
+}
