@@ -13,21 +13,31 @@ type column struct {
 	right bool
 }
 
-// widestName is how wide the first column of a table may become.
-const widestName = 28
+// The first column of a table holds names: it is cut to widestName, and further,
+// down to narrowestName, where the table is wider than an answer.
+const (
+	widestName    = 28
+	narrowestName = 12
+)
 
 // table writes rows under their heads, each column as wide as its widest cell.
-// Names in the first column are cut to fit.
+// Names in the first column are cut to fit, in the rows themselves.
 func (p *page) table(columns []column, rows [][]string) {
 	widths := make([]int, len(columns))
 	for i, c := range columns {
 		widths[i] = width(c.head)
 	}
-	for _, row := range rows {
-		row[0] = cut(row[0], widestName)
-		for i, cell := range row {
-			widths[i] = max(widths[i], width(cell))
+	total := 0
+	for i := range columns {
+		for _, row := range rows {
+			widths[i] = max(widths[i], width(row[i]))
 		}
+		total += widths[i] + 2
+	}
+	name := min(widestName, max(narrowestName, widths[0]-max(0, total-answerWidth)))
+	widths[0] = max(width(columns[0].head), min(widths[0], name))
+	for _, row := range rows {
+		row[0] = cut(row[0], widths[0])
 	}
 	heads := make([]string, len(columns))
 	for i, c := range columns {
