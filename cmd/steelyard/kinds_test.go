@@ -308,6 +308,7 @@ func TestKindRefusals(t *testing.T) {
 		{"study,design,mean treated,sd treated,mean control,sd control,total\nA,crossover,7,2,6,2,10\n", "mean difference", "give the sd of the difference, or the correlation"},
 		{"study,design,events treated,total treated,events control,total control\nA,crossover,1,10,2,10\n", "", "from a paired analysis"},
 		{"study,design,mean treated,sd treated,mean control,sd control,n,correlation\nA,crossover,7,2,6,2,,0.5\n", "mean difference", "does not say how many people"},
+		{"study,mean difference,t\nA,2,-3\n", "", "check the direction of both"},
 		{"study,estimate,p\nA,0,0.5\n", "mean difference", "use the interval or the standard deviations"},
 		{"study,estimate,p\nA,0.3,0.5\n", "proportion", "give se, limits, or the counts"},
 		{"study,estimate,se,v\nA,0.3,,0.5\n", "mean difference", "the square root of the variance as se"},

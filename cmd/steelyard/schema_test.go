@@ -72,7 +72,7 @@ func TestSchema(t *testing.T) {
 		{pool, "study,p,direction,n,estimate,se\nA,0.03,higher,50,,\nB,,,,1,0.5\n", "pool -"},
 		{pool, "study,p,direction,n\nA,0.03,higher,50\n", "pool -"},
 		{pool, "study;md;se\nA;1,234;1\nB;2,234;1\n", "pool -"},
-		{pool, "study,OR,p,n treated,n control\nA,0.5,0.03,50,50\n", "pool - --measure smd"},
+		{pool, "study,OR,p,n treated,n control\nA,0.5,0.03,50,50\n", "pool - --measure standardised-mean-difference"},
 		{weigh, "", "weigh --z 20000"},
 		{weigh, "", "weigh --ratio --estimate 0.7 --se 0.1 --important 0.8 --df 5"},
 		{weigh, "", "weigh --p 0.03"},

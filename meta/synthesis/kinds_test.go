@@ -145,13 +145,16 @@ func TestSkewedMedian(t *testing.T) {
 // differences, and not as mean differences.
 func TestMixedScores(t *testing.T) {
 	means := numbers{review.MeanTreated: 10, review.SDTreated: 2, review.MeanControl: 9, review.SDControl: 2, review.TotalTreated: 30, review.TotalControl: 30}
-	for measure, want := range map[string]int{"standardised mean difference": 1, "mean difference": 0} {
+	for _, c := range []struct {
+		measure, second string
+		want            int
+	}{{"standardised mean difference", "final", 1}, {"standardised mean difference", "change", 0}, {"mean difference", "final", 0}} {
 		var s sheet
 		remarked(s.row("a", "", means), review.ResultType, "change")
-		remarked(s.row("b", "", means), review.ResultType, "final")
-		got, _ := runOne(t, &s, "measure", measure)
-		if len(got.Findings) != want || (want == 1 && got.Findings[0].Rule != "M11") {
-			t.Errorf("%s: findings %+v", measure, got.Findings)
+		remarked(s.row("b", "", means), review.ResultType, c.second)
+		got, _ := runOne(t, &s, "measure", c.measure)
+		if len(got.Findings) != c.want || (c.want == 1 && got.Findings[0].Rule != "M11") {
+			t.Errorf("%+v: findings %+v", c, got.Findings)
 		}
 	}
 }
@@ -160,10 +163,10 @@ func TestMixedScores(t *testing.T) {
 // program's own word.
 func TestConvertedFilter(t *testing.T) {
 	var s sheet
-	s.row("a", "", estimate(1, 1)).Remarks = []review.Remark{{Header: "converted", Text: "no"}}
+	s.row("a", "", estimate(1, 1)).Remarks = []review.Remark{{Header: "converted", Text: "yes"}}
 	s.row("b", "", numbers{review.Estimate: 1, review.PValue: 0.05}).Remarks = []review.Remark{{Header: "converted", Text: "no"}}
 	s.Columns = []review.Column{{Header: "converted"}}
-	if _, o := runOne(t, &s, "where", "converted is no"); len(o.Studies) != 2 {
+	if _, o := runOne(t, &s, "where", "converted is yes"); len(o.Studies) != 1 || o.Studies[0].Source.Name != "a" {
 		t.Errorf("the sheet's column is not asked: %+v", o.Excluded)
 	}
 	s.Columns = nil
