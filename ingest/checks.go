@@ -5,7 +5,6 @@ import (
 	"math"
 	"slices"
 
-	"steelyard/ingest/grid"
 	"steelyard/meta/effect"
 	"steelyard/meta/review"
 )
@@ -58,7 +57,7 @@ func (r *rowReader) checkKinds() {
 // wrong records an error of a number.
 func (r *rowReader) wrong(rule string, field review.Field, message string) {
 	n := r.values.at[field]
-	r.t.find(review.Error, rule, n.Place, r.study.Name, message)
+	r.t.find(review.Error, rule, n.Place.In(r.study.Row), r.study.Name, message)
 }
 
 // checkArm checks the count and the size of an arm. A total of an arm with means
@@ -160,7 +159,7 @@ func (t *tableReader) checkNames() {
 			continue
 		}
 		before := &t.x.Studies[j]
-		place := t.place(s.Row.Row, t.role.name, t.sheetText(s.Row.Row, t.role.name))
+		place := t.place(s.Row.Row, t.role.name, s.Name)
 		f := review.Finding{Severity: review.Warning, Rule: "D5", Place: place, Study: s.Name}
 		f.Message = fmt.Sprintf("the study stands in row %d too, with other numbers; if both rows are of the same people, they count twice: keep one, or give them names of their own", before.Row.Row)
 		if len(s.Numbers) > 0 && sameNumbers(s, before) {
@@ -174,13 +173,4 @@ func (t *tableReader) checkNames() {
 
 func sameNumbers(a, b *review.Study) bool {
 	return slices.EqualFunc(a.Numbers, b.Numbers, func(x, y review.Number) bool { return x.Field == y.Field && x.Value == y.Value })
-}
-
-// sheetText returns the stored text of a cell of the sheet.
-func (t *tableReader) sheetText(row, col int) string {
-	i, found := slices.BinarySearchFunc(t.rows, row, func(r grid.Row, want int) int { return r.Number - want })
-	if !found {
-		return ""
-	}
-	return t.rows[i].Cell(col).Text
 }

@@ -131,7 +131,7 @@ func TestUnreadableIsNotZero(t *testing.T) {
 func TestPlaceKeepsText(t *testing.T) {
 	x := mustRead(t, []byte("study,y,se\nA, −0·50 ,0.250\n"), "a.csv", Options{})
 	n := x.Studies[0].Numbers
-	if n[0].Value != -0.5 || n[0].Place.Text != " −0·50 " || n[1].Place.Text != "0.250" || n[1].Place.String() != "a.csv!C2" {
+	if n[0].Value != -0.5 || n[0].Place.Text != " −0·50 " || n[1].Place.Text != "0.250" || n[1].Place.In(x.Studies[0].Row).String() != "a.csv!C2" {
 		t.Errorf("numbers %+v", n)
 	}
 	if got := said(x); !slices.Equal(got, []string{"note F5 B2"}) {

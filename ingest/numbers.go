@@ -39,27 +39,39 @@ func (v *rowValues) has(f review.Field) (float64, bool) {
 const largest = 1e150
 
 // chooseDecimals decides for each column which mark separates decimals. A column
-// without any comma, and without two points in a cell, needs no deciding.
-func (t *tableReader) chooseDecimals() {
-	var texts []string
-	var numbers []int
+// without any comma, and without two points in a cell, needs no deciding. The error
+// says that more cells are in doubt than anybody could go through.
+func (t *tableReader) chooseDecimals() error {
+	doubts := 0
 	for i := range t.numeric {
 		c := &t.numeric[i]
-		texts, numbers = texts[:0], numbers[:0]
-		doubtful := false
-		for j := range t.rows {
-			cell := t.rows[j].Cell(c.col)
-			if cell.Kind != grid.Text {
-				continue
-			}
-			doubtful = doubtful || hasComma(cell.Text)
-			texts, numbers = append(texts, cell.Text), append(numbers, t.rows[j].Number)
+		if !t.doubtful(c.col) {
+			continue
 		}
-		if doubtful {
-			t.decide(c, texts, numbers)
+		var texts []string
+		var numbers []int
+		for j := range t.rows {
+			if cell := t.rows[j].Cell(c.col); cell.Kind == grid.Text {
+				texts, numbers = append(texts, cell.Text), append(numbers, t.rows[j].Number)
+			}
+		}
+		t.decide(c, texts, numbers)
+		if doubts += len(c.unclear); doubts > maxFindings {
+			return t.tooManyFindings()
 		}
 	}
 	t.offerReadings()
+	return nil
+}
+
+// doubtful reports whether a column has a text whose decimal mark is not plain.
+func (t *tableReader) doubtful(col int) bool {
+	for j := range t.rows {
+		if cell := t.rows[j].Cell(col); cell.Kind == grid.Text && hasComma(cell.Text) {
+			return true
+		}
+	}
+	return false
 }
 
 // hasComma reports whether a text may use a comma, or groups parted by points.
@@ -76,7 +88,8 @@ func hasComma(text string) bool {
 	return points > 1
 }
 
-// decide settles the decimal mark of a column, or marks the cells in doubt.
+// decide settles the decimal mark of a column, or marks the cells in doubt, one more
+// than maxFindings at most.
 func (t *tableReader) decide(c *numberColumn, texts []string, rows []int) {
 	mark, err := grid.Decimal(texts)
 	var mixed *grid.MixedDecimalError
@@ -88,13 +101,15 @@ func (t *tableReader) decide(c *numberColumn, texts []string, rows []int) {
 			len(mixed.Points), quote(mixed.PointExample), len(mixed.Commas), quote(mixed.CommaExample))
 		for _, list := range [][]int{mixed.Points, mixed.Commas} {
 			for _, i := range list {
-				c.unclear[rows[i]] = doubt{"F4", message}
+				if len(c.unclear) <= maxFindings {
+					c.unclear[rows[i]] = doubt{"F4", message}
+				}
 			}
 		}
 	case errors.As(err, &ambiguous):
 		c.unclear = map[int]doubt{}
 		for i, text := range texts {
-			if strings.ContainsAny(text, ",\uff0c") {
+			if len(c.unclear) <= maxFindings && strings.ContainsAny(text, ",\uff0c") {
 				c.unclear[rows[i]] = doubt{"F3", bothReadings(text)}
 			}
 		}
@@ -140,7 +155,7 @@ func (r *rowReader) readNumbers() {
 		if !ok {
 			continue
 		}
-		t.numbers = append(t.numbers, review.Number{Field: c.field, Value: value, Place: r.place(c.col, cell.Text)})
+		t.numbers = append(t.numbers, review.Number{Field: c.field, Value: value, Place: review.Spot{Row: r.row.Number, Col: c.col, Text: cell.Text}})
 		r.values.at[c.field] = &t.numbers[len(t.numbers)-1]
 	}
 	r.addHeaderLevel()
@@ -160,7 +175,7 @@ func (r *rowReader) addHeaderLevel() {
 			continue
 		}
 		if c := &r.t.header.columns[n.Place.Col-1]; c.level != 0 {
-			r.t.numbers = append(r.t.numbers, review.Number{Field: review.LimitLevel, Value: c.level, Place: c.Place})
+			r.t.numbers = append(r.t.numbers, review.Number{Field: review.LimitLevel, Value: c.level, Place: review.Spot{Row: c.Place.Row, Col: c.Place.Col, Text: c.Place.Text}})
 			r.values.at[review.LimitLevel] = &r.t.numbers[len(r.t.numbers)-1]
 			return
 		}

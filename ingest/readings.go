@@ -30,7 +30,7 @@ func (t *tableReader) offerReadings() {
 				continue
 			}
 			found = true
-			at := t.place(row, c.col, text)
+			at := review.Spot{Row: row, Col: c.col, Text: text}
 			decimals.Numbers = append(decimals.Numbers, review.Number{Field: c.field, Value: asDecimal, Place: at})
 			thousands.Numbers = append(thousands.Numbers, review.Number{Field: c.field, Value: asThousands, Place: at})
 		}

@@ -16,7 +16,7 @@ func (t *tableReader) readRows(ctx context.Context) error {
 	outcomeUsed := t.columnUsed(t.role.outcome)
 	for i := range t.rows {
 		if i%4096 == 4095 && ctx.Err() != nil {
-			return fmt.Errorf("%s: reading was interrupted: %w", t.book.File, ctx.Err())
+			return grid.Interrupted(ctx, t.book.File)
 		}
 		row := &t.rows[i]
 		if t.looksLikeHeader(row) {
@@ -34,8 +34,21 @@ func (t *tableReader) readRows(ctx context.Context) error {
 		}
 		r.finish()
 		t.x.Studies = append(t.x.Studies, r.study)
+		if len(t.x.Findings) > maxFindings {
+			return t.tooManyFindings()
+		}
+		row.Cells = nil // read: the room of its cells is needed for the studies
 	}
 	return nil
+}
+
+// maxFindings is the number of findings beyond which a sheet is not read on: they
+// would fill the memory, and nobody could go through them.
+const maxFindings = 100_000
+
+func (t *tableReader) tooManyFindings() error {
+	return &grid.FileError{File: t.book.File, Sheet: t.sheet.Name, Problem: fmt.Sprintf("has more than %d cells or rows that need looking at, the limit", maxFindings),
+		Remedy: "check that each column holds what its header says, with one decimal mark throughout, and that this is the right sheet"}
 }
 
 // columnUsed reports whether a column has a value below the header.
@@ -157,7 +170,7 @@ func (r *rowReader) readContext() {
 		if c.field != review.NoField {
 			name = c.field.String()
 		}
-		t.remarks = append(t.remarks, review.Remark{Header: name, Text: text, Place: r.place(i+1, r.cell(i+1).Text)})
+		t.remarks = append(t.remarks, review.Remark{Header: name, Text: text, Col: i + 1})
 	}
 	if end := len(t.remarks); end > start {
 		r.study.Remarks = t.remarks[start:end:end]

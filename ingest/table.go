@@ -30,6 +30,8 @@ type roles struct{ name, id, date, outcome, measure, better, accept int }
 
 // readTable reads all rows of a table into an extraction.
 func readTable(ctx context.Context, book *grid.Book, sheet *grid.Sheet, h *header) (*review.Extraction, error) {
+	ctx, cancel := grid.Limited(ctx)
+	defer cancel()
 	t := &tableReader{book: book, sheet: sheet, header: h, x: &review.Extraction{
 		Source:   review.Source{File: book.File, Sheet: sheet.Name, SHA256: book.SHA256},
 		Findings: h.findings,
@@ -47,7 +49,9 @@ func readTable(ctx context.Context, book *grid.Book, sheet *grid.Sheet, h *heade
 	if err := t.readMerges(); err != nil {
 		return nil, err
 	}
-	t.chooseDecimals()
+	if err := t.chooseDecimals(); err != nil {
+		return nil, err
+	}
 	t.allot()
 	if err := t.readRows(ctx); err != nil {
 		return nil, err
@@ -60,6 +64,9 @@ func readTable(ctx context.Context, book *grid.Book, sheet *grid.Sheet, h *heade
 		return nil, fmt.Errorf("%s: the header stands in row %d: %w", where, sheet.Rows[h.bottom].Number, ErrNoStudies)
 	}
 	t.checkNames()
+	if len(t.x.Findings) > maxFindings {
+		return nil, t.tooManyFindings()
+	}
 	return t.x, nil
 }
 

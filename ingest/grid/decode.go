@@ -56,11 +56,18 @@ func decodeWindows1252(data []byte, file string) (text, remark string, err error
 				Problem: fmt.Sprintf("is neither UTF-8 nor Windows-1252 text (byte %#x)", c), Remedy: saveAsUTF8}
 		}
 	}
-	decoded, err := charmap.Windows1252.NewDecoder().Bytes(data)
-	if err != nil {
-		return "", "", &FileError{File: file, Problem: "cannot be read as Windows-1252 text: " + err.Error(), Remedy: saveAsUTF8, Err: err}
+	size := len(data)
+	for _, c := range data {
+		if c >= utf8.RuneSelf {
+			size += utf8.RuneLen(charmap.Windows1252.DecodeByte(c)) - 1
+		}
 	}
-	return string(decoded), "is not UTF-8 and was read as Windows-1252; check that accented letters are right", nil
+	var b strings.Builder
+	b.Grow(size)
+	for _, c := range data {
+		b.WriteRune(charmap.Windows1252.DecodeByte(c))
+	}
+	return b.String(), "is not UTF-8 and was read as Windows-1252; check that accented letters are right", nil
 }
 
 // invalidUTF8 returns the index of the first byte that is not UTF-8, or -1.

@@ -1,10 +1,12 @@
 package grid
 
+import "time"
+
 // Limits on what is read. They are far above any sheet of studies and low enough
-// that a hostile file cannot take more than about a gigabyte or ten seconds.
+// that a hostile file cannot take a gigabyte or ten seconds of a processor.
 const (
 	// MaxFileBytes is the size of a file as it lies on disk.
-	MaxFileBytes = 200 << 20
+	MaxFileBytes = 100 << 20
 	// MaxUnzippedBytes is the size of all parts of a workbook that are read,
 	// unpacked. Parts that are not read, such as pictures, do not count.
 	MaxUnzippedBytes = 256 << 20
@@ -27,7 +29,7 @@ const (
 	// between values included.
 	MaxWorkbookCells = 5_000_000
 	// MaxTextCells is the number of cells of a text file, gaps included.
-	MaxTextCells = 20_000_000
+	MaxTextCells = 10_500_000
 	// MaxStrings is the number of entries of a workbook's string table.
 	MaxStrings = 2_000_000
 	// MaxStyles is the number of cell styles or number formats of a workbook.
@@ -37,6 +39,9 @@ const (
 	MaxFieldBytes = 131_068
 	// MaxMerges is the number of merged ranges of a sheet.
 	MaxMerges = 100_000
+	// MaxTime is how long reading may take. What the other limits let through takes
+	// less than a third of it; a slow or busy computer shall read that too.
+	MaxTime = 30 * time.Second
 	// MaxNotes is the number of comments of a sheet.
 	MaxNotes = 100_000
 )

@@ -147,7 +147,7 @@ func TestRowsOfTextAreLimited(t *testing.T) {
 }
 
 func TestLargeFilesAreRefused(t *testing.T) {
-	mustRefuse(t, make([]byte, MaxFileBytes+1), "a.csv", "200 MB")
+	mustRefuse(t, make([]byte, MaxFileBytes+1), "a.csv", "100 MB")
 }
 
 func TestReadingEndsWithItsContext(t *testing.T) {
@@ -163,13 +163,22 @@ func TestReadingEndsWithItsContext(t *testing.T) {
 	}
 }
 
+// TestTimeIsLimited: a file that takes longer than the limit is refused with it; the
+// limit is a nanosecond here.
+func TestTimeIsLimited(t *testing.T) {
+	defer func() { timeLimit = MaxTime }()
+	timeLimit = time.Nanosecond
+	mustRefuse(t, trials(t).pack(t), "a.xlsx", "takes longer to read than 1ns, the limit")
+	mustRefuse(t, []byte(strings.Repeat("a,b\n", 5000)), "a.csv", "takes longer to read than 1ns, the limit")
+}
+
 // faulty stands for a fault of the reader: it panics where the reader asks it.
 type faulty struct{ context.Context }
 
 func (faulty) Err() error { panic("a fault") }
 
 func TestAPanicBecomesAnError(t *testing.T) {
-	_, err := Read(faulty{context.Background()}, trials(t).pack(t), "a.xlsx")
+	err := readWorkbook(faulty{context.Background()}, trials(t).pack(t), &Book{File: "a.xlsx"})
 	var e *FileError
 	if !errors.As(err, &e) || !strings.Contains(err.Error(), "a.xlsx: cannot be read, by a fault of this program (a fault)") {
 		t.Errorf("error %v, want a *FileError that names the fault", err)

@@ -90,11 +90,28 @@ func openError(name string, err error) error {
 }
 
 func interrupted(name string, err error) *FileError {
+	if errors.Is(err, context.DeadlineExceeded) {
+		return &FileError{File: name, Problem: fmt.Sprintf("takes longer to read than %v, the limit", timeLimit),
+			Remedy: "keep only the sheet of studies, or save it as .csv", Err: err}
+	}
 	return &FileError{File: name, Problem: "reading was interrupted (" + err.Error() + ")", Remedy: "run it again, or with more time", Err: err}
 }
 
+// timeLimit is MaxTime, but for tests.
+var timeLimit = MaxTime
+
+// Limited returns a context that ends with ctx and after MaxTime.
+func Limited(ctx context.Context) (context.Context, context.CancelFunc) {
+	return context.WithTimeout(ctx, timeLimit)
+}
+
+// Interrupted returns the error of a file whose reading the context has ended.
+func Interrupted(ctx context.Context, file string) error { return interrupted(file, ctx.Err()) }
+
 // readContent decides what the bytes are and has them read.
 func readContent(ctx context.Context, data []byte, name string) (*Book, error) {
+	ctx, cancel := Limited(ctx)
+	defer cancel()
 	name = filepath.Base(name)
 	if len(data) > MaxFileBytes {
 		return nil, tooLarge(name)

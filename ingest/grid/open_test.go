@@ -110,7 +110,7 @@ func TestOpen(t *testing.T) {
 		t.Fatal(err)
 	}
 	for path, words := range map[string][]string{dir: {"folder"}, filepath.Join(dir, "none.csv"): {"none.csv: there is no such file"},
-		large: {"large.csv: is larger than 200 MB"}} {
+		large: {"large.csv: is larger than 100 MB"}} {
 		refuseOpen(t, path, words...)
 	}
 	if _, err := Open(context.Background(), filepath.Join(dir, "none.csv")); !errors.Is(err, fs.ErrNotExist) {

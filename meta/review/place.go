@@ -50,6 +50,25 @@ func (p Place) String() string {
 	return where
 }
 
+// Spot is a cell of the sheet that a study stands in; the file and the sheet are
+// those of the study's row, so that millions of numbers need not repeat them.
+type Spot struct {
+	Row  int    // 1-based; of the header for what the header says
+	Col  int    // 1-based
+	Text string // the cell's text exactly as stored
+}
+
+// In returns the full place of the cell, beside a place of the same sheet.
+func (s Spot) In(beside Place) Place {
+	return Place{File: beside.File, Sheet: beside.Sheet, Row: s.Row, Col: s.Col, Text: s.Text}
+}
+
+// Cell returns the cell in the style of spreadsheets, such as "C7".
+func (s Spot) Cell() string { return Place{Row: s.Row, Col: s.Col}.Cell() }
+
+// String returns the same as Cell.
+func (s Spot) String() string { return s.Cell() }
+
 // ColumnLetters returns a spreadsheet's letters of a 1-based column: 1 is A, 27
 // is AA; blank for 0.
 func ColumnLetters(col int) string {

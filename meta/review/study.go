@@ -39,7 +39,7 @@ func (d Date) Compare(e Date) int {
 type Number struct {
 	Field Field
 	Value float64
-	Place Place
+	Place Spot
 }
 
 // Study is one row of the sheet: one study's result for one outcome.
@@ -58,8 +58,8 @@ type Study struct {
 // Remark is the text of a context or covariate cell.
 type Remark struct {
 	Header string // as the sheet's header says; for a recognised column its field's name
-	Text   string
-	Place  Place
+	Text   string // in one line, without surrounding blanks
+	Col    int    // 1-based; the row is the study's
 }
 
 // Number returns the study's number of a field, if it has one.

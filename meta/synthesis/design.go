@@ -86,7 +86,7 @@ func (d *derivation) tries(f, beside review.Field, values ...float64) []review.R
 	for _, v := range values {
 		all = append(all, review.Reading{
 			Label:   fmt.Sprintf("with %s %v", f, v),
-			Numbers: []review.Number{{Field: f, Value: v, Place: d.row.Row}},
+			Numbers: []review.Number{{Field: f, Value: v, Place: review.Spot{Row: d.row.Row.Row}}},
 		})
 	}
 	return all

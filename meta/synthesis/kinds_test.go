@@ -27,7 +27,7 @@ func with(sets ...numbers) numbers {
 
 // remarked adds context to a row: pairs of field and text.
 func remarked(row *review.Study, f review.Field, text string) *review.Study {
-	row.Remarks = append(row.Remarks, review.Remark{Header: f.String(), Text: text, Place: row.Row})
+	row.Remarks = append(row.Remarks, review.Remark{Header: f.String(), Text: text})
 	return row
 }
 

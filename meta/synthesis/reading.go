@@ -26,7 +26,7 @@ func (s *Synthesis) read(ctx context.Context, x *review.Extraction, plan *review
 	for i := range s.Findings {
 		for _, reading := range s.Findings[i].Readings {
 			changed := applied(x, s.Findings[i], reading)
-			for _, name := range concerned(s.Outcomes, changed, reading) {
+			for _, name := range concerned(s.Outcomes, changed, s.Findings[i].Place, reading) {
 				if err := ctx.Err(); err != nil {
 					return err
 				}
@@ -53,7 +53,7 @@ func applied(x *review.Extraction, f review.Finding, reading review.Reading) *re
 	changed.Studies = slices.Clone(x.Studies)
 	settled := map[rowKey]map[review.Field]review.Number{}
 	for _, n := range reading.Numbers {
-		key := rowKey{n.Place.File, n.Place.Sheet, n.Place.Row}
+		key := keyOf(n.Place.In(f.Place))
 		if settled[key] == nil {
 			settled[key] = map[review.Field]review.Number{}
 		}
@@ -91,11 +91,11 @@ func applied(x *review.Extraction, f review.Finding, reading review.Reading) *re
 
 func keyOf(p review.Place) rowKey { return rowKey{p.File, p.Sheet, p.Row} }
 
-// concerned returns the outcomes that hold a row of a reading.
-func concerned(outcomes []Outcome, x *review.Extraction, reading review.Reading) []string {
+// concerned returns the outcomes that hold a row of a reading of a finding there.
+func concerned(outcomes []Outcome, x *review.Extraction, beside review.Place, reading review.Reading) []string {
 	rows := map[rowKey]bool{}
 	for _, n := range reading.Numbers {
-		rows[keyOf(n.Place)] = true
+		rows[keyOf(n.Place.In(beside))] = true
 	}
 	with := map[string]bool{}
 	for i := range x.Studies {

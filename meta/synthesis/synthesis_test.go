@@ -22,8 +22,7 @@ func (s *sheet) row(name, outcome string, numbers map[review.Field]float64) *rev
 	study := review.Study{Name: name, Outcome: outcome, Row: place}
 	for f := review.NoField; int(f) < review.FieldCount; f++ {
 		if v, ok := numbers[f]; ok {
-			place.Col = int(f)
-			study.Numbers = append(study.Numbers, review.Number{Field: f, Value: v, Place: place})
+			study.Numbers = append(study.Numbers, review.Number{Field: f, Value: v, Place: review.Spot{Row: place.Row, Col: int(f)}})
 		}
 	}
 	s.Studies = append(s.Studies, study)
