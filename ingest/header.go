@@ -23,6 +23,7 @@ type header struct {
 	top, bottom int      // indices of its first and last row in Sheet.Rows
 	columns     []column // index = column-1; NoField with a blank Header where nothing stands
 	findings    []review.Finding
+	year        int // 1-based column of a year that stands beside the date, 0 if none
 	score       int // number of distinct fields recognised
 	texts       int // number of columns with a header
 }
@@ -70,8 +71,10 @@ var rareSets = [][]review.Field{
 // several forms.
 func armSets() [][]review.Field {
 	treated := [][]review.Field{{review.MeanTreated, review.SDTreated}, {review.MeanTreated, review.SETreated},
+		{review.MeanTreated, review.MeanLowTreated, review.MeanHighTreated},
 		{review.MedianTreated, review.Q1Treated, review.Q3Treated}, {review.MedianTreated, review.MinTreated, review.MaxTreated}}
 	control := [][]review.Field{{review.MeanControl, review.SDControl}, {review.MeanControl, review.SEControl},
+		{review.MeanControl, review.MeanLowControl, review.MeanHighControl},
 		{review.MedianControl, review.Q1Control, review.Q3Control}, {review.MedianControl, review.MinControl, review.MaxControl}}
 	var sets [][]review.Field
 	for _, a := range treated {

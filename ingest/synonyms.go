@@ -103,6 +103,13 @@ var quantities = []quantity{
 		"randomly assigned", "allocated"}},
 }
 
+// namedQuantities are given for each arm, too, but without an arm their words mean
+// something else.
+var namedQuantities = []quantity{
+	{review.MeanLowTreated, review.MeanLowControl, []string{"ci low", "ci lower", "mean ci low", "mean ci lower", "lower ci", "lower limit", "ci low mean", "ci lower mean"}},
+	{review.MeanHighTreated, review.MeanHighControl, []string{"ci high", "ci upper", "mean ci high", "mean ci upper", "upper ci", "upper limit", "ci high mean", "ci upper mean"}},
+}
+
 // Words for the arms.
 var (
 	treatedWords = []string{"treated", "treatment", "treatments", "intervention", "experimental", "experiment", "active", "active treatment", "exposed", "verum"}
@@ -126,7 +133,7 @@ var measureWords = []struct {
 	{effect.HazardRatio, []string{"hazard ratio", "hazards ratio", "hr"}},
 	{effect.RateRatio, []string{"incidence rate ratio", "rate ratio", "irr"}},
 	{effect.StandardisedMeanDifference, []string{"standardised mean difference", "standardized mean difference", "smd"}},
-	{effect.MeanDifference, []string{"mean difference", "difference means", "difference between means", "md"}},
+	{effect.MeanDifference, []string{"mean difference", "difference means", "difference between means", "weighted mean difference", "mean diff", "md", "wmd"}},
 	{effect.RatioOfMeans, []string{"ratio means"}},
 }
 
@@ -182,6 +189,10 @@ func (d *dictionary) addArms() {
 		for _, word := range q.words {
 			d.bare[word] = q
 		}
+	}
+	for _, q := range namedQuantities {
+		combine(treatedWords, q, q.treated)
+		combine(controlWords, q, q.control)
 	}
 	for _, word := range treatedWords {
 		d.treated[word] = true

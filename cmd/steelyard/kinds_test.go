@@ -67,6 +67,9 @@ func TestPublishedConversions(t *testing.T) {
 		// Handbook 6.5.2.8: SD of the change √(4²+5²−2·0.5·4·5) = √21 in either arm.
 		{"changes", "study,mean treated,sd treated,n treated,baseline mean treated,baseline sd treated,mean control,sd control,n control,baseline mean control,baseline sd control,correlation\n" +
 			"A,10,5,42,14,4,12,5,42,13,4,0.5\n", "", -3, 1, 1e-12, true},
+		// t(0.975, 24) = 2.063899 and t(0.975, 35) = 2.030108 of tables: SD 5 and 6.
+		{"means with limits", "study,mean treated,ci low treated,ci high treated,n treated,mean control,95% CI lower control,95% CI upper control,n control\n" +
+			"A,10,7.936101,12.063899,25,12,9.969892,14.030108,36\n", "", -2, math.Sqrt2, 1e-5, false},
 		{"changes as given", "study,mean treated,sd treated,n treated,baseline mean treated,baseline sd treated,mean control,sd control,n control,baseline mean control,baseline sd control,correlation,result type\n" +
 			"A,-4,6,72,14,4,-1,6,72,13,4,0.5,change\n", "", -3, 1, 1e-12, false},
 	} {

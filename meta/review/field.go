@@ -65,6 +65,10 @@ const (
 	Q3Control
 	MinControl
 	MaxControl
+	MeanLowTreated // limit of the interval of one arm's mean
+	MeanHighTreated
+	MeanLowControl
+	MeanHighControl
 	WithinCorrelation // of two measurements of the same people: baseline and end, or both treatments
 	SDDifference      // of the differences within people
 	Coefficient       // a correlation that is itself the result
@@ -104,6 +108,7 @@ var fieldNames = choice.Of[Field]("column",
 	"t", "p sides", "baseline mean treated", "baseline sd treated", "baseline mean control", "baseline sd control",
 	"median treated", "q1 treated", "q3 treated", "min treated", "max treated",
 	"median control", "q1 control", "q3 control", "min control", "max control",
+	"ci low treated", "ci high treated", "ci low control", "ci high control",
 	"correlation", "sd of the difference", "r", "events", "total", "person time", "person time treated", "person time control",
 	"observed minus expected", "variance", "share treated", "share control", "cluster size", "icc", "design effect",
 	"randomised treated", "randomised control", "reported estimate", "reported ci low", "reported ci high", "reported p",

@@ -11,23 +11,25 @@ import (
 // armFields are the columns of one arm with a mean.
 type armFields struct {
 	name                                   string
-	mean, sd, se, total                    review.Field
+	mean, sd, se, low, high, total         review.Field
 	baselineMean, baselineSD               review.Field
 	median, quartile1, quartile3, min, max review.Field
 }
 
 var (
-	treatedArm = armFields{"treated", review.MeanTreated, review.SDTreated, review.SETreated, review.TotalTreated,
+	treatedArm = armFields{"treated", review.MeanTreated, review.SDTreated, review.SETreated, review.MeanLowTreated, review.MeanHighTreated, review.TotalTreated,
 		review.BaselineMeanTreated, review.BaselineSDTreated,
 		review.MedianTreated, review.Q1Treated, review.Q3Treated, review.MinTreated, review.MaxTreated}
-	controlArm = armFields{"control", review.MeanControl, review.SDControl, review.SEControl, review.TotalControl,
+	controlArm = armFields{"control", review.MeanControl, review.SDControl, review.SEControl, review.MeanLowControl, review.MeanHighControl, review.TotalControl,
 		review.BaselineMeanControl, review.BaselineSDControl,
 		review.MedianControl, review.Q1Control, review.Q3Control, review.MinControl, review.MaxControl}
 )
 
 // hasMean reports whether an arm's mean and spread are given; hasMedian whether
 // they follow from a median.
-func (d *derivation) hasMean(a armFields) bool { return d.has(a.mean) && (d.has(a.sd) || d.has(a.se)) }
+func (d *derivation) hasMean(a armFields) bool {
+	return d.has(a.mean) && (d.has(a.sd) || d.has(a.se) || d.has(a.low, a.high))
+}
 
 func (d *derivation) hasMedian(a armFields) bool {
 	return d.has(a.median) && (d.has(a.quartile1, a.quartile3) || d.has(a.min, a.max))
@@ -81,7 +83,7 @@ func (d *derivation) arms(n1, n2 float64) (treated, control effect.Arm, err erro
 }
 
 // arm returns one arm of n people from its mean and SD, its mean and standard
-// error, or its median.
+// error or limits (of Student's t), or its median.
 func (d *derivation) arm(a armFields, n float64) (effect.Arm, error) {
 	out := effect.Arm{Mean: d.value(a.mean), SD: d.value(a.sd), N: n}
 	switch {
@@ -89,6 +91,14 @@ func (d *derivation) arm(a armFields, n float64) (effect.Arm, error) {
 		return out, nil
 	case d.has(a.mean, a.se):
 		sd, step, err := effect.SDFromSE(d.value(a.se), n)
+		if err != nil {
+			return out, fmt.Errorf("%s arm: %w", a.name, err)
+		}
+		d.log(armed(step, a.name))
+		out.SD = sd
+		return out, nil
+	case d.has(a.mean, a.low, a.high):
+		sd, step, err := effect.SDFromLimits(d.value(a.low), d.value(a.high), d.level(), n, n-1)
 		if err != nil {
 			return out, fmt.Errorf("%s arm: %w", a.name, err)
 		}
