@@ -96,7 +96,8 @@ func (r *headerReader) resolveLetterCase(h *header, total, events review.Field) 
 	h.note(a.Place, "F9", fmt.Sprintf("%s is read as the number with the event and %s as the number in the arm", quote(a.Header), quote(b.Header)))
 }
 
-// resolveYear keeps the year as a covariate when there is a date.
+// resolveYear keeps the year as a covariate when there is a date, to compare the
+// two.
 func (r *headerReader) resolveYear(h *header) {
 	var dates []int
 	date := -1
@@ -115,6 +116,9 @@ func (r *headerReader) resolveYear(h *header) {
 	for _, i := range dates {
 		if i != date {
 			h.columns[i].meaning = meaning{}
+			if h.year == 0 {
+				h.year = i + 1
+			}
 		}
 	}
 }

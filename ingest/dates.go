@@ -9,43 +9,74 @@ import (
 )
 
 // Years outside these are slips.
-const firstYear, lastYear = 1900, 2100
+const firstYear, lastYear = 1800, 2100
 
-// readDate reads the row's date or year. The letter of a year such as "2015a" is
-// kept in the study's name. A date that cannot be read does not keep the row from
-// being pooled.
+// readDate reads the row's date. Where the sheet has a year too, the two are
+// compared, and the year stands in for a date that is not there. The letter of a
+// year such as "2015a" is kept in the study's name. A date that cannot be read
+// does not keep the row from being pooled.
 func (r *rowReader) readDate() {
-	col := r.t.role.date
+	date, letter := r.dateCell(r.t.role.date)
+	r.study.Date = date
+	if letter != "" {
+		r.keepLetter(r.t.role.date, date, letter)
+	}
+	col := r.t.header.year
+	if col == 0 {
+		return
+	}
+	year, letter := r.dateCell(col)
+	if letter != "" {
+		r.keepLetter(col, year, letter)
+	}
+	switch {
+	case year.Year == 0:
+	case date.Year == 0:
+		r.study.Date = year
+	case date.Year != year.Year:
+		r.find(review.Warning, "F12", col, "the year "+year.String()[:4]+" is not that of the date "+date.String()+
+			"; check both: the date orders the studies, and filters on the year look at the year")
+	}
+}
+
+// dateCell reads a date or year; it reports what cannot be read and returns the
+// zero date for it.
+func (r *rowReader) dateCell(col int) (date review.Date, letter string) {
 	cell := r.cell(col)
 	switch cell.Kind {
 	case grid.Blank:
-		return
+		return review.Date{}, ""
 	case grid.ErrorValue, grid.Uncalculated, grid.Bool:
 		r.find(review.Warning, "F12", col, quote(cell.Text)+" is no date; type it as 2015, 2015-08 or 2015-08-31")
-		return
+		return review.Date{}, ""
 	}
 	text := tidy(cell.Text)
 	date, letter, ok := parseDate(text)
 	switch {
 	case !ok:
 		r.find(review.Warning, "F12", col, quote(text)+" is not read as a date; type it as 2015, 2015-08 or 2015-08-31")
-		return
+		return review.Date{}, ""
 	case date.Year < firstYear || date.Year > lastYear:
 		r.find(review.Warning, "F12", col, quote(text)+" is no likely year and is not used; type the year in four digits")
+		return review.Date{}, ""
+	}
+	return date, letter
+}
+
+// keepLetter puts the letter of a year into the study's name.
+func (r *rowReader) keepLetter(col int, date review.Date, letter string) {
+	if r.study.Name == "" {
 		return
 	}
-	r.study.Date = date
-	if letter == "" || r.study.Name == "" {
-		return
-	}
-	if !strings.Contains(r.study.Name, text) {
-		if year := text[:4]; strings.HasSuffix(r.study.Name, year) {
+	year := date.String()[:4]
+	if !strings.Contains(r.study.Name, year+letter) {
+		if strings.HasSuffix(r.study.Name, year) {
 			r.study.Name += letter
 		} else {
-			r.study.Name += " " + text
+			r.study.Name += " " + year + letter
 		}
 	}
-	r.find(review.Note, "F12", col, "the year is read as "+text[:4]+"; its letter is kept in the study's name")
+	r.find(review.Note, "F12", col, "the year is read as "+year+"; its letter is kept in the study's name")
 }
 
 // parseDate reads 2015, 2015-08, 2015-08-31, the latter with a time of day, and

@@ -24,6 +24,11 @@ func results(rows ...[]any) table {
 	return append(head, rows...)
 }
 
+// dated is a table with a date and a year.
+func dated(rows ...[]any) table {
+	return append(table{{"study", "year", "date", "estimate", "se"}}, rows...)
+}
+
 // means is the same for means.
 func means(rows ...[]any) table {
 	head := table{{"study", "mean treated", "sd treated", "total treated", "mean control", "sd control", "total control"}, {"Good", 1, 2, 30, 3, 4, 31}}
@@ -59,6 +64,11 @@ func TestFindings(t *testing.T) {
 		{"year", counts([]any{"A", 215, 3, 40, 5, 41}), []string{"warning F12 B3"}, "date"},
 		{"year too early", counts([]any{"A", 1066, 3, 40, 5, 41}), []string{"warning F12 B3"}, "year"},
 		{"column without header", append(table{{"study", "y", nil, "se"}}, []any{"A", 1, 7, 1}), []string{"warning F9 C:C"}, "no header"},
+		{"year of an old trial", counts([]any{"A", 1809, 3, 40, 5, 41}), nil, ""},
+		{"year with a capital O", counts([]any{"A", "20O5", 3, 40, 5, 41}), []string{"warning F12 B3"}, "not read as a date"},
+		{"year and date agree", dated([]any{"A", 2001, "2001-03-04", 1, 2}), nil, ""},
+		{"year against date", dated([]any{"A", 2001, "2005-03-04", 1, 2}), []string{"warning F12 B2"}, "not that of the date 2005-03-04"},
+		{"year with a capital O beside a date", dated([]any{"A", "20O1", "2001-03-04", 1, 2}), []string{"warning F12 B2"}, "not read as a date"},
 		{"year too late", counts([]any{"A", 3015, 3, 40, 5, 41}), []string{"warning F12 B3"}, "year"},
 		{"year with letter", counts([]any{"A", "2015a", 3, 40, 5, 41}), []string{"note F12 B3"}, "2015"},
 		{"events above total", counts([]any{"A", 2002, 42, 40, 5, 41}), []string{"error C1 C3"}, "42 events among 40"},
@@ -256,5 +266,21 @@ func TestOneOutcomeInTwoSpellings(t *testing.T) {
 	}
 	if got := said(x); !slices.Equal(got, []string{"note F9 B3", "error F9 B4"}) {
 		t.Errorf("findings %q", got)
+	}
+}
+
+// TestYearBesideDate wants filters on the year to look at the year's own column,
+// and the year to stand in for a date that is missing or cannot be read.
+func TestYearBesideDate(t *testing.T) {
+	data := dated([]any{"A", 2001, "2005-03-04", 1, 2}, []any{"B", 2005, "5/6/2005", 1, 2}, []any{"C", 1999, "", 1, 2}, []any{"D", "", "2004-02", 1, 2}).csv(t)
+	x := mustRead(t, data, "a.csv", Options{})
+	for i, want := range []struct{ year, date string }{{"2001", "2005-03-04"}, {"2005", "2005"}, {"1999", "1999"}, {"2004", "2004-02"}} {
+		s := &x.Studies[i]
+		if got := s.Cell("year"); got != want.year {
+			t.Errorf("%s: year %q, want %q", s.Name, got, want.year)
+		}
+		if got := s.Date.String(); got != want.date || s.Cell("date") != want.date {
+			t.Errorf("%s: date %q, want %q", s.Name, got, want.date)
+		}
 	}
 }

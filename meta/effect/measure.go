@@ -44,6 +44,19 @@ var measureNames = choice.Of[Measure]("effect measure",
 	"correlation coefficient":      Correlation,
 	"incidence rate":               Rate,
 	"event rate per person time":   Rate,
+	"weighted mean difference":     MeanDifference,
+	"mean diff":                    MeanDifference,
+	"mean diff.":                   MeanDifference,
+	"hazards ratio":                HazardRatio,
+	// The trade's own abbreviations.
+	"or":  OddsRatio,
+	"rr":  RiskRatio,
+	"rd":  RiskDifference,
+	"hr":  HazardRatio,
+	"irr": RateRatio,
+	"md":  MeanDifference,
+	"wmd": MeanDifference,
+	"smd": StandardisedMeanDifference,
 })
 
 // String returns the measure's name in words, such as "odds ratio".

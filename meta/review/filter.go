@@ -17,7 +17,7 @@ type Filter struct {
 }
 
 type condition struct {
-	column, operator, value string
+	text, column, operator, value string // text as written
 }
 
 // filterOperators, longest first where one begins with another.
@@ -25,7 +25,8 @@ var filterOperators = []string{" is not ", " is ", "!=", "<=", ">=", "=", "<", "
 
 // ParseFilter reads a filter: conditions COLUMN OPERATOR VALUE joined by "and"
 // and "or" ("and" binds closer). Operators are is, is not, =, !=, <, <=, >, >=
-// and contains; a value may stand in double quotes.
+// and contains; a name or value may stand in double quotes. "is blank" and "is not
+// blank" ask whether a cell is filled. There are no parentheses.
 func ParseFilter(text string) (*Filter, error) {
 	f := &Filter{text: strings.TrimSpace(text)}
 	for _, alternative := range splitWord(" "+f.text+" ", "or") {
@@ -72,6 +73,9 @@ func (f *Filter) Match(cell func(column string) string) bool {
 }
 
 func parseCondition(text string) (condition, error) {
+	if parenthesised(text) {
+		return condition{}, fmt.Errorf("%q: a filter has no parentheses; \"and\" binds closer than \"or\", so write \"a and c or b and c\" for \"(a or b) and c\", and put a name or value that holds parentheses into double quotes", strings.TrimSpace(text))
+	}
 	padded := " " + text + " "
 	at, operator := -1, ""
 	for _, op := range filterOperators {
@@ -83,9 +87,13 @@ func parseCondition(text string) (condition, error) {
 		return condition{}, fmt.Errorf("%q is no condition; write COLUMN OPERATOR VALUE, such as \"risk of bias is not high\" or \"year >= 2010\"", strings.TrimSpace(text))
 	}
 	c := condition{
+		text:     strings.TrimSpace(text),
 		column:   choice.Fold(unquote(padded[:at])),
 		operator: strings.TrimSpace(operator),
 		value:    unquote(padded[at+len(operator):]),
+	}
+	if isBlank := strings.EqualFold(strings.TrimSpace(padded[at+len(operator):]), "blank"); isBlank && (c.operator == "is" || c.operator == "is not") {
+		c.value = ""
 	}
 	if !strings.Contains(padded, `"`) && strings.ContainsAny(c.value, "<>=!") {
 		return condition{}, fmt.Errorf("%q has two operators in a row; the operators are is, is not, =, !=, <, <=, >, >= and contains; quote a value that holds such signs", strings.TrimSpace(text))
@@ -94,6 +102,60 @@ func parseCondition(text string) (condition, error) {
 		return condition{}, fmt.Errorf("%q lacks a column or a value; write COLUMN OPERATOR VALUE", strings.TrimSpace(text))
 	}
 	return c, nil
+}
+
+// parenthesised reports whether a condition begins with a parenthesis, or has one
+// outside quotes that is not closed within it, so that it groups conditions.
+func parenthesised(text string) bool {
+	depth, quoted := 0, false
+	for _, r := range text {
+		switch {
+		case r == '"':
+			quoted = !quoted
+		case quoted:
+		case r == '(':
+			depth++
+		case r == ')':
+			depth--
+		}
+		if depth < 0 {
+			return true
+		}
+	}
+	return depth > 0 || strings.HasPrefix(strings.TrimSpace(text), "(")
+}
+
+// Unmatched returns the conditions, as written, whose value no row has: a slip of
+// spelling there keeps or drops every row. For an order, such as year >= 2010, it
+// is a value that no row's cell can be compared with. cell returns the text of a
+// column of one row, by the column's folded name.
+func (f *Filter) Unmatched(rows int, cell func(row int, column string) string) []string {
+	var unmatched []string
+	for _, all := range f.any {
+		for _, c := range all {
+			found := c.value == ""
+			for row := 0; row < rows && !found; row++ {
+				found = c.meets(strings.TrimSpace(cell(row, c.column)))
+			}
+			if !found {
+				unmatched = append(unmatched, c.text)
+			}
+		}
+	}
+	return unmatched
+}
+
+// meets reports whether a cell has the condition's value, or can be compared with
+// it where the operator is one of order.
+func (c condition) meets(cell string) bool {
+	switch c.operator {
+	case "is", "=", "is not", "!=":
+		return equalCell(cell, c.value)
+	case "contains":
+		return c.holds(cell)
+	}
+	_, known := compareCell(cell, c.value)
+	return known
 }
 
 func unquote(text string) string { return strings.Trim(strings.TrimSpace(text), `"`) }

@@ -1,6 +1,9 @@
 package review
 
-import "testing"
+import (
+	"strings"
+	"testing"
+)
 
 func TestFilter(t *testing.T) {
 	row := map[string]string{
@@ -30,6 +33,12 @@ func TestFilter(t *testing.T) {
 		"missing is not x":                              true,
 		`"risk of bias" is high`:                        true,
 		"year >= 2010 and year <= 2010":                 true,
+		"blank is blank":                                true,
+		"Year IS NOT Blank":                             true,
+		"missing is not blank":                          false,
+		"blank is not blank or year is blank":           false,
+		`setting is "blank"`:                            false,
+		"dose (mg) is blank":                            true, // a name that holds parentheses
 		"setting is tube or dose < 1":                   true,
 		"risk of bias is high or nothing=1":             true,
 	} {
@@ -45,7 +54,8 @@ func TestFilter(t *testing.T) {
 			t.Errorf("%s is written %s", text, f)
 		}
 	}
-	for _, bad := range []string{"", "year", "is high", "year >=", "year >> 3", "a is b and", "or a is b", "and"} {
+	for _, bad := range []string{"", "year", "is high", "year >=", "year >> 3", "a is b and", "or a is b", "and",
+		"(year > 2000)", "(year > 2000 or dose is 1) and setting is x", "year is (2000", "year is 2000)"} {
 		if f, err := ParseFilter(bad); err == nil {
 			t.Errorf("%q is read as %v", bad, f)
 		}
@@ -69,4 +79,33 @@ func FuzzFilter(f *testing.F) {
 			t.Errorf("%q matches %q differently, or looks at nothing", text, value)
 		}
 	})
+}
+
+// TestFilterUnmatched tells a value that some row has from one that none has.
+func TestFilterUnmatched(t *testing.T) {
+	rows := []map[string]string{{"risk-of-bias": "low", "year": "2010"}, {"risk-of-bias": "High", "year": ""}}
+	cell := func(row int, column string) string { return rows[row][column] }
+	for text, want := range map[string]string{
+		"risk of bias is not high":               "",
+		"risk of bias is not hihg":               "risk of bias is not hihg",
+		"risk of bias is hi or year = 2010":      "risk of bias is hi",
+		"risk of bias contains hi":               "",
+		"year >= 1990":                           "",
+		"year >= MCMXC and risk of bias is low":  "year >= MCMXC",
+		"risk of bias > 1":                       "risk of bias > 1",
+		"year is blank and risk of bias != high": "",
+		"other is not blank":                     "",
+	} {
+		f, err := ParseFilter(text)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := strings.Join(f.Unmatched(len(rows), cell), "; "); got != want {
+			t.Errorf("%s: unmatched %q, want %q", text, got, want)
+		}
+	}
+	_, err := ParseFilter("(year > 2000 or dose is 1) and setting is x")
+	if err == nil || !strings.Contains(err.Error(), "no parentheses") {
+		t.Errorf("error %v does not speak of parentheses", err)
+	}
 }

@@ -132,7 +132,8 @@ func (x *Extraction) Outcomes() []string {
 
 // Cell returns the text of a column by its folded name, for filters: identity
 // first, then numbers, then context and covariates. It is blank where the row has
-// nothing.
+// nothing. The year is that of a column of its own beside the date where the row
+// fills it, else the date's.
 func (s *Study) Cell(column string) string {
 	switch column {
 	case "study":
@@ -140,6 +141,9 @@ func (s *Study) Cell(column string) string {
 	case "id":
 		return s.ID
 	case "date", "year":
+		if own := s.remarkText(column); own != "" {
+			return own
+		}
 		if column == "year" && s.Date.Year != 0 {
 			return strconv.Itoa(s.Date.Year)
 		}
@@ -152,6 +156,11 @@ func (s *Study) Cell(column string) string {
 			return n.Place.Text
 		}
 	}
+	return s.remarkText(column)
+}
+
+// remarkText returns the text of a context or covariate column by its folded name.
+func (s *Study) remarkText(column string) string {
 	for _, r := range s.Remarks {
 		if choice.Fold(r.Header) == column {
 			return r.Text
