@@ -52,6 +52,14 @@ func difficultPoints() map[string]CumulativeInput {
 	variant("undated", 40, func(in *CumulativeInput) {
 		in.Points[7].Date = review.Date{}
 	})
+	variant("some undated", 12, func(in *CumulativeInput) {
+		for i := 9; i < 12; i++ {
+			in.Points[i].Date = review.Date{}
+		}
+	})
+	variant("one dated", 3, func(in *CumulativeInput) {
+		in.Points[1].Date, in.Points[2].Date = review.Date{}, review.Date{}
+	})
 	variant("ordered", 12, func(in *CumulativeInput) {
 		in.Order = "in order of risk of bias, low before high, and within it in the order of the sheet that was read"
 		for i := range in.Points {

@@ -25,7 +25,7 @@ type CumulativeInput struct {
 // CumulativePoint is the result after one arrival.
 type CumulativePoint struct {
 	Entered             []Arrival   // the studies that arrived together
-	Date                review.Date // of the arrival; unknown if its year is 0
+	Date                review.Date // of the arrival; unknown if its year is 0, then after all known
 	Label               string      // under the axis where the order is not by date; empty is the number of studies so far
 	K                   int         // studies so far
 	Estimate, Low, High float64     // analysis scale
@@ -65,21 +65,29 @@ func (in *CumulativeInput) validate() error {
 		if d := p.Date; d.Year < 0 || d.Year > 9999 || d.Month < 0 || d.Month > 12 || d.Day < 0 || d.Day > 31 {
 			return fmt.Errorf("cumulative chart: %s: no calendar has the date %d-%d-%d", where, d.Year, d.Month, d.Day)
 		}
-		if i > 0 && in.dated() && p.Date.Compare(in.Points[i-1].Date) < 0 {
+		if i > 0 && i < in.dated() && p.Date.Compare(in.Points[i-1].Date) < 0 {
 			return fmt.Errorf("cumulative chart: %s: its date %s is before %s, that of the point before; put the points in order", where, p.Date, in.Points[i-1].Date)
 		}
 	}
 	return nil
 }
 
-// dated reports whether the points stand at their dates.
-func (in *CumulativeInput) dated() bool {
-	for _, p := range in.Points {
-		if p.Date.Year == 0 {
-			return false
+// dated returns how many points stand at their dates: the first ones, the others
+// being without one; 0 if they are ordered by something else.
+func (in *CumulativeInput) dated() int {
+	if in.Order != "" {
+		return 0
+	}
+	n := 0
+	for n < len(in.Points) && in.Points[n].Date.Year > 0 {
+		n++
+	}
+	for _, p := range in.Points[n:] {
+		if p.Date.Year > 0 {
+			return 0
 		}
 	}
-	return in.Order == ""
+	return n
 }
 
 // cleaned returns a copy whose texts may stand in a drawing.

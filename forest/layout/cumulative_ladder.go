@@ -194,7 +194,8 @@ func (c *cumulative) valueItems(path []Point) []Item {
 	return onPatch(best, Paper, 1.2)
 }
 
-// clearOfLine reports whether a text stands free of the line of evidence.
+// clearOfLine reports whether a text stands free of the line of evidence and of
+// that of even odds.
 func (c *cumulative) clearOfLine(t Text, path []Point) bool {
 	run := t.Runs()[0]
 	pad := c.discRadius() + discOutline + 0.4
@@ -202,6 +203,9 @@ func (c *cumulative) clearOfLine(t Text, path []Point) bool {
 	y1, y2 := t.Y-0.72*t.Size-pad, t.Y+0.21*t.Size+pad
 	if t.Spans[0].Anchor == End {
 		x2 -= pad // the last point stands beside the text
+	}
+	if even := c.ladder.y(0); y1 <= even && even <= y2 {
+		return false
 	}
 	for i := 1; i < len(path); i++ {
 		a, b := path[i-1], path[i]

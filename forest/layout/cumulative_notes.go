@@ -36,8 +36,11 @@ func (c *cumulative) pointNote() string {
 	case len(c.names) < len(c.in.Points):
 		text += " Labelled: those that move the evidence most."
 	}
-	if c.tied() {
+	switch {
+	case c.tied() && c.in.dated() > 0:
 		text += " What arrives together enters together."
+	case c.tied():
+		text += " Those of one value enter together."
 	}
 	if c.in.Prior == 0 {
 		text += c.arrowNote()
@@ -94,7 +97,7 @@ func (c *cumulative) description() string {
 		b.WriteString(c.in.Title + ". ")
 	}
 	order := "in order of date"
-	if !c.in.dated() {
+	if c.in.dated() == 0 {
 		order = c.orderCaption()
 	}
 	fmt.Fprintf(&b, "Evidence after each %s, %s: ", c.in.plural(1), order)

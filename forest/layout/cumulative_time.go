@@ -30,14 +30,21 @@ func yearOf(d review.Date) float64 {
 }
 
 // years returns the points' dates as years. One whose month is not known stands
-// at the middle of its year, but not after the next.
+// at the middle of its year, but not after the next; those without a date follow
+// the last one at equal distances.
 func (c *cumulative) years() []float64 {
 	years := make([]float64, len(c.in.Points))
-	for i := len(years) - 1; i >= 0; i-- {
+	dated := c.in.dated()
+	for i := dated - 1; i >= 0; i-- {
 		years[i] = yearOf(c.in.Points[i].Date)
-		if i < len(years)-1 {
+		if i < dated-1 {
 			years[i] = math.Min(years[i], years[i+1])
 		}
+	}
+	const undatedShare = 0.06
+	apart := math.Max(undatedShare*(years[dated-1]-years[0]), 0.25)
+	for i := dated; i < len(years); i++ {
+		years[i] = years[i-1] + apart
 	}
 	return years
 }
@@ -47,7 +54,7 @@ func (c *cumulative) shares() []float64 {
 	k := len(c.in.Points)
 	shares := make([]float64, k)
 	at := func(i int) float64 { return float64(i) }
-	if c.in.dated() {
+	if c.in.dated() > 0 {
 		years := c.years()
 		at = func(i int) float64 { return years[i] }
 	}
@@ -105,7 +112,7 @@ func (c *cumulative) timeItems() (items []Item, bottom float64) {
 		}
 		items = append(items, Line{X1: t.x, Y1: y, X2: t.x, Y2: y + length, Width: 0.5})
 	}
-	if c.in.dated() {
+	if c.in.dated() > 0 {
 		return items, base
 	}
 	base += 1.3 * m.second
@@ -115,20 +122,42 @@ func (c *cumulative) timeItems() (items []Item, bottom float64) {
 
 func (c *cumulative) orderCaption() string {
 	if c.in.Order == "" {
-		return c.in.plural(2) + " so far; not all are dated"
+		return c.in.plural(2) + " so far"
 	}
 	return c.in.Order
 }
 
 func (c *cumulative) timeTicks() []tick {
 	switch {
-	case !c.in.dated():
+	case c.in.dated() == 0:
 		return c.orderTicks()
 	case c.years()[0] == c.years()[len(c.in.Points)-1]:
 		d := c.in.Points[0].Date
 		return []tick{{x: (c.inner().low + c.inner().high) / 2, label: words.Date(d.Year, d.Month, d.Day)}}
 	}
-	return c.calendarTicks()
+	return c.withUndated(c.calendarTicks())
+}
+
+// withUndated ends the calendar at the last date and labels what stands after it.
+func (c *cumulative) withUndated(ticks []tick) []tick {
+	dated, k := c.in.dated(), len(c.xs)
+	if dated == k {
+		return ticks
+	}
+	after := tick{x: (c.xs[dated] + c.xs[k-1]) / 2, label: "no date"}
+	size := c.metrics.second
+	from := math.Min(c.xs[dated], after.x-Width(after.label, size, false)/2) - labelGap
+	var kept []tick
+	for _, t := range ticks {
+		if t.x > c.xs[dated]-2 {
+			continue
+		}
+		if t.x+Width(t.label, size, false)/2 > from {
+			t.label = ""
+		}
+		kept = append(kept, t)
+	}
+	return append(kept, after)
 }
 
 // orderTicks labels as many of the points as find room.
@@ -197,7 +226,7 @@ func (c *cumulative) endTicks() []tick {
 		d := c.in.Points[i].Date
 		return tick{x: c.xs[i], label: words.Date(d.Year, d.Month, d.Day)}
 	}
-	ticks := []tick{date(0), date(len(c.xs) - 1)}
+	ticks := []tick{date(0), date(c.in.dated() - 1)}
 	if !fits(ticks, c.metrics.second) {
 		return ticks[:1]
 	}

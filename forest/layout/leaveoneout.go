@@ -40,7 +40,7 @@ const (
 	omissionPoint = 2.4
 	omissionRim   = 0.8
 	omissionLine  = 0.9 // outline of a hollow bar
-	axisPad       = 0.08
+	axisPad       = 0.075
 )
 
 // LeaveOneOut lays out what each study carries: the result of all studies, and

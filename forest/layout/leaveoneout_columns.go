@@ -28,6 +28,7 @@ const (
 	leastOmissionZone = 50   // least width of the axis of effects in the narrow form
 	railBeforeColon   = 26   // from the rail to the colon of the odds
 	colonBefore       = 50   // from the colon to the right edge
+	estimateGap       = 3.35 // between an estimate and its interval
 	columnGap         = 8    // least space between columns
 	spreadToRail      = 14   // from the spread to the rail
 	intervalToSpread  = 29   // from the interval's to the spread's right edge
@@ -119,7 +120,7 @@ func (l *leaveOneOut) wideColumns(form omissionForm) omissionColumns {
 		tau := max(l.widest(size, func(t omissionText) string { return t.tau }), Width(spreadHead, m.head, true))
 		c.intervalEnd -= max(intervalToSpread, tau+4)
 	}
-	c.estimateEnd = c.intervalEnd - l.widest(size, func(t omissionText) string { return t.between }) - 4
+	c.estimateEnd = c.intervalEnd - l.widest(size, func(t omissionText) string { return t.between }) - estimateGap
 	c.zone.high = c.estimateEnd - l.widest(size, func(t omissionText) string { return t.estimate }) - columnGap
 	c.nameWidth = l.nameRoom(form.names)
 	c.zone.low = m.margin + c.nameWidth + zoneBefore + 1
