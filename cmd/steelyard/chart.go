@@ -22,8 +22,72 @@ const (
 	flagDPI     = "dpi"
 )
 
+// chartKind is a chart that the command draws of each outcome.
+type chartKind struct {
+	name    string
+	usage   string
+	setting string         // whose settings it takes besides the common ones
+	want    synthesis.Want // beyond the pooled results
+	draw    func(*synthesis.Synthesis, *synthesis.Outcome, layout.Style) (layout.Document, error)
+}
+
+var chartKinds = []chartKind{
+	{
+		name: "forest", usage: "every study, the pooled effect, and the evidence of each", setting: "forest",
+		draw: laidOut(layout.ForestOf, layout.Forest),
+	},
+	{
+		name: "cumulative", usage: "how the evidence arrived, study by study", setting: "cumulative", want: synthesis.Want{Cumulative: true},
+		draw: laidOut(layout.CumulativeOf, layout.Cumulative),
+	},
+	{
+		name: "leave-one-out", usage: "how much of the evidence each study carries", setting: "leave-one-out", want: synthesis.Want{LeaveOneOut: true},
+		draw: laidOut(layout.LeaveOneOutOf, layout.LeaveOneOut),
+	},
+}
+
+// laidOut joins what a chart shows of an outcome with its layout.
+func laidOut[Input any](
+	of func(*synthesis.Synthesis, *synthesis.Outcome) (Input, error),
+	lay func(Input, layout.Style) (layout.Document, error),
+) func(*synthesis.Synthesis, *synthesis.Outcome, layout.Style) (layout.Document, error) {
+	return func(s *synthesis.Synthesis, o *synthesis.Outcome, style layout.Style) (layout.Document, error) {
+		in, err := of(s, o)
+		if err != nil {
+			return layout.Document{}, err
+		}
+		return lay(in, style)
+	}
+}
+
 func chartCommand() *cli.Command {
-	flags := []cli.Flag{
+	command := &cli.Command{
+		Name:      "chart",
+		Usage:     "draw a chart of a sheet",
+		UsageText: "steelyard chart KIND FILE --out F.svg|pdf|png [flags]",
+		Action: func(c *cli.Context) error {
+			var names []string
+			for _, kind := range chartKinds {
+				names = append(names, kind.name)
+			}
+			return &callError{"which chart? the kinds are: " + strings.Join(names, ", ") + "; usage: steelyard chart forest FILE --out F.svg"}
+		},
+	}
+	for _, kind := range chartKinds {
+		command.Subcommands = append(command.Subcommands, &cli.Command{
+			Name:      kind.name,
+			Usage:     kind.usage,
+			UsageText: fmt.Sprintf("steelyard chart %s FILE --out F.svg|pdf|png [flags]", kind.name),
+			Flags:     slices.Concat(chartFlags(), sheetFlags(), settingFlags(kind.setting)),
+			Action:    func(c *cli.Context) error { return drawChart(c, kind) },
+		})
+	}
+	return command
+}
+
+// chartFlags are the flags of every chart.
+func chartFlags() []cli.Flag {
+	return []cli.Flag{
 		&cli.StringFlag{Name: flagOut, Usage: "file to write; its ending chooses the format: .svg, .pdf or .png"},
 		&cli.BoolFlag{Name: flagOverwrite, Usage: "replace an output file that exists"},
 		&cli.IntFlag{Name: flagWidth, Value: 180, Usage: "width in millimetres: 180 for a page, 85 for a column (default: 180)"},
@@ -31,44 +95,25 @@ func chartCommand() *cli.Command {
 		&cli.BoolFlag{Name: flagNoTitle, Usage: "leave title and subtitle to the caption"},
 		&cli.IntFlag{Name: flagDPI, Value: 300, Usage: "dots per inch of a .png (default: 300)"},
 	}
-	return &cli.Command{
-		Name:      "chart",
-		Usage:     "draw a chart of a sheet",
-		UsageText: "steelyard chart KIND FILE --out F.svg|pdf|png [flags]",
-		Subcommands: []*cli.Command{{
-			Name:      "forest",
-			Usage:     "every study, the pooled effect, and the evidence of each",
-			UsageText: "steelyard chart forest FILE --out F.svg|pdf|png [flags]",
-			Flags:     slices.Concat(flags, sheetFlags(), settingFlags("forest")),
-			Action:    chartForest,
-		}},
-		Action: func(c *cli.Context) error {
-			return &callError{"which chart? the kinds are: forest; usage: steelyard chart forest FILE --out F.svg"}
-		},
-	}
 }
 
-func chartForest(c *cli.Context) error {
+// drawChart draws a chart of each outcome.
+func drawChart(c *cli.Context, kind chartKind) error {
 	out := c.String(flagOut)
 	ink, err := inkFor(out)
 	if err != nil {
 		return err
 	}
-	style, err := forestStyle(c)
+	style, err := chartStyle(c)
 	if err != nil {
 		return err
 	}
-	s, err := analyse(c, synthesis.Want{})
+	s, err := analyse(c, kind.want)
 	if err != nil {
 		return err
 	}
 	for i := range s.Outcomes {
-		o := &s.Outcomes[i]
-		in, err := layout.ForestOf(s, o)
-		if err != nil {
-			return err
-		}
-		document, err := layout.Forest(in, style)
+		document, err := kind.draw(s, &s.Outcomes[i], style)
 		if err != nil {
 			return err
 		}
@@ -103,8 +148,9 @@ func inkFor(out string) (string, error) {
 	}
 }
 
-func forestStyle(c *cli.Context) (layout.ForestStyle, error) {
-	style := layout.ForestStyle{NoTitle: c.Bool(flagNoTitle)}
+// chartStyle reads the flags on how a chart looks.
+func chartStyle(c *cli.Context) (layout.Style, error) {
+	style := layout.Style{NoTitle: c.Bool(flagNoTitle)}
 	switch width := c.Int(flagWidth); width {
 	case 180:
 	case 85:
