@@ -1,6 +1,8 @@
 package synthesis
 
 import (
+	"context"
+	"encoding/json"
 	"math"
 	"strconv"
 	"strings"
@@ -85,6 +87,9 @@ func TestRoundTrip(t *testing.T) {
 			effect.RiskDifference, effect.MeanDifference, effect.StandardisedMeanDifference, effect.Correlation, effect.Proportion}).Draw(t, "measure")
 		y, se := rapid.Float64Range(-2, 2).Draw(t, "y"), rapid.Float64Range(0.01, 1).Draw(t, "se")
 		level := rapid.Float64Range(0.3, 0.999).Draw(t, "level")
+		if m == effect.RiskDifference {
+			y /= 2 // beyond 1 there is no difference of risks
+		}
 		low, high := studyInterval(effect.Estimate{Y: y, SE: se}, level)
 		plan := &review.Plan{}
 		for setting, value := range map[string]string{"measure": m.String(), "level": strconv.FormatFloat(level, 'g', -1, 64)} {
@@ -183,7 +188,7 @@ func TestOneSidedP(t *testing.T) {
 		if direction != "" {
 			remarked(row, review.Direction, direction)
 		}
-		_, o := runOne(t, &s, "measure", "risk difference")
+		_, o := runOne(t, &s, "measure", "mean difference")
 		if len(o.Studies) != 1 || math.Abs(o.Studies[0].Estimate.SE-want) > 1e-9 {
 			t.Errorf("direction %q: %+v %s, want se %v", direction, o.Studies, o.Problem, want)
 		}
@@ -212,4 +217,48 @@ func TestMeansTest(t *testing.T) {
 			t.Errorf("%s, standardised: %+v %s, want %v", name, o.Studies, o.Problem, g)
 		}
 	}
+}
+
+// TestAnyNumbers: whatever numbers a row holds, and whatever is asked of them,
+// they give finite effects or reasons, and the document can be written.
+func TestAnyNumbers(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		value := rapid.OneOf(rapid.SampledFrom([]float64{0, 1, -1, 0.5, 0.05, 2, 10, 40, 1e150, -1e150, 1e-300}), rapid.Float64Range(-5, 100))
+		var s sheet
+		for range rapid.IntRange(1, 4).Draw(t, "rows") {
+			row := numbers{}
+			for _, f := range rapid.SliceOfN(rapid.IntRange(int(review.Estimate), review.FieldCount-1), 2, 40).Draw(t, "fields") {
+				row[review.Field(f)] = value.Draw(t, "value")
+			}
+			study := s.row("a", "", row)
+			remarked(study, review.Design, rapid.SampledFrom([]string{"", "parallel", "crossover", "cluster"}).Draw(t, "design"))
+			remarked(study, review.Direction, rapid.SampledFrom([]string{"", "higher", "lower", "x"}).Draw(t, "direction"))
+			study.Measure = effect.Measure(rapid.SampledFrom([]int{0, 0, 1, 4, 6, 7, 9}).Draw(t, "own"))
+		}
+		plan := &review.Plan{}
+		if err := plan.Set("measure", "", review.Value{Text: rapid.SampledFrom(effect.MeasureNames()).Draw(t, "measure"), From: review.FromFlag}); err != nil {
+			t.Fatal(err)
+		}
+		got, err := Run(context.Background(), &s.Extraction, plan, Want{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if _, err := json.Marshal(got.Document("test")); err != nil {
+			t.Fatal(err)
+		}
+		o := &got.Outcomes[0]
+		if len(o.Studies)+len(o.Excluded) != len(s.Studies) && o.Problem == "" {
+			t.Fatalf("%d pooled and %d left out of %d", len(o.Studies), len(o.Excluded), len(s.Studies))
+		}
+		for _, study := range o.Studies {
+			if !(study.Estimate.SE > 0) || math.IsInf(study.Estimate.SE, 0) || math.IsNaN(study.Estimate.Y) || math.IsInf(study.Estimate.Y, 0) {
+				t.Fatalf("%v from %v", study.Estimate, study.Source.Numbers)
+			}
+		}
+		for _, e := range o.Excluded {
+			if e.Reason == "" {
+				t.Fatal("a row is left out without a reason")
+			}
+		}
+	})
 }
