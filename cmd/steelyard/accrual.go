@@ -89,7 +89,7 @@ func (k accrualKind) command() *cli.Command {
 		Description: k.description,
 		Flags:       slices.Concat(k.flags, sheetFlags(), settingFlags(k.name), []cli.Flag{formatFlag()}, outputFlags(), workFlags()),
 		Action: func(c *cli.Context) error {
-			wantJSON, err := jsonWanted(c)
+			wantJSON, err := outputWanted(c)
 			if err != nil {
 				return err
 			}

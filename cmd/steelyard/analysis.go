@@ -59,14 +59,37 @@ func readSheet(c *cli.Context, path string) (*review.Extraction, *review.Plan, e
 	if path != "-" {
 		return ingest.Open(c.Context, path, options)
 	}
-	data, err := io.ReadAll(io.LimitReader(c.App.Reader, mostInput+1))
-	switch {
-	case err != nil:
-		return nil, nil, &fileError{fmt.Errorf("standard input: %w", err)}
-	case len(data) > mostInput:
-		return nil, nil, &fileError{fmt.Errorf("standard input is larger than %d MB; save it as a file and name that", mostInput>>20)}
+	data, err := readInput(c)
+	if err != nil {
+		return nil, nil, err
 	}
 	return ingest.Read(c.Context, data, "standard input", options)
+}
+
+// readInput reads standard input whole, and stops waiting for it when the call is
+// interrupted.
+func readInput(c *cli.Context) ([]byte, error) {
+	type input struct {
+		data []byte
+		err  error
+	}
+	read := make(chan input, 1)
+	go func() {
+		data, err := io.ReadAll(io.LimitReader(c.App.Reader, mostInput+1))
+		read <- input{data, err}
+	}()
+	select {
+	case <-c.Context.Done():
+		return nil, c.Context.Err()
+	case got := <-read:
+		switch {
+		case got.err != nil:
+			return nil, &fileError{fmt.Errorf("standard input: %w", got.err)}
+		case len(got.data) > mostInput:
+			return nil, &fileError{fmt.Errorf("standard input is larger than %d MB; save it as a file and name that", mostInput>>20)}
+		}
+		return got.data, nil
+	}
 }
 
 // incomplete returns rowsLeftOut if an outcome has no result or misses rows

@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"slices"
 	"strings"
-	"unicode/utf8"
 
 	"steelyard/forest/words"
 	"steelyard/meta"
@@ -16,7 +15,7 @@ import (
 const (
 	answerWidth = 96
 	labelWidth  = 18
-	valueWidth  = 22
+	valueWidth  = 24
 )
 
 // mostFindings is how many findings an answer shows.
@@ -34,12 +33,17 @@ func (p *page) row(label, text string) { p.wrapped(pad(label, labelWidth), text)
 // value writes a label, a value and what is to be said about it, in three
 // columns.
 func (p *page) value(label, value, about string) {
-	p.wrapped(pad(label, labelWidth)+pad(value, valueWidth)+"  ", about)
+	head := pad(label, labelWidth) + pad(value, valueWidth) + "  "
+	if width(value) > valueWidth && about != "" { // what is said about it keeps its column
+		p.line("  " + strings.TrimRight(head, " "))
+		head = strings.Repeat(" ", labelWidth+valueWidth+2)
+	}
+	p.wrapped(head, about)
 }
 
 // wrapped writes a head and a text that is wrapped under its own beginning.
 func (p *page) wrapped(head, text string) {
-	indent := utf8.RuneCountInString(head)
+	indent := width(head)
 	for i, line := range wrap(text, answerWidth-indent-2) {
 		if i > 0 {
 			head = strings.Repeat(" ", indent)
@@ -58,8 +62,8 @@ func (p *page) item(mark, text string) {
 	}
 }
 
-func pad(text string, width int) string {
-	return text + strings.Repeat(" ", max(0, width-utf8.RuneCountInString(text)))
+func pad(text string, columns int) string {
+	return text + strings.Repeat(" ", max(0, columns-width(text)))
 }
 
 // answer returns the text answer of a synthesis.
@@ -269,7 +273,7 @@ func (p *page) remarks(o *synthesis.Outcome) {
 	}
 	all = append(all, o.Notes...)
 	if o.Counts.Corrected > 0 {
-		all = append(all, fmt.Sprintf("%d table(s) with a zero cell: correction %q.", o.Counts.Corrected, o.Analysis.Correction))
+		all = append(all, fmt.Sprintf("%s with a zero cell: correction %q.", words.Number(o.Counts.Corrected, "table", "tables"), o.Analysis.Correction))
 	}
 	if len(all) == 0 {
 		return

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"regexp"
 	"slices"
 	"strings"
 
@@ -80,10 +81,12 @@ func prepare(command *cli.Command, path string) {
 	}
 }
 
+// badNumber is the library's complaint about a flag's value.
+var badNumber = regexp.MustCompile(`^invalid value "(.*)" for flag -([a-z0-9-]+): .*$`)
+
 func usageError(c *cli.Context, err error, _ bool) error {
-	text := strings.TrimPrefix(err.Error(), "flag provided but not defined: ")
-	if text != err.Error() {
-		return unknownFlag(c.Command, text)
+	if m := badNumber.FindStringSubmatch(err.Error()); m != nil {
+		return &callError{fmt.Sprintf("--%s: %q is not a number; write it in digits with a decimal point and a plain minus, such as -2.5", m[2], m[1])}
 	}
 	return &callError{fmt.Sprintf("%s; see: steelyard %s --help", err, c.Command.FullName())}
 }
@@ -102,6 +105,6 @@ COMMANDS{{range .VisibleCommands}}
   {{.Name}} COMMAND --help explains a command and its flags.
 
 EXIT CODES
-  0 done    1 the data or plan is wrong, or rows were left out    2 the call is wrong
+  0 done    1 the data or plan is wrong, or rows with an error were left out    2 the call is wrong
   3 a file could not be read or written    130 interrupted
 `

@@ -19,10 +19,15 @@ func arrange(app *cli.App, args []string) ([]string, error) {
 	if at < 0 {
 		return args, nil // only flags of the app, such as --help
 	}
-	command := app.Command(args[1+at])
-	if command == nil {
-		return nil, unknownCommand(app, args[1+at])
+	switch word := args[1+at]; {
+	case word == "help" || word == "version":
+		return []string{args[0], "--" + word}, nil
+	case app.Command(word) == nil && at > 0:
+		return nil, &callError{fmt.Sprintf("name the command first, then its flags: steelyard COMMAND %s …", args[1])}
+	case app.Command(word) == nil:
+		return nil, unknownCommand(app, word)
 	}
+	command := app.Command(args[1+at])
 	path := []string{args[0], command.Name}
 	rest := slices.Concat(args[1:1+at], args[2+at:])
 	for len(command.Subcommands) > 0 {
@@ -37,16 +42,20 @@ func arrange(app *cli.App, args []string) ([]string, error) {
 		command, path = sub, append(path, sub.Name)
 		rest = slices.Delete(slices.Clone(rest), at, at+1)
 	}
-	flags, operands, err := partition(command, rest)
+	if slices.ContainsFunc(rest, func(a string) bool { return a == "--help" || a == "-h" || a == "-help" }) {
+		return append(path, "--help"), nil
+	}
+	flags, operands, err := partition(command, strings.Join(path[1:], " "), rest)
 	if err != nil {
 		return nil, err
 	}
 	return slices.Concat(path, flags, []string{"--"}, operands), nil
 }
 
-// partition sorts the arguments of a command into flags with their values, and
-// operands.
-func partition(command *cli.Command, args []string) (flags, operands []string, err error) {
+// partition sorts the arguments of a command, called by path, into flags with
+// their values, and operands. A flag that takes one value may be given once.
+func partition(command *cli.Command, path string, args []string) (flags, operands []string, err error) {
+	given := map[string]bool{}
 	for i := 0; i < len(args); i++ {
 		arg := args[i]
 		if arg == "--" {
@@ -59,14 +68,18 @@ func partition(command *cli.Command, args []string) (flags, operands []string, e
 		name, _, joined := strings.Cut(strings.TrimLeft(arg, "-"), "=")
 		flag := findFlag(command, name)
 		if flag == nil {
-			return nil, nil, unknownFlag(command, name)
+			return nil, nil, unknownFlag(command, path, name)
 		}
+		if _, many := flag.(*cli.StringSliceFlag); given[flag.Names()[0]] && !many {
+			return nil, nil, &callError{fmt.Sprintf("--%s is given twice; give it once", flag.Names()[0])}
+		}
+		given[flag.Names()[0]] = true
 		flags = append(flags, arg)
 		if joined || !takesValue(flag) {
 			continue
 		}
 		if i+1 == len(args) {
-			return nil, nil, &callError{fmt.Sprintf("--%s needs a value; see: steelyard %s --help", name, command.FullName())}
+			return nil, nil, &callError{fmt.Sprintf("--%s needs a value; see: steelyard %s --help", name, path)}
 		}
 		i++
 		flags = append(flags, args[i])
@@ -117,7 +130,7 @@ func unknownKind(command *cli.Command, name string) error {
 	return &callError{fmt.Sprintf("%q is no kind of %s%s; the kinds are: %s", name, command.Name, meant(nearest(name, names)), strings.Join(names, ", "))}
 }
 
-func unknownFlag(command *cli.Command, name string) error {
+func unknownFlag(command *cli.Command, path, name string) error {
 	name = strings.TrimLeft(name, "-")
 	var names []string
 	for _, flag := range command.Flags {
@@ -127,7 +140,7 @@ func unknownFlag(command *cli.Command, name string) error {
 	if hint != "" {
 		hint = "--" + hint
 	}
-	return &callError{fmt.Sprintf("there is no flag --%s%s; see: steelyard %s --help", name, meant(hint), command.FullName())}
+	return &callError{fmt.Sprintf("there is no flag --%s%s; see: steelyard %s --help", name, meant(hint), path)}
 }
 
 func meant(hint string) string {

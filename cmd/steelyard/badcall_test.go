@@ -9,6 +9,7 @@ import (
 	"path/filepath"
 	"strings"
 	"testing"
+	"time"
 )
 
 // TestBadCalls: every wrong call ends in its exit code and a message of one line
@@ -40,7 +41,15 @@ func TestBadCalls(t *testing.T) {
 		{"pool BCG --outcome flares", codeCall, []string{"no column of outcomes"}},
 		{"pool DEMO --outcome flares", codeCall, []string{"flare within 24 weeks"}},
 		{"pool BCG --format xml", codeCall, []string{"text, json"}},
-		{"pool BCG --out BCG --overwrite", codeCall, []string{"never overwritten"}},
+		{"pool BCG --out BCG --overwrite", codeCall, []string{"text or JSON"}},
+		{"pool BCG --out x.json", codeCall, []string{"--format json"}},
+		{"pool BCG --out FOLDER --overwrite", codeCall, []string{"is a folder"}},
+		{"pool BCG --tau paule-mandel --tau hedges-olkin", codeCall, []string{"given twice"}},
+		{"--out x.txt pool BCG", codeCall, []string{"command first"}},
+		{"weigh --z 2 --df 5", codeCall, []string{"--df means nothing beside --z"}},
+		{"weigh --p 0.02 --level 0.9", codeCall, []string{"--level means nothing"}},
+		{"weigh --estimate 1 --se 1 --df2 3", codeCall, []string{"--df2 means nothing"}},
+		{"weigh --z 2,5", codeCall, []string{"--z", "decimal point"}},
 		{"pool BCG --interval henmi-copas --effects common", codeData, nil},
 		{"pool nowhere.csv", codeFile, []string{"nowhere.csv"}},
 		{"pool BCG --out /nowhere/at/all.txt", codeFile, []string{"/nowhere/at"}},
@@ -66,7 +75,7 @@ func TestBadCalls(t *testing.T) {
 		{"weigh --p 0.05 --one-sided", codeCall, []string{"direction"}},
 		{"weigh trials.csv", codeCall, []string{"steelyard pool trials.csv"}},
 	} {
-		args := strings.Fields(strings.NewReplacer("BCG", bcg, "DEMO", data+"demo.xlsx").Replace(c.args))
+		args := strings.Fields(strings.NewReplacer("BCG", bcg, "DEMO", data+"demo.xlsx", "FOLDER", data+"checks").Replace(c.args))
 		stdout, stderr, code := call(t, "", args...)
 		if code != c.code {
 			t.Errorf("%s: exit %d, want %d (%s)", c.args, code, c.code, stderr)
@@ -111,8 +120,8 @@ func TestBadFiles(t *testing.T) {
 		{"nan.csv", header + "A,NaN,1\n", codeData, "not a number"},
 		{"inf.csv", header + "A,Inf,1\n", codeData, "not a number"},
 		{"huge.csv", header + "A,1e308,1\nB,-1e308,1\n", codeData, "too large"},
-		{"zero.csv", header + "A,1,0\nB,1,1\n", codeData, "above 0"},
-		{"negative.csv", header + "A,1,-1\nB,1,1\n", codeData, "above 0"},
+		{"zero.csv", header + "A,1,0\nB,1,1\n", codeData, "endless weight"},
+		{"negative.csv", header + "A,1,-1\nB,1,1\n", codeData, "endless weight"},
 		{"twice.csv", header + "A,1,1\nA,1,1\nB,2,1\n", codeData, "A"},
 		{"one.csv", header + "A,1,0.5\n", codeDone, "One study"},
 	} {
@@ -153,6 +162,53 @@ func TestFolderAndPermission(t *testing.T) {
 	}
 	if _, stderr, code := call(t, "", "pool", closed); code != codeFile || !strings.Contains(stderr, "closed.csv") {
 		t.Errorf("no permission: exit %d, %s", code, stderr)
+	}
+}
+
+// TestInputStays: the input is never an output, not even with --overwrite.
+func TestInputStays(t *testing.T) {
+	input := filepath.Join(t.TempDir(), "trials.txt")
+	content := "study,estimate,se\nA,1,1\n"
+	if err := os.WriteFile(input, []byte(content), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	if _, stderr, code := call(t, "", "pool", input, "--out", input, "--overwrite"); code != codeCall || !strings.Contains(stderr, "never overwritten") {
+		t.Errorf("exit %d, %s", code, stderr)
+	}
+	if after, err := os.ReadFile(input); err != nil || string(after) != content {
+		t.Errorf("the input is now %q, %v", after, err)
+	}
+}
+
+// TestHelpAnywhere: help is help wherever it is asked for.
+func TestHelpAnywhere(t *testing.T) {
+	want, _, _ := call(t, "", "pool", "--help")
+	for _, args := range [][]string{{"pool", "x.csv", "--help"}, {"pool", "-h"}, {"pool", "--level", "0.9", "x.csv", "--help"}} {
+		if got, stderr, code := call(t, "", args...); code != codeDone || got != want {
+			t.Errorf("%v: exit %d, %s%s", args, code, stderr, got)
+		}
+	}
+	general, _, _ := call(t, "", "--help")
+	if got, _, code := call(t, "", "help"); code != codeDone || got != general {
+		t.Errorf("help: exit %d\n%s", code, got)
+	}
+	if got, _, code := call(t, "", "version"); code != codeDone || !strings.Contains(got, version) {
+		t.Errorf("version: exit %d, %s", code, got)
+	}
+}
+
+// stuck is an input that never ends.
+type stuck struct{}
+
+func (stuck) Read([]byte) (int, error) { select {} }
+
+// TestInterruptedInput: an interrupt ends the wait for standard input.
+func TestInterruptedInput(t *testing.T) {
+	ctx, cancel := context.WithTimeout(context.Background(), 50*time.Millisecond)
+	defer cancel()
+	var out, errs bytes.Buffer
+	if code := run(ctx, []string{"steelyard", "pool", "-"}, streams{in: stuck{}, out: &out, err: &errs}); code != codeInterrupted {
+		t.Errorf("exit %d, %s", code, errs.String())
 	}
 }
 

@@ -99,6 +99,14 @@ func jsonWanted(c *cli.Context) (bool, error) {
 	}
 }
 
+// outputWanted reads --format and checks that --out fits it.
+func outputWanted(c *cli.Context) (wantJSON bool, err error) {
+	if wantJSON, err = jsonWanted(c); err != nil {
+		return wantJSON, err
+	}
+	return wantJSON, checkOut(c, wantJSON)
+}
+
 // oneFile returns the call's single operand.
 func oneFile(c *cli.Context) (string, error) {
 	switch args := c.Args().Slice(); len(args) {

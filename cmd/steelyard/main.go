@@ -2,8 +2,8 @@
 // fits common- and random-effects models, states how strongly the data favour an
 // effect over none, and draws it.
 //
-// Exit codes: 0 done; 1 the data or the plan is wrong, or rows were left out;
-// 2 the call is wrong; 3 a file could not be read or written; 130 interrupted.
+// Exit codes: 0 done; 1 the data or the plan is wrong, or rows with an error were
+// left out; 2 the call is wrong; 3 a file could not be read or written; 130 interrupted.
 package main
 
 import (

@@ -7,14 +7,16 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"slices"
+	"strings"
 
 	"github.com/urfave/cli/v2"
 )
 
-// deliver writes a result to --out, or to the terminal without it.
+// deliver writes a result to --out, or to the terminal without it or for "-".
 func deliver(c *cli.Context, content []byte) error {
 	path := c.String(flagOut)
-	if path == "" {
+	if path == "" || path == "-" {
 		if _, err := c.App.Writer.Write(content); err != nil {
 			return &fileError{fmt.Errorf("writing the output: %w", err)}
 		}
@@ -23,16 +25,35 @@ func deliver(c *cli.Context, content []byte) error {
 	return writeWhole(path, content, c.Bool(flagOverwrite))
 }
 
+// checkOut refuses an output whose name promises another kind of file.
+func checkOut(c *cli.Context, wantJSON bool) error {
+	path := c.String(flagOut)
+	ending := strings.ToLower(filepath.Ext(path))
+	switch {
+	case path == "" && c.IsSet(flagOut):
+		return &callError{"--out needs the name of a file, or - for the terminal"}
+	case ending == ".json" && !wantJSON:
+		return &callError{fmt.Sprintf("--out %s would hold text; add --format json, or name it .txt", path)}
+	case slices.Contains([]string{".svg", ".pdf", ".png", ".xlsx", ".html", ".csv"}, ending):
+		return &callError{fmt.Sprintf("--out %s: this command writes text or JSON; name it .txt or .json", path)}
+	}
+	return nil
+}
+
 // writeWhole writes a file whole or not at all: to a temporary file in the same
 // folder, synced, then renamed. It never replaces a file unless told to.
 func writeWhole(path string, content []byte, overwrite bool) error {
-	if _, err := os.Lstat(path); err == nil && !overwrite {
+	existing, err := os.Lstat(path)
+	switch {
+	case err == nil && existing.IsDir():
+		return &callError{fmt.Sprintf("%s is a folder; name a file in it", path)}
+	case err == nil && !overwrite:
 		return &callError{fmt.Sprintf("%s exists; add --overwrite to replace it, or choose another name", path)}
 	}
 	folder := filepath.Dir(path)
 	temporary, err := os.CreateTemp(folder, ".steelyard-*")
 	if err != nil {
-		return &fileError{fmt.Errorf("cannot write in folder %s: %w", folder, plainCause(err))}
+		return &fileError{fmt.Errorf("cannot write in folder %s: %w; choose a folder that exists and that you may write to", folder, plainCause(err))}
 	}
 	defer os.Remove(temporary.Name()) // gone after the rename: then it does nothing
 	_, err = temporary.ReadFrom(bytes.NewReader(content))

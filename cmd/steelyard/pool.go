@@ -23,7 +23,7 @@ func poolCommand() *cli.Command {
 }
 
 func pool(c *cli.Context) error {
-	wantJSON, err := jsonWanted(c)
+	wantJSON, err := outputWanted(c)
 	if err != nil {
 		return err
 	}

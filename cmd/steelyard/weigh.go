@@ -2,6 +2,7 @@ package main
 
 import (
 	"fmt"
+	"maps"
 	"slices"
 	"strings"
 
@@ -71,7 +72,7 @@ func weigh(c *cli.Context) error {
 	if c.NArg() > 0 {
 		return &callError{fmt.Sprintf("weigh takes no file, but %q is given; to pool a sheet: steelyard pool %s", c.Args().First(), c.Args().First())}
 	}
-	wantJSON, err := jsonWanted(c)
+	wantJSON, err := outputWanted(c)
 	if err != nil {
 		return err
 	}
@@ -81,7 +82,8 @@ func weigh(c *cli.Context) error {
 	}
 	w, err := synthesis.Weigh(numbers, prior)
 	if err != nil {
-		return &callError{err.Error()}
+		// Any ratio is weighed as a risk ratio; the message is about ratios.
+		return &callError{strings.ReplaceAll(err.Error(), "risk ratio", "ratio")}
 	}
 	content := []byte(weighAnswer(w, numbers.Level))
 	if wantJSON {
@@ -104,6 +106,9 @@ func weighNumbers(c *cli.Context) (synthesis.Numbers, []float64, error) {
 	n.Value = c.Float64(given[0])
 	n.DF, n.DF2, n.SE = c.Float64(flagDF), c.Float64(flagDF2), c.Float64(flagSE)
 	n.Ratio, n.OneSided = c.Bool(flagRatio), c.Bool(flagOneSided)
+	if err := strayFlags(c, n.Statistic); err != nil {
+		return n, nil, err
+	}
 	if c.IsSet(flagSE) && !(n.SE > 0) {
 		return n, nil, &callError{"--se must be greater than 0"}
 	}
@@ -125,6 +130,27 @@ func weighNumbers(c *cli.Context) (synthesis.Numbers, []float64, error) {
 	return n, a.Prior, err
 }
 
+// strayFlags refuses flags that the given statistic cannot use.
+func strayFlags(c *cli.Context, statistic synthesis.Statistic) error {
+	uses := map[string][]synthesis.Statistic{
+		flagDF:                 {synthesis.StatisticT, synthesis.StatisticChiSquare, synthesis.StatisticF, synthesis.Estimated},
+		flagDF2:                {synthesis.StatisticF},
+		flagSE:                 {synthesis.Estimated},
+		flagLow:                {synthesis.Estimated},
+		review.SettingLevel:    {synthesis.Estimated},
+		review.SettingEvidence: {synthesis.StatisticT, synthesis.StatisticF, synthesis.Estimated},
+	}
+	for _, name := range slices.Sorted(maps.Keys(uses)) {
+		if c.IsSet(name) && !slices.Contains(uses[name], statistic) {
+			return &callError{fmt.Sprintf("--%s means nothing beside --%s; leave it away", name, statistic)}
+		}
+	}
+	if c.IsSet(review.SettingEvidence) && statistic == synthesis.Estimated && !c.IsSet(flagDF) {
+		return &callError{"--evidence means nothing beside an estimate without --df; leave it away"}
+	}
+	return nil
+}
+
 // weighAnswer is the text answer of weigh.
 func weighAnswer(w *synthesis.Weighing, level float64) string {
 	var p page
@@ -137,6 +163,13 @@ func weighAnswer(w *synthesis.Weighing, level float64) string {
 		reader := func(y float64) float64 { return effect.ToReader(w.Measure, y) }
 		p.value("Effect", notation.Estimate(reader(m.Estimate), reader(m.Low), reader(m.High)),
 			fmt.Sprintf("%s, %s interval; %s", measure, words.Level(level), words.Test(*m)))
+		if w.Uneven {
+			hint := "check them, and the level"
+			if !w.Measure.Log() && m.Low > 0 {
+				hint = "is this a ratio (--ratio)?"
+			}
+			p.value("", "", "the limits given lie unevenly around the estimate; the interval shown is rebuilt from their width: "+hint)
+		}
 	}
 	if w.Sellke != nil && w.Evidence.Favours() == evidence.NoEffect {
 		p.value("Evidence", "none for an effect", "a p-value this large is no evidence for an effect; alone it is never evidence of none")

@@ -12,7 +12,6 @@ import (
 	"steelyard/forest/words"
 	"steelyard/meta"
 	"steelyard/meta/effect"
-	"steelyard/meta/evidence"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
 )
@@ -188,10 +187,26 @@ func forestNotes(o *synthesis.Outcome) []Note {
 	if text := daggerNote(o); text != "" {
 		notes[0].Text += " † " + text
 	}
-	if o.Result.Fit.Model.Evidence == evidence.StudentForm {
-		notes = append(notes, Note{Head: "Evidence", Text: "Student-t form in place of the matched form."})
+	if len(o.Excluded) > 0 {
+		notes = append(notes, Note{Head: "Left out", Text: leftOutNote(o)})
 	}
 	return notes
+}
+
+// mostLeftOut is how many left-out rows a chart names.
+const mostLeftOut = 5
+
+// leftOutNote names the rows that are not in the chart.
+func leftOutNote(o *synthesis.Outcome) string {
+	var names []string
+	for i, e := range o.Excluded {
+		if i == mostLeftOut {
+			names = append(names, fmt.Sprintf("and %d more", len(o.Excluded)-i))
+			break
+		}
+		names = append(names, e.Study)
+	}
+	return strings.Join(names, ", ") + "."
 }
 
 // daggerNote explains the daggers of an outcome: what the marked studies rest on.

@@ -2,6 +2,7 @@ package words
 
 import (
 	"steelyard/meta"
+	"steelyard/meta/evidence"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
 )
@@ -41,6 +42,10 @@ func Model(fit *meta.Fit) string {
 	model := "common effect"
 	if fit.Model.Effects == meta.RandomEffects {
 		model = "random effects, " + TauMethod(fit.Model.Tau)
+	}
+	student := fit.Model.Interval == meta.HartungKnapp || fit.Model.Interval == meta.HartungKnappFloor
+	if fit.Model.Evidence == evidence.StudentForm && student {
+		return model + "; " + IntervalMethod(fit.Model.Interval) + ", evidence in the Student-t form"
 	}
 	return model + "; " + IntervalMethod(fit.Model.Interval) + ", evidence matched to it"
 }

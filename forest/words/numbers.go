@@ -179,6 +179,14 @@ func Tau(x float64) string {
 // Count returns a whole number with commas between thousands: "1,871".
 func Count(n int) string { return People(float64(n)) }
 
+// Number returns a count with its noun: "1 table", "2 tables".
+func Number(n int, one, many string) string {
+	if n == 1 {
+		return "1 " + one
+	}
+	return Count(n) + " " + many
+}
+
 // People returns a number of people, rounded to whole ones: "1,871".
 func People(n float64) string { return Linear(n, 0) }
 

@@ -8,6 +8,7 @@ import (
 	"steelyard/meta"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
+	"steelyard/meta/numeric"
 	"steelyard/meta/synthesis"
 )
 
@@ -91,21 +92,35 @@ func Evidence(r evidence.Ratio) string {
 	return OddsInSentence(-r.Ln()) + " for none"
 }
 
+// mostSteps is beyond what a count of steps says anything by its digits.
+const mostSteps = 1000
+
 // Strength returns the word and the steps of an evidence ratio, whichever way it
-// points: "firm, 2.6 steps".
+// points: "firm, 2.6 steps". Steps never round up into the next word: "fair, just
+// under 2 steps".
 func Strength(r evidence.Ratio) string {
-	steps := Steps(math.Abs(r.Steps()))
-	unit := "steps"
-	if steps == "1.0" {
-		unit = "step"
+	steps := math.Abs(r.Steps())
+	rounded := math.Round(10*steps) / 10
+	switch {
+	case math.Abs(math.Expm1(math.Abs(r.Ln()))) <= even:
+		return "even"
+	case steps > mostSteps:
+		return fmt.Sprintf("%s, over %s steps", r.Word(), Count(mostSteps))
+	case rounded == math.Trunc(rounded) && rounded > steps:
+		return fmt.Sprintf("%s, just under %s", r.Word(), Number(int(rounded), "step", "steps"))
+	case rounded == 1:
+		return fmt.Sprintf("%s, %s step", r.Word(), Steps(steps))
 	}
-	return fmt.Sprintf("%s, %s %s", r.Word(), steps, unit)
+	return fmt.Sprintf("%s, %s steps", r.Word(), Steps(steps))
 }
 
 // Test returns the statistic behind an interval and its p-value: "t = −4.04 on 8
 // df, p = 0.004".
 func Test(m meta.Mean) string {
 	statistic := Linear(m.Statistic, 2)
+	if inverted := math.Ln2 + numeric.LogNormalTail(math.Abs(m.Statistic)); math.IsInf(m.DF, 1) && math.Abs(inverted-m.LnP) > 1e-6*math.Abs(inverted)+1e-9 {
+		return PValue(m.LnP) + ", by inverting the interval" // p is not that of the statistic
+	}
 	if math.IsInf(m.DF, 1) {
 		return fmt.Sprintf("z = %s, %s", statistic, PValue(m.LnP))
 	}
@@ -149,6 +164,9 @@ func Spread(fit *meta.Fit) string {
 // Doubter says for whom the evidence is not enough: "a doubter who starts below 40%
 // stays below 95%".
 func Doubter(b synthesis.Belief) string {
+	if b.Prior < 0.001 {
+		return fmt.Sprintf("even a doubter who starts at 0.1%% ends above %s", Percent(b.Posterior))
+	}
 	return fmt.Sprintf("a doubter who starts below %s stays below %s", Probability(b.Prior), Percent(b.Posterior))
 }
 

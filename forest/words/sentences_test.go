@@ -8,6 +8,7 @@ import (
 	"steelyard/meta"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
+	"steelyard/meta/numeric"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
 )
@@ -19,12 +20,15 @@ func TestEvidence(t *testing.T) {
 	}{
 		{29, "29 : 1 for an effect", "firm, 2.6 steps"},
 		{1 / 1.5, "1.5 : 1 for none", "faint, 0.3 steps"},
-		{1.04, "1 : 1, for neither", "faint, 0.0 steps"},
+		{1.04, "1 : 1, for neither", "even"},
+		{3.70, "3.7 : 1 for an effect", "faint, just under 1 step"},
+		{13.9, "14 : 1 for an effect", "fair, just under 2 steps"},
+		{math.Exp(2000), "over 10,000 : 1 for an effect", "massive, over 1,000 steps"},
 		{3.733, "3.7 : 1 for an effect", "fair, 1.0 step"},
 		{1e9, "over 10,000 : 1 for an effect", "massive, 15.7 steps"},
 		{1 / 2.33, "2.3 : 1 for none", "faint, 0.6 steps"},
 	} {
-		r := evidence.FromLn(math.Log(c.odds))
+		r := evidence.FromLn(min(2000, math.Log(c.odds)))
 		if got := Evidence(r); got != c.evidence {
 			t.Errorf("odds %v: %q, want %q", c.odds, got, c.evidence)
 		}
@@ -58,10 +62,14 @@ func TestScatter(t *testing.T) {
 }
 
 func TestTestAndLevel(t *testing.T) {
+	// Henmi–Copas: p belongs to the interval, not to z (z = −1.52 has p = 0.129).
+	if got, want := Test(meta.Mean{Statistic: -1.52, DF: math.Inf(1), LnP: math.Log(0.193)}), "p = 0.193, by inverting the interval"; got != want {
+		t.Errorf("%q, want %q", got, want)
+	}
 	if got, want := Test(meta.Mean{Statistic: -4.0435, DF: 8, LnP: math.Log(0.0037)}), "t = −4.04 on 8 df, p = 0.004"; got != want {
 		t.Errorf("%q, want %q", got, want)
 	}
-	if got, want := Test(meta.Mean{Statistic: 20000, DF: math.Inf(1), LnP: -2e8}), "z = 20,000.00, p < 0.001"; got != want {
+	if got, want := Test(meta.Mean{Statistic: 20000, DF: math.Inf(1), LnP: math.Ln2 + numeric.LogNormalTail(20000)}), "z = 20,000.00, p < 0.001"; got != want {
 		t.Errorf("%q, want %q", got, want)
 	}
 	for level, want := range map[float64]string{0.95: "95%", 0.9: "90%", 0.995: "99.5%"} {

@@ -109,7 +109,7 @@ func (t Table) bothFull() bool  { return t.Events1 == t.Total1 && t.Events2 == t
 // otherwise be undefined or 0, and is always recorded:
 //
 //   - odds ratio: any of the four cells is 0;
-//   - risk ratio: an arm has no events, or everybody in both arms has one;
+//   - risk ratio: an arm has no events;
 //   - risk difference: each arm has either no events or nothing but events (so
 //     that the variance is 0); the estimate stays that of the raw counts and
 //     only the variance is taken from the corrected ones;
@@ -117,8 +117,9 @@ func (t Table) bothFull() bool  { return t.Events1 == t.Total1 && t.Events2 == t
 //
 // Errors: a *MeasureError for another measure; an *InputError for a table that
 // fails Check, or one that needs a correction when c is NoCorrection;
-// ErrNothingToCompare for a ratio if neither arm has an event, and for an odds
-// ratio also if everybody in both arms has one.
+// ErrNothingToCompare for a ratio if neither arm has an event, or if everybody in
+// both arms has one: a risk ratio of 1 would then have a standard error made of
+// the correction alone, and the more people, the smaller.
 //
 // Source: Cochrane Handbook 6.4.1, 10.4.4.2; Deeks, Altman & Bradburn (2001),
 // in Systematic Reviews in Health Care, chapter 15; Rücker, Schwarzer, Carpenter
@@ -144,7 +145,7 @@ func (m Measure) checkTable() error {
 
 // fromTable is FromTable for a measure and a table that were checked.
 func fromTable(m Measure, t Table, c Correction) (Estimate, []Conversion, error) {
-	if m.Log() && t.bothEmpty() || m == OddsRatio && t.bothFull() {
+	if m.Log() && (t.bothEmpty() || t.bothFull()) {
 		return Estimate{}, nil, ErrNothingToCompare
 	}
 	steps := make([]Conversion, 0, 2)
@@ -187,7 +188,7 @@ func needsCorrection(m Measure, t Table) (culprit Value, needed bool) {
 		}
 		return control, controlEnd
 	case RiskRatio:
-		if x.a == 0 || t.bothFull() {
+		if x.a == 0 {
 			return treated, true
 		}
 		return control, x.c == 0

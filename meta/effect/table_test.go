@@ -92,8 +92,6 @@ func TestFromTableByHand(t *testing.T) {
 			math.Log((0.5 / 11) / (3.5 / 13)), 1/0.5 - 1/11. + 1/3.5 - 1/13., 2},
 		{"risk ratio, one full arm needs none", RiskRatio, Table{10, 10, 3, 12}, NoCorrection,
 			math.Log(1 / (3 / 12.)), 1/3. - 1/12., 1},
-		{"risk ratio, both full", RiskRatio, Table{10, 10, 12, 12}, Half,
-			math.Log((10.5 / 11) / (12.5 / 13)), 1/10.5 - 1/11. + 1/12.5 - 1/13., 2},
 		{"risk difference, one empty arm needs none", RiskDifference, Table{0, 10, 3, 12}, NoCorrection,
 			-0.25, 0.25 * 0.75 / 12, 1},
 		{"risk difference, both empty: raw estimate, corrected variance", RiskDifference, Table{0, 9, 0, 19}, Half,
@@ -132,7 +130,7 @@ func TestFromTableRefuses(t *testing.T) {
 		{"both empty, risk ratio", RiskRatio, Table{0, 10, 0, 12}, Half, ""},
 		{"treated empty, no correction", OddsRatio, Table{0, 10, 3, 12}, NoCorrection, "events treated"},
 		{"control empty, no correction", RiskRatio, Table{3, 10, 0, 12}, NoCorrection, "events control"},
-		{"both full, no correction", RiskRatio, Table{10, 10, 12, 12}, NoCorrection, "events treated"},
+		{"both full, risk ratio", RiskRatio, Table{10, 10, 12, 12}, Half, ""},
 		{"both empty, no correction", RiskDifference, Table{0, 10, 0, 12}, NoCorrection, "events treated"},
 		{"treated full, control empty, no correction", RiskRatio, Table{10, 10, 0, 12}, NoCorrection, "events control"},
 		{"control full, no correction", OddsRatio, Table{3, 10, 12, 12}, NoCorrection, "events control"},
@@ -224,6 +222,9 @@ func TestFromTableScale(t *testing.T) {
 			}
 			e, _, err := FromTable(m, x, NoCorrection)
 			big, _, errBig := FromTable(m, Table{f * x.Events1, f * x.Total1, f * x.Events2, f * x.Total2}, NoCorrection)
+			if errors.Is(err, ErrNothingToCompare) && errors.Is(errBig, ErrNothingToCompare) {
+				continue
+			}
 			if err != nil || errBig != nil {
 				t.Fatalf("%+v: %v, %v", x, err, errBig)
 			}

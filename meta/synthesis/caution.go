@@ -47,7 +47,7 @@ func cautions(s *Synthesis) []string {
 		all = append(all, "Converted numbers (marked †) rest on assumptions; see the result without them.")
 	}
 	if n := overrides(s.Findings); n > 0 {
-		all = append(all, fmt.Sprintf("%d flagged finding(s) were accepted against advice; their reasons stand with the findings.", n))
+		all = append(all, fmt.Sprintf("Flagged findings accepted against advice: %d; their reasons stand with the findings.", n))
 	}
 	return all
 }

@@ -2,6 +2,8 @@ package synthesis
 
 import (
 	"errors"
+	"fmt"
+	"math"
 	"slices"
 	"strings"
 
@@ -220,6 +222,9 @@ func (d *derivation) study() (Study, error) {
 	e, err := k.derive(d)
 	if err != nil {
 		return study, err
+	}
+	if d.measure == effect.RiskDifference && math.Abs(e.Y) > 1 {
+		return study, fmt.Errorf("a risk difference of %v is beyond 1, which is everybody; 5%% is written 0.05", e.Y)
 	}
 	if !slices.Contains(clusteredCounts, k.basis) {
 		if e, err = d.clustered(e); err != nil {

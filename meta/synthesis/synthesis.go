@@ -229,17 +229,18 @@ func runOutcome(x *review.Extraction, plan *review.Plan, name string, blocked ma
 		o.Problem = err.Error()
 		return o, nil, nil
 	}
-	where := newRowFilter(asked.Where, x.Columns)
-	rows := o.rows(x, where, blocked)
 	if f, refused := refusal(x.Findings, name); refused {
 		o.Problem = f.Message
 		return o, nil, nil
 	}
+	where := newRowFilter(asked.Where, x.Columns)
+	rows := o.rows(x, where, blocked)
 	if err := o.settle(asked, rows); err != nil {
 		o.Problem = err.Error()
 		return o, nil, nil
 	}
 	findings := o.derive(rows)
+	slices.SortStableFunc(o.Excluded, func(a, b Excluded) int { return a.Place.Row - b.Place.Row })
 	o.markReported()
 	o.filterConverted(where)
 	if err := o.PValues.combine(); err != nil {
@@ -253,8 +254,33 @@ func runOutcome(x *review.Extraction, plan *review.Plan, name string, blocked ma
 	o.count()
 	if err := o.pool(asked); err != nil {
 		o.Problem = err.Error()
+		return o, findings, nil
 	}
+	o.idleSettings(plan)
 	return o, findings, nil
+}
+
+// idleSettings notes settings that somebody chose and the model has no use for.
+func (o *Outcome) idleSettings(plan *review.Plan) {
+	if o.Result.Fit.Mean.K < 2 {
+		return
+	}
+	model := o.Result.Fit.Model
+	common := model.Effects == meta.CommonEffect
+	student := model.Interval == meta.HartungKnapp || model.Interval == meta.HartungKnappFloor
+	for _, s := range []struct {
+		name string
+		idle bool
+		why  string
+	}{
+		{review.SettingTau, common, "a common effect has no τ²"},
+		{review.SettingPrediction, common, "a common effect has no prediction interval"},
+		{review.SettingEvidence, !student, fmt.Sprintf("beside the %s interval the evidence has the normal form", model.Interval)},
+	} {
+		if v := plan.Value(s.name, o.Name); s.idle && v.From != review.FromDefault {
+			o.note(fmt.Sprintf("The setting %s (%s) is not used: %s.", s.name, v.Text, s.why))
+		}
+	}
 }
 
 // knownColumns refuses a filter on a column that the sheet does not have: it
@@ -289,7 +315,7 @@ func (o *Outcome) rows(x *review.Extraction, where rowFilter, blocked map[rowKey
 		}
 		o.Counts.Rows++
 		if f, bad := blocked[rowKey{row.Row.File, row.Row.Sheet, row.Row.Row}]; bad {
-			o.exclude(row, f.Message, true)
+			o.excludeAt(row, f.Place, f.Message, true)
 			continue
 		}
 		rows = append(rows, row)
@@ -298,7 +324,12 @@ func (o *Outcome) rows(x *review.Extraction, where rowFilter, blocked map[rowKey
 }
 
 func (o *Outcome) exclude(row *review.Study, reason string, wrong bool) {
-	o.Excluded = append(o.Excluded, Excluded{Study: row.Name, Place: row.Row, Reason: reason, Wrong: wrong})
+	o.excludeAt(row, row.Row, reason, wrong)
+}
+
+// excludeAt lists a row that is not pooled, by the place that is to blame.
+func (o *Outcome) excludeAt(row *review.Study, place review.Place, reason string, wrong bool) {
+	o.Excluded = append(o.Excluded, Excluded{Study: row.Name, Place: place, Reason: reason, Wrong: wrong})
 	if wrong {
 		o.Counts.Wrong++
 	}
@@ -320,7 +351,14 @@ func (o *Outcome) nothingLeft() string {
 	if len(o.Excluded) == 0 {
 		return "there is no row to pool"
 	}
-	return fmt.Sprintf("none of %d rows can be pooled; the first: %s", len(o.Excluded), o.Excluded[0].Reason)
+	first := o.Excluded[0]
+	if i := slices.IndexFunc(o.Excluded, func(e Excluded) bool { return e.Wrong }); i >= 0 {
+		first = o.Excluded[i]
+	}
+	if len(o.Excluded) == 1 {
+		return "its one row cannot be pooled: " + first.Reason
+	}
+	return fmt.Sprintf("none of its %d rows can be pooled; %s (%s): %s", len(o.Excluded), first.Study, first.Place, first.Reason)
 }
 
 func (o *Outcome) count() {

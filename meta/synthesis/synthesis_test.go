@@ -161,7 +161,8 @@ func TestRefusals(t *testing.T) {
 			s.row("a", "", estimate(0.5, 1))
 			s.Findings = []review.Finding{{Severity: review.Error, Rule: review.RulePlan, Place: review.Place{Sheet: "plan", Row: 3}, Message: "tua is unknown"}}
 		}, nil},
-		{"no row is left", "none of 1 rows", func(s *sheet) { s.row("a", "", nil) }, nil},
+		{"no row is left", "its one row cannot be pooled", func(s *sheet) { s.row("a", "", nil) }, nil},
+		{"a difference of risks beyond 1", "0.05", func(s *sheet) { s.row("a", "", estimate(5, 1)) }, []string{"measure", "risk difference"}},
 		{"a column is unknown", "does not have", func(s *sheet) { s.row("a", "", estimate(1, 1)) }, []string{"where", "yaer > 2"}},
 		{"null of a ratio", "null", func(s *sheet) { s.row("a", "", estimate(1, 1)) }, []string{"measure", "odds ratio", "null", "-1"}},
 		{"important beside the null", "both sides", func(s *sheet) { s.row("a", "", estimate(1, 1)) }, []string{"important", "2, 3"}},
@@ -250,6 +251,27 @@ func TestWanted(t *testing.T) {
 	cancel()
 	if _, err := Run(ctx, &s.Extraction, planOf(t), Want{}); !errors.Is(err, context.Canceled) {
 		t.Errorf("a cancelled run: %v", err)
+	}
+}
+
+// TestIdleSettings: a setting that the model cannot use is named in a note.
+func TestIdleSettings(t *testing.T) {
+	for _, c := range []struct {
+		settings []string
+		says     string
+	}{
+		{[]string{"tau", "paule-mandel", "effects", "common"}, "a common effect has no τ²"},
+		{[]string{"evidence", "student-t", "interval", "wald"}, "normal form"},
+		{[]string{"evidence", "student-t"}, ""},
+		{[]string{"tau", "paule-mandel"}, ""},
+	} {
+		var s sheet
+		s.row("a", "", estimate(1, 1))
+		s.row("b", "", estimate(2, 1))
+		_, o := runOne(t, &s, append(c.settings, "measure", "mean difference")...)
+		if got := strings.Join(o.Notes, " "); (c.says == "") != (got == "") || !strings.Contains(got, c.says) {
+			t.Errorf("%v: notes %q, want %q", c.settings, got, c.says)
+		}
 	}
 }
 

@@ -56,6 +56,7 @@ type Weighing struct {
 	Regions   []Region
 	Bound     *evidence.Ratio // what no prior could beat; nil where there is none
 	Sellke    *evidence.Ratio // of a p-value alone: the other published calibration
+	Uneven    bool            // the limits lie unevenly around the estimate on this scale
 }
 
 // Weigh returns the evidence in numbers alone, for the given prior
@@ -167,6 +168,7 @@ func (w *Weighing) fromEstimate(n Numbers) error {
 	if err != nil {
 		return err
 	}
+	w.Uneven = n.uneven(w.Measure, e)
 	null := w.Measure.Null()
 	if n.Null != nil {
 		null = *n.Null
@@ -214,6 +216,20 @@ func (n Numbers) estimate(m effect.Measure) (effect.Estimate, error) {
 		e.SE *= numeric.NormalCritical(1-n.Level) / numeric.StudentCritical(1-n.Level, n.DF)
 	}
 	return e, err
+}
+
+// mostUneven is how far, in standard errors, the middle of an interval may lie
+// from its estimate before that is said (a tenth: rule I2 of the catalogue).
+const mostUneven = 0.1
+
+// uneven reports whether the middle of the limits is not the estimate.
+func (n Numbers) uneven(m effect.Measure, e effect.Estimate) bool {
+	if n.Limits == nil {
+		return false
+	}
+	low, errLow := effect.FromReader(m, n.Limits.Low)
+	high, errHigh := effect.FromReader(m, n.Limits.High)
+	return errLow == nil && errHigh == nil && math.Abs((low+high)/2-e.Y) > mostUneven*e.SE
 }
 
 // WeighingDocument is the JSON of a weighing.
