@@ -160,15 +160,11 @@ func uprightHead(x, tip, depth, width float64, ink Ink) Polygon {
 // neither the line nor a disc runs through them.
 func (c *cumulative) valueItems(path []Point) []Item {
 	size := c.metrics.row
-	ln := c.last().LnEvidence
-	text := words.Odds(ln) + ", " + wordText(ln)
-	if ln < 0 {
-		text += " for none"
-	}
+	text := c.valueText()
 	at := path[len(path)-2]
 	x, anchor := at.X-5, End
 	if x-Width(text, size, true) < c.plot.low+2 {
-		x, anchor = at.X+5, Start
+		x, anchor = math.Min(at.X+5, c.plot.high-2-Width(text, size, true)), Start
 	}
 	const gap = 4.5
 	capital := 0.72 * size
@@ -192,6 +188,20 @@ func (c *cumulative) valueItems(path []Point) []Item {
 		}
 	}
 	return onPatch(best, Paper, 1.2)
+}
+
+// valueText is the odds of the last point with their word, as far as that fits.
+func (c *cumulative) valueText() string {
+	ln := c.last().LnEvidence
+	odds := words.Odds(ln)
+	text := odds + ", " + wordText(ln)
+	if ln < 0 {
+		text += " for none"
+	}
+	if Width(text, c.metrics.row, true) > c.plot.high-c.plot.low-4 {
+		return odds
+	}
+	return text
 }
 
 // clearOfLine reports whether a text stands free of the line of evidence and of
