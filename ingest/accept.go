@@ -7,8 +7,8 @@ import (
 )
 
 // readerRules are the rules whose findings about a row come from this reader
-// alone; accepting one of them where it does not occur is remarked on.
-var readerRules = map[string]bool{"F1": true, "F3": true, "F4": true, "F6": true, "F9": true, "F10": true, "F11": true, "F12": true}
+// alone and as it reads the row; accepting one of them where it does not occur is remarked on.
+var readerRules = map[string]bool{"F1": true, "F3": true, "F4": true, "F6": true, "F9": true, "F11": true, "F12": true}
 
 // accept marks the row's findings that the reviewer accepts.
 func (r *rowReader) accept() {

@@ -3,7 +3,6 @@ package ingest
 import (
 	"fmt"
 	"math"
-	"slices"
 
 	"steelyard/meta/effect"
 	"steelyard/meta/review"
@@ -144,33 +143,4 @@ func (r *rowReader) checkRow() {
 	if extra := len(r.row.Cells); t.book.Text && extra > len(t.header.columns) {
 		r.find(review.Error, "F9", extra, fmt.Sprintf("the row has %d cells and the header %d, so its numbers may stand in the wrong columns; put a text that holds the delimiter into double quotes", extra, len(t.header.columns)))
 	}
-}
-
-// checkNames reports studies that stand twice in one outcome.
-func (t *tableReader) checkNames() {
-	type key struct{ outcome, name string }
-	first := make(map[key]int, len(t.x.Studies))
-	for i := range t.x.Studies {
-		s := &t.x.Studies[i]
-		k := key{s.Outcome, s.Name}
-		j, twice := first[k]
-		if !twice {
-			first[k] = i
-			continue
-		}
-		before := &t.x.Studies[j]
-		place := t.place(s.Row.Row, t.role.name, s.Name)
-		f := review.Finding{Severity: review.Warning, Rule: "D5", Place: place, Study: s.Name}
-		f.Message = fmt.Sprintf("the study stands in row %d too, with other numbers; if both rows are of the same people, they count twice: keep one, or give them names of their own", before.Row.Row)
-		if len(s.Numbers) > 0 && sameNumbers(s, before) {
-			f.Severity, f.Rule = review.Error, "D1"
-			f.Message = fmt.Sprintf("the row repeats row %d with the same name and numbers, so its people would count twice; take one of them out", before.Row.Row)
-		}
-		f.Accepted = s.AcceptedReason(f.Rule)
-		t.x.Findings = append(t.x.Findings, f)
-	}
-}
-
-func sameNumbers(a, b *review.Study) bool {
-	return slices.EqualFunc(a.Numbers, b.Numbers, func(x, y review.Number) bool { return x.Field == y.Field && x.Value == y.Value })
 }

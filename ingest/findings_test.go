@@ -93,6 +93,15 @@ func TestFindings(t *testing.T) {
 		{"no number", counts([]any{"A", 2002}), []string{"error F9 3:3"}, "no number"},
 		{"same row twice", counts([]any{"Good", 2001, 3, 40, 5, 41}), []string{"error D1 A3"}, "row 2"},
 		{"same name twice", counts([]any{"Good", 2001, 4, 40, 5, 41}), []string{"warning D5 A3"}, "row 2"},
+		{"same row in other letters", counts([]any{" GOOD. ", 2001, 3, 40, 5, 41}), []string{"error D1 A3"}, "row 2"},
+		{"same name in other letters", counts([]any{"(good)", 2001, 4, 40, 5, 41}), []string{"warning D5 A3"}, `row 2 too as "Good"`},
+		{"same name, another year", counts([]any{"Good", 2004, 4, 40, 5, 41}), nil, ""},
+		{"same row, another year", counts([]any{"Good", 2004, 3, 40, 5, 41}), []string{"error D1 A3"}, "row 2"},
+		{"same name in one of two years", counts([]any{"Good", 2004, 4, 40, 5, 41}, []any{"good", 2004, 6, 40, 5, 41}), []string{"warning D5 A4"}, "row 3"},
+		{"sum of the others", counts([]any{"B", 2002, 7, 50, 9, 51}, []any{"Both", "", 10, 90, 14, 92}), []string{"error F10 A4"}, "other 2 rows"},
+		{"sum of the others but one", counts([]any{"B", 2002, 7, 50, 9, 51}, []any{"Both", "", 10, 90, 14, 94}), nil, ""},
+		{"sum beside a total by name", counts([]any{"B", 2002, 7, 50, 9, 51}, []any{"Total", "", 10, 90, 14, 92}), []string{"error F10 A4"}, "total of other rows"},
+		{"sum accepted", counts([]any{"B", 2002, 7, 50, 9, 51}, []any{"Both", "", 10, 90, 14, 92, "F10 a chance"}), []string{"error F10 A4 accepted"}, ""},
 		{"second table", counts([]any{"Study", "Year", "Events treated", "Total treated", "Mean control", "SD control"}, []any{"B", 2001, 3, 40, 5, 41}),
 			[]string{"error F9 3:3"}, "A3:F4"},
 		{"header repeated", counts([]any{"study", "year", "events treated", "total treated", "events control", "total control", "accept"}, []any{"B", 2001, 3, 40, 5, 41}),
@@ -282,5 +291,43 @@ func TestYearBesideDate(t *testing.T) {
 		if got := s.Date.String(); got != want.date || s.Cell("date") != want.date {
 			t.Errorf("%s: date %q, want %q", s.Name, got, want.date)
 		}
+	}
+}
+
+// TestFoldName wants the same name however it is typed, and other names apart.
+func TestFoldName(t *testing.T) {
+	for _, name := range []string{"Adams 2001", "ADAMS 2001", "Adams (2001)", "Adams, 2001", " Ádams  2001 ", "adams\u00a02001", "Ａdams-2001", "adams 2001"} {
+		if got := foldName(name); got != "adams 2001" {
+			t.Errorf("%q is folded to %q", name, got)
+		}
+	}
+	for name, want := range map[string]string{"Müller": "muller", "Ørsted & Weiß": "orsted weiss", "Łukasz": "lukasz", "?": "?", "Adams 2001a": "adams 2001a", "田中": "田中", "محمد 2010": "محمد 2010"} {
+		if got := foldName(name); got != want {
+			t.Errorf("%q is folded to %q, want %q", name, got, want)
+		}
+	}
+}
+
+// TestFootnotes tells texts below a table from studies without numbers.
+func TestFootnotes(t *testing.T) {
+	head := "study,estimate,se\nA,1,2\nB,1,2\n"
+	for _, note := range []string{"* data from the author", "† adjusted", "a) adjusted", "a Adjusted for age", "Note: adjusted", "Source: own extraction", "SOURCES", "Anmerkung: vorläufig",
+		"Numbers of the second trial were read off a figure by two people who agreed on every one of them"} {
+		for _, rows := range []string{head + note + "\n", head + note + "\nmore of it\n"} {
+			x := mustRead(t, []byte(rows), "a.csv", Options{})
+			if got := said(x); len(x.Studies) != 2 || !slices.Equal(got, []string{"note F9 A4"}) {
+				t.Errorf("%q: %d studies, findings %q", note, len(x.Studies), got)
+			}
+		}
+	}
+	for _, name := range []string{"Adams 2001", "Notebaert 2003", "A Smith 2004", "Sourced Trial", "Chen"} {
+		x := mustRead(t, []byte(head+name+"\n"), "a.csv", Options{})
+		if got := said(x); len(x.Studies) != 3 || !slices.Equal(got, []string{"error F9 4:4"}) {
+			t.Errorf("%q: %d studies, findings %q", name, len(x.Studies), got)
+		}
+	}
+	x := mustRead(t, []byte("study,estimate,se\n* Adams,1,2\nSource,1,2\n"), "a.csv", Options{})
+	if len(x.Studies) != 2 || len(x.Findings) != 0 {
+		t.Errorf("a row with numbers is no footnote: %+v", x.Findings)
 	}
 }

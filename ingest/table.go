@@ -63,6 +63,7 @@ func readTable(ctx context.Context, book *grid.Book, sheet *grid.Sheet, h *heade
 		}
 		return nil, fmt.Errorf("%s: the header stands in row %d: %w", where, sheet.Rows[h.bottom].Number, ErrNoStudies)
 	}
+	t.checkSums()
 	t.checkNames()
 	if len(t.x.Findings) > maxFindings {
 		return nil, t.tooManyFindings()
@@ -184,24 +185,6 @@ func (t *tableReader) place(row, col int, text string) review.Place {
 
 func (t *tableReader) find(severity review.Severity, rule string, place review.Place, study, message string) {
 	t.x.Findings = append(t.x.Findings, review.Finding{Severity: severity, Rule: rule, Place: place, Study: study, Message: message})
-}
-
-// dropFootnotes leaves out rows below the table that hold a single text and are
-// parted from it by a blank row.
-func (t *tableReader) dropFootnotes() {
-	first := len(t.rows)
-	for first > 1 && filled(&t.rows[first-1]) == 1 && t.rows[first-1].Cell(t.role.name).Kind == grid.Text {
-		first--
-	}
-	for first < len(t.rows) && t.rows[first].Number == t.rows[max(first-1, 0)].Number+1 {
-		first++
-	}
-	if first == len(t.rows) || first == 0 {
-		return
-	}
-	place := t.place(t.rows[first].Number, t.role.name, t.rows[first].Cell(t.role.name).Text)
-	t.find(review.Note, "F9", place, "", fmt.Sprintf("%d row(s) with a text alone, parted from the table by a blank row, are read as footnotes", len(t.rows)-first))
-	t.rows = t.rows[:first]
 }
 
 // filled counts the cells of a row that hold something.
