@@ -178,24 +178,24 @@ func TestMixedKinds(t *testing.T) {
 	y, se := math.Log(0.5), math.Sqrt(1/10.-1/100.+1/20.-1/100.)
 	const z90 = 1.6448536269514722 // standard normal, 95%
 	sheet := "study,events treated,total treated,events control,total control,RR,ci low,ci high,ci level,p\n" +
-		"A,10,100,20,100,,,,,\nB,10,100,20,100,,,,,\n" +
+		"A,10,100,20,100,,,,,\nB,10,100,20,100,,,,,\nE,10,100,20,100,,,,,\n" +
 		fmt.Sprintf("C,,,,,0.5,%v,%v,0.9,\n", math.Exp(y-z90*se), math.Exp(y+z90*se)) +
 		fmt.Sprintf("D,,,,,0.5,,,,%v\n", math.Erfc(-y/se/math.Sqrt2))
 	d := pooledText(t, sheet)
 	o := d.Outcomes[0]
-	if o.K != 4 || math.Abs(o.Pooled.Estimate-y) > 1e-9 {
+	if o.K != 5 || math.Abs(o.Pooled.Estimate-y) > 1e-9 {
 		t.Fatalf("k %d, estimate %v, want %v", o.K, o.Pooled.Estimate, y)
 	}
 	for i, s := range o.Studies {
-		if math.Abs(s.SE-se) > 1e-9 || s.Converted != (i > 1) {
+		if math.Abs(s.SE-se) > 1e-9 || s.Converted != (i > 2) {
 			t.Errorf("%s: se %v, converted %v, want %v", s.Study, s.SE, s.Converted, se)
 		}
 	}
-	if o.Without == nil || o.Without.K != 2 || math.Abs(o.Without.Estimate-y) > 1e-9 {
+	if o.Without == nil || o.Without.K != 3 || math.Abs(o.Without.Estimate-y) > 1e-9 {
 		t.Fatalf("without: %+v", o.Without)
 	}
 	alone := pooledText(t, sheet, "--where", "converted is no").Outcomes[0]
-	if alone.K != 2 || alone.Rows != 2 || math.Abs(alone.Pooled.LnEvidence-o.Without.LnEvidence) > 1e-12 || alone.Without != nil {
+	if alone.K != 3 || alone.Rows != 3 || math.Abs(alone.Pooled.LnEvidence-o.Without.LnEvidence) > 1e-12 || alone.Without != nil {
 		t.Errorf("with the filter %+v, beside %+v", alone.Pooled, o.Without)
 	}
 	if marked := pooledText(t, sheet, "--where", "converted is yes").Outcomes[0]; marked.K != 2 || marked.Studies[0].Study != "C" {

@@ -72,7 +72,7 @@ var settings = []Setting{
 	freeSetting(SettingOrder, "", "column that orders the studies as they accrue", "column name", checkText).unless("the date").of("cumulative"),
 	choiceSetting(SettingTies, TiesNames(), TiesTogether.String(), "whether studies of one date enter together or in the order of the file").of("cumulative"),
 	choiceSetting(SettingCorrection, effect.CorrectionNames(), effect.Half.String(), "what is added to a 2×2 table whose zero cell leaves no estimate"),
-	freeSetting(SettingWhere, "", "pool only the rows for which this holds", "such as \"risk of bias is not high and year >= 2010\"", checkFilter),
+	freeSetting(SettingWhere, "", "pool only the rows for which this holds", "such as \"risk of bias is not high and year >= 2010\", or \"converted is no\"", checkFilter),
 	freeSetting(SettingSeed, "1", "start of every random sequence", "whole number", checkSeed),
 }
 
