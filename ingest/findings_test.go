@@ -102,6 +102,8 @@ func TestFindings(t *testing.T) {
 		{"sum of the others but one", counts([]any{"B", 2002, 7, 50, 9, 51}, []any{"Both", "", 10, 90, 14, 94}), nil, ""},
 		{"sum beside a total by name", counts([]any{"B", 2002, 7, 50, 9, 51}, []any{"Total", "", 10, 90, 14, 92}), []string{"error F10 A4"}, "total of other rows"},
 		{"sum accepted", counts([]any{"B", 2002, 7, 50, 9, 51}, []any{"Both", "", 10, 90, 14, 92, "F10 a chance"}), []string{"error F10 A4 accepted"}, ""},
+		{"count with a decimal point proved", counts([]any{"A", 2002, "2.000", 40, 5, 41}, []any{"B", 2002, "2.5", 40, 5, 41}), []string{"error C2 C4"}, "whole"},
+		{"count with a short point", counts([]any{"A", 2002, "2.0", 40, 5, 41}), nil, ""},
 		{"second table", counts([]any{"Study", "Year", "Events treated", "Total treated", "Mean control", "SD control"}, []any{"B", 2001, 3, 40, 5, 41}),
 			[]string{"error F9 3:3"}, "A3:F4"},
 		{"header repeated", counts([]any{"study", "year", "events treated", "total treated", "events control", "total control", "accept"}, []any{"B", 2001, 3, 40, 5, 41}),
@@ -329,5 +331,27 @@ func TestFootnotes(t *testing.T) {
 	x := mustRead(t, []byte("study,estimate,se\n* Adams,1,2\nSource,1,2\n"), "a.csv", Options{})
 	if len(x.Studies) != 2 || len(x.Findings) != 0 {
 		t.Errorf("a row with numbers is no footnote: %+v", x.Findings)
+	}
+}
+
+// TestThousandsPoints wants a count such as "2.000", typed as a text, to be offered
+// as 2 and as 2000, and the numbers of other columns to be read as they stand.
+func TestThousandsPoints(t *testing.T) {
+	x := mustRead(t, []byte("study,events treated,total treated,events control,total control,se\nA,1,2.000,2,3.400,1.234\nB,12,900,1,800,2.000\n"), "a.csv", Options{})
+	if got := said(x); !slices.Equal(got, []string{"warning F3 C:C", "error F3 C2", "error F3 E2"}) {
+		t.Fatalf("findings %q", got)
+	}
+	f := x.Findings[0]
+	if !strings.Contains(f.Message, "part thousands") || !strings.Contains(x.Findings[1].Message, `"2.000" may be 2 (decimal point) or 2000 (thousands point)`) {
+		t.Errorf("messages %q, %q", f.Message, x.Findings[1].Message)
+	}
+	for i, want := range [][]float64{{2, 3.4}, {2000, 3400}} {
+		got := f.Readings[i].Numbers
+		if len(got) != 2 || got[0].Value != want[0] || got[1].Value != want[1] || got[0].Field != review.TotalTreated {
+			t.Errorf("%s: %+v, want %v", f.Readings[i].Label, got, want)
+		}
+	}
+	if se, _ := x.Studies[0].Number(review.StandardError); se.Value != 1.234 {
+		t.Errorf("se %v", se)
 	}
 }

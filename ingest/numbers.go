@@ -20,7 +20,10 @@ type numberColumn struct {
 }
 
 // doubt says why a cell's decimal mark cannot be told.
-type doubt struct{ rule, message string }
+type doubt struct {
+	rule, message string
+	mark          rune // ',' or '.' that may mark decimals or part thousands; 0 for other doubts
+}
 
 // rowValues finds a row's numbers by their field.
 type rowValues struct {
@@ -39,13 +42,14 @@ func (v *rowValues) has(f review.Field) (float64, bool) {
 const largest = 1e150
 
 // chooseDecimals decides for each column which mark separates decimals. A column
-// without any comma, and without two points in a cell, needs no deciding. The error
+// without any comma, and without two points in a cell, needs no deciding; one of
+// counts does if it has any point. The error
 // says that more cells are in doubt than anybody could go through.
 func (t *tableReader) chooseDecimals() error {
 	doubts := 0
 	for i := range t.numeric {
 		c := &t.numeric[i]
-		if !t.doubtful(c.col) {
+		if !t.doubtful(c) {
 			continue
 		}
 		var texts []string
@@ -56,6 +60,7 @@ func (t *tableReader) chooseDecimals() error {
 			}
 		}
 		t.decide(c, texts, numbers)
+		doubtPoints(c, texts, numbers)
 		if doubts += len(c.unclear); doubts > maxFindings {
 			return t.tooManyFindings()
 		}
@@ -65,9 +70,10 @@ func (t *tableReader) chooseDecimals() error {
 }
 
 // doubtful reports whether a column has a text whose decimal mark is not plain.
-func (t *tableReader) doubtful(col int) bool {
+func (t *tableReader) doubtful(c *numberColumn) bool {
+	counted := counted(c.field)
 	for j := range t.rows {
-		if cell := t.rows[j].Cell(col); cell.Kind == grid.Text && hasComma(cell.Text) {
+		if cell := t.rows[j].Cell(c.col); cell.Kind == grid.Text && (hasComma(cell.Text) || counted && strings.IndexByte(cell.Text, '.') >= 0) {
 			return true
 		}
 	}
@@ -102,7 +108,7 @@ func (t *tableReader) decide(c *numberColumn, texts []string, rows []int) {
 		for _, list := range [][]int{mixed.Points, mixed.Commas} {
 			for _, i := range list {
 				if len(c.unclear) <= maxFindings {
-					c.unclear[rows[i]] = doubt{"F4", message}
+					c.unclear[rows[i]] = doubt{rule: "F4", message: message}
 				}
 			}
 		}
@@ -110,7 +116,7 @@ func (t *tableReader) decide(c *numberColumn, texts []string, rows []int) {
 		c.unclear = map[int]doubt{}
 		for i, text := range texts {
 			if len(c.unclear) <= maxFindings && strings.ContainsAny(text, ",\uff0c") {
-				c.unclear[rows[i]] = doubt{"F3", bothReadings(text)}
+				c.unclear[rows[i]] = doubt{"F3", bothReadings(text, ','), ','}
 			}
 		}
 	case mark == ',':
@@ -118,17 +124,6 @@ func (t *tableReader) decide(c *numberColumn, texts []string, rows []int) {
 		place := t.place(0, c.col, t.header.columns[c.col-1].Header)
 		t.find(review.Note, "F3", place, "", "the column is read with the comma as its decimal mark")
 	}
-}
-
-// bothReadings says what a text with a comma before three digits may mean.
-func bothReadings(text string) string {
-	decimal, _, errDecimal := grid.ParseNumber(text, ',')
-	thousands, _, errThousands := grid.ParseNumber(text, '.')
-	if errDecimal != nil || errThousands != nil {
-		return notANumber(text)
-	}
-	return fmt.Sprintf("%s may be %s (decimal comma) or %s (thousands comma), and nothing in the column tells which; write decimals with a point, or leave thousands commas out",
-		quote(text), shortest(decimal), shortest(thousands))
 }
 
 func shortest(x float64) string { return strconv.FormatFloat(x, 'g', -1, 64) }
