@@ -77,7 +77,7 @@ func (e *BoundaryError) Error() string {
 type UnboundedError struct{ What string }
 
 func (e *UnboundedError) Error() string {
-	return e.What + " has no end within any plausible odds ratio: too few tables have events and non-events in both arms; use a common effect or conditional-exact"
+	return e.What + " has no end within any plausible odds ratio: the tables say too little for a random effect; use a common effect or conditional-exact"
 }
 
 // SizeError reports counts too large for the conditional law to be written out:

@@ -200,6 +200,12 @@ func (l *logistic) bestSpread(mu, start float64) (place, error) {
 func (l *logistic) spreadBetween(mu float64, a, b place) (place, error) {
 	var failed error
 	tau, err := numeric.Root(func(tau float64) float64 {
+		switch tau {
+		case a.tau:
+			return a.slopeTau2
+		case b.tau:
+			return b.slopeTau2
+		}
 		p, err := l.at(mu, tau)
 		if err != nil {
 			failed = err
