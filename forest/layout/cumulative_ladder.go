@@ -2,6 +2,7 @@ package layout
 
 import (
 	"math"
+	"slices"
 
 	"steelyard/forest/words"
 	"steelyard/meta/evidence"
@@ -159,28 +160,10 @@ func uprightHead(x, tip, depth, width float64, ink Ink) Polygon {
 // valueItems writes the odds and the word of the last point beside it, where
 // neither the line nor a disc runs through them.
 func (c *cumulative) valueItems(path []Point) []Item {
-	size := c.metrics.row
-	text := c.valueText()
-	at := path[len(path)-2]
-	x, anchor := at.X-5, End
-	if x-Width(text, size, true) < c.plot.low+2 {
-		x, anchor = math.Min(at.X+5, c.plot.high-2-Width(text, size, true)), Start
-	}
-	const gap = 4.5
-	capital := 0.72 * size
 	var best Text
-	found := false
-	for try := range 100 {
-		base := at.Y - gap - 4*float64(try/2)
-		if try%2 == 1 {
-			base = at.Y + gap + capital + 4*float64(try/2)
-		}
-		t := boldLabel(x, base, size, anchor, text)
-		if base-capital < c.ladder.top || base > c.ladder.bottom() {
-			continue
-		}
-		if !found {
-			best, found = t, true
+	for i, t := range c.valuePlaces(path[len(path)-2], len(path) > 3 && path[len(path)-3].Y < path[len(path)-2].Y) {
+		if i == 0 {
+			best = t
 		}
 		if c.clearOfLine(t, path) {
 			best = t
@@ -188,6 +171,32 @@ func (c *cumulative) valueItems(path []Point) []Item {
 		}
 	}
 	return onPatch(best, Paper, 1.2)
+}
+
+// valuePlaces returns where the value of a point may stand within the ladder, the
+// nearest first: to its left, or at the right end of the panel; above it, or below
+// it where the line fell to it.
+func (c *cumulative) valuePlaces(at Point, fell bool) []Text {
+	const gap, further = 4.5, 4
+	size, text := c.metrics.row, c.valueText()
+	width, capital := Width(text, size, true), 0.72*size
+	end := span{c.plot.low + 2 + width, c.plot.high - 3}
+	var places []Text
+	for offset := gap; offset < c.ladder.bottom()-c.ladder.top; offset += further {
+		bases := []float64{at.Y - offset, at.Y + offset + capital}
+		if fell {
+			slices.Reverse(bases)
+		}
+		for _, base := range bases {
+			if base-capital < c.ladder.top || base > c.ladder.bottom() {
+				continue
+			}
+			for _, x := range []float64{at.X - 5, end.high} {
+				places = append(places, boldLabel(clamp(x, end.low, end.high), base, size, End, text))
+			}
+		}
+	}
+	return places
 }
 
 // valueText is the odds of the last point with their word, as far as that fits.
@@ -211,7 +220,7 @@ func (c *cumulative) clearOfLine(t Text, path []Point) bool {
 	pad := c.discRadius() + discOutline + 0.4
 	x1, x2 := run.Left-pad, run.Left+run.Width+pad
 	y1, y2 := t.Y-0.72*t.Size-pad, t.Y+0.21*t.Size+pad
-	if t.Spans[0].Anchor == End {
+	if last := path[len(path)-2].X; run.Left+run.Width < last {
 		x2 -= pad // the last point stands beside the text
 	}
 	if even := c.ladder.y(0); y1 <= even && even <= y2 {

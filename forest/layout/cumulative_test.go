@@ -283,3 +283,23 @@ func TestPushApart(t *testing.T) {
 		}
 	}
 }
+
+// TestCumulativeValueIsClear: the line of evidence and the line of even odds do
+// not run through the odds of the last point.
+func TestCumulativeValueIsClear(t *testing.T) {
+	for k := 1; k <= 40; k++ {
+		for _, style := range accrualStyles {
+			page := mustCumulative(t, manyPoints(k), style)
+			items := group(t, page, "evidence").Items
+			value := boxes(Drawing{Items: items[len(items)-1:]})[0]
+			lines := append(linesOf(items, Evidence), linesOf(group(t, page, "ladder").Items, Ordinary)...)
+			for _, l := range lines {
+				across := min(l.X1, l.X2) < value.x2 && value.x1 < max(l.X1, l.X2) || l.X1 == l.X2 && value.x1 < l.X1 && l.X1 < value.x2
+				down := min(l.Y1, l.Y2) < value.y2 && value.y1 < max(l.Y1, l.Y2) || l.Y1 == l.Y2 && value.y1 < l.Y1 && l.Y1 < value.y2
+				if across && down {
+					t.Errorf("%d points, style %+v: a line runs through %s", k, style, value.what)
+				}
+			}
+		}
+	}
+}
