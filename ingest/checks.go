@@ -53,8 +53,20 @@ func (r *rowReader) checkKinds() {
 	}
 }
 
-// wrong records an error of a number.
+// wrong records an error of a number that nothing can be made of: no acceptance
+// helps.
 func (r *rowReader) wrong(rule string, field review.Field, message string) {
+	r.t.final[len(r.t.x.Findings)] = true
+	r.blame(rule, field, message)
+}
+
+// doubt records an error of a number that can be used if the reviewer vouches for
+// it.
+func (r *rowReader) doubt(rule string, field review.Field, message string) {
+	r.blame(rule, field, message+howToAccept(rule))
+}
+
+func (r *rowReader) blame(rule string, field review.Field, message string) {
 	n := r.values.at[field]
 	r.t.find(review.Error, rule, n.Place.In(r.study.Row), r.study.Name, message)
 }
@@ -69,17 +81,45 @@ func (r *rowReader) checkArm(eventsField, totalField review.Field) {
 	case !(total > 0):
 		r.wrong("C1", totalField, "an arm of "+shortest(total)+" people cannot be; write how many were analysed")
 	case total != math.Trunc(total):
-		r.wrong("C2", totalField, shortest(total)+" is no whole number of people; write the number analysed, or accept it with the reason, such as a correction for clusters")
+		r.broken(totalField, shortest(total)+" is no whole number of people; write the number analysed")
 	}
 	switch {
 	case !counted:
 	case events < 0:
 		r.wrong("C1", eventsField, "a count of "+shortest(events)+" cannot be; write how many people had the event")
 	case events != math.Trunc(events):
-		r.wrong("C2", eventsField, shortest(events)+" is no whole number of people; write the count, not a percentage or a corrected count, or accept it with the reason")
+		r.broken(eventsField, shortest(events)+" is no whole number of people; write the count, not a percentage or a corrected count")
 	case sized && total > 0 && events > total:
-		r.wrong("C1", eventsField, fmt.Sprintf("%s events among %s people cannot be; check both numbers, and that people are counted and not events", shortest(events), shortest(total)))
+		message := fmt.Sprintf("%s among %s cannot be; check both numbers, and that people are counted and not events", plural(events, "event", "events"), plural(total, "person", "people"))
+		if r.hasPersonTime() {
+			r.doubt("C1", eventsField, message)
+		} else {
+			r.wrong("C1", eventsField, message)
+		}
 	}
+}
+
+// broken records a count that is no whole number. As an effective count, corrected
+// by the reviewer, it serves in a table of two arms or beside means, but not as the
+// events of one arm or of a time.
+func (r *rowReader) broken(field review.Field, message string) {
+	_, oneArm := r.values.has(review.Events)
+	if r.hasPersonTime() || (oneArm && (field == review.Events || field == review.Total)) {
+		r.wrong("C2", field, message)
+		return
+	}
+	r.doubt("C2", field, message)
+}
+
+// hasPersonTime reports whether the row gives how long people were followed, so
+// that its events are no people.
+func (r *rowReader) hasPersonTime() bool {
+	for _, field := range []review.Field{review.PersonTimeTreated, review.PersonTimeControl, review.PersonTime} {
+		if _, ok := r.values.has(field); ok {
+			return true
+		}
+	}
+	return false
 }
 
 // checkLevel checks the level of an interval.
@@ -135,12 +175,12 @@ func (r *rowReader) checkRow() {
 		r.find(review.Error, "F9", 0, "the row has no number, so there is nothing to pool; fill them in, or take the row out of the table")
 	}
 	if namesTotal(r.study.Name) {
-		r.find(review.Error, "F10", t.role.name, "the row looks like a total of other rows; pooling it would count their people twice, so take it out of the table")
+		r.find(review.Error, "F10", t.role.name, "the row looks like a total of other rows; pooling it would count their people twice, so take it out of the table"+howToAccept("F10"))
 	}
 	if r.row.Hidden {
 		r.find(review.Warning, "F9", 0, "the row is hidden and was read; show it, or delete it if it is not meant to count")
 	}
 	if extra := len(r.row.Cells); t.book.Text && extra > len(t.header.columns) {
-		r.find(review.Error, "F9", extra, fmt.Sprintf("the row has %d cells and the header %d, so its numbers may stand in the wrong columns; put a text that holds the delimiter into double quotes", extra, len(t.header.columns)))
+		r.find(review.Error, "F9", extra, fmt.Sprintf("the row has %d cells and the header %d, so its numbers may stand in the wrong columns; put a text that holds the delimiter into double quotes"+howToAccept("F9"), extra, len(t.header.columns)))
 	}
 }

@@ -109,10 +109,14 @@ func TestFindings(t *testing.T) {
 		{"header repeated", counts([]any{"study", "year", "events treated", "total treated", "events control", "total control", "accept"}, []any{"B", 2001, 3, 40, 5, 41}),
 			[]string{"note F9 3:3"}, "repeated"},
 		{"accepted", counts([]any{"A", 2002, 3.5, 40, 5, 41, "C2 corrected for clusters"}), []string{"error C2 C3 accepted"}, ""},
-		{"accepted with colon, two rules", counts([]any{"A", 2002, 3.5, 40, 42, 41, "C2: clusters; c1: recurrent events"}), []string{"error C2 C3 accepted", "error C1 E3 accepted"}, ""},
+		{"accepted with colon, two rules", counts([]any{"A", 2002, 3.5, 40, 42, 41, "C2: clusters; c1: recurrent events"}), []string{"error C2 C3 accepted", "error C1 E3", "warning F9 G3"}, ""},
 		{"accepted without reason", counts([]any{"A", 2002, 3.5, 40, 5, 41, "C2"}), []string{"error C2 C3", "warning F9 G3"}, ""},
 		{"accepted in vain", counts([]any{"A", 2002, 3, 40, 5, 41, "F6 fine"}), []string{"note F9 G3"}, "nothing to accept"},
-		{"accepted no rule", counts([]any{"A", 2002, 3, 40, 5, 41, "all fine"}), []string{"warning F9 G3"}, "no rule"},
+		{"accepted no rule", counts([]any{"A", 2002, 3, 40, 5, 41, "all fine"}), []string{"note F9 G3"}, "names no rule"},
+		{"accepted without a rule", counts([]any{"A", 2002, 3.5, 40, 42, 41, "author; confirmed"}), []string{"error C2 C3", "error C1 E3", "note F9 G3"}, `accept it by writing "C2 reason" in the accept column`},
+		{"accepted by a rule that is none", counts([]any{"A", 2002, 3, 40, 5, 41, "Z3 fine; C99 fine"}), []string{"warning F9 G3", "warning F9 G3"}, "no rule"},
+		{"accepted with a comma", counts([]any{"A", 2002, 3.5, 40, 5, 41, "c2, corrected"}), []string{"error C2 C3 accepted"}, ""},
+		{"accepted in vain again", counts([]any{"A", 2002, 3, 0, 5, 41, "C1 they said so"}), []string{"error C1 D3", "warning F9 G3"}, "write how many were analysed"},
 		{"accepted twin", counts([]any{"Good", 2001, 3, 40, 5, 41, "D1 another trial of that name"}), []string{"error D1 A3 accepted"}, ""},
 	} {
 		t.Run(tt.name, func(t *testing.T) {
@@ -353,5 +357,47 @@ func TestThousandsPoints(t *testing.T) {
 	}
 	if se, _ := x.Studies[0].Number(review.StandardError); se.Value != 1.234 {
 		t.Errorf("se %v", se)
+	}
+}
+
+// TestAcceptanceOffered wants an acceptance to be offered where the number can be
+// used, and not where nothing can be made of it; words without a rule are answered
+// by the rules of the row.
+func TestAcceptanceOffered(t *testing.T) {
+	for _, tt := range []struct {
+		rows    table
+		offered string
+	}{
+		{counts([]any{"A", 2002, 3.5, 40, 5, 41}), "C2"},
+		{counts([]any{"A", 2002, 3, 40.5, 5, 41}), "C2"},
+		{means([]any{"A", 1, 2, 30.5, 3, 4, 31}), "C2"},
+		{counts([]any{"Total", 2002, 3, 40, 5, 41}), "F10"},
+		{counts([]any{"Good", 2001, 3, 40, 5, 41}), "D1"},
+		{table{{"study", "events", "total"}, {"A", 3.5, 40}}, ""},
+		{table{{"study", "events treated", "person time treated", "events control", "person time control", "total treated"}, {"A", 50, 90, 5, 80, 40}}, "C1"},
+		{counts([]any{"A", 2002, 42, 40, 5, 41}), ""},
+		{counts([]any{"A", 2002, -1, 40, 5, 41}), ""},
+		{results([]any{"A", 0.5, "", "", "", 0}), ""},
+		{results([]any{"A", 0.5, 1, 0.25}), ""},
+		{means([]any{"A", 1, 0, 30, 3, 4, 31}), ""},
+	} {
+		x := mustRead(t, tt.rows.csv(t), "a.csv", Options{})
+		if len(x.Findings) != 1 {
+			t.Fatalf("findings %q", said(x))
+		}
+		m := x.Findings[0].Message
+		if offers := strings.Contains(m, "accept"); offers != (tt.offered != "") || (offers && !strings.HasSuffix(m, `or accept it by writing "`+tt.offered+` reason" in the accept column`)) {
+			t.Errorf("%q, want an offer of %q", m, tt.offered)
+		}
+	}
+	x := mustRead(t, counts([]any{"Good", 2001, 3, 40, 5, 41, "author confirmed"}, []any{"A", 2002, 3.5, 40, 42, 41, "yes"}, []any{"B", 2002, 3, 40, 5, 41, "yes"}).csv(t), "a.csv", Options{})
+	var notes []string
+	for _, f := range x.Findings {
+		if f.Rule == "F9" {
+			notes = append(notes, f.Message)
+		}
+	}
+	if len(notes) != 3 || !strings.Contains(notes[0], `findings of D1: write such as "D1 author confirmed"`) || !strings.Contains(notes[1], `findings of C2: write such as "C2 yes"`) || !strings.Contains(notes[2], "nothing in the row") {
+		t.Errorf("notes %q", notes)
 	}
 }

@@ -87,7 +87,7 @@ func (t *tableReader) twin(s *review.Study, first int, more []int) (f review.Fin
 		}
 		if len(s.Numbers) > 0 && sameNumbers(s, before) {
 			f.Severity, f.Rule = review.Error, "D1"
-			f.Message = fmt.Sprintf("the row repeats row %d with the same name%s and numbers, so its people would count twice; take one of them out", before.Row.Row, strings.Replace(spelled, " as ", ", spelled ", 1))
+			f.Message = fmt.Sprintf("the row repeats row %d with the same name%s and numbers, so its people would count twice; take one of them out"+howToAccept("D1"), before.Row.Row, strings.Replace(spelled, " as ", ", spelled ", 1))
 			return f, true
 		}
 		if !found && !datesDiffer(s.Date, before.Date) {

@@ -22,6 +22,7 @@ type tableReader struct {
 	x       *review.Extraction
 	numbers []review.Number // space for all studies
 	remarks []review.Remark
+	final   map[int]bool // findings, by index, whose numbers no acceptance makes usable
 }
 
 // roles are the 1-based columns of the fields that make up a study's identity; 0
@@ -32,7 +33,7 @@ type roles struct{ name, id, date, outcome, measure, better, accept int }
 func readTable(ctx context.Context, book *grid.Book, sheet *grid.Sheet, h *header) (*review.Extraction, error) {
 	ctx, cancel := grid.Limited(ctx)
 	defer cancel()
-	t := &tableReader{book: book, sheet: sheet, header: h, x: &review.Extraction{
+	t := &tableReader{book: book, sheet: sheet, header: h, final: map[int]bool{}, x: &review.Extraction{
 		Source:   review.Source{File: book.File, Sheet: sheet.Name, SHA256: book.SHA256},
 		Findings: h.findings,
 	}}
@@ -65,6 +66,7 @@ func readTable(ctx context.Context, book *grid.Book, sheet *grid.Sheet, h *heade
 	}
 	t.checkSums()
 	t.checkNames()
+	t.remarkAcceptances()
 	if len(t.x.Findings) > maxFindings {
 		return nil, t.tooManyFindings()
 	}

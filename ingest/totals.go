@@ -119,7 +119,7 @@ func (t *tableReader) checkSums() {
 		}
 		t.x.Findings = append(t.x.Findings, review.Finding{Severity: review.Error, Rule: "F10", Study: s.Name, Accepted: s.AcceptedReason("F10"),
 			Place:   t.place(s.Row.Row, t.role.name, s.Name),
-			Message: fmt.Sprintf("every count of the row is the sum of the other %d rows, so it looks like their total; pooling it would count their people twice, so take it out of the table", all.rows-1)})
+			Message: fmt.Sprintf("every count of the row is the sum of the other %d rows, so it looks like their total; pooling it would count their people twice, so take it out of the table"+howToAccept("F10"), all.rows-1)})
 	}
 }
 

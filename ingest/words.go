@@ -86,3 +86,11 @@ func tidy(text string) string {
 	}
 	return text
 }
+
+// plural returns a number with its noun, "1 row" or "2 rows".
+func plural(n float64, one, many string) string {
+	if n == 1 {
+		return "1 " + one
+	}
+	return shortest(n) + " " + many
+}

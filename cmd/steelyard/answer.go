@@ -127,7 +127,7 @@ func (p *page) leftOut(s *synthesis.Synthesis, o *synthesis.Outcome) {
 			p.item("-", fmt.Sprintf("and %d more", len(o.Excluded)-i))
 			return
 		}
-		p.item("-", fmt.Sprintf("%s (%s): %s", e.Study, e.Place, e.Reason))
+		p.item("-", fmt.Sprintf("%s (%s): %s", e.Study, e.Where(), e.Reason))
 	}
 }
 

@@ -2,9 +2,20 @@ package effect
 
 // EffectiveTable is a 2×2 table of effective counts: real counts divided by a
 // design effect, or a control arm shared out among comparisons. They need not be
-// whole. Only the functions that adjust counts make one, so that a fraction typed
-// in a sheet is still refused by Table.Check.
+// whole. Only the functions that adjust counts make one, and Adjusted for a reviewer
+// who says so, so that a fraction typed in a sheet is still refused by Table.Check.
 type EffectiveTable struct{ counts Table }
+
+// Adjusted returns effective counts that the reviewer has adjusted already, such as
+// for clusters, and vouches for. It returns an *InputError unless they are finite
+// and 0 ≤ events ≤ total, total > 0 in both arms.
+func Adjusted(t Table) (EffectiveTable, error) {
+	e := EffectiveTable{t}
+	if err := e.check(); err != nil {
+		return EffectiveTable{}, err
+	}
+	return e, nil
+}
 
 // Counts returns the effective counts.
 func (t EffectiveTable) Counts() Table { return t.counts }

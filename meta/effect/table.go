@@ -24,6 +24,11 @@ func (t Table) Check() error {
 	return t.checkArms()
 }
 
+// Whole reports whether every count is a whole number.
+func (t Table) Whole() bool {
+	return !slices.ContainsFunc(t.values(), func(v Value) bool { return v.Value != math.Trunc(v.Value) })
+}
+
 // checkArms returns an *InputError unless 0 < total and events ≤ total.
 func (t Table) checkArms() error {
 	if err := checkEvents("treated", t.Events1, t.Total1); err != nil {

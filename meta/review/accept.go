@@ -5,8 +5,9 @@ import "strings"
 // Acceptance is one finding that the reviewer accepts, with the reason.
 type Acceptance struct{ Rule, Reason string }
 
-// ParseAccept reads the text of an accept cell: RULE and reason, or RULE: reason,
-// several parted by semicolons.
+// ParseAccept reads the text of an accept cell: RULE and reason, "RULE: reason" or
+// "RULE, reason", several parted by semicolons. A rule that is none is returned as
+// it is, in capitals.
 func ParseAccept(text string) []Acceptance {
 	var all []Acceptance
 	for _, part := range strings.Split(text, ";") {
@@ -14,13 +15,13 @@ func ParseAccept(text string) []Acceptance {
 		if part == "" {
 			continue
 		}
-		end := strings.IndexAny(part, ": \t")
+		end := strings.IndexAny(part, ":, \t")
 		if end < 0 {
 			end = len(part)
 		}
 		all = append(all, Acceptance{
 			Rule:   strings.ToUpper(part[:end]),
-			Reason: strings.TrimSpace(strings.TrimLeft(part[end:], ": \t")),
+			Reason: strings.TrimSpace(strings.TrimLeft(part[end:], ":,-– \t")),
 		})
 	}
 	return all

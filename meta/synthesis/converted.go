@@ -83,7 +83,7 @@ func (o *Outcome) filterConverted(where rowFilter) {
 		if where.match(s.Source, s.Converted()) {
 			return false
 		}
-		o.exclude(s.Source, where.reason(), false)
+		o.exclude(s.Source, where.reason())
 		o.Counts.Rows--
 		return true
 	})

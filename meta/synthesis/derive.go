@@ -187,7 +187,7 @@ func (o *Outcome) derive(rows []*review.Study) []review.Finding {
 		case study.Basis == FromPValue && err == nil:
 			err = o.addPValue(d)
 			if err == nil {
-				o.exclude(row, "gives a p-value and no estimate: weighed as evidence alone", false)
+				o.exclude(row, "gives a p-value and no estimate: weighed as evidence alone")
 				continue
 			}
 		case err == nil:
@@ -202,7 +202,7 @@ func (o *Outcome) derive(rows []*review.Study) []review.Finding {
 		case errors.As(err, &missing):
 			f.Rule, f.Readings = missing.rule, missing.readings
 		}
-		o.exclude(row, f.Message, f.Severity == review.Error)
+		o.excludeFor(row, f)
 		findings = append(findings, f)
 	}
 	return append(findings, o.mixedScores()...)

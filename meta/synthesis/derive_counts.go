@@ -1,6 +1,8 @@
 package synthesis
 
 import (
+	"errors"
+
 	"steelyard/meta/effect"
 	"steelyard/meta/review"
 )
@@ -20,13 +22,25 @@ func (d *derivation) table() effect.Table {
 func (d *derivation) fromCounts() (effect.Estimate, error) { return d.fromTable(d.measure) }
 
 // fromTable returns an effect of the row's 2×2 table, divided by the design effect
-// where clusters were randomised.
+// where clusters were randomised. Counts that are no whole numbers are taken as
+// effective ones where the reviewers have accepted rule C2.
 func (d *derivation) fromTable(m effect.Measure) (effect.Estimate, error) {
 	factor, adjust, err := d.designEffect()
 	if err != nil {
 		return effect.Estimate{}, err
 	}
-	if !adjust {
+	vouched := d.row.AcceptedReason("C2") != "" && !d.table().Whole()
+	switch {
+	case vouched && adjust:
+		return effect.Estimate{}, errors.New("the counts are no whole numbers and are accepted as corrected already, but the row also asks to divide them by a design effect; write yes under adjusted, or the counts as reported")
+	case vouched:
+		counts, err := effect.Adjusted(d.table())
+		if err != nil {
+			return effect.Estimate{}, err
+		}
+		d.assume("counts that are no whole numbers, accepted by the reviewers")
+		return d.made(effect.FromEffectiveTable(m, counts, d.correction))
+	case !adjust:
 		return d.made(effect.FromTable(m, d.table(), d.correction))
 	}
 	effective, step, err := effect.ClusterTable(d.table(), factor)

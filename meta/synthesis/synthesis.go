@@ -94,8 +94,18 @@ type Study struct {
 type Excluded struct {
 	Study  string
 	Place  review.Place
+	Rule   string // of the finding that is to blame; blank for the plan's choice
 	Reason string
 	Wrong  bool // an error of the sheet, not the plan's or the measure's choice
+}
+
+// Where says where the blame for leaving a row out lies: the place, and the rule of
+// an error if there is one, such as "trials.csv!C3, rule C2".
+func (e Excluded) Where() string {
+	if e.Rule == "" || !e.Wrong {
+		return e.Place.String()
+	}
+	return e.Place.String() + ", rule " + e.Rule
 }
 
 // Result is what pooling gave.
@@ -310,12 +320,12 @@ func (o *Outcome) rows(x *review.Extraction, where rowFilter, blocked map[rowKey
 			continue
 		}
 		if !where.mayKeep(row) {
-			o.exclude(row, where.reason(), false)
+			o.exclude(row, where.reason())
 			continue
 		}
 		o.Counts.Rows++
 		if f, bad := blocked[rowKey{row.Row.File, row.Row.Sheet, row.Row.Row}]; bad {
-			o.excludeAt(row, f.Place, f.Message, true)
+			o.excludeFor(row, f)
 			continue
 		}
 		rows = append(rows, row)
@@ -323,13 +333,16 @@ func (o *Outcome) rows(x *review.Extraction, where rowFilter, blocked map[rowKey
 	return rows
 }
 
-func (o *Outcome) exclude(row *review.Study, reason string, wrong bool) {
-	o.excludeAt(row, row.Row, reason, wrong)
+// exclude lists a row that the plan or the measure leaves out.
+func (o *Outcome) exclude(row *review.Study, reason string) {
+	o.excludeFor(row, review.Finding{Severity: review.Note, Place: row.Row, Message: reason})
 }
 
-// excludeAt lists a row that is not pooled, by the place that is to blame.
-func (o *Outcome) excludeAt(row *review.Study, place review.Place, reason string, wrong bool) {
-	o.Excluded = append(o.Excluded, Excluded{Study: row.Name, Place: place, Reason: reason, Wrong: wrong})
+// excludeFor lists a row that is not pooled because of a finding, by its place; the
+// sheet is wrong if the finding is an error.
+func (o *Outcome) excludeFor(row *review.Study, f review.Finding) {
+	wrong := f.Severity == review.Error
+	o.Excluded = append(o.Excluded, Excluded{Study: row.Name, Place: f.Place, Rule: f.Rule, Reason: f.Message, Wrong: wrong})
 	if wrong {
 		o.Counts.Wrong++
 	}
@@ -358,7 +371,7 @@ func (o *Outcome) nothingLeft() string {
 	if len(o.Excluded) == 1 {
 		return "its one row cannot be pooled: " + first.Reason
 	}
-	return fmt.Sprintf("none of its %d rows can be pooled; %s (%s): %s", len(o.Excluded), first.Study, first.Place, first.Reason)
+	return fmt.Sprintf("none of its %d rows can be pooled; %s (%s): %s", len(o.Excluded), first.Study, first.Where(), first.Reason)
 }
 
 func (o *Outcome) count() {
