@@ -60,17 +60,22 @@ func accrualCommands() []*cli.Command {
 		{
 			name: "subsets", usage: "the result of every subset of the studies",
 			description: "Every subset of up to 24 studies; a seeded sample beyond.",
-			flags: []cli.Flag{
-				&cli.StringFlag{Name: flagStudy, Usage: "a study: subsets with and without it are counted apart"},
-				&cli.IntFlag{Name: flagSample, Usage: "subsets to draw of more than 24 studies"},
-			},
-			want:  wantSubsets,
-			write: (*page).subsets,
+			flags:       subsetsFlags(),
+			want:        wantSubsets,
+			write:       (*page).subsets,
 		},
 	} {
 		commands = append(commands, kind.command())
 	}
 	return commands
+}
+
+// subsetsFlags say which subsets are taken and told apart.
+func subsetsFlags() []cli.Flag {
+	return []cli.Flag{
+		&cli.StringFlag{Name: flagStudy, Usage: "a study: subsets with and without it are counted apart"},
+		&cli.IntFlag{Name: flagSample, Usage: "subsets to draw of more than 24 studies"},
+	}
 }
 
 func wantSubsets(c *cli.Context) (synthesis.Want, error) {

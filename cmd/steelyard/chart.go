@@ -26,24 +26,39 @@ const (
 type chartKind struct {
 	name    string
 	usage   string
-	setting string         // whose settings it takes besides the common ones
-	want    synthesis.Want // beyond the pooled results
+	setting string // whose settings it takes besides the common ones
+	flags   []cli.Flag
+	want    func(*cli.Context) (synthesis.Want, error) // beyond the pooled results
 	draw    func(*synthesis.Synthesis, *synthesis.Outcome, layout.Style) (layout.Document, error)
 }
 
 var chartKinds = []chartKind{
 	{
-		name: "forest", usage: "every study, the pooled effect, and the evidence of each", setting: "forest",
+		name: "forest", usage: "every study, the pooled effect, and the evidence of each", setting: "forest", want: wanting(synthesis.Want{}),
 		draw: laidOut(layout.ForestOf, layout.Forest),
 	},
 	{
-		name: "cumulative", usage: "how the evidence arrived, study by study", setting: "cumulative", want: synthesis.Want{Cumulative: true},
+		name: "cumulative", usage: "how the evidence arrived, study by study", setting: "cumulative", want: wanting(synthesis.Want{Cumulative: true}),
 		draw: laidOut(layout.CumulativeOf, layout.Cumulative),
 	},
 	{
-		name: "leave-one-out", usage: "how much of the evidence each study carries", setting: "leave-one-out", want: synthesis.Want{LeaveOneOut: true},
+		name: "leave-one-out", usage: "how much of the evidence each study carries", setting: "leave-one-out", want: wanting(synthesis.Want{LeaveOneOut: true}),
 		draw: laidOut(layout.LeaveOneOutOf, layout.LeaveOneOut),
 	},
+	{
+		name: "influence", usage: "how each study pulls on the result", setting: "influence", want: wanting(synthesis.Want{Influence: true}),
+		draw: laidOut(layout.InfluenceOf, layout.Influence),
+	},
+	{
+		name: "subsets", usage: "evidence and effect over the subsets of the studies", setting: "subsets",
+		flags: slices.Concat(subsetsFlags(), workFlags()), want: wantSubsets,
+		draw: laidOut(layout.SubsetsOf, layout.Subsets),
+	},
+}
+
+// wanting asks for the same whatever the flags.
+func wanting(want synthesis.Want) func(*cli.Context) (synthesis.Want, error) {
+	return func(*cli.Context) (synthesis.Want, error) { return want, nil }
 }
 
 // laidOut joins what a chart shows of an outcome with its layout.
@@ -78,7 +93,7 @@ func chartCommand() *cli.Command {
 			Name:      kind.name,
 			Usage:     kind.usage,
 			UsageText: fmt.Sprintf("steelyard chart %s FILE --out F.svg|pdf|png [flags]", kind.name),
-			Flags:     slices.Concat(chartFlags(), sheetFlags(), settingFlags(kind.setting)),
+			Flags:     slices.Concat(chartFlags(), kind.flags, sheetFlags(), settingFlags(kind.setting)),
 			Action:    func(c *cli.Context) error { return drawChart(c, kind) },
 		})
 	}
@@ -108,29 +123,41 @@ func drawChart(c *cli.Context, kind chartKind) error {
 	if err != nil {
 		return err
 	}
-	s, err := analyse(c, kind.want)
+	want, err := kind.want(c)
 	if err != nil {
 		return err
 	}
+	s, err := analyse(c, want)
+	if err != nil {
+		return err
+	}
+	missing := missingGlyphs(s)
+	if ink != ".svg" && missing != "" {
+		fmt.Fprintln(c.App.ErrWriter, "steelyard: "+missing)
+	}
+	undrawn := false
 	for i := range s.Outcomes {
-		document, err := kind.draw(s, &s.Outcomes[i], style)
-		if err != nil {
+		o := &s.Outcomes[i]
+		document, err := kind.draw(s, o, style)
+		switch {
+		case err != nil && len(s.Outcomes) == 1:
 			return err
+		case err != nil:
+			undrawn = true
+			fmt.Fprintf(c.App.ErrWriter, "steelyard: no chart of %s: %s\n", heading(s, o), err)
+			continue
 		}
-		missingGlyphs(c, document)
 		if err := draw(c, ink, outcomePath(out, s, i), document); err != nil {
 			return err
 		}
-	}
-	if leftOut := incomplete(s); leftOut != nil {
-		for _, o := range s.Outcomes {
-			if o.Counts.Wrong > 0 {
-				fmt.Fprintf(c.App.ErrWriter, "steelyard: %s: %d of %d rows pooled; \"steelyard pool\" names the others\n", heading(s, &o), len(o.Studies), o.Counts.Rows)
-			}
+		if o.Counts.Wrong > 0 {
+			fmt.Fprintf(c.App.ErrWriter, "steelyard: %s: %d of %d rows pooled; \"steelyard pool\" names the others\n", heading(s, o), len(o.Studies), o.Counts.Rows)
 		}
-		return leftOut
 	}
-	return nil
+	if undrawn {
+		return &rowsLeftOut{}
+	}
+	return incomplete(s)
 }
 
 // inkFor chooses the format by the ending of the output's name.
@@ -157,6 +184,9 @@ func chartStyle(c *cli.Context) (layout.Style, error) {
 		style.Width = layout.NarrowWidth
 	default:
 		return style, &callError{fmt.Sprintf("--width %d: charts are 180 mm wide, for a page, or 85 mm, for a column", width)}
+	}
+	if ending := strings.ToLower(filepath.Ext(c.String(flagOut))); c.IsSet(flagDPI) && ending != ".png" {
+		return style, &callError{fmt.Sprintf("--dpi is for .png; %s is sharp at any size", ending)}
 	}
 	if dpi := c.Int(flagDPI); dpi < 50 || dpi > 1200 {
 		return style, &callError{fmt.Sprintf("--dpi %d: give 50 to 1200", dpi)}
@@ -219,9 +249,26 @@ func written(c *cli.Context, path string, content []byte) error {
 	return nil
 }
 
-// missingGlyphs warns of characters that the charts' font does not have.
-func missingGlyphs(c *cli.Context, document layout.Document) {
-	if len(document.Missing) > 0 {
-		fmt.Fprintf(c.App.ErrWriter, "steelyard: the charts' font has no glyph for %q; they are drawn as □ in .pdf and .png\n", string(document.Missing))
+// missingGlyphs names the studies whose names the charts' font cannot write;
+// blank if there is none.
+func missingGlyphs(s *synthesis.Synthesis) string {
+	var names []string
+	for _, o := range s.Outcomes {
+		for _, study := range o.Studies {
+			name := study.Source.Name
+			lacks := strings.ContainsFunc(name, func(r rune) bool { return !layout.Has(r) })
+			if lacks && !slices.Contains(names, name) {
+				names = append(names, name)
+			}
+		}
 	}
+	if len(names) == 0 {
+		return ""
+	}
+	shown := names[:min(len(names), mostFindings)]
+	text := fmt.Sprintf("the charts' font cannot write all of %s", strings.Join(shown, ", "))
+	if len(names) > len(shown) {
+		text += fmt.Sprintf(" and %d more", len(names)-len(shown))
+	}
+	return text + "; what it lacks is drawn as □ in .pdf and .png: use .svg, or other spellings"
 }

@@ -7,6 +7,7 @@ import (
 
 	"github.com/urfave/cli/v2"
 
+	"steelyard/forest"
 	"steelyard/ingest/grid"
 )
 
@@ -42,13 +43,14 @@ func exitCode(err error) int {
 	var file *fileError
 	var path *fs.PathError
 	var unreadable *grid.FileError
+	var large *forest.TooLargeError
 	var exit cli.ExitCoder
 	switch {
 	case err == nil:
 		return codeDone
 	case errors.Is(err, context.Canceled):
 		return codeInterrupted
-	case errors.As(err, &call):
+	case errors.As(err, &call), errors.As(err, &large):
 		return codeCall
 	case errors.As(err, &file), errors.As(err, &path), errors.As(err, &unreadable):
 		return codeFile

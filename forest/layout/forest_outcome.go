@@ -50,6 +50,7 @@ func ForestOf(s *synthesis.Synthesis, o *synthesis.Outcome) (ForestInput, error)
 		}
 		in.Prediction, in.Spread = forestSpread(fit, words.Noun(s, 3))
 	}
+	in.dropIdleCounts()
 	in.Notes = forestNotes(o)
 	in.toReader(o.Analysis.Measure)
 	return in, nil
@@ -140,6 +141,22 @@ func forestRow(o *synthesis.Outcome, study synthesis.Study) ForestRow {
 	row.Counts[0] = countOf(study, review.EventsTreated, review.TotalTreated)
 	row.Counts[1] = countOf(study, review.EventsControl, review.TotalControl)
 	return row
+}
+
+// dropIdleCounts leaves the counts out where no study gives events: a column of
+// dashes tells nothing.
+func (in *ForestInput) dropIdleCounts() {
+	for _, row := range in.Rows {
+		if row.Counts[0].Events != "" || row.Counts[1].Events != "" {
+			return
+		}
+	}
+	for i := range in.Rows {
+		in.Rows[i].Counts = [2]Count{}
+	}
+	if in.Pooled != nil {
+		in.Pooled.Totals = [2]string{}
+	}
 }
 
 func countOf(study synthesis.Study, events, total review.Field) Count {
