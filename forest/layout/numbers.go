@@ -37,20 +37,15 @@ func intervalText(scale EffectScale, low, high float64) string {
 
 func wordText(ln float64) string { return evidence.FromLn(ln).Word().String() }
 
-func stepsText(ln float64) string { return words.Steps(math.Abs(evidence.FromLn(ln).Steps())) }
-
 // strengthText is the word and the steps of a ratio: "firm, 2.6 steps", "faint
 // for none, 0.4 steps".
 func strengthText(ln float64) string {
-	text := wordText(ln)
-	if ln < 0 {
-		text += " for none"
+	text := words.Strength(evidence.FromLn(ln))
+	word, steps, more := strings.Cut(text, ", ")
+	if ln < 0 && more {
+		return word + " for none, " + steps
 	}
-	steps := stepsText(ln)
-	if steps == "1.0" {
-		return text + ", 1.0 step"
-	}
-	return text + ", " + steps + " steps"
+	return text
 }
 
 // oddsParts are the odds left and right of the colon.
