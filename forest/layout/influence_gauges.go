@@ -139,11 +139,15 @@ func (c *influence) gaugeEnds(kind gaugeKind) span {
 	case leverageGauge:
 		return span{0, roundUp(math.Max(most, 1.25/float64(len(c.in.Rows))), 0.02, 0.05, 0.1, 0.15, 0.2, 0.3, 0.4, 0.5, 0.6, 0.8, 1)}
 	}
-	step := carriedStep(s) / 2
-	return span{
-		math.Max(-mostGauge, math.Min(-step, math.Floor(s.low/step)*step)),
-		math.Min(mostGauge, math.Max(step, math.Ceil(s.high/step)*step)),
+	step := carriedStep(s)
+	ends := span{math.Floor(2*s.low/step) * step / 2, math.Ceil(2*s.high/step) * step / 2}
+	switch { // with a label besides 0, and some room on both sides of it
+	case ends.high < step && ends.low > -step && s.high >= -s.low:
+		ends.high = step
+	case ends.high < step && ends.low > -step:
+		ends.low = -step
 	}
+	return span{clamp(ends.low, -mostGauge, -step/2), clamp(ends.high, step/2, mostGauge)}
 }
 
 // roundUp returns the first of some ascending values that is at least v, or the
