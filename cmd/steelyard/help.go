@@ -20,8 +20,12 @@ func commandHelp(c *cli.Command, path string) string {
 	}
 	if len(c.Subcommands) > 0 {
 		b.WriteString("\nKINDS\n")
+		indent := 0
 		for _, sub := range c.Subcommands {
-			b.WriteString(entry(sub.Name, sub.Usage, 12))
+			indent = max(indent, len(sub.Name)+2)
+		}
+		for _, sub := range c.Subcommands {
+			b.WriteString(entry(sub.Name, sub.Usage, indent))
 		}
 	}
 	if len(c.Flags) > 0 {
