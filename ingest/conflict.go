@@ -39,8 +39,12 @@ func (r *headerReader) refuseTwin(h *header, i, j int) {
 	a, b := &h.columns[i], &h.columns[j]
 	f := review.Finding{Severity: review.Error, Rule: "F9", Place: b.Place}
 	f.Place.Row = 0
+	chosen := b.Header
+	if len(matchHeaders(h, chosen)) > 1 {
+		chosen = byLetter + review.ColumnLetters(j+1)
+	}
 	f.Message = fmt.Sprintf("the headers %s (column %s) and %s (column %s) both mean %q, so it is unclear which to read; rename one, or choose with --column %s",
-		quote(a.Header), review.ColumnLetters(i+1), quote(b.Header), review.ColumnLetters(j+1), a.field, columnFlag(a.field, b.Header))
+		quote(a.Header), review.ColumnLetters(i+1), quote(b.Header), review.ColumnLetters(j+1), a.field, columnFlag(a.field, chosen))
 	if a.field > review.OutcomeField && !a.field.Numeric() {
 		f.Severity = review.Warning
 		f.Message = fmt.Sprintf("the headers %s (column %s) and %s (column %s) both mean %q; the first is read as it and the second kept as a covariate",

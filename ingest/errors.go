@@ -33,16 +33,22 @@ func (e *SheetError) Error() string {
 	return fmt.Sprintf("%s: %d sheets hold a table of studies: %s; name the one to pool, such as --sheet %s", e.File, len(e.Names), list, shellQuote(e.Names[0]))
 }
 
-// ColumnError reports a request for a column whose header the sheet does not have.
+// ColumnError reports a request for a column whose header the sheet does not have,
+// or has more than once.
 type ColumnError struct {
 	File    string
 	Field   review.Field
-	Header  string // as asked for
+	Header  string   // as asked for
+	Twins   []string // letters of the columns with that header, if there are several
 	Headers []string
 }
 
-// Error lists the headers that are there.
+// Error lists the headers that are there, or the columns to choose from.
 func (e *ColumnError) Error() string {
+	if len(e.Twins) > 1 {
+		return fmt.Sprintf("%s: --column %q: the header %s stands over columns %s; choose one by its letter, such as --column %s",
+			e.File, e.Field.String()+"="+e.Header, quote(e.Header), strings.Join(e.Twins, " and "), columnFlag(e.Field, byLetter+e.Twins[0]))
+	}
 	return fmt.Sprintf("%s: --column %q asks for a header %s, which the sheet does not have; its headers are: %s",
 		e.File, e.Field.String()+"="+e.Header, quote(e.Header), quoteList(e.Headers))
 }
@@ -56,7 +62,15 @@ type HeaderError struct {
 	Headers []string // of that row
 	Missing string   // in words
 	Columns []string // best guess, each "FIELD=HEADER"
+	Advice  []string // what to do about columns that no guess may use
+	Call    Call     // what the caller typed
 	score   int
+}
+
+// Call is what the caller typed, for messages that show a call again.
+type Call struct {
+	Path  string // of the file; blank for its base name
+	Sheet string // of Options.Sheet
 }
 
 // Error shows the --column flags filled in.
@@ -69,10 +83,20 @@ func (e *HeaderError) Error() string {
 		return where + ": no header was found; write one row of column names, such as study, events treated, total treated, events control, total control, above the studies"
 	}
 	message := fmt.Sprintf("%s: no header was understood; row %d is nearest to one, with %s, but %s", where, e.Row, quoteList(e.Headers), e.Missing)
+	for _, advice := range e.Advice {
+		message += "; " + advice
+	}
 	if len(e.Columns) == 0 {
 		return message + "; add the columns, or name them with --column \"FIELD=HEADER\""
 	}
-	call := "steelyard pool " + shellQuote(e.File)
+	path := e.File
+	if e.Call.Path != "" {
+		path = e.Call.Path
+	}
+	call := "steelyard pool " + shellQuote(path)
+	if e.Call.Sheet != "" {
+		call += " --sheet " + shellQuote(e.Call.Sheet)
+	}
 	for _, c := range e.Columns {
 		call += " --column " + shellQuote(c)
 	}
@@ -86,11 +110,12 @@ func newHeaderError(book *grid.Book, s *grid.Sheet, h *header) *HeaderError {
 		return e
 	}
 	e.Row, e.Headers, e.score = s.Rows[h.bottom].Number, h.headers(), h.score
-	have := h.fields()
-	e.Missing = "no complete set of number columns, such as events and totals of both arms, is among them"
-	if !have[review.StudyName] {
-		e.Missing = "no column with the names of the studies is among them"
+	e.Missing = lacking(h)
+	if arms := armRows(s, h); arms != "" {
+		e.Missing = arms
+		return e
 	}
+	e.Advice = advise(h)
 	e.Columns = guessColumns(s, h)
 	return e
 }

@@ -1,8 +1,6 @@
 package ingest
 
 import (
-	"strings"
-
 	"steelyard/ingest/grid"
 	"steelyard/meta/review"
 )
@@ -62,7 +60,7 @@ func freeColumns(s *grid.Sheet, h *header) (numbers, texts []int) {
 // bestFit gives the columns of numbers to the missing fields of the set that
 // leaves the fewest of either over.
 func bestFit(h *header, have map[review.Field]bool, numbers []int) []request {
-	var best []review.Field
+	var best []request
 	bestScore := -1 << 30
 	for _, set := range fieldSets {
 		var missing []review.Field
@@ -71,43 +69,58 @@ func bestFit(h *header, have map[review.Field]bool, numbers []int) []request {
 				missing = append(missing, field)
 			}
 		}
-		over := len(missing) - len(numbers)
-		if over > 0 || len(missing) == 0 {
-			continue // not enough columns, or complete already
+		fit, told := assign(h, missing, numbers)
+		if len(missing) == 0 || len(fit) < len(missing) {
+			continue // complete already, or no column may be taken for one of them
 		}
-		if score := 2*(len(set)-len(missing)) + over; score > bestScore {
-			best, bestScore = missing, score
+		if score := 2*(len(set)-len(missing)) + len(missing) - len(numbers) + 2*told; score > bestScore {
+			best, bestScore = fit, score
 		}
 	}
-	free := append([]int(nil), numbers...)
-	var fit []request
-	for _, field := range best {
-		at := 0
-		for i, c := range free {
-			if resembles(h.columns[c].Header, field) {
-				at = i
-				break
-			}
-		}
-		fit = append(fit, request{field: field, header: h.columns[free[at]].Header})
-		free = append(free[:at], free[at+1:]...)
-	}
-	return fit
+	return best
 }
 
-// resembles reports whether a header has a word for the quantity of a field.
-func resembles(header string, field review.Field) bool {
-	phrase, _ := fold(header)
-	padded := " " + phrase + " "
-	for _, q := range quantities {
-		if q.treated != field && q.control != field {
-			continue
+// assign gives each field a column whose header says so, else one whose header
+// says nothing at all; fit is short if a field finds none. told counts the former.
+func assign(h *header, fields []review.Field, columns []int) (fit []request, told int) {
+	taken := map[int]bool{}
+	for _, field := range fields {
+		column, says := -1, false
+		for _, c := range columns {
+			header := h.columns[c].Header
+			said := sayingsOf(header)
+			fits := len(said) == 1 && said[fieldSays(field)]
+			if taken[c] || (len(said) > 0 && !fits) || !sameSide(sideOf(header), fieldSide(field)) || (column >= 0 && (says || !fits)) {
+				continue
+			}
+			column, says = c, fits
 		}
-		for _, word := range q.words {
-			if strings.Contains(padded, " "+word+" ") {
-				return true
+		if column < 0 {
+			return fit, told
+		}
+		taken[column] = true
+		if says {
+			told++
+		}
+		fit = append(fit, request{field: field, header: h.columns[column].Header})
+	}
+	return fit, told
+}
+
+// sameSide reports whether a header's arm does not speak against a field's.
+func sameSide(header, field side) bool {
+	return header == noSide || header == field
+}
+
+// advise says what to do about the columns that no guess may use.
+func advise(h *header) []string {
+	var advice []string
+	for _, c := range h.columns {
+		if (c.field == review.NoField || c.field == review.Variance) && c.Header != "" {
+			if text := adviceFor(c.Header); text != "" {
+				advice = append(advice, text)
 			}
 		}
 	}
-	return false
+	return advice
 }

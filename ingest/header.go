@@ -246,20 +246,43 @@ func (r *headerReader) applyRequests(h *header) {
 
 func aboutEffect(f review.Field) bool { return f >= review.Estimate && f <= review.AnalysisHigh }
 
-// matchHeader returns the 1-based column whose header is text: as typed if there
-// is one, else as folded; 0 if none.
+// byLetter begins a request that names its column by the letter, "column C".
+const byLetter = "column "
+
+// matchHeader returns the 1-based column whose header is text, as matchHeaders
+// does; 0 if none.
 func matchHeader(h *header, text string) int {
+	if found := matchHeaders(h, text); len(found) > 0 {
+		return found[0]
+	}
+	return 0
+}
+
+// matchHeaders returns the 1-based columns whose header is text: as typed if there
+// are any, else as folded, else the one that text names by its letter.
+func matchHeaders(h *header, text string) []int {
 	want, _ := fold(text)
-	folded := 0
+	var typed, folded []int
 	for i, c := range h.columns {
 		if c.Header == tidy(text) {
-			return i + 1
+			typed = append(typed, i+1)
 		}
-		if have, _ := fold(c.Header); folded == 0 && c.Header != "" && have == want && choice.Fold(text) != "" {
-			folded = i + 1
+		if have, _ := fold(c.Header); c.Header != "" && have == want && choice.Fold(text) != "" {
+			folded = append(folded, i+1)
 		}
 	}
-	return folded
+	switch {
+	case len(typed) > 0:
+		return typed
+	case len(folded) > 0:
+		return folded
+	}
+	for i, c := range h.columns {
+		if c.Header != "" && strings.EqualFold(tidy(text), byLetter+review.ColumnLetters(i+1)) {
+			return []int{i + 1}
+		}
+	}
+	return nil
 }
 
 // adoptStudyID takes a column such as "study id" for the study's name when no

@@ -3,6 +3,8 @@ package ingest
 import (
 	"context"
 	"errors"
+	"os"
+	"path/filepath"
 	"slices"
 	"strings"
 	"testing"
@@ -171,7 +173,7 @@ func TestColumnFlag(t *testing.T) {
 	if !errors.As(err, &column) || column.Header != "Remarc" || !strings.Contains(err.Error(), `"study", "y", "se"`) {
 		t.Errorf("unknown header: %v", err)
 	}
-	if _, _, err := Read(context.Background(), []byte("study,y,se\nA,1,1\n"), "a.csv", Options{Columns: map[string]string{"notes and such": "se"}}); err == nil || !strings.Contains(err.Error(), "risk of bias") {
+	if _, _, err := Read(context.Background(), []byte("study,y,se\nA,1,1\n"), "a.csv", Options{Columns: map[string]string{"notes and such": "se"}}); err == nil || !strings.HasSuffix(err.Error(), "did you mean note?") {
 		t.Errorf("unknown field: %v", err)
 	}
 }
@@ -247,5 +249,115 @@ func TestSheetChoice(t *testing.T) {
 	}
 	if _, _, err := Read(context.Background(), studies.csv(t), "a.csv", Options{Sheet: "trials"}); !errors.As(err, &sheets) {
 		t.Errorf("a sheet of a text file: %v", err)
+	}
+}
+
+// TestNoWrongGuess: a header that says one thing is never proposed as another; the
+// message says what to do about it instead.
+func TestNoWrongGuess(t *testing.T) {
+	const counts, means = "A,12,100,20,100\nB,10,90,15,95\n", "A,10.1,0.45,50,12.0,0.5,48\nB,9.5,0.36,60,10.9,0.38,61\n"
+	for _, tt := range []struct {
+		header, rows string
+		want         []string // the guess
+		word         string   // of the message
+	}{
+		{"trial,mean_t,se_t,n_t,mean_c,se_c,n_c", means, []string{"mean treated=mean_t", "se treated=se_t", "total treated=n_t", "mean control=mean_c", "se control=se_c", "total control=n_c"}, ""},
+		{"trial,mean_t,sd_t,n_t,mean_c,sd_c,n_c", means, []string{"mean treated=mean_t", "sd treated=sd_t", "total treated=n_t", "mean control=mean_c", "sd control=sd_c", "total control=n_c"}, ""},
+		{"trial,n_c,n_t,sd_c,sd_t,mean_c,mean_t", means, []string{"mean treated=mean_t", "sd treated=sd_t", "total treated=n_t", "mean control=mean_c", "sd control=sd_c", "total control=n_c"}, ""},
+		{"study,yi,vi", "A,1,2\nB,1,2\n", nil, "square root"},
+		{"study,beta,variance", "A,1,2\nB,1,2\n", nil, "square root"},
+		{"study,mean treated,var treated,total treated,mean control,var control,total control", means, nil, "lacks sd treated and sd control"},
+		{"study,mean treated,SD/SE treated,total treated,mean control,SD/SE control,total control", means, nil, "part them into two columns"},
+		{"study,Events treated (%),Total treated,Events control (%),Total control", counts, nil, "percentage"},
+		{"study,% events treated,Total treated,% events control,Total control", counts, nil, "lacks events treated and events control"},
+		{"study,Non-events treated,Total treated,Non-events control,Total control", counts, nil, "without the event"},
+		{"study,No events treated,Total treated,No events control,Total control", counts, nil, "without the event"},
+		{"study,Survivors treated,Total treated,Survivors control,Total control", counts, nil, "without the event"},
+		{"study,events T,no events T,events C,no events C", counts, nil, "without the event"},
+		{"study,Group,Mean,SD,N", "A,Drug,1,2,30\nA,Placebo,2,3,31\nB,Drug,1,2,30\nB,Placebo,2,3,31\n", nil, `one row for each arm ("Group": "Drug", "Placebo")`},
+	} {
+		_, _, err := Read(context.Background(), []byte(tt.header+"\n"+tt.rows), "a.csv", Options{})
+		var header *HeaderError
+		if !errors.As(err, &header) {
+			t.Errorf("%s: error %v", tt.header, err)
+			continue
+		}
+		if !slices.Equal(header.Columns, tt.want) || !strings.Contains(err.Error(), tt.word) {
+			t.Errorf("%s: guess %q, want %q; message lacks %q: %v", tt.header, header.Columns, tt.want, tt.word, err)
+		}
+	}
+}
+
+// TestCallShown shows the path and the sheet as they were typed.
+func TestCallShown(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "my trials.csv")
+	if err := os.WriteFile(path, []byte("Autor,Wert,Fehler\nA,0.5,0.2\nB,0.6,0.1\n"), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	_, _, err := Open(context.Background(), path, Options{})
+	if err == nil || !strings.Contains(err.Error(), "\n  steelyard pool \""+path+"\" --column") {
+		t.Errorf("error %v", err)
+	}
+	data := book(t, []string{"a b", "other"}, map[string]table{"a b": {{"Autor", "Wert", "Fehler"}, {"A", 0.5, 0.2}, {"B", 0.6, 0.1}}, "other": {{"x"}}})
+	path = filepath.Join(t.TempDir(), "a.xlsx")
+	if err := os.WriteFile(path, data, 0o600); err != nil {
+		t.Fatal(err)
+	}
+	if _, _, err := Open(context.Background(), path, Options{Sheet: "a b"}); err == nil || !strings.Contains(err.Error(), "a.xlsx --sheet \"a b\" --column") {
+		t.Errorf("error %v", err)
+	}
+}
+
+// TestColumnByLetter chooses among columns of one header by the letter.
+func TestColumnByLetter(t *testing.T) {
+	text := []byte("study,events treated,total treated,events control,total control,events treated\nA,12,100,20,100,13\n")
+	_, _, err := Read(context.Background(), text, "a.csv", Options{Columns: map[string]string{"events treated": "Events treated"}})
+	var column *ColumnError
+	if !errors.As(err, &column) || !strings.Contains(err.Error(), `B and F`) || !strings.HasSuffix(err.Error(), `--column "events treated=column B"`) {
+		t.Errorf("error %v", err)
+	}
+	x := mustRead(t, text, "a.csv", Options{})
+	if len(x.Findings) != 1 || !strings.HasSuffix(x.Findings[0].Message, `--column "events treated=column F"`) {
+		t.Errorf("findings %+v", x.Findings)
+	}
+	for letter, want := range map[string]float64{"column B": 12, "Column f": 13} {
+		x := mustRead(t, text, "a.csv", Options{Columns: map[string]string{"events treated": letter}})
+		if n, _ := x.Studies[0].Number(review.EventsTreated); n.Value != want || len(x.Findings) > 0 && x.Findings[0].Severity == review.Error {
+			t.Errorf("%s: %v, findings %+v", letter, n.Value, x.Findings)
+		}
+	}
+	if _, _, err := Read(context.Background(), text, "a.csv", Options{Columns: map[string]string{"events treated": "column Z"}}); !errors.As(err, &column) || len(column.Twins) != 0 {
+		t.Errorf("a column that is not there: %v", err)
+	}
+}
+
+// TestRowsOfArms warns of a table with one row for each arm and leaves other
+// tables with a column of groups alone.
+func TestRowsOfArms(t *testing.T) {
+	x := mustRead(t, []byte("Study,Group,Events,Total\nA,Drug,12,100\nA,Placebo,20,101\nB,Drug,10,90\nB,Placebo,15,95\n"), "a.csv", Options{})
+	if len(x.Findings) != 1 || x.Findings[0].Severity != review.Warning || !strings.Contains(x.Findings[0].Message, `("Group": "Drug", "Placebo")`) {
+		t.Errorf("findings %+v", x.Findings)
+	}
+	for _, text := range []string{
+		"Study,Group,Events,Total\nA,adults,12,100\nB,children,10,90\n",
+		"Study,Treatment,Events,Total\nA,Drug,12,100\nA,Placebo,20,101\nB,Drug,10,90\n",
+		"Study,Group,estimate,se\nA,men,12,100\nA,women,20,101\n",
+	} {
+		for _, f := range mustRead(t, []byte(text), "a.csv", Options{}).Findings {
+			if strings.Contains(f.Message, "one row for each arm") {
+				t.Errorf("%q: %s", text, f.Message)
+			}
+		}
+	}
+}
+
+// TestNearestFields suggests what was meant, or a few of the commonest.
+func TestNearestFields(t *testing.T) {
+	for text, want := range map[string]string{"evnts treated": "events treated", "ci lo": "ci low", "standard eror": "study, date", "risk of bais": "risk of bias", "foo": "study, date"} {
+		_, _, err := ParseColumn(text + "=x")
+		var field *FieldError
+		if !errors.As(err, &field) || !strings.Contains(err.Error(), want) || len(err.Error()) > 200 {
+			t.Errorf("%s: %v, want %q", text, err, want)
+		}
 	}
 }

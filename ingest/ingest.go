@@ -18,7 +18,7 @@ import (
 // The zero value leaves everything to the reader.
 type Options struct {
 	// Columns maps the name of a field, such as "events treated", to the text of
-	// the header as typed in the sheet.
+	// the header as typed in the sheet, or to "column C" by the column's letter.
 	Columns map[string]string
 	// Sheet names the sheet with the studies; blank lets the reader choose.
 	Sheet string
@@ -39,7 +39,12 @@ func Open(ctx context.Context, path string, o Options) (*review.Extraction, *rev
 			return nil, nil, err
 		}
 	}
-	return read(ctx, book, plan, o)
+	x, p, err := read(ctx, book, plan, o)
+	var unknown *HeaderError
+	if errors.As(err, &unknown) {
+		unknown.Call = Call{Path: path, Sheet: o.Sheet}
+	}
+	return x, p, err
 }
 
 // Read reads a file's bytes like Open; name serves for messages. A text file has
@@ -102,12 +107,19 @@ func requests(o Options, draft *planDraft) ([]request, error) {
 	return asked, nil
 }
 
-// checkRequests refuses a request for a header that the sheet does not have.
+// checkRequests refuses a request for a header that the sheet does not have, or has
+// more than once.
 func checkRequests(file string, h *header, asked []request) error {
 	for _, want := range asked {
-		if matchHeader(h, want.header) == 0 {
-			return &ColumnError{File: file, Field: want.field, Header: want.header, Headers: h.headers()}
+		found := matchHeaders(h, want.header)
+		if len(found) == 1 {
+			continue
 		}
+		e := &ColumnError{File: file, Field: want.field, Header: want.header, Headers: h.headers()}
+		for _, col := range found {
+			e.Twins = append(e.Twins, review.ColumnLetters(col))
+		}
+		return e
 	}
 	return nil
 }
@@ -144,5 +156,9 @@ func parseField(text string) (review.Field, error) {
 	if m, ok := recognise(text); ok {
 		return m.field, nil
 	}
-	return review.ParseField(text)
+	field, err := review.ParseField(text)
+	if err != nil {
+		return 0, &FieldError{Text: text, Nearest: nearestFields(text)}
+	}
+	return field, nil
 }

@@ -76,7 +76,7 @@ func (t *tableReader) checkNames() {
 
 // twin reports a study that repeats one of the earlier rows with its name, the
 // first or one of more: the same numbers are an error; others are a warning, unless
-// the dates tell the two apart.
+// the dates tell the two apart or each row is of one arm.
 func (t *tableReader) twin(s *review.Study, first int, more []int) (f review.Finding, found bool) {
 	f = review.Finding{Severity: review.Warning, Rule: "D5", Study: s.Name, Place: t.place(s.Row.Row, t.role.name, s.Name)}
 	for _, i := range slices.Concat([]int{first}, more) {
@@ -90,7 +90,7 @@ func (t *tableReader) twin(s *review.Study, first int, more []int) (f review.Fin
 			f.Message = fmt.Sprintf("the row repeats row %d with the same name%s and numbers, so its people would count twice; take one of them out"+howToAccept("D1"), before.Row.Row, strings.Replace(spelled, " as ", ", spelled ", 1))
 			return f, true
 		}
-		if !found && !datesDiffer(s.Date, before.Date) {
+		if !found && !t.armRows && !datesDiffer(s.Date, before.Date) {
 			found = true
 			f.Message = fmt.Sprintf("the study stands in row %d too%s, with other numbers; if both rows are of the same people, they count twice: keep one, or give them names of their own", before.Row.Row, spelled)
 		}

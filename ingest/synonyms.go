@@ -245,7 +245,7 @@ func recognise(header string) (m meaning, ok bool) {
 		return meaning{}, false
 	}
 	phrase, level := fold(header)
-	if phrase == "" {
+	if phrase == "" || negated.MatchString(header) {
 		return meaning{}, false
 	}
 	d := vocabulary()

@@ -22,6 +22,7 @@ type tableReader struct {
 	x       *review.Extraction
 	numbers []review.Number // space for all studies
 	remarks []review.Remark
+	armRows bool         // each row is of one arm
 	final   map[int]bool // findings, by index, whose numbers no acceptance makes usable
 }
 
@@ -47,6 +48,7 @@ func readTable(ctx context.Context, book *grid.Book, sheet *grid.Sheet, h *heade
 	t.sortColumns()
 	t.dropFootnotes()
 	t.dropUnitRow()
+	t.warnOfArmRows()
 	if err := t.readMerges(); err != nil {
 		return nil, err
 	}
