@@ -1,6 +1,8 @@
 package ingest
 
 import (
+	"slices"
+
 	"steelyard/ingest/grid"
 	"steelyard/meta/review"
 )
@@ -81,16 +83,18 @@ func bestFit(h *header, have map[review.Field]bool, numbers []int) []request {
 }
 
 // assign gives each field a column whose header says so, else one whose header
-// says nothing at all; fit is short if a field finds none. told counts the former.
+// says nothing at all, unless one of the others says what no field takes; fit is
+// short if a field finds none. told counts the former.
 func assign(h *header, fields []review.Field, columns []int) (fit []request, told int) {
 	taken := map[int]bool{}
+	strange := slices.ContainsFunc(columns, func(c int) bool { return adviceFor(h.columns[c].Header) != "" })
 	for _, field := range fields {
 		column, says := -1, false
 		for _, c := range columns {
 			header := h.columns[c].Header
 			said := sayingsOf(header)
 			fits := len(said) == 1 && said[fieldSays(field)]
-			if taken[c] || (len(said) > 0 && !fits) || !sameSide(sideOf(header), fieldSide(field)) || (column >= 0 && (says || !fits)) {
+			if taken[c] || (!fits && (strange || len(said) > 0)) || !sameSide(sideOf(header), fieldSide(field)) || (column >= 0 && (says || !fits)) {
 				continue
 			}
 			column, says = c, fits

@@ -110,10 +110,10 @@ func TestHeaderError(t *testing.T) {
 		name, text string
 		want       []string // --column flags
 	}{
-		{"names of a language unknown", "Title of the sheet\n\nAutor;Jahr;Deaths, drug arm;Patients, drug arm;Deaths, placebo;Patients, placebo\nA;2001;3;40;5;50\nB;2002;4;50;5;55\n",
-			[]string{`"study=Autor"`, `"events treated=Deaths, drug arm"`, `"total treated=Patients, drug arm"`}},
-		{"nothing known", "Autor,Wert,Fehler\nA,0.5,0.2\nB,0.6,0.1\n", []string{`"study=Autor"`, `"estimate=Wert"`, `"se=Fehler"`}},
-		{"years are no results", "Autor,Jahr,Wert,Fehler\nA,2001,0.5,0.2\nB,2002,0.6,0.1\n", []string{`"study=Autor"`, `"estimate=Wert"`, `"se=Fehler"`}},
+		{"names of a language unknown", "Title of the sheet\n\nTekijä;Vuosi;Deaths, drug arm;Patients, drug arm;Deaths, placebo;Patients, placebo\nA;2001;3;40;5;50\nB;2002;4;50;5;55\n",
+			[]string{`"study=Tekijä"`, `"events treated=Deaths, drug arm"`, `"total treated=Patients, drug arm"`}},
+		{"nothing known", "Tekijä,Wert,Fehler\nA,0.5,0.2\nB,0.6,0.1\n", []string{`"study=Tekijä"`, `"estimate=Wert"`, `"se=Fehler"`}},
+		{"years are no results", "Tekijä,Vuosi,Wert,Fehler\nA,2001,0.5,0.2\nB,2002,0.6,0.1\n", []string{`"study=Tekijä"`, `"estimate=Wert"`, `"se=Fehler"`}},
 		{"order told by words", "Trial,Patients drug,Deaths drug,Patients other,Deaths other\nA,40,3,50,5\nB,50,4,55,5\n",
 			[]string{`"events treated=Deaths drug"`, `"total treated=Patients drug"`, `"events control=Deaths other"`, `"total control=Patients other"`}},
 	} {
@@ -265,6 +265,8 @@ func TestNoWrongGuess(t *testing.T) {
 		{"trial,mean_t,sd_t,n_t,mean_c,sd_c,n_c", means, []string{"mean treated=mean_t", "sd treated=sd_t", "total treated=n_t", "mean control=mean_c", "sd control=sd_c", "total control=n_c"}, ""},
 		{"trial,n_c,n_t,sd_c,sd_t,mean_c,mean_t", means, []string{"mean treated=mean_t", "sd treated=sd_t", "total treated=n_t", "mean control=mean_c", "sd control=sd_c", "total control=n_c"}, ""},
 		{"study,yi,vi", "A,1,2\nB,1,2\n", nil, "square root"},
+		{"study,ai,bi,ci,di", counts, nil, "without the event"},
+		{"study,beta,upper one,lower one", "A,1,3,0.5\nB,1,3,0.5\n", []string{"estimate=beta", "ci low=lower one", "ci high=upper one"}, ""},
 		{"study,beta,variance", "A,1,2\nB,1,2\n", nil, "square root"},
 		{"study,mean treated,var treated,total treated,mean control,var control,total control", means, nil, "lacks sd treated and sd control"},
 		{"study,mean treated,SD/SE treated,total treated,mean control,SD/SE control,total control", means, nil, "part them into two columns"},
@@ -291,14 +293,14 @@ func TestNoWrongGuess(t *testing.T) {
 // TestCallShown shows the path and the sheet as they were typed.
 func TestCallShown(t *testing.T) {
 	path := filepath.Join(t.TempDir(), "my trials.csv")
-	if err := os.WriteFile(path, []byte("Autor,Wert,Fehler\nA,0.5,0.2\nB,0.6,0.1\n"), 0o600); err != nil {
+	if err := os.WriteFile(path, []byte("Tekijä,Wert,Fehler\nA,0.5,0.2\nB,0.6,0.1\n"), 0o600); err != nil {
 		t.Fatal(err)
 	}
 	_, _, err := Open(context.Background(), path, Options{})
 	if err == nil || !strings.Contains(err.Error(), "\n  steelyard pool \""+path+"\" --column") {
 		t.Errorf("error %v", err)
 	}
-	data := book(t, []string{"a b", "other"}, map[string]table{"a b": {{"Autor", "Wert", "Fehler"}, {"A", 0.5, 0.2}, {"B", 0.6, 0.1}}, "other": {{"x"}}})
+	data := book(t, []string{"a b", "other"}, map[string]table{"a b": {{"Tekijä", "Wert", "Fehler"}, {"A", 0.5, 0.2}, {"B", 0.6, 0.1}}, "other": {{"x"}}})
 	path = filepath.Join(t.TempDir(), "a.xlsx")
 	if err := os.WriteFile(path, data, 0o600); err != nil {
 		t.Fatal(err)
@@ -358,6 +360,38 @@ func TestNearestFields(t *testing.T) {
 		var field *FieldError
 		if !errors.As(err, &field) || !strings.Contains(err.Error(), want) || len(err.Error()) > 200 {
 			t.Errorf("%s: %v, want %q", text, err, want)
+		}
+	}
+}
+
+// TestForeignWords reads plain headers in French, German and Spanish.
+func TestForeignWords(t *testing.T) {
+	for _, tt := range []struct{ header, want string }{
+		{"Étude;Année;OR;IC inf;IC sup", "estimate ci low ci high"},
+		{"Etude;Année;OR;IC 95% inférieur;IC 95% supérieur", "estimate ci low ci high ci level"},
+		{"Auteurs;Année de publication;OR;borne inférieure;borne supérieure", "estimate ci low ci high"},
+		{"Studie;Jahr;OR;untere Grenze;obere Grenze", "estimate ci low ci high"},
+		{"Studie;Jahr;OR;KI unten;KI oben", "estimate ci low ci high"},
+		{"Estudio;Año;OR;límite inferior;límite superior", "estimate ci low ci high"},
+		{"Estudio;Año;OR;IC 95% inferior;IC 95% superior", "estimate ci low ci high ci level"},
+	} {
+		x := mustRead(t, []byte(tt.header+"\nA;2001;0,7;0,5;0,98\nB;2005;0,8;0,6;1,07\n"), "a.csv", Options{})
+		var fields []string
+		for _, n := range x.Studies[0].Numbers {
+			fields = append(fields, n.Field.String())
+		}
+		if got := strings.Join(fields, " "); got != tt.want || x.Studies[0].Date.Year != 2001 || x.Studies[0].Measure != effect.OddsRatio {
+			t.Errorf("%s: %q, want %q; date %v", tt.header, got, tt.want, x.Studies[0].Date)
+		}
+	}
+	for header, want := range map[string]review.Field{
+		"Ereignisse Behandlung": review.EventsTreated, "Gesamt Kontrolle": review.TotalControl, "Ereignisse (Kontrollgruppe)": review.EventsControl,
+		"événements traités": review.EventsTreated, "total contrôle": review.TotalControl, "Effectif traitement": review.TotalTreated, "eventos tratamiento": review.EventsTreated,
+		"Mittelwert Behandlung": review.MeanTreated, "Standardabweichung Kontrolle": review.SDControl, "écart-type témoins": review.SDControl, "Media tratamiento": review.MeanTreated,
+		"Standardfehler": review.StandardError, "p-Wert": review.PValue, "Effektschätzer": review.Estimate,
+	} {
+		if m, ok := recognise(header); !ok || m.field != want {
+			t.Errorf("%q is read as %q, want %q", header, m.field, want)
 		}
 	}
 }

@@ -19,7 +19,8 @@ const (
 	saysSD
 	saysSE
 	saysEstimate
-	saysLimit
+	saysLow
+	saysHigh
 	saysP
 	saysVariance // none of the fields of an effect
 	saysWithout  // people without the event
@@ -35,10 +36,11 @@ var sayings = map[string]saying{
 	"sd": saysSD, "stdev": saysSD, "deviation": saysSD, "std": saysSD,
 	"se": saysSE, "sem": saysSE, "stderr": saysSE, "error": saysSE,
 	"estimate": saysEstimate, "effect": saysEstimate, "difference": saysEstimate, "beta": saysEstimate, "coefficient": saysEstimate, "ratio": saysEstimate,
-	"ci": saysLimit, "lower": saysLimit, "upper": saysLimit, "limit": saysLimit, "lcl": saysLimit, "ucl": saysLimit, "low": saysLimit, "high": saysLimit,
+	"lower": saysLow, "low": saysLow, "lcl": saysLow, "upper": saysHigh, "high": saysHigh, "ucl": saysHigh,
 	"p": saysP, "pvalue": saysP,
 	"variance": saysVariance, "var": saysVariance, "v": saysVariance, "vi": saysVariance, "sd2": saysVariance, "se2": saysVariance,
 	"non": saysWithout, "nonevents": saysWithout, "without": saysWithout, "not": saysWithout, "survivors": saysWithout, "survived": saysWithout, "alive": saysWithout, "healthy": saysWithout,
+	"bi": saysWithout, "di": saysWithout, // cells of a 2×2 table named a to d, of study i
 	"%": saysPercent, "percent": saysPercent, "percentage": saysPercent, "pct": saysPercent, "proportion": saysPercent, "rate": saysPercent, "risk": saysPercent, "share": saysPercent,
 	"median": saysOther, "iqr": saysOther, "quartile": saysOther, "range": saysOther, "q1": saysOther, "q3": saysOther, "min": saysOther, "max": saysOther,
 	"weight": saysOther, "age": saysOther, "dose": saysOther, "years": saysOther, "months": saysOther, "weeks": saysOther, "days": saysOther, "time": saysOther, "baseline": saysOther,
@@ -57,7 +59,7 @@ func sayingsOf(header string) map[saying]bool {
 			said[s] = true
 		}
 	}
-	if strings.Contains(header, "%") && !said[saysLimit] {
+	if strings.Contains(header, "%") && !said[saysLow] && !said[saysHigh] {
 		said[saysPercent] = true
 	}
 	if negated.MatchString(header) {
@@ -92,8 +94,10 @@ func fieldSays(f review.Field) saying {
 		return saysSE
 	case review.Estimate, review.AnalysisEstimate:
 		return saysEstimate
-	case review.LimitLow, review.LimitHigh, review.AnalysisLow, review.AnalysisHigh:
-		return saysLimit
+	case review.LimitLow, review.AnalysisLow:
+		return saysLow
+	case review.LimitHigh, review.AnalysisHigh:
+		return saysHigh
 	case review.PValue:
 		return saysP
 	}

@@ -19,13 +19,13 @@ type meaning struct {
 // synonyms lists for each field the plain trade words that name it, folded; the
 // field's own name always does.
 var synonyms = map[review.Field][]string{
-	review.StudyName: {"trial", "author", "authors", "first author", "author year", "author and year", "study name", "trial name",
+	review.StudyName: {"étude", "etude", "etudes", "études", "studie", "studien", "estudio", "estudios", "auteur", "auteurs", "autor", "autores", "autoren", "nom étude", "essai", "ensayo", "trial", "author", "authors", "first author", "author year", "author and year", "study name", "trial name",
 		"study author", "name", "name study", "study year", "studies", "study reference", "citation"},
 	review.StudyID:      {"study id", "trial id", "study number", "trial number", "record id"},
 	review.Registration: {"registration number", "registration id", "registry number", "trial registration", "registry id"},
-	review.DateField: {"year", "publication year", "year publication", "pub year", "year published", "publication date", "date publication",
+	review.DateField: {"année", "annee", "ano", "année publication", "jahr", "publikationsjahr", "erscheinungsjahr", "año", "año publicación", "year", "publication year", "year publication", "pub year", "year published", "publication date", "date publication",
 		"date published", "published", "study date"},
-	review.OutcomeField:     {"outcome name", "outcomes", "endpoint", "end point", "outcome measure"},
+	review.OutcomeField:     {"endpunkt", "zielgröße", "critère jugement", "desenlace", "outcome name", "outcomes", "endpoint", "end point", "outcome measure"},
 	review.Comparison:       {"contrast", "comparison name"},
 	review.TimePoint:        {"timepoint", "time", "follow up", "followup", "follow up time", "length follow up"},
 	review.Subgroup:         {"sub group", "stratum"},
@@ -36,16 +36,16 @@ var synonyms = map[review.Field][]string{
 	review.Adjusted:         {"adjusted estimate", "adjustment"},
 	review.ResultType:       {"change or final", "type result"},
 	review.Unit:             {"units", "unit measurement"},
-	review.RiskOfBias:       {"risk bias", "rob", "overall risk bias", "risk bias overall", "bias", "risk bias judgement"},
+	review.RiskOfBias:       {"risque biais", "verzerrungsrisiko", "riesgo sesgo", "risk bias", "rob", "overall risk bias", "risk bias overall", "bias", "risk bias judgement"},
 	review.SourceField:      {"page", "source data", "data source", "where found"},
 	review.HowObtained:      {"obtained", "how data were obtained", "origin"},
-	review.NoteField:        {"notes", "comment", "comments", "remark", "remarks"},
+	review.NoteField:        {"bemerkung", "bemerkungen", "anmerkung", "anmerkungen", "kommentar", "remarque", "remarques", "commentaire", "commentaires", "nota", "notas", "comentario", "comentarios", "notes", "comment", "comments", "remark", "remarks"},
 	review.Accept:           {"accepted", "accept finding", "accept findings"},
-	review.Estimate:         {"effect", "effect size", "effect estimate", "point estimate", "estimated effect", "treatment effect"},
+	review.Estimate:         {"effekt", "effektschätzer", "schätzer", "effet", "estimation", "efecto", "estimación", "effect", "effect size", "effect estimate", "point estimate", "estimated effect", "treatment effect"},
 	review.AnalysisEstimate: {"y", "log estimate", "log effect", "log effect size", "ln estimate", "ln effect", "log point estimate"},
-	review.StandardError:    {"standard error", "std error", "std err", "stderr", "s e"},
+	review.StandardError:    {"standardfehler", "erreur standard", "erreur type", "error estándar", "error típico", "standard error", "std error", "std err", "stderr", "s e"},
 	review.LimitLevel:       {"level", "confidence level", "level ci", "ci percent"},
-	review.PValue:           {"p value", "pvalue", "p val"},
+	review.PValue:           {"p wert", "valeur p", "valor p", "p value", "pvalue", "p val"},
 	review.AnalysisLow:      {"log ci low", "log ci lower", "ln ci low", "ln ci lower", "log lower limit", "log lower"},
 	review.AnalysisHigh:     {"log ci high", "log ci upper", "ln ci high", "ln ci upper", "log upper limit", "log upper"},
 	// What is given for each arm is made of a quantity and an arm, below; limits are
@@ -57,8 +57,8 @@ var synonyms = map[review.Field][]string{
 	review.SDDifference: {"sd difference", "sd differences", "sd within person difference", "sd paired difference", "sd paired differences", "standard deviation difference",
 		"standard deviation differences", "sd diff"},
 	review.Coefficient: {"correlation coefficient", "pearson r", "pearson correlation", "spearman r", "r value"},
-	review.Events:      {"event", "number events", "n events", "deaths", "cases", "number cases", "number with event", "total events", "events total"},
-	review.Total: {"n", "sample size", "n total", "total n", "number participants", "number patients", "participants", "patients", "n patients", "n participants",
+	review.Events:      {"ereignisse", "événements", "évènements", "eventos", "todesfälle", "décès", "event", "number events", "n events", "deaths", "cases", "number cases", "number with event", "total events", "events total"},
+	review.Total: {"gesamtzahl", "effectif", "effectif total", "tamaño muestra", "stichprobengröße", "n", "sample size", "n total", "total n", "number participants", "number patients", "participants", "patients", "n patients", "n participants",
 		"total participants", "n analysed", "n analyzed", "total number"},
 	review.PersonTime:            {"person years", "patient years", "person months", "person days", "patient months", "patient days", "time at risk", "total person time"},
 	review.ObservedMinusExpected: {"o e", "o minus e", "observed expected", "o less e", "logrank o e", "log rank o e"},
@@ -84,11 +84,11 @@ type quantity struct {
 
 var quantities = []quantity{
 	{review.EventsTreated, review.EventsControl, []string{"events", "event", "n events", "no events", "number events", "events n", "number with event",
-		"n with event", "deaths", "cases"}},
+		"n with event", "deaths", "cases", "ereignisse", "événements", "évènements", "eventos", "todesfälle", "décès"}},
 	{review.TotalTreated, review.TotalControl, []string{"total", "n", "totals", "total n", "n total", "sample size", "size", "number", "participants", "patients", "people",
-		"subjects", "n patients", "n participants", "number patients", "number participants", "total number", "n analysed", "n analyzed", "analysed", "analyzed"}},
-	{review.MeanTreated, review.MeanControl, []string{"mean", "average", "mean value"}},
-	{review.SDTreated, review.SDControl, []string{"sd", "standard deviation", "std dev", "std deviation", "st dev", "s d", "stdev"}},
+		"subjects", "n patients", "n participants", "number patients", "number participants", "total number", "n analysed", "n analyzed", "analysed", "analyzed", "gesamt", "effectif", "patienten", "pacientes"}},
+	{review.MeanTreated, review.MeanControl, []string{"mean", "average", "mean value", "mittelwert", "moyenne", "media"}},
+	{review.SDTreated, review.SDControl, []string{"sd", "standard deviation", "std dev", "std deviation", "st dev", "s d", "stdev", "standardabweichung", "écart type", "desviación estándar", "desviación típica"}},
 	{review.SETreated, review.SEControl, []string{"se", "standard error", "std error", "sem", "se mean", "standard error mean", "s e"}},
 	{review.BaselineMeanTreated, review.BaselineMeanControl, []string{"baseline mean", "mean baseline", "mean at baseline", "pre mean", "initial mean"}},
 	{review.BaselineSDTreated, review.BaselineSDControl, []string{"baseline sd", "sd baseline", "sd at baseline", "pre sd", "initial sd", "baseline standard deviation"}},
@@ -112,9 +112,11 @@ var namedQuantities = []quantity{
 
 // Words for the arms.
 var (
-	treatedWords = []string{"treated", "treatment", "treatments", "intervention", "experimental", "experiment", "active", "active treatment", "exposed", "verum"}
+	treatedWords = []string{"treated", "treatment", "treatments", "intervention", "experimental", "experiment", "active", "active treatment", "exposed", "verum",
+		"behandlung", "behandelt", "behandlungsgruppe", "interventionsgruppe", "traitement", "traité", "traités", "groupe traité", "tratamiento", "tratado", "tratados", "intervención", "grupo tratado"}
 	controlWords = []string{"control", "controls", "comparator", "comparison", "placebo", "usual care", "standard care", "no treatment", "no intervention",
-		"unexposed", "untreated", "usual treatment", "standard treatment", "sham"}
+		"unexposed", "untreated", "usual treatment", "standard treatment", "sham",
+		"kontrolle", "kontrollgruppe", "contrôle", "témoin", "témoins", "groupe contrôle", "groupe témoin", "controle", "grupo control"}
 )
 
 // controlHints are words that mark a group's name as the control arm when the
@@ -140,6 +142,16 @@ var measureWords = []struct {
 // limitForms are the phrases of a limit; the word of the side replaces "*".
 var limitForms = []string{"ci *", "* ci", "* limit", "* bound", "ci * limit", "* ci limit", "* limit ci", "ci * bound", "* ci bound",
 	"* confidence limit", "* confidence bound", "confidence limit *", "confidence *", "limit *"}
+
+// foreignLimits are the limits of an interval in German, French and Spanish.
+var foreignLimits = []struct{ low, high []string }{
+	{[]string{"untere grenze", "untergrenze", "untere ki grenze", "ki untere grenze", "ki unten", "ki untergrenze", "unteres konfidenzlimit"},
+		[]string{"obere grenze", "obergrenze", "obere ki grenze", "ki obere grenze", "ki oben", "ki obergrenze", "oberes konfidenzlimit"}},
+	{[]string{"ic inf", "ic inférieur", "ic inférieure", "borne inférieure", "borne inf", "limite inférieure", "ic borne inférieure", "borne inférieure ic", "ic bas"},
+		[]string{"ic sup", "ic supérieur", "ic supérieure", "borne supérieure", "borne sup", "limite supérieure", "ic borne supérieure", "borne supérieure ic", "ic haut"}},
+	{[]string{"límite inferior", "limite inferior", "ic inferior", "ic límite inferior", "límite inferior ic"},
+		[]string{"límite superior", "limite superior", "ic superior", "ic límite superior", "límite superior ic"}},
+}
 
 // dictionary is the whole vocabulary, folded.
 type dictionary struct {
@@ -232,6 +244,14 @@ func (d *dictionary) addLimits() {
 			for _, form := range limitForms {
 				d.add(strings.Replace(form, "*", word, 1), meaning{field: side.field})
 			}
+		}
+	}
+	for _, words := range foreignLimits {
+		for _, word := range words.low {
+			d.add(word, meaning{field: review.LimitLow})
+		}
+		for _, word := range words.high {
+			d.add(word, meaning{field: review.LimitHigh})
 		}
 	}
 	for word, field := range map[string]review.Field{"lower": review.LimitLow, "upper": review.LimitHigh, "lcl": review.LimitLow, "ucl": review.LimitHigh} {

@@ -7,7 +7,8 @@ import (
 )
 
 // fillers are words of a header that carry no meaning of their own.
-var fillers = map[string]bool{"of": true, "the": true, "in": true, "for": true, "group": true, "groups": true, "arm": true, "arms": true}
+var fillers = map[string]bool{"of": true, "the": true, "in": true, "for": true, "group": true, "groups": true, "arm": true, "arms": true,
+	"de": true, "des": true, "du": true, "la": true, "le": true, "les": true, "der": true, "die": true, "das": true, "del": true, "el": true, "los": true, "groupe": true, "gruppe": true, "grupo": true}
 
 // fold brings a header to the form in which headers are compared: lower-case
 // words joined by single blanks, without punctuation and fillers, "confidence
