@@ -32,51 +32,35 @@ func lnCauchyFactor(z, r float64) (float64, error) {
 //
 // in panels that follow both peaks: the prior's at 0 and the likelihood's at z.
 func lnHalfCauchyFactor(z, r float64) (float64, error) {
-	// Up to z/2 the variable is θ, beyond it θ − z, so that neither peak is lost
-	// in rounding.
 	lnPrior := func(theta float64) float64 { return -2 * math.Log(math.Hypot(1, theta/r)) }
 	near := func(theta float64) float64 { return theta*(z-0.5*theta) + lnPrior(theta) }
-	far := func(u float64) float64 { return 0.5*z*z - 0.5*u*u + lnPrior(z+u) }
-	half := max(0, 0.5*z)
-	end := normalReach + 0.0
-	if z < 0 {
-		end = min(normalReach, normalReach*normalReach/-z)
+	scale := math.Log(2/math.Pi) - math.Log(r)
+	if z <= 0 {
+		end := min(normalReach, normalReach*normalReach/math.Abs(z)) // z may be 0
+		ln, err := lnOver(near, growing(end, min(r, 1, end)))
+		return ln + scale, err
 	}
-	total := math.Inf(-1)
-	add := func(f func(float64) float64, cuts []float64) error {
-		ln, err := lnOver(f, cuts)
-		total = lnSumAny(total, ln)
-		return err
-	}
-	if half == 0 {
-		end = min(end, normalReach)
-		if err := add(near, growing(0, end, min(r, 1, end))); err != nil {
-			return 0, err
-		}
-		return total + math.Log(2/math.Pi) - math.Log(r), nil
-	}
-	if err := add(near, growing(0, half, min(r, 1))); err != nil {
-		return 0, err
-	}
-	left := growing(0, min(half, normalReach), 1)
+	// Up to z/2 the variable is θ, beyond it u = θ − z, so that neither peak is
+	// lost in rounding.
+	below, err1 := lnOver(near, growing(0.5*z, min(r, 1)))
+	far := func(u float64) float64 { return -0.5*u*u + lnPrior(z+u) }
+	left := growing(min(0.5*z, normalReach), 1)
 	for i := range left {
 		left[i] = -left[i]
 	}
 	slices.Reverse(left)
-	if err := add(far, append(left, growing(0, normalReach, 1)[1:]...)); err != nil {
-		return 0, err
-	}
-	return total + math.Log(2/math.Pi) - math.Log(r), nil
+	around, err2 := lnOver(far, append(left, growing(normalReach, 1)[1:]...))
+	return lnSum(below, 0.5*z*z+around) + scale, errors.Join(err1, err2)
 }
 
-// growing returns cuts from a to b, the first step being first and each panel
-// ending panelRatio times as far.
-func growing(a, b, first float64) []float64 {
-	cuts := []float64{a}
-	for step := first; a+step < b; step *= panelRatio {
-		cuts = append(cuts, a+step)
+// growing returns cuts from 0 to end, the first panel ending at first and each
+// other panelRatio times as far as the one before.
+func growing(end, first float64) []float64 {
+	cuts := []float64{0}
+	for step := first; step < end; step *= panelRatio {
+		cuts = append(cuts, step)
 	}
-	return append(cuts, b)
+	return append(cuts, end)
 }
 
 // lnOver returns ln ∫exp(f) over panels.
@@ -88,27 +72,19 @@ func lnOver(f func(float64) float64, cuts []float64) (float64, error) {
 			height = max(height, f(0.5*(cuts[i-1]+x)))
 		}
 	}
-	total := 0.0
+	// exp(f) is no surer than the rounding of f.
+	tolerance := max(1e-11, 1e-14*math.Abs(height))
+	total, doubt := 0.0, 0.0
 	for i := 1; i < len(cuts); i++ {
-		if cuts[i-1] == cuts[i] {
-			continue
-		}
-		area, absErr, err := numeric.Integrate(func(x float64) float64 { return math.Exp(f(x) - height) }, cuts[i-1], cuts[i], 1e-11)
-		if err != nil && !(absErr <= 1e-11*total) {
+		area, absErr, err := numeric.Integrate(func(x float64) float64 { return math.Exp(f(x) - height) }, cuts[i-1], cuts[i], tolerance)
+		if err != nil && !errors.Is(err, numeric.ErrNotConverged) {
 			return 0, ErrOutOfRange
 		}
 		total += area
+		doubt += absErr
 	}
-	return height + math.Log(total), nil
-}
-
-// lnSumAny is lnSum that takes −Inf too.
-func lnSumAny(a, b float64) float64 {
-	if math.IsInf(a, -1) {
-		return b
+	if !(doubt <= 100*tolerance*total) && total > 0 {
+		return 0, ErrOutOfRange
 	}
-	if math.IsInf(b, -1) {
-		return a
-	}
-	return lnSum(a, b)
+	return height + math.Log(max(total, math.SmallestNonzeroFloat64)), nil
 }

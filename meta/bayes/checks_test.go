@@ -7,8 +7,6 @@ import (
 	"strconv"
 	"strings"
 	"testing"
-
-	"steelyard/meta/evidence"
 )
 
 // near reports whether got is within a tolerance of want, relative to want where
@@ -139,5 +137,3 @@ func TestExtrasAgainstChecks(t *testing.T) {
 		t.Errorf("evidence_extra.csv covers %v of %d functions", seen, len(extras))
 	}
 }
-
-var _ = evidence.LnStep

@@ -78,18 +78,23 @@ func (m *mass) add(a, b float64) {
 // slow beside exp(f); nil stands for 1. It returns ErrOutOfRange where floating
 // point cannot resolve the peaks.
 func (m mass) lnIntegral(f, g func(float64) float64) (float64, error) {
-	total, err := m.upTo(f, g, math.Inf(1))
-	if err != nil {
+	total, doubt, err := m.upTo(f, g, math.Inf(1))
+	switch {
+	case err != nil:
 		return 0, err
-	}
-	if !(total > 0) || math.IsInf(total, 1) {
+	case !(total > 0) || math.IsInf(total, 1) || !(doubt <= max(1e-9, m.rounding())*total):
 		return 0, ErrOutOfRange
 	}
 	return m.height + math.Log(total), nil
 }
 
-// upTo returns ∫exp(f(x) − height)g(x)dx over x ≤ end.
-func (m mass) upTo(f, g func(float64) float64, end float64) (float64, error) {
+// rounding is the relative accuracy of exp(f), which is no surer than the
+// rounding of f.
+func (m mass) rounding() float64 { return 1e-14 * math.Abs(m.height) }
+
+// upTo returns ∫exp(f(x) − height)g(x)dx over x ≤ end with an estimate of its
+// error. A panel far down a slope may miss its own tolerance and not matter.
+func (m mass) upTo(f, g func(float64) float64, end float64) (value, absErr float64, err error) {
 	integrand := func(x float64) float64 {
 		y := math.Exp(min(separate, f(x)-m.height)) // above 0 lies only rounding
 		if g != nil {
@@ -97,8 +102,7 @@ func (m mass) upTo(f, g func(float64) float64, end float64) (float64, error) {
 		}
 		return y
 	}
-	// exp(f) is no surer than the rounding of f.
-	tolerance := max(1e-11, 1e-14*math.Abs(m.height))
+	tolerance := max(1e-11, m.rounding())
 	var total, doubt numeric.Sum
 	for _, p := range m.panels {
 		if p[0] >= end {
@@ -106,16 +110,12 @@ func (m mass) upTo(f, g func(float64) float64, end float64) (float64, error) {
 		}
 		value, absErr, err := numeric.Integrate(integrand, p[0], min(p[1], end), tolerance)
 		if err != nil && !errors.Is(err, numeric.ErrNotConverged) {
-			return 0, ErrOutOfRange
+			return 0, 0, ErrOutOfRange
 		}
 		total.Add(value)
 		doubt.Add(absErr)
 	}
-	// A panel far down a slope may miss its own tolerance and not matter.
-	if doubt.Value() > max(1e-9, tolerance)*max(total.Value(), 1e-300) && math.IsInf(end, 1) {
-		return 0, ErrOutOfRange
-	}
-	return total.Value(), nil
+	return total.Value(), doubt.Value(), nil
 }
 
 // peak is a local maximum with the lowest point between it and the next one.

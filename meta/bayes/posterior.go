@@ -42,9 +42,11 @@ func PosteriorOf(y, s []float64, prior TauPrior, level float64) (*Posterior, err
 		return nil, err
 	}
 	p := &marginal{d: d, f: f, mass: m}
-	if p.total, err = m.upTo(f, nil, math.Inf(1)); err != nil {
+	ln, err := m.lnIntegral(f, nil)
+	if err != nil {
 		return nil, err
 	}
+	p.total = math.Exp(ln - m.height)
 	post := &Posterior{Level: level}
 	tails := [3]float64{0.5 * (1 - level), 0.5, 0.5 * (1 + level)}
 	var tau, effect [3]float64
@@ -83,7 +85,7 @@ type marginal struct {
 
 // expect returns the posterior mean of g(ln τ) over ln τ ≤ end.
 func (p *marginal) expect(g func(float64) float64, end float64) float64 {
-	value, err := p.mass.upTo(p.f, g, end)
+	value, _, err := p.mass.upTo(p.f, g, end)
 	if err != nil && p.fault == nil {
 		p.fault = err
 	}
@@ -160,7 +162,7 @@ func (p *marginal) means(post *Posterior) error {
 	if err != nil {
 		return err
 	}
-	tau := math.Exp(ln-p.mass.height-math.Log(p.total)) * p.d.unit
+	tau := math.Exp(ln-p.mass.height) / p.total * p.d.unit
 	post.Tau.Mean = &tau
 	shift := p.expect(func(x float64) float64 { return p.d.at(math.Exp(x)).mean }, math.Inf(1))
 	effect := p.d.place(shift)
