@@ -63,12 +63,28 @@ func (p *page) cumulative(s *synthesis.Synthesis, o *synthesis.Outcome) {
 		rows = append(rows, row)
 	}
 	p.table(columns, rows)
+	p.predictions(s, o)
 	p.line("")
 	p.item("*", fmt.Sprintf("The first %s's own effect, not a mean.", words.Noun(s, 1)))
 	if prior > 0 {
 		p.item("·", fmt.Sprintf("Each row starts from the stated prior of %s; the steps of rows are not multiplied together.", words.Probability(prior)))
 	}
 	p.item("·", orderNote(o.Accrual.Order))
+}
+
+// predictions writes the prediction interval of each step that has one.
+func (p *page) predictions(s *synthesis.Synthesis, o *synthesis.Outcome) {
+	var rows [][]string
+	for _, entry := range o.Accrual.Cumulative {
+		if f := entry.Prediction; f != nil {
+			rows = append(rows, []string{words.Count(entry.K) + " " + words.Noun(s, entry.K), words.ReaderInterval(o, meta.Limits{Low: f.Low, High: f.High})})
+		}
+	}
+	if len(rows) == 0 {
+		return
+	}
+	p.line("")
+	p.table([]column{{head: "in a new setting after"}, {head: words.Level(o.Result.Fit.Model.Level) + " prediction interval"}}, rows)
 }
 
 func addedSteps(entry synthesis.Entry) string {
@@ -151,30 +167,38 @@ func tippingText(s *synthesis.Synthesis, o *synthesis.Outcome, t *meta.Tipping) 
 
 // influence writes how each study pulls on the result.
 func (p *page) influence(s *synthesis.Synthesis, o *synthesis.Outcome) {
-	columns := []column{{head: "study"}, {head: "without it"}, {head: "τ", right: true}, {head: "steps", right: true},
-		{head: "pull", right: true}, {head: "leverage", right: true}, {head: "residual", right: true}}
+	columns := []column{{head: "study"}, {head: "without it"}, {head: "τ", right: true}, {head: "steps", right: true}, {head: "pull", right: true}}
+	detailed := slices.ContainsFunc(o.Accrual.Influence, func(one meta.Influence) bool { return one.Detail != nil })
+	if detailed {
+		columns = append(columns, column{head: "leverage", right: true}, column{head: "residual", right: true})
+	}
 	var rows [][]string
 	for _, one := range o.Accrual.Influence {
 		row := []string{o.Studies[one.Row].Source.Name}
 		if one.Problem != nil {
-			row = append(row, one.Problem.Error(), "", "", "", "", "")
+			row = append(row, one.Problem.Error())
 		} else {
 			estimate, tau, _, steps := refitCells(o, one.Mean)
-			row = append(row, estimate, tau, steps, words.StepsChange(one.Pull), words.Missing, words.Missing)
+			row = append(row, estimate, tau, steps, words.StepsChange(one.Pull))
 			if d := one.Detail; d != nil {
-				row[5], row[6] = words.Percent(d.Leverage), words.StepsChange(d.Residual)
+				row = append(row, words.Percent(d.Leverage), words.StepsChange(d.Residual))
 			}
+		}
+		for len(row) < len(columns) {
+			row = append(row, "")
 		}
 		rows = append(rows, row)
 	}
 	p.table(columns, rows)
 	p.line("")
+	p.item("·", "Pull: how far the study moves the pooled estimate, in standard errors of the estimate without it; signs on the analysis scale.")
 	for _, text := range []string{
-		"Pull: how far the study moves the pooled estimate, in standard errors of the estimate without it; signs on the analysis scale.",
 		fmt.Sprintf("Leverage: its share of the weight; an even share is %s.", words.Percent(1/float64(len(o.Studies)))),
 		"Residual: its distance from what the others predict, in standard errors; beyond ±2 for about 1 in 20 if the model holds.",
 	} {
-		p.item("·", text)
+		if detailed {
+			p.item("·", text)
+		}
 	}
 	for _, one := range o.Accrual.Influence {
 		if one.Problem == nil {
