@@ -2,6 +2,7 @@ package layout
 
 import (
 	"math"
+	"strings"
 
 	"steelyard/forest/words"
 )
@@ -71,8 +72,8 @@ func (k gaugeKind) text(r InfluenceRow) string {
 	return changeText(v)
 }
 
-// changeText writes a change with its sign and two decimals, a large one as a
-// bound.
+// changeText writes a change with its sign and two decimals, from 100 without,
+// and a very large one as a bound.
 func changeText(v float64) string {
 	const most = 9999
 	switch {
@@ -80,6 +81,9 @@ func changeText(v float64) string {
 		return "> +9,999"
 	case v < -most:
 		return "< −9,999"
+	}
+	if math.Abs(v) >= 100 {
+		return strings.TrimSuffix(words.StepsChange(math.Round(v)), ".00")
 	}
 	return words.StepsChange(v)
 }

@@ -83,7 +83,12 @@ func (c *influence) pooledItems() []Item {
 		return append(items, boldLabel(end, base, m.row, End, words.Odds(ln)), boldLabel(end, c.secondLine(y), m.second, End, wordText(ln)))
 	}
 	pull := c.columns[0]
-	items = append(items, boldLabel(pull.numberEnd, base, m.row, End, c.pooledText()))
+	for _, text := range []string{c.pooledText(), effectText(c.in.Scale, c.in.Pooled.Estimate)} {
+		if Width(text, m.row, true) <= pull.numberEnd-m.margin-c.nameWidth-4 {
+			items = append(items, boldLabel(pull.numberEnd, base, m.row, End, text))
+			break
+		}
+	}
 	for _, g := range c.columns {
 		switch g.kind {
 		case residualGauge:
@@ -169,8 +174,16 @@ func (c *influence) numberItems(g gauge, r InfluenceRow, y float64) []Item {
 	if !m.twoLine {
 		return []Item{t}
 	}
-	if run := t.Runs()[0]; run.Left+run.Width > min(g.place.high+gaugeNarrow-2, c.style.Width-m.margin) {
+	// A number that is too long for the right half stands on the left, or in the
+	// room of the whole gauge.
+	width := t.Runs()[0].Width
+	room := span{g.place.low - gaugeNarrow/2 + 1, min(g.place.high+gaugeNarrow/2-1, c.style.Width-m.margin)}
+	switch at := t.Spans[0].X; {
+	case at+width <= room.high:
+	case g.x(0)-2.5-width >= room.low:
 		t.Spans[0].X, t.Spans[0].Anchor = g.x(0)-2.5, End
+	default:
+		t.Spans[0].X = max(room.low, room.high-width)
 	}
 	return onPatch(t, Paper, 0.8)
 }
