@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 
-	"steelyard/meta/effect"
 	"steelyard/meta/review"
 )
 
@@ -16,12 +15,20 @@ func (r *rowReader) checkNumbers() {
 	r.checkKinds()
 	for _, field := range []review.Field{review.SDTreated, review.SDControl, review.BaselineSDTreated, review.BaselineSDControl, review.SDDifference} {
 		if sd, ok := r.values.has(field); ok && !(sd > 0) {
-			r.wrong("M6", field, "a standard deviation of "+shortest(sd)+" says that nobody differed; check whether it was reported, and leave it blank if not")
+			message := "a standard deviation of 0 says that nobody differed; check whether it was reported, and leave it blank if not"
+			if sd < 0 {
+				message = "a standard deviation cannot be below 0, as " + shortest(sd) + " is; check the sign and the column, and leave it blank if it was not reported"
+			}
+			r.wrong("M6", field, message)
 		}
 	}
 	for _, field := range []review.Field{review.StandardError, review.SETreated, review.SEControl} {
 		if se, ok := r.values.has(field); ok && !(se > 0) {
-			r.wrong("M6", field, "a standard error of "+shortest(se)+" would give the study endless weight; it must be above 0, so check the source")
+			message := "a standard error of 0 would give the study endless weight; it must be above 0, so check the source"
+			if se < 0 {
+				message = "a standard error cannot be below 0, as " + shortest(se) + " is; check the sign and the column"
+			}
+			r.wrong("M6", field, message)
 		}
 	}
 	if p, ok := r.values.has(review.PValue); ok && !(0 <= p && p <= 1) {
@@ -141,7 +148,9 @@ func (r *rowReader) checkLimits(estimateField, lowField, highField review.Field)
 	high, hasHigh := r.values.has(highField)
 	estimate, hasEstimate := r.values.has(estimateField)
 	switch {
-	case hasLow && hasHigh && low >= high:
+	case hasLow && hasHigh && low == high:
+		r.wrong("I1", lowField, fmt.Sprintf("both limits are %s, which would make the estimate certain; check them against the source", shortest(low)))
+	case hasLow && hasHigh && low > high:
 		r.wrong("I1", lowField, fmt.Sprintf("the lower limit %s is not below the upper limit %s; are they swapped?", shortest(low), shortest(high)))
 	case hasEstimate && hasLow && estimate < low, hasEstimate && hasHigh && estimate > high:
 		r.wrong("I1", estimateField, fmt.Sprintf("the estimate %s lies outside its limits; check all three numbers against the source", shortest(estimate)))
@@ -155,24 +164,21 @@ func (r *rowReader) checkRatio() {
 	}
 	for _, field := range []review.Field{review.Estimate, review.LimitLow, review.LimitHigh} {
 		if x, ok := r.values.has(field); ok && !(x > 0) {
-			r.wrong("I4", field, fmt.Sprintf("%s %s cannot be %s, since ratios are above 0; if it is a logarithm, head the column \"log %s\"",
-				article(r.study.Measure), r.study.Measure, shortest(x), r.study.Measure))
+			r.wrong("I4", field, fmt.Sprintf("%s cannot be %s, since it is above 0; if that is a logarithm, head the column \"log %s\"",
+				r.study.Measure.WithArticle(), shortest(x), r.study.Measure))
 		}
 	}
-}
-
-func article(m effect.Measure) string {
-	if m == effect.OddsRatio {
-		return "an"
-	}
-	return "a"
 }
 
 // checkRow reports rows that are no study, or not one to be read as it stands.
 func (r *rowReader) checkRow() {
 	t := r.t
 	if len(r.study.Numbers) == 0 && !r.unreadable {
-		r.find(review.Error, "F9", 0, "the row has no number, so there is nothing to pool; fill them in, or take the row out of the table")
+		message := "the row has no number, so there is nothing to pool; fill its numbers in, or take the row out of the table"
+		if filled(r.row) == 1 {
+			message = "the row has a name and nothing else; if it is a heading, write it into a column such as subgroup beside each study, else fill its numbers in"
+		}
+		r.find(review.Error, "F9", 0, message)
 	}
 	if namesTotal(r.study.Name) {
 		r.find(review.Error, "F10", t.role.name, "the row looks like a total of other rows; pooling it would count their people twice, so take it out of the table"+howToAccept("F10"))

@@ -40,7 +40,8 @@ func (r *headerReader) refuseTwin(h *header, i, j int) {
 	f := review.Finding{Severity: review.Error, Rule: "F9", Place: b.Place}
 	f.Place.Row = 0
 	chosen := b.Header
-	if len(matchHeaders(h, chosen)) > 1 {
+	other, _ := fold(b.Header)
+	if one, _ := fold(a.Header); one == other {
 		chosen = byLetter + review.ColumnLetters(j+1)
 	}
 	f.Message = fmt.Sprintf("the headers %s (column %s) and %s (column %s) both mean %q, so it is unclear which to read; rename one, or choose with --column %s",

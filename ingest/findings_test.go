@@ -77,10 +77,11 @@ func TestFindings(t *testing.T) {
 		{"empty arm", counts([]any{"A", 2002, 0, 0, 5, 41}), []string{"error C1 D3"}, "people"},
 		{"broken total", counts([]any{"A", 2002, 3, 40, 5, 41.5}), []string{"error C2 F3"}, "whole"},
 		{"no sd", means([]any{"A", 1, 0, 30, 3, 4, 31}), []string{"error M6 C3"}, "standard deviation"},
-		{"negative sd", means([]any{"A", 1, 2, 30, 3, -4, 31}), []string{"error M6 F3"}, "standard deviation"},
+		{"negative sd", means([]any{"A", 1, 2, 30, 3, -4, 31}), []string{"error M6 F3"}, "cannot be below 0"},
 		{"no se", results([]any{"A", 0.5, "", "", "", 0}), []string{"error M6 F3"}, "standard error"},
-		{"negative se", results([]any{"A", 0.5, "", "", "", -1}), []string{"error M6 F3"}, "standard error"},
+		{"negative se", results([]any{"A", 0.5, "", "", "", -1}), []string{"error M6 F3"}, "cannot be below 0"},
 		{"limits swapped", results([]any{"A", 0.5, 1, 0.25}), []string{"error I1 C3"}, "swapped"},
+		{"limits equal", results([]any{"A", 0.5, 0.25, 0.25}), []string{"error I1 C3"}, "both limits are 0.25"},
 		{"estimate outside", results([]any{"A", 1.5, 0.25, 1}), []string{"error I1 B3"}, "outside"},
 		{"ratio below zero", results([]any{"A", -0.22, "", "", "", 0.1}), []string{"error I4 B3"}, "logarithm"},
 		{"level as percentage", results([]any{"A", 0.5, 0.25, 1, 95}), []string{"error I6 E3"}, "95% is written 0.95"},
@@ -91,6 +92,9 @@ func TestFindings(t *testing.T) {
 		{"pooled row", counts([]any{"Pooled estimate", "", 3, 40, 5, 41}), []string{"error F10 A3"}, "total"},
 		{"no name", counts([]any{"", 2002, 3, 40, 5, 41}), []string{"error F9 A3"}, "names no study"},
 		{"no number", counts([]any{"A", 2002}), []string{"error F9 3:3"}, "no number"},
+		{"heading", counts([]any{"Drug X"}, []any{"B", 2002, 3, 40, 5, 41}), []string{"error F9 3:3"}, "if it is a heading"},
+		{"level of the header", table{{"study", "HR", "90% CI low", "90% CI high"}, {"A", 0.8, 0.6, 1.07}}, []string{"note I6 C:C"}, "a 90% interval"},
+		{"usual level of the header", table{{"study", "HR", "95% CI low", "95% CI high"}, {"A", 0.8, 0.6, 1.07}}, nil, ""},
 		{"same row twice", counts([]any{"Good", 2001, 3, 40, 5, 41}), []string{"error D1 A3"}, "row 2"},
 		{"same name twice", counts([]any{"Good", 2001, 4, 40, 5, 41}), []string{"warning D5 A3"}, "row 2"},
 		{"same row in other letters", counts([]any{" GOOD. ", 2001, 3, 40, 5, 41}), []string{"error D1 A3"}, "row 2"},
@@ -297,107 +301,5 @@ func TestYearBesideDate(t *testing.T) {
 		if got := s.Date.String(); got != want.date || s.Cell("date") != want.date {
 			t.Errorf("%s: date %q, want %q", s.Name, got, want.date)
 		}
-	}
-}
-
-// TestFoldName wants the same name however it is typed, and other names apart.
-func TestFoldName(t *testing.T) {
-	for _, name := range []string{"Adams 2001", "ADAMS 2001", "Adams (2001)", "Adams, 2001", " Ádams  2001 ", "adams\u00a02001", "Ａdams-2001", "adams 2001"} {
-		if got := foldName(name); got != "adams 2001" {
-			t.Errorf("%q is folded to %q", name, got)
-		}
-	}
-	for name, want := range map[string]string{"Müller": "muller", "Ørsted & Weiß": "orsted weiss", "Łukasz": "lukasz", "?": "?", "Adams 2001a": "adams 2001a", "田中": "田中", "محمد 2010": "محمد 2010"} {
-		if got := foldName(name); got != want {
-			t.Errorf("%q is folded to %q, want %q", name, got, want)
-		}
-	}
-}
-
-// TestFootnotes tells texts below a table from studies without numbers.
-func TestFootnotes(t *testing.T) {
-	head := "study,estimate,se\nA,1,2\nB,1,2\n"
-	for _, note := range []string{"* data from the author", "† adjusted", "a) adjusted", "a Adjusted for age", "Note: adjusted", "Source: own extraction", "SOURCES", "Anmerkung: vorläufig",
-		"Numbers of the second trial were read off a figure by two people who agreed on every one of them"} {
-		for _, rows := range []string{head + note + "\n", head + note + "\nmore of it\n"} {
-			x := mustRead(t, []byte(rows), "a.csv", Options{})
-			if got := said(x); len(x.Studies) != 2 || !slices.Equal(got, []string{"note F9 A4"}) {
-				t.Errorf("%q: %d studies, findings %q", note, len(x.Studies), got)
-			}
-		}
-	}
-	for _, name := range []string{"Adams 2001", "Notebaert 2003", "A Smith 2004", "Sourced Trial", "Chen"} {
-		x := mustRead(t, []byte(head+name+"\n"), "a.csv", Options{})
-		if got := said(x); len(x.Studies) != 3 || !slices.Equal(got, []string{"error F9 4:4"}) {
-			t.Errorf("%q: %d studies, findings %q", name, len(x.Studies), got)
-		}
-	}
-	x := mustRead(t, []byte("study,estimate,se\n* Adams,1,2\nSource,1,2\n"), "a.csv", Options{})
-	if len(x.Studies) != 2 || len(x.Findings) != 0 {
-		t.Errorf("a row with numbers is no footnote: %+v", x.Findings)
-	}
-}
-
-// TestThousandsPoints wants a count such as "2.000", typed as a text, to be offered
-// as 2 and as 2000, and the numbers of other columns to be read as they stand.
-func TestThousandsPoints(t *testing.T) {
-	x := mustRead(t, []byte("study,events treated,total treated,events control,total control,se\nA,1,2.000,2,3.400,1.234\nB,12,900,1,800,2.000\n"), "a.csv", Options{})
-	if got := said(x); !slices.Equal(got, []string{"warning F3 C:C", "error F3 C2", "error F3 E2"}) {
-		t.Fatalf("findings %q", got)
-	}
-	f := x.Findings[0]
-	if !strings.Contains(f.Message, "part thousands") || !strings.Contains(x.Findings[1].Message, `"2.000" may be 2 (decimal point) or 2000 (thousands point)`) {
-		t.Errorf("messages %q, %q", f.Message, x.Findings[1].Message)
-	}
-	for i, want := range [][]float64{{2, 3.4}, {2000, 3400}} {
-		got := f.Readings[i].Numbers
-		if len(got) != 2 || got[0].Value != want[0] || got[1].Value != want[1] || got[0].Field != review.TotalTreated {
-			t.Errorf("%s: %+v, want %v", f.Readings[i].Label, got, want)
-		}
-	}
-	if se, _ := x.Studies[0].Number(review.StandardError); se.Value != 1.234 {
-		t.Errorf("se %v", se)
-	}
-}
-
-// TestAcceptanceOffered wants an acceptance to be offered where the number can be
-// used, and not where nothing can be made of it; words without a rule are answered
-// by the rules of the row.
-func TestAcceptanceOffered(t *testing.T) {
-	for _, tt := range []struct {
-		rows    table
-		offered string
-	}{
-		{counts([]any{"A", 2002, 3.5, 40, 5, 41}), "C2"},
-		{counts([]any{"A", 2002, 3, 40.5, 5, 41}), "C2"},
-		{means([]any{"A", 1, 2, 30.5, 3, 4, 31}), "C2"},
-		{counts([]any{"Total", 2002, 3, 40, 5, 41}), "F10"},
-		{counts([]any{"Good", 2001, 3, 40, 5, 41}), "D1"},
-		{table{{"study", "events", "total"}, {"A", 3.5, 40}}, ""},
-		{table{{"study", "events treated", "person time treated", "events control", "person time control", "total treated"}, {"A", 50, 90, 5, 80, 40}}, "C1"},
-		{counts([]any{"A", 2002, 42, 40, 5, 41}), ""},
-		{counts([]any{"A", 2002, -1, 40, 5, 41}), ""},
-		{results([]any{"A", 0.5, "", "", "", 0}), ""},
-		{results([]any{"A", 0.5, 1, 0.25}), ""},
-		{means([]any{"A", 1, 0, 30, 3, 4, 31}), ""},
-	} {
-		x := mustRead(t, tt.rows.csv(t), "a.csv", Options{})
-		if len(x.Findings) != 1 {
-			t.Fatalf("findings %q", said(x))
-		}
-		m := x.Findings[0].Message
-		if offers := strings.Contains(m, "accept"); offers != (tt.offered != "") || (offers && !strings.HasSuffix(m, `or accept it by writing "`+tt.offered+` reason" in the accept column`)) {
-			t.Errorf("%q, want an offer of %q", m, tt.offered)
-		}
-	}
-	x := mustRead(t, counts([]any{"Good", 2001, 3, 40, 5, 41, "author confirmed"}, []any{"A", 2002, 3.5, 40, 42, 41, "yes"}, []any{"B", 2002, 3, 40, 5, 41, "yes"}).csv(t), "a.csv", Options{})
-	var notes []string
-	for _, f := range x.Findings {
-		if f.Rule == "F9" {
-			notes = append(notes, f.Message)
-		}
-	}
-	if len(notes) != 3 || !strings.Contains(notes[0], `findings of D1: write such as "D1 author confirmed"`) || !strings.Contains(notes[1], `findings of C2: write such as "C2 yes"`) || !strings.Contains(notes[2], "nothing in the row") {
-		t.Errorf("notes %q", notes)
 	}
 }

@@ -1,6 +1,8 @@
 package ingest
 
 import (
+	"fmt"
+	"math"
 	"slices"
 	"strings"
 
@@ -315,6 +317,19 @@ func (r *headerReader) adoptAnalysisLimits(h *header) {
 		if measure := h.columns[estimate-1].measure; measure.Log() {
 			h.note(c.Place, "F9", "the limits in "+quote(c.Header)+" are read as limits of "+quote(h.columns[estimate-1].Header)+
 				", on the same scale; if they are limits of the ratio itself, give the ratio instead of its logarithm")
+		}
+	}
+}
+
+// noteLevels tells of limits whose header gives another level than the usual one.
+func (h *header) noteLevels() {
+	const usual = 0.95
+	for _, c := range h.columns {
+		if c.level != 0 && c.level != usual {
+			place := c.Place
+			place.Row = 0
+			h.note(place, "I6", fmt.Sprintf("the limits are read as those of a %s%% interval, as the header %s says", shortest(math.Round(c.level*1e8)/1e6), quote(c.Header)))
+			return
 		}
 	}
 }

@@ -36,7 +36,7 @@ func Open(ctx context.Context, path string, o Options) (*review.Extraction, *rev
 	if book.Text {
 		plan, err = grid.Open(ctx, planPath(path))
 		if err != nil && !errors.Is(err, fs.ErrNotExist) {
-			return nil, nil, err
+			return nil, nil, planError(err)
 		}
 	}
 	x, p, err := read(ctx, book, plan, o)
@@ -55,6 +55,18 @@ func Read(ctx context.Context, data []byte, name string, o Options) (*review.Ext
 		return nil, nil, err
 	}
 	return read(ctx, book, nil, o)
+}
+
+// planError says of an empty file what belongs into a plan.
+func planError(err error) error {
+	var file *grid.FileError
+	if errors.As(err, &file) && file.Problem == "is empty" {
+		empty := *file
+		empty.Problem = "the plan beside the sheet is empty"
+		empty.Remedy = "write setting and value above its rows, or delete the file to go without a plan"
+		return &empty
+	}
+	return err
 }
 
 // planPath returns the name of the plan beside a text file: "trials.plan.csv" for

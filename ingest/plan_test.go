@@ -123,3 +123,17 @@ func TestOpenFails(t *testing.T) {
 		t.Errorf("a folder in place of the plan: %v", err)
 	}
 }
+
+// TestEmptyPlanFile says what belongs into the plan, not into the sheet.
+func TestEmptyPlanFile(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "trials.csv")
+	for name, text := range map[string]string{path: "study,y,se\nA,1,1\n", planPath(path): ""} {
+		if err := os.WriteFile(name, []byte(text), 0o600); err != nil {
+			t.Fatal(err)
+		}
+	}
+	_, _, err := Open(context.Background(), path, Options{})
+	if err == nil || err.Error() != "trials.plan.csv: the plan beside the sheet is empty; write setting and value above its rows, or delete the file to go without a plan" {
+		t.Errorf("error %v", err)
+	}
+}

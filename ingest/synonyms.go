@@ -265,13 +265,16 @@ func recognise(header string) (m meaning, ok bool) {
 		return meaning{}, false
 	}
 	phrase, level := fold(header)
-	if phrase == "" || negated.MatchString(header) {
+	if phrase == "" {
 		return meaning{}, false
 	}
 	d := vocabulary()
 	m, ok = d.phrases[phrase]
 	if !ok {
 		m, ok = d.aboutEstimate(phrase)
+	}
+	if ok && negated.MatchString(header) {
+		return meaning{}, false
 	}
 	if ok && (m.field == review.LimitLow || m.field == review.LimitHigh || m.field == review.AnalysisLow || m.field == review.AnalysisHigh) {
 		m.level = level

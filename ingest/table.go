@@ -34,6 +34,7 @@ type roles struct{ name, id, date, outcome, measure, better, accept int }
 func readTable(ctx context.Context, book *grid.Book, sheet *grid.Sheet, h *header) (*review.Extraction, error) {
 	ctx, cancel := grid.Limited(ctx)
 	defer cancel()
+	h.noteLevels()
 	t := &tableReader{book: book, sheet: sheet, header: h, final: map[int]bool{}, x: &review.Extraction{
 		Source:   review.Source{File: book.File, Sheet: sheet.Name, SHA256: book.SHA256},
 		Findings: h.findings,

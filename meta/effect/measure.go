@@ -2,7 +2,11 @@
 // on the analysis scale, as small pure functions, each with its source.
 package effect
 
-import "steelyard/meta/choice"
+import (
+	"strings"
+
+	"steelyard/meta/choice"
+)
 
 // Measure is what an outcome's estimates measure.
 type Measure int
@@ -61,6 +65,15 @@ var measureNames = choice.Of[Measure]("effect measure",
 
 // String returns the measure's name in words, such as "odds ratio".
 func (m Measure) String() string { return measureNames.String(m) }
+
+// WithArticle returns the measure's name after "a" or "an", for sentences.
+func (m Measure) WithArticle() string {
+	name := m.String()
+	if strings.ContainsRune("aeiou", rune(name[0])) {
+		return "an " + name
+	}
+	return "a " + name
+}
 
 // MeasureNames returns the names of all measures.
 func MeasureNames() []string { return measureNames.All() }

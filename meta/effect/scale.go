@@ -96,7 +96,7 @@ func (m Measure) aboveZero() string {
 	if m == Rate {
 		return "a rate is above 0; enter the rate itself, not its logarithm"
 	}
-	return "a " + m.String() + " is above 0; enter the ratio itself, not its logarithm"
+	return m.WithArticle() + " is above 0; enter the ratio itself, not its logarithm"
 }
 
 // scaled names a measure on its analysis scale.

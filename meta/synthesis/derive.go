@@ -194,7 +194,7 @@ func (o *Outcome) derive(rows []*review.Study) []review.Finding {
 			o.Studies = append(o.Studies, study)
 			continue
 		}
-		f := review.Finding{Severity: review.Error, Rule: "I20", Place: row.Row, Study: row.Name, Outcome: o.Name, Message: err.Error()}
+		f := review.Finding{Severity: review.Error, Rule: "I20", Place: d.blame(err), Study: row.Name, Outcome: o.Name, Message: err.Error()}
 		var missing *missingError
 		switch {
 		case errors.Is(err, effect.ErrNothingToCompare):
@@ -257,7 +257,7 @@ func (d *derivation) incomplete() error {
 	case d.has(review.PValue) && !d.hasEstimate():
 		return errors.New("the row has a p-value alone: give the estimate beside it, or the direction of the effect (higher or lower) and the total of people to weigh it as evidence alone")
 	}
-	return errors.New("the row has no complete set of numbers: give an estimate with se or both limits, events and totals of both arms, or means, SDs and totals of both arms")
+	return d.lacking()
 }
 
 // armed gives the values of a step about one arm the names of that arm's

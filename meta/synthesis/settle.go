@@ -72,7 +72,7 @@ func (o *Outcome) measure(asked review.Analysis, rows []*review.Study) (effect.M
 	case effect.Unspecified:
 		o.note("No measure is stated: estimates are pooled as they stand, on a linear scale. State one with --measure if they are ratios.")
 	default:
-		o.note(fmt.Sprintf("No measure is stated: %s are pooled as a %s. Choose another with --measure.", basisWords[basis], suggested))
+		o.note(fmt.Sprintf("No measure is stated: %s are pooled as %s. Choose another with --measure.", basisWords[basis], suggested.WithArticle()))
 	}
 	return suggested, nil
 }

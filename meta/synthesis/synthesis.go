@@ -244,6 +244,7 @@ func runOutcome(x *review.Extraction, plan *review.Plan, name string, blocked ma
 		return o, nil, nil
 	}
 	where := newRowFilter(asked.Where, x.Columns)
+	o.noteUnmatched(x, where)
 	rows := o.rows(x, where, blocked)
 	if err := o.settle(asked, rows); err != nil {
 		o.Problem = err.Error()
