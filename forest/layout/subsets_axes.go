@@ -104,10 +104,9 @@ func (c *subsets) headItems() []Item {
 
 // uprightLine is a line through the panel with the label above it.
 type uprightLine struct {
-	v       float64
-	x       float64
-	label   string
-	noTrial bool // the line of no effect
+	x     float64
+	label string
+	null  bool // the line of no effect
 }
 
 // uprightLines returns the lines of no effect and of the important difference
@@ -116,7 +115,7 @@ func (c *subsets) uprightLines() []uprightLine {
 	var all []uprightLine
 	add := func(v float64, text string, null bool) {
 		if c.axis.holds(v) && (null || v != c.in.Scale.Null) {
-			all = append(all, uprightLine{v: v, x: c.axis.x(v), label: text, noTrial: null})
+			all = append(all, uprightLine{x: c.axis.x(v), label: text, null: null})
 		}
 	}
 	if z := c.in.Important; z != nil {
@@ -138,7 +137,7 @@ func (c *subsets) lineItems() []Item {
 	null := -1
 	for i, l := range lines {
 		line := Line{X1: l.x, Y1: c.ladder.top, X2: l.x, Y2: c.ladder.bottom(), Width: 0.75}
-		if l.noTrial {
+		if l.null {
 			null = i
 		} else {
 			line.Width, line.Dash = 0.6, []float64{3, 2}
