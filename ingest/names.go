@@ -81,13 +81,13 @@ func (t *tableReader) twin(s *review.Study, first int, more []int) (f review.Fin
 	f = review.Finding{Severity: review.Warning, Rule: "D5", Study: s.Name, Place: t.place(s.Row.Row, t.role.name, s.Name)}
 	for _, i := range slices.Concat([]int{first}, more) {
 		before := &t.x.Studies[i]
-		spelled := ""
+		spelled, sameSpelling := "", ""
 		if before.Name != s.Name {
-			spelled = " as " + quote(before.Name)
+			spelled, sameSpelling = " as "+quote(before.Name), ", spelled "+quote(before.Name)+","
 		}
 		if len(s.Numbers) > 0 && sameNumbers(s, before) {
 			f.Severity, f.Rule = review.Error, "D1"
-			f.Message = fmt.Sprintf("the row repeats row %d with the same name%s and numbers, so its people would count twice; take one of them out"+howToAccept("D1"), before.Row.Row, strings.Replace(spelled, " as ", ", spelled ", 1))
+			f.Message = fmt.Sprintf("the row repeats row %d with the same name%s and numbers, so its people would count twice; take one of them out"+howToAccept("D1"), before.Row.Row, sameSpelling)
 			return f, true
 		}
 		if !found && !t.armRows && !datesDiffer(s.Date, before.Date) {
