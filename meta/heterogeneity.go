@@ -40,6 +40,20 @@ func (p *Pooler) heterogeneity(limits Limits) Heterogeneity {
 	}
 }
 
+// HeterogeneityOf returns what a statistic q on df degrees of freedom says of
+// scatter by itself, with limits of I² by Q at a level: what needs sampling
+// variances, I² and H² by τ², is 0. With df below 1 nothing can scatter.
+func HeterogeneityOf(q float64, df int, level float64) Heterogeneity {
+	if df < 1 {
+		return Heterogeneity{H2: 1}
+	}
+	return Heterogeneity{
+		Q: q, DF: df, LnP: min(0, numeric.LogChiSquareTail(q, float64(df))),
+		I2Q: shareByQ(q, df+1, level), H2: q / float64(df),
+		Evidence: evidence.ChiSquare(q, float64(df)),
+	}
+}
+
 // shareByQ returns I² = (Q − df)/Q, not below 0, with the limits that follow
 // from H = √(Q/df), not below 1, by exp(ln H ± z·se), where
 //

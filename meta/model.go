@@ -186,9 +186,12 @@ type Mean struct {
 	location evidence.Location // what Location returns
 }
 
-// Fit is a pooled result with all that belongs beside it.
+// Fit is a pooled result with all that belongs beside it. A method that pools
+// counts and not pairs fills in what it has: no Predictors, no Prediction, limits
+// of τ² from 0 to +Inf where it has none.
 type Fit struct {
-	Model         Model // as resolved: the methods really used
+	Method        string // blank for the inverse variances of this package, else the method's own name
+	Model         Model  // as resolved: the methods really used
 	Mean          Mean
 	Tau2          Limits // of τ² by the model's TauInterval, also beside a common effect
 	Heterogeneity Heterogeneity
@@ -201,7 +204,8 @@ type Fit struct {
 // Limits is an interval.
 type Limits struct{ Low, High float64 }
 
-// Heterogeneity measures how the estimates scatter.
+// Heterogeneity measures how the estimates scatter. Where no sampling variances
+// were pooled Typical is 0, and I2Tau and H2Tau say nothing; see HeterogeneityOf.
 type Heterogeneity struct {
 	Q        float64
 	DF       int

@@ -142,6 +142,13 @@ func allFinite(numbers ...float64) bool {
 	return true
 }
 
+// Located returns the mean with the location that Location is to return: that of
+// a method whose evidence is not taken at (Estimate − Null)/SE.
+func (m Mean) Located(l evidence.Location) Mean {
+	m.location = l
+	return m
+}
+
 // Location returns the estimate as evidence about regions needs it. Its standard
 // error is the interval's own, so that (Estimate − Null)/SE is the Statistic,
 // beside Wald and Hartung–Knapp. Profile likelihood and Henmi–Copas have no

@@ -3,6 +3,7 @@ package sparse
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"steelyard/meta"
 	"steelyard/meta/choice"
@@ -142,6 +143,7 @@ func (m Model) fit(tables []effect.Table, whole bool) (*Result, error) {
 		return nil, err
 	}
 	r.Mean.K, r.Tally = len(used), tally
+	r.Mean = r.Mean.Located(r.Location)
 	r.Weights = tally.spread(r.Weights)
 	if !r.finite() {
 		return nil, &SettingError{Problem: fmt.Sprintf("null %v lies too far from the estimate to be compared with it: correct it", m.Null)}
@@ -169,17 +171,12 @@ func (m Model) resolve() (Model, error) {
 		_, err := meta.ParseEffects(m.Effects.String())
 		return m, err
 	}
-	valid := []effect.Measure{effect.OddsRatio}
-	if m.Method == MantelHaenszel {
-		valid = []effect.Measure{effect.OddsRatio, effect.RiskRatio, effect.RiskDifference}
-	}
-	for _, measure := range valid {
-		if m.Measure == measure {
-			if m.Method != BinomialNormal {
-				m.Effects = meta.CommonEffect
-			}
-			return m, nil
+	valid := m.Method.Measures()
+	if slices.Contains(valid, m.Measure) {
+		if !m.Method.Random() {
+			m.Effects = meta.CommonEffect
 		}
+		return m, nil
 	}
 	return m, &effect.MeasureError{Measure: m.Measure, From: "2×2 tables by " + m.Method.String(), Valid: valid}
 }
