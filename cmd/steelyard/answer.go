@@ -91,6 +91,7 @@ func (p *page) outcome(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	if o.Result == nil {
 		p.wrapped("", "No result: "+o.Problem)
 		p.pValues(o)
+		p.methods(s, o)
 		return
 	}
 	fit := o.Result.Fit
@@ -107,6 +108,7 @@ func (p *page) outcome(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	p.pValues(o)
 	p.regions(o)
 	p.remarks(o)
+	p.methods(s, o)
 }
 
 func heading(s *synthesis.Synthesis, o *synthesis.Outcome) string {

@@ -9,6 +9,9 @@ import (
 	"steelyard/meta/synthesis"
 )
 
+// flagAllMethods asks pool for a comparison of methods.
+const flagAllMethods = "all-methods"
+
 func poolCommand() *cli.Command {
 	return &cli.Command{
 		Name:      "pool",
@@ -17,7 +20,10 @@ func poolCommand() *cli.Command {
 		Description: "FILE is a workbook (.xlsx) or a text file (.csv, .tsv); - reads text from standard input.\n" +
 			"One row per study and outcome. A sheet named \"plan\", or NAME.plan.csv beside a text file,\n" +
 			"holds settings; flags go before it.",
-		Flags:  slices.Concat(sheetFlags(), settingFlags("pool"), []cli.Flag{formatFlag()}, outputFlags()),
+		Flags: slices.Concat(sheetFlags(), settingFlags("pool"), []cli.Flag{
+			&cli.BoolFlag{Name: flagAllMethods, Usage: "besides, the results of all methods for counts and all zero-cell corrections side by side, and which are apt here"},
+			formatFlag(),
+		}, outputFlags()),
 		Action: pool,
 	}
 }
@@ -27,7 +33,7 @@ func pool(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	s, err := analyse(c, synthesis.Want{})
+	s, err := analyse(c, synthesis.Want{Methods: c.Bool(flagAllMethods)})
 	if err != nil {
 		return err
 	}

@@ -105,7 +105,7 @@ func TestPoolReference(t *testing.T) {
 			compare("steps", o.Pooled.Steps, w.HartungKnappFloor.Steps, iterative)
 			compare("tau2", o.Tau.Tau2, want.Tau2[name], iterative)
 			compare("tau2 low", o.Tau.Low, want.Limits[0], iterative)
-			compare("tau2 high", o.Tau.High, want.Limits[1], iterative)
+			compare("tau2 high", *o.Tau.High, want.Limits[1], iterative)
 			compare("Q", o.Heterogeneity.Q, want.Q, 1e-9)
 			compare("Q p", o.Heterogeneity.P, want.QP, 1e-9)
 			compare("Q evidence", o.Heterogeneity.LnEvidence, want.LnChi2, 1e-9)
@@ -152,7 +152,7 @@ func TestPoolDemo(t *testing.T) {
 		{"p", o.Pooled.P, 0.003717543135705264},
 		{"ln evidence", o.Pooled.LnEvidence, 3.3618636556020753},
 		{"tau", math.Sqrt(o.Tau.Tau2), 0.13457403179249472},
-		{"tau high", math.Sqrt(o.Tau.High), 0.47984032225013},
+		{"tau high", math.Sqrt(*o.Tau.High), 0.47984032225013},
 		{"Q", o.Heterogeneity.Q, 10.923071305294467},
 		{"I²", o.Heterogeneity.I2Tau.Value, 0.2908843220227741},
 		{"I² high", o.Heterogeneity.I2Tau.High, 0.8391051301052189},

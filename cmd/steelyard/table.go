@@ -23,6 +23,12 @@ const (
 // table writes rows under their heads, each column as wide as its widest cell.
 // Names in the first column are cut to fit, in the rows themselves.
 func (p *page) table(columns []column, rows [][]string) {
+	p.tableNamed(columns, rows, narrowestName, widestName)
+}
+
+// tableNamed is table with the first column cut to widest, and further, down to
+// narrowest, where that is needed.
+func (p *page) tableNamed(columns []column, rows [][]string, narrowest, widest int) {
 	widths := make([]int, len(columns))
 	for i, c := range columns {
 		widths[i] = width(c.head)
@@ -34,7 +40,7 @@ func (p *page) table(columns []column, rows [][]string) {
 		}
 		total += widths[i] + 2
 	}
-	name := min(widestName, max(narrowestName, widths[0]-max(0, total-answerWidth)))
+	name := min(widest, max(narrowest, widths[0]-max(0, total-answerWidth)))
 	widths[0] = max(width(columns[0].head), min(widths[0], name))
 	for _, row := range rows {
 		row[0] = cut(row[0], widths[0])

@@ -117,6 +117,9 @@ func effectsText(o *synthesis.Outcome) string {
 
 // refitText is the method of each refit.
 func refitText(fit *meta.Fit) string {
+	if fit.Method != "" {
+		return words.Model(fit)
+	}
 	method := "common effect"
 	if fit.Model.Effects == meta.RandomEffects {
 		method = words.TauMethod(fit.Model.Tau)

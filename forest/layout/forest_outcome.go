@@ -193,6 +193,9 @@ func forestSpread(fit *meta.Fit, noun string) (*ForestPrediction, *ForestSpread)
 		Tau: math.Sqrt(fit.Mean.Tau2), Low: math.Sqrt(fit.Tau2.Low), High: math.Sqrt(fit.Tau2.High),
 		HasLimits: !math.IsInf(fit.Tau2.High, 1),
 	}
+	if fit.Method != "" {
+		return nil, spread
+	}
 	if fit.Prediction == nil {
 		return &ForestPrediction{Reason: "needs 3 " + noun}, spread
 	}
@@ -204,10 +207,31 @@ func forestNotes(o *synthesis.Outcome) []Note {
 	if text := daggerNote(o); text != "" {
 		notes[0].Text += " † " + text
 	}
+	if text := zeroCellNote(o); text != "" {
+		notes[0].Text += " " + text
+	}
 	if len(o.Excluded) > 0 {
 		notes = append(notes, Note{Head: "Left out", Text: leftOutNote(o)})
 	}
 	return notes
+}
+
+// zeroCellNote says, beside a method that pools counts as they are, whose own
+// estimate is drawn with a correction.
+func zeroCellNote(o *synthesis.Outcome) string {
+	var names []string
+	for i := range o.Studies {
+		if o.Studies[i].Corrected && o.Studies[i].Table != nil && o.Result.Fit.Method != "" {
+			names = append(names, o.Studies[i].Source.Name)
+		}
+	}
+	if len(names) == 0 {
+		return ""
+	}
+	if more := len(names) - mostLeftOut; more > 0 {
+		names = append(names[:mostLeftOut], fmt.Sprintf("%d more", more))
+	}
+	return fmt.Sprintf("Drawn with a zero-cell correction that the pooled result does not have: %s.", strings.Join(names, ", "))
 }
 
 // mostLeftOut is how many left-out rows a chart names.

@@ -1,9 +1,12 @@
 package words
 
 import (
+	"fmt"
+
 	"steelyard/meta"
 	"steelyard/meta/evidence"
 	"steelyard/meta/review"
+	"steelyard/meta/sparse"
 	"steelyard/meta/synthesis"
 )
 
@@ -37,7 +40,13 @@ func IntervalMethod(m meta.IntervalMethod) string {
 // single study "its own result: there is nothing to pool".
 func Model(fit *meta.Fit) string {
 	if fit.Mean.K == 1 {
+		if method, err := sparse.ParseMethod(fit.Method); err == nil {
+			return fmt.Sprintf("its own result by %s: there is nothing to pool", method)
+		}
 		return "its own result: there is nothing to pool"
+	}
+	if text := tableModel(fit); text != "" {
+		return text
 	}
 	model := "common effect"
 	if fit.Model.Effects == meta.RandomEffects {
@@ -48,6 +57,36 @@ func Model(fit *meta.Fit) string {
 		return model + "; " + IntervalMethod(fit.Model.Interval) + ", evidence in the Student-t form"
 	}
 	return model + "; " + IntervalMethod(fit.Model.Interval) + ", evidence matched to it"
+}
+
+// tableModel is Model for a fit by a method for 2×2 tables; blank for another.
+func tableModel(fit *meta.Fit) string {
+	switch method, err := sparse.ParseMethod(fit.Method); {
+	case err != nil:
+		return ""
+	case method == sparse.MantelHaenszel:
+		return "common effect by Mantel–Haenszel; Wald interval, evidence matched to it"
+	case method == sparse.Peto:
+		return "common effect by Peto's observed minus expected events; Wald interval, evidence matched to it"
+	case method == sparse.ConditionalExact:
+		return "common effect by exact conditional likelihood; exact interval, evidence from the likelihood ratio"
+	case fit.Model.Effects == meta.RandomEffects:
+		return "random effects by the binomial–normal model, maximum likelihood; profile-likelihood interval, evidence matched to it"
+	}
+	return "common effect by the binomial model with an intercept for each study; profile-likelihood interval, evidence matched to it"
+}
+
+// Method returns a pooling method's name with its effects: "inverse variance,
+// random effects", "Peto, common effect".
+func Method(m review.Method, effects meta.Effects) string {
+	name := map[review.Method]string{
+		review.InverseVariance: "inverse variance", review.MantelHaenszel: "Mantel–Haenszel", review.Peto: "Peto",
+		review.ConditionalExact: "conditional exact", review.BinomialNormal: "binomial–normal",
+	}[m]
+	if method, isTables := m.Tables(); isTables && !method.Random() {
+		return name
+	}
+	return name + ", " + effects.String()
 }
 
 // Noun returns what the sheet calls its rows, for n of them: "trial" where its

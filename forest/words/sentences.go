@@ -9,6 +9,7 @@ import (
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
 	"steelyard/meta/numeric"
+	"steelyard/meta/sparse"
 	"steelyard/meta/synthesis"
 )
 
@@ -140,9 +141,16 @@ func degrees(df float64) string {
 // its degrees of freedom.
 func Scatter(fit *meta.Fit) string {
 	h := fit.Heterogeneity
+	if h.DF < 1 {
+		return "not measured: fewer than two tables have an odds of their own to differ in"
+	}
 	k := Count(h.DF + 1)
 	ratio := h.Evidence.Ln()
-	test := fmt.Sprintf("Q = %s on %s df, %s", Linear(h.Q, 2), Count(h.DF), PValue(h.LnP))
+	statistic := "Q"
+	if method, err := sparse.ParseMethod(fit.Method); err == nil && (method == sparse.ConditionalExact || method == sparse.BinomialNormal) {
+		statistic = "likelihood ratio χ²"
+	}
+	test := fmt.Sprintf("%s = %s on %s df, %s", statistic, Linear(h.Q, 2), Count(h.DF), PValue(h.LnP))
 	switch {
 	case math.Abs(math.Expm1(math.Abs(ratio))) <= even:
 		return fmt.Sprintf("%s; %s unrelated effects and one common effect fit alike", test, k)
@@ -155,10 +163,27 @@ func Scatter(fit *meta.Fit) string {
 // Spread returns τ with its limits and the share of the scatter that it makes up:
 // "τ 0.13 (0 to 0.48); I² 25% (0% to 81%) of the scatter is beyond chance".
 func Spread(fit *meta.Fit) string {
+	if fit.Method != "" {
+		return tableSpread(fit)
+	}
 	i2 := fit.Heterogeneity.I2Tau
 	return fmt.Sprintf("τ %s; I² %s (%s to %s) by τ, %s by Q",
 		WithInterval(Tau(math.Sqrt(fit.Mean.Tau2)), Tau(math.Sqrt(fit.Tau2.Low)), Tau(math.Sqrt(fit.Tau2.High))),
 		Percent(i2.Value), Percent(i2.Low), Percent(i2.High), Percent(fit.Heterogeneity.I2Q.Value))
+}
+
+// tableSpread is Spread for counts, which have no sampling variances that τ² could
+// be a share beside.
+func tableSpread(fit *meta.Fit) string {
+	limits := "; no upper limit"
+	if !math.IsInf(fit.Tau2.High, 1) {
+		limits = fmt.Sprintf(" (%s)", Interval(Tau(math.Sqrt(fit.Tau2.Low)), Tau(math.Sqrt(fit.Tau2.High))))
+	}
+	text := "τ " + Tau(math.Sqrt(fit.Mean.Tau2)) + limits
+	if h := fit.Heterogeneity; h.DF > 0 {
+		text += fmt.Sprintf("; I² %s by the heterogeneity beside a common effect", Percent(h.I2Q.Value))
+	}
+	return text
 }
 
 // Doubter says for whom the evidence is not enough: "a doubter who starts below 40%

@@ -126,6 +126,7 @@ type Analysis struct {
 	MeasureSet bool
 	Better     Better
 	Method     Method
+	EffectsSet bool
 	Model      meta.Model // Null is not yet on the analysis scale: see NullGiven
 	Null       *float64   // in the reader's unit; nil for the measure's own
 	Important  []float64  // in the reader's unit; one or two values, or nil
@@ -156,6 +157,7 @@ func (p *Plan) Analysis(outcome string) (Analysis, error) {
 		return err
 	})
 	read(SettingEffects, func(t string) (err error) { a.Model.Effects, err = meta.ParseEffects(t); return err })
+	a.EffectsSet = p.Value(SettingEffects, outcome).From != FromDefault
 	read(SettingMethod, func(t string) (err error) { a.Method, err = ParseMethod(t); return err })
 	read(SettingTau, func(t string) (err error) { a.Model.Tau, err = meta.ParseTau(t); return err })
 	read(SettingInterval, func(t string) (err error) { a.Model.Interval, err = meta.ParseInterval(t); return err })

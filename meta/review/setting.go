@@ -11,6 +11,7 @@ import (
 	"steelyard/meta/choice"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
+	"steelyard/meta/sparse"
 )
 
 // Setting describes one setting of an analysis. Flags, the plan reader, help
@@ -54,9 +55,10 @@ func Settings() []Setting { return slices.Clone(settings) }
 
 var settings = []Setting{
 	choiceSetting(SettingMeasure, effect.MeasureNames(), "", "what the estimates measure; ratios are pooled as logarithms").
-		unless("from the sheet; for counts risk ratio, for means mean difference"),
-	choiceSetting(SettingEffects, meta.EffectsNames(), meta.RandomEffects.String(), "whether the studies' true effects vary around a mean or are one common effect"),
-	choiceSetting(SettingMethod, MethodNames(), InverseVariance.String(), "how studies are weighted"),
+		unless("from the sheet; for counts risk ratio, or odds ratio by a method for them; for means mean difference"),
+	choiceSetting(SettingEffects, meta.EffectsNames(), meta.RandomEffects.String(), "whether the studies' true effects vary around a mean or are one common effect").
+		unless("common for mantel-haenszel, peto and conditional-exact"),
+	choiceSetting(SettingMethod, MethodNames(), InverseVariance.String(), "how studies are weighted and combined; all but the first pool events and totals as counted"),
 	choiceSetting(SettingTau, meta.TauNames(), meta.RestrictedML.String(), "estimator of the variance τ² between studies").
 		unless("maximum-likelihood beside profile-likelihood, dersimonian-laird beside henmi-copas"),
 	choiceSetting(SettingInterval, meta.IntervalNames(), meta.HartungKnappFloor.String(), "interval and p-value of the mean effect; the evidence agrees with it").
@@ -120,10 +122,22 @@ func (s Setting) of(command string) Setting   { s.Needs = command; return s }
 // Method is how studies are weighted and combined.
 type Method int
 
-// InverseVariance weights by the inverse of each study's variance.
-const InverseVariance Method = iota
+// InverseVariance weights by the inverse of each study's variance; the others pool
+// the counts of 2×2 tables.
+const (
+	InverseVariance Method = iota
+	MantelHaenszel
+	Peto
+	ConditionalExact
+	BinomialNormal
+)
 
-var methodNames = choice.Of[Method]("pooling method", "inverse-variance")
+var methodNames = choice.Of[Method]("pooling method", slices.Insert(sparse.MethodNames(), 0, "inverse-variance")...)
+
+// Tables returns the method as one for 2×2 tables; ok is false for InverseVariance.
+func (m Method) Tables() (method sparse.Method, ok bool) {
+	return sparse.Method(m - MantelHaenszel), m != InverseVariance
+}
 
 // String returns the method's name.
 func (m Method) String() string { return methodNames.String(m) }

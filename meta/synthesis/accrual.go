@@ -9,6 +9,7 @@ import (
 	"steelyard/meta/choice"
 	"steelyard/meta/evidence"
 	"steelyard/meta/review"
+	"steelyard/meta/sparse"
 )
 
 // Accrual says how an outcome's evidence came about: step by step, without each
@@ -48,10 +49,10 @@ func (w Want) accrual() bool {
 
 // refit returns what pools any part of the outcome's studies by its method.
 func (o *Outcome) refit() (meta.Refit, error) {
-	y, s := make([]float64, len(o.Studies)), make([]float64, len(o.Studies))
-	for i, study := range o.Studies {
-		y[i], s[i] = study.Estimate.Y, study.Estimate.SE
+	if _, isTables := o.Analysis.Method.Tables(); isTables {
+		return sparse.NewTables(o.tableModel(o.Analysis.Model), tablesOf(o.Studies))
 	}
+	y, s := estimates(o.Studies)
 	return meta.NewPairs(o.Analysis.Model, y, s)
 }
 

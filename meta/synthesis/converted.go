@@ -96,8 +96,7 @@ func (o *Outcome) withoutConverted() *meta.Fit {
 	if len(rest) == 0 || len(rest) == len(o.Studies) {
 		return nil
 	}
-	y, s := estimates(rest)
-	fit, err := o.Analysis.Model.Fit(y, s)
+	fit, err := o.fit(o.Analysis.Model, rest)
 	if err != nil {
 		return nil
 	}

@@ -101,7 +101,9 @@ func only(measures ...effect.Measure) func(*derivation) bool {
 type derivation struct {
 	row         *review.Study
 	measure     effect.Measure // of the outcome
+	method      review.Method
 	correction  effect.Correction
+	counts      *effect.Table // of an effect that is that of the row's counts as they stand
 	steps       []effect.Conversion
 	assumptions []string
 	findings    []review.Finding
@@ -180,7 +182,7 @@ func (d *derivation) choose() (kind, bool) {
 func (o *Outcome) derive(rows []*review.Study) []review.Finding {
 	var findings []review.Finding
 	for _, row := range rows {
-		d := &derivation{row: row, measure: o.Analysis.Measure, correction: o.Analysis.Correction}
+		d := &derivation{row: row, measure: o.Analysis.Measure, method: o.Analysis.Method, correction: o.Analysis.Correction}
 		study, err := d.study()
 		findings = append(findings, d.findings...)
 		switch {
@@ -196,9 +198,14 @@ func (o *Outcome) derive(rows []*review.Study) []review.Finding {
 		}
 		f := review.Finding{Severity: review.Error, Rule: "I20", Place: d.blame(err), Study: row.Name, Outcome: o.Name, Message: err.Error()}
 		var missing *missingError
+		var left *leftByMethodError
 		switch {
 		case errors.Is(err, effect.ErrNothingToCompare):
 			f.Severity, f.Rule = review.Note, "C8"
+			o.Silent = append(o.Silent, row)
+		case errors.As(err, &left):
+			o.exclude(row, left.reason)
+			continue
 		case errors.As(err, &missing):
 			f.Rule, f.Readings = missing.rule, missing.readings
 		}
@@ -219,6 +226,9 @@ func (d *derivation) study() (Study, error) {
 	if k.basis == FromPValue {
 		return study, nil
 	}
+	if err := d.needsCounts(k.basis); err != nil {
+		return study, err
+	}
 	e, err := k.derive(d)
 	if err != nil {
 		return study, err
@@ -230,6 +240,9 @@ func (d *derivation) study() (Study, error) {
 		if e, err = d.clustered(e); err != nil {
 			return study, err
 		}
+	}
+	if k.basis == FromCounts {
+		study.Table = d.counts
 	}
 	study.Estimate, study.Conversions, study.Assumptions = e, d.steps, d.assumptions
 	study.Corrected = slices.ContainsFunc(d.steps, func(c effect.Conversion) bool { return c.Added })

@@ -30,6 +30,9 @@ func (d *derivation) fromTable(m effect.Measure) (effect.Estimate, error) {
 		return effect.Estimate{}, err
 	}
 	vouched := d.row.AcceptedReason("C2") != "" && !d.table().Whole()
+	if err := d.keepsCounts(vouched || adjust); err != nil {
+		return effect.Estimate{}, err
+	}
 	switch {
 	case vouched && adjust:
 		return effect.Estimate{}, errors.New("the counts are no whole numbers and are accepted as corrected already, but the row also asks to divide them by a design effect; write yes under adjusted, or the counts as reported")
@@ -41,7 +44,7 @@ func (d *derivation) fromTable(m effect.Measure) (effect.Estimate, error) {
 		d.assume("counts that are no whole numbers, accepted by the reviewers")
 		return d.made(effect.FromEffectiveTable(m, counts, d.correction))
 	case !adjust:
-		return d.made(effect.FromTable(m, d.table(), d.correction))
+		return d.ownEstimate(m)
 	}
 	effective, step, err := effect.ClusterTable(d.table(), factor)
 	if err != nil {

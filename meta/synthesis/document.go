@@ -80,7 +80,9 @@ type OutcomeDocument struct {
 	Notes        []string             `json:"notes,omitempty"`
 	Excluded     []ExcludedDocument   `json:"excluded"`
 	Conversions  []ConversionDocument `json:"conversions"`
+	Silent       *SilentDocument      `json:"without_information,omitempty"`
 	POnly        *POnlyDocument       `json:"p_only,omitempty"`
+	Methods      *MethodsDocument     `json:"methods,omitempty"`
 	*ResultDocument
 	Studies []StudyDocument `json:"studies"`
 }
@@ -106,6 +108,13 @@ type ExcludedDocument struct {
 	Study  string `json:"study"`
 	Cell   string `json:"cell"`
 	Reason string `json:"reason"`
+}
+
+// SilentDocument counts the studies whose tables carry nothing about a ratio: all
+// or nobody in both arms had the event. They are among the excluded.
+type SilentDocument struct {
+	Studies      int `json:"studies"`
+	Participants int `json:"participants"`
 }
 
 // ConversionDocument is one step from extracted numbers to an effect.
@@ -198,22 +207,25 @@ type DisplayDocument struct {
 	Unit     string   `json:"unit"`
 }
 
-// TauDocument is the between-study variance with its limits.
+// TauDocument is the between-study variance with its limits; an upper one that is
+// absent is infinite.
 type TauDocument struct {
-	Tau2 float64 `json:"tau2"`
-	Low  float64 `json:"tau2_low"`
-	High float64 `json:"tau2_high"`
+	Tau2 float64  `json:"tau2"`
+	Low  float64  `json:"tau2_low"`
+	High *float64 `json:"tau2_high,omitempty"`
 }
 
-// HeterogeneityDocument says how the estimates scatter.
+// HeterogeneityDocument says how the estimates scatter. Statistic is named beside
+// methods for counts, which have no sampling variances and so no shares by τ².
 type HeterogeneityDocument struct {
-	Q     float64       `json:"q"`
-	DF    int           `json:"df"`
-	P     float64       `json:"p"`
-	I2Q   ShareDocument `json:"i2_q"`
-	I2Tau ShareDocument `json:"i2_tau"`
-	H2    float64       `json:"h2"`
-	H2Tau float64       `json:"h2_tau"`
+	Statistic string         `json:"statistic,omitempty"`
+	Q         float64        `json:"q"`
+	DF        int            `json:"df"`
+	P         float64        `json:"p"`
+	I2Q       ShareDocument  `json:"i2_q"`
+	I2Tau     *ShareDocument `json:"i2_tau,omitempty"`
+	H2        float64        `json:"h2"`
+	H2Tau     *float64       `json:"h2_tau,omitempty"`
 	EvidenceDocument
 }
 

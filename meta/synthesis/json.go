@@ -7,6 +7,7 @@ import (
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
 	"steelyard/meta/review"
+	"steelyard/meta/sparse"
 )
 
 // Format names the version of the JSON.
@@ -67,7 +68,10 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 	for _, e := range o.Excluded {
 		d.Excluded = append(d.Excluded, ExcludedDocument{Study: e.Study, Cell: firstCell(e.Place), Reason: e.Reason})
 	}
-	d.POnly = o.PValues.document()
+	d.POnly, d.Methods = o.PValues.document(), o.Methods.document()
+	if len(o.Silent) > 0 {
+		d.Silent = &SilentDocument{Studies: len(o.Silent), Participants: o.Counts.Silent}
+	}
 	if o.Result == nil {
 		return d
 	}
@@ -208,9 +212,9 @@ func (o *Outcome) resultDocument(plan *review.Plan) *ResultDocument {
 	}
 	if fit.Mean.K > 1 {
 		if fit.Model.Effects == meta.RandomEffects {
-			d.Tau = &TauDocument{Tau2: fit.Mean.Tau2, Low: fit.Tau2.Low, High: fit.Tau2.High}
+			d.Tau = &TauDocument{Tau2: fit.Mean.Tau2, Low: fit.Tau2.Low, High: finite(fit.Tau2.High)}
 		}
-		d.Heterogeneity = heterogeneityDocument(fit.Heterogeneity)
+		d.Heterogeneity = heterogeneityDocument(fit)
 	}
 	if p := fit.Prediction; p != nil {
 		d.Prediction = &PredictionDocument{Low: p.Low, High: p.High, DF: finite(p.DF), Method: p.Method.String(), Widened: p.Widened}
@@ -239,19 +243,30 @@ func (r Region) document() RegionDocument {
 	return d
 }
 
-func heterogeneityDocument(h meta.Heterogeneity) *HeterogeneityDocument {
-	return &HeterogeneityDocument{
-		Q: h.Q, DF: h.DF, P: math.Exp(h.LnP),
-		I2Q: ShareDocument(h.I2Q), I2Tau: ShareDocument(h.I2Tau),
-		H2: h.H2, H2Tau: h.H2Tau, EvidenceDocument: evidenceDocument(h.Evidence),
+// heterogeneityDocument is nil where fewer than two tables can differ.
+func heterogeneityDocument(fit *meta.Fit) *HeterogeneityDocument {
+	h := fit.Heterogeneity
+	if h.DF < 1 {
+		return nil
 	}
+	d := &HeterogeneityDocument{
+		Q: h.Q, DF: h.DF, P: math.Exp(h.LnP),
+		I2Q: ShareDocument(h.I2Q), H2: h.H2, EvidenceDocument: evidenceDocument(h.Evidence),
+	}
+	if fit.Method != "" {
+		d.Statistic = scatterName(fit)
+		return d
+	}
+	share := ShareDocument(h.I2Tau)
+	d.I2Tau, d.H2Tau = &share, &h.H2Tau
+	return d
 }
 
 func (o *Outcome) pooledDocument(fit *meta.Fit) PooledDocument {
 	m := fit.Mean
 	d := PooledDocument{
-		Effects: fit.Model.Effects.String(), Method: review.InverseVariance.String(),
-		Interval: fit.Model.Interval.String(), Level: fit.Model.Level, Null: &fit.Model.Null,
+		Effects: fit.Model.Effects.String(), Method: o.Analysis.Method.String(),
+		Interval: intervalName(fit), Level: fit.Model.Level, Null: &fit.Model.Null,
 		MeanDocument: meanDocument(m),
 		EvidenceFormDocument: &EvidenceFormDocument{
 			Evidence: fit.Model.Evidence.String(), EvidenceDocument: evidenceDocument(m.Evidence),
@@ -271,6 +286,14 @@ func (o *Outcome) pooledDocument(fit *meta.Fit) PooledDocument {
 		d.Null, d.TestDocument, d.EvidenceFormDocument = nil, nil, nil
 	}
 	return d
+}
+
+// intervalName names the interval of a fit.
+func intervalName(fit *meta.Fit) string {
+	if fit.Method == sparse.ConditionalExact.String() {
+		return "exact"
+	}
+	return fit.Model.Interval.String()
 }
 
 func meanDocument(m meta.Mean) MeanDocument {

@@ -1,6 +1,7 @@
 package synthesis
 
 import (
+	"errors"
 	"fmt"
 	"math"
 
@@ -8,16 +9,16 @@ import (
 	"steelyard/meta/evidence"
 	"steelyard/meta/numeric"
 	"steelyard/meta/review"
+	"steelyard/meta/sparse"
 )
 
 // pool fits the model and what stands beside it.
 func (o *Outcome) pool(asked review.Analysis) error {
-	y, s := estimates(o.Studies)
-	fit, err := o.Analysis.Model.Fit(y, s)
+	fit, err := o.fit(o.Analysis.Model, o.Studies)
 	if err != nil {
 		return o.explain(err)
 	}
-	o.Result = &Result{Fit: fit, Other: otherFit(asked.Model, fit.Model.Null, y, s), Without: o.withoutConverted()}
+	o.Result = &Result{Fit: fit, Other: o.otherFit(asked.Model, fit.Model.Null), Without: o.withoutConverted()}
 	o.Analysis.Model = fit.Model
 	for i := range o.Studies {
 		study := &o.Studies[i]
@@ -44,8 +45,13 @@ func estimates(studies []Study) (y, s []float64) {
 	return y, s
 }
 
-// explain names the study that a model's complaint is about.
+// explain names the study that a model's complaint is about, and words what is
+// known of an estimate that is no number.
 func (o *Outcome) explain(err error) error {
+	var boundary *sparse.BoundaryError
+	if errors.As(err, &boundary) {
+		return o.explainBoundary(boundary)
+	}
 	if input, ok := err.(*meta.InputError); ok && input.Index >= 0 && input.Index < len(o.Studies) {
 		row := o.Studies[input.Index].Source
 		return fmt.Errorf("%s (%s): %w", row.Name, row.Row, err)
@@ -55,9 +61,9 @@ func (o *Outcome) explain(err error) error {
 
 // otherFit returns the fit of the effects model that was not asked for, with the
 // default methods where the asked ones belong to the other model; nil for a
-// single study, where both are the same.
-func otherFit(asked meta.Model, null float64, y, s []float64) *meta.Fit {
-	if len(y) < 2 {
+// single study, where both are the same, and where the method has one alone.
+func (o *Outcome) otherFit(asked meta.Model, null float64) *meta.Fit {
+	if method, isTables := o.Analysis.Method.Tables(); len(o.Studies) < 2 || (isTables && !method.Random()) {
 		return nil
 	}
 	other := asked
@@ -70,7 +76,7 @@ func otherFit(asked meta.Model, null float64, y, s []float64) *meta.Fit {
 	if asked.Interval == meta.ProfileLikelihood || asked.Interval == meta.HenmiCopas {
 		other.Tau = meta.DefaultTau
 	}
-	fit, err := other.Fit(y, s)
+	fit, err := o.fit(other, o.Studies)
 	if err != nil {
 		return nil
 	}

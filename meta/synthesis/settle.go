@@ -20,9 +20,13 @@ func (o *Outcome) settle(asked review.Analysis, rows []*review.Study) error {
 	o.Analysis = Analysis{
 		Measure:    measure,
 		Better:     o.better(asked.Better, rows),
+		Method:     asked.Method,
 		Model:      asked.Model,
 		Prior:      asked.Prior,
 		Correction: asked.Correction,
+	}
+	if err := o.settleMethod(asked); err != nil {
+		return err
 	}
 	if !measure.HasNull() && asked.Null == nil {
 		o.Analysis.NullMissing = true
@@ -66,6 +70,10 @@ func (o *Outcome) measure(asked review.Analysis, rows []*review.Study) (effect.M
 	case 0:
 	default:
 		return 0, fmt.Errorf("the rows state different measures: %s; pool one measure at a time, or choose with --measure where the numbers allow it", strings.Join(names, ", "))
+	}
+	if method, isTables := asked.Method.Tables(); isTables {
+		o.note(fmt.Sprintf("No measure is stated: counts are pooled as an %s, which %s gives. Choose another with --measure where the method allows it.", method.Measures()[0], method))
+		return method.Measures()[0], nil
 	}
 	suggested, basis := suggestion(rows)
 	switch suggested {

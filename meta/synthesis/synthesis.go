@@ -24,6 +24,7 @@ type Want struct {
 	LeaveOneOut bool
 	Influence   bool
 	Subsets     *SubsetsWanted // nil: not wanted
+	Methods     bool           // all methods for counts side by side
 	Below       *float64       // steps under which the tipping set brings the evidence; nil: not wanted
 	Work        meta.Work      // how all this is done; its progress starts anew with each part
 }
@@ -47,11 +48,13 @@ type Outcome struct {
 	Counts   Counts
 	Studies  []Study // pooled, in the order of the sheet
 	Excluded []Excluded
-	PValues  *PValues // studies weighed by their p-value alone; nil if there is none
-	Result   *Result  // nil when nothing could be pooled; Problem then says why
+	Silent   []*review.Study // of these, whose counts carry nothing about a ratio
+	PValues  *PValues        // studies weighed by their p-value alone; nil if there is none
+	Result   *Result         // nil when nothing could be pooled; Problem then says why
 	Problem  string
 	Notes    []string // what was assumed, in sentences
 	Accrual  *Accrual // nil unless some of it was wanted
+	Methods  *Methods // all methods side by side; nil unless wanted
 }
 
 // Analysis is what was settled before pooling, null and thresholds on the
@@ -59,6 +62,7 @@ type Outcome struct {
 type Analysis struct {
 	Measure    effect.Measure
 	Better     review.Better
+	Method     review.Method
 	Model      meta.Model
 	Important  *meta.Limits // the trivial zone's limits; nil without an important difference
 	Prior      []float64
@@ -73,7 +77,8 @@ type Counts struct {
 	Rows         int // of this outcome, after the filter
 	Participants int // in the pooled rows that state totals
 	Events       int // in the pooled rows that state events
-	Corrected    int // pooled tables with a zero cell that was corrected
+	Corrected    int // pooled tables with a zero cell that was corrected in the result
+	Silent       int // people in the rows that carry nothing about a ratio
 	Wrong        int // rows left out because of an error
 }
 
@@ -85,8 +90,9 @@ type Study struct {
 	Weight      float64
 	Evidence    evidence.Ratio // normal form, of this study alone
 	Basis       Basis
+	Table       *effect.Table // its counts as they stand; nil where the effect is not from such counts
 	Conversions []effect.Conversion
-	Corrected   bool     // a zero cell was corrected
+	Corrected   bool     // a zero cell was corrected in its own estimate
 	Assumptions []string // what the number rests on besides the report; see Converted
 }
 
@@ -155,6 +161,11 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 		}
 		if err := o.accrue(ctx, x.Columns, plan, want); err != nil {
 			return nil, err
+		}
+		if want.Methods {
+			if err := o.compare(plan); err != nil {
+				return nil, err
+			}
 		}
 		s.Outcomes = append(s.Outcomes, *o)
 		s.Findings = append(s.Findings, findings...)
@@ -254,6 +265,8 @@ func runOutcome(x *review.Extraction, plan *review.Plan, name string, blocked ma
 	slices.SortStableFunc(o.Excluded, func(a, b Excluded) int { return a.Place.Row - b.Place.Row })
 	o.markReported()
 	o.filterConverted(where)
+	o.noteSilent()
+	o.noteZeroCells()
 	if err := o.PValues.combine(); err != nil {
 		o.Problem = err.Error()
 		return o, findings, nil
@@ -271,6 +284,28 @@ func runOutcome(x *review.Extraction, plan *review.Plan, name string, blocked ma
 	return o, findings, nil
 }
 
+// idleSetting is a setting that may be of no use, and why.
+type idleSetting struct {
+	name string
+	idle bool
+	why  string
+}
+
+// idleByMethod lists the settings that a method for 2×2 tables has no use for.
+func idleByMethod(method review.Method, common bool) []idleSetting {
+	tau := fmt.Sprintf("%s estimates τ² by maximum likelihood", method)
+	if common {
+		tau = "a common effect has no τ²"
+	}
+	return []idleSetting{
+		{review.SettingTau, true, tau},
+		{review.SettingInterval, true, fmt.Sprintf("%s has an interval of its own", method)},
+		{review.SettingPrediction, true, fmt.Sprintf("%s gives no prediction interval", method)},
+		{review.SettingEvidence, true, fmt.Sprintf("beside %s the evidence has the normal form", method)},
+		{review.SettingCorrection, true, fmt.Sprintf("%s corrects no table; a study's own estimate alone may have a correction", method)},
+	}
+}
+
 // idleSettings notes settings that somebody chose and the model has no use for.
 func (o *Outcome) idleSettings(plan *review.Plan) {
 	if o.Result.Fit.Mean.K < 2 {
@@ -279,15 +314,15 @@ func (o *Outcome) idleSettings(plan *review.Plan) {
 	model := o.Result.Fit.Model
 	common := model.Effects == meta.CommonEffect
 	student := model.Interval == meta.HartungKnapp || model.Interval == meta.HartungKnappFloor
-	for _, s := range []struct {
-		name string
-		idle bool
-		why  string
-	}{
+	idle := []idleSetting{
 		{review.SettingTau, common, "a common effect has no τ²"},
 		{review.SettingPrediction, common, "a common effect has no prediction interval"},
 		{review.SettingEvidence, !student, fmt.Sprintf("beside the %s interval the evidence has the normal form", model.Interval)},
-	} {
+	}
+	if method := o.Analysis.Method; method != review.InverseVariance {
+		idle = idleByMethod(method, common)
+	}
+	for _, s := range idle {
 		if v := plan.Value(s.name, o.Name); s.idle && v.From != review.FromDefault {
 			o.note(fmt.Sprintf("The setting %s (%s) is not used: %s.", s.name, v.Text, s.why))
 		}
@@ -385,7 +420,7 @@ func (o *Outcome) count() {
 		} else {
 			o.Counts.Events += int(d.value(review.Events))
 		}
-		if study.Corrected {
+		if study.Corrected && o.Analysis.Method == review.InverseVariance {
 			o.Counts.Corrected++
 		}
 	}
