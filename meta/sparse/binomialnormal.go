@@ -143,7 +143,7 @@ func (l *logistic) commonResult(m Model, top place) (*Result, error) {
 	if err != nil {
 		return nil, err
 	}
-	r := m.rooted(top.mu, se, signedRoot(top.lnL-atNull.lnL, top.mu, m.Null), low.mu, high.mu)
+	r := m.rooted(top.mu, se, signedRoot(top.lnL-atNull.lnL, top.mu, m.Null), low, high)
 	r.Weights = weights
 	return r, nil
 }
@@ -152,36 +152,39 @@ func (l *logistic) commonResult(m Model, top place) (*Result, error) {
 // looked for.
 const farthestLimit = 100
 
-// limit returns the place beside top, towards the sign of se, where the profile
+// limit returns the μ beside top, towards the sign of se, where the profile
 // likelihood of μ is as low as the level allows. The signed root of the
 // likelihood ratio is nearly straight in μ, and solved for.
-func (l *logistic) limit(top place, se float64, profile func(mu float64) (place, error)) (place, error) {
+func (l *logistic) limit(top place, se float64, profile func(mu float64) (place, error)) (float64, error) {
 	var failed error
-	var found place
+	known := map[float64]float64{0: -l.critical}
 	root := func(steps float64) float64 {
+		if value, ok := known[steps]; ok {
+			return value
+		}
 		p, err := profile(top.mu + steps*se)
 		if err != nil {
 			failed = err
 			return math.NaN()
 		}
-		found = p
-		return math.Sqrt(2*max(0, top.lnL-p.lnL)) - l.critical
+		known[steps] = math.Sqrt(2*max(0, top.lnL-p.lnL)) - l.critical
+		return known[steps]
 	}
 	near, far := 0.0, l.critical
 	for root(far) < 0 {
 		near, far = far, 1.5*far
 		if far*math.Abs(se) > farthestLimit {
-			return place{}, &UnboundedError{What: "the interval for the mean log odds ratio"}
+			return 0, &UnboundedError{What: "the interval for the mean log odds ratio"}
 		}
 	}
-	if failed == nil {
-		steps, err := numeric.Root(root, near, far, 1e-9)
-		if failed == nil && err != nil {
-			return place{}, fmt.Errorf("profile-likelihood limit of the mean: %w", err)
-		}
-		root(steps)
+	steps, err := numeric.Root(root, near, far, 1e-9)
+	if failed != nil {
+		return 0, failed
 	}
-	return found, failed
+	if err != nil {
+		return 0, fmt.Errorf("profile-likelihood limit of the mean: %w", err)
+	}
+	return top.mu + steps*se, nil
 }
 
 // oneSided returns the error of an estimate at 0 (side −1) or infinity (side 1),

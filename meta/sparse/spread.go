@@ -41,11 +41,11 @@ func (l *logistic) randomResult(m Model, common place, whole bool) (*Result, err
 	if err != nil {
 		return nil, err
 	}
-	low, err := l.meanLimit(top, -se)
+	low, err := l.limit(top, -se, l.bestSpreadAnywhere)
 	if err != nil {
 		return nil, err
 	}
-	high, err := l.meanLimit(top, se)
+	high, err := l.limit(top, se, l.bestSpreadAnywhere)
 	if err != nil {
 		return nil, err
 	}
@@ -222,49 +222,32 @@ func (l *logistic) spreadBetween(mu float64, a, b place) (place, error) {
 	return l.at(mu, tau)
 }
 
-// bestSpreadAnywhere returns the place of the best τ for a given mean, uphill
-// from the best place of the scan's spreads.
+// fixedMeanStride says which of the scan's spreads are tried for a fixed mean:
+// every second one, half an e-fold apart. hopeless is how far below the best the
+// likelihood must have fallen for the larger ones to be left out.
+const (
+	fixedMeanStride = 2
+	hopeless        = 30
+)
+
+// bestSpreadAnywhere returns the place of the best τ for a given mean: uphill
+// from the best of the scan's spreads, since there can be a maximum at τ = 0
+// beside another, between which the best changes with the mean.
 func (l *logistic) bestSpreadAnywhere(mu float64) (place, error) {
-	best, err := l.at(mu, 0)
-	if err != nil {
-		return best, err
-	}
-	for _, s := range l.scan[1:] {
-		p, err := l.at(mu, s.tau)
+	var best place
+	for i := 0; i < len(l.scan); i += fixedMeanStride {
+		p, err := l.at(mu, l.scan[i].tau)
 		if err != nil {
 			return p, err
 		}
-		if p.lnL > best.lnL {
+		if i == 0 || p.lnL > best.lnL {
 			best = p
+		}
+		if p.slopeTau2 < 0 && p.lnL < best.lnL-hopeless {
+			break
 		}
 	}
 	return l.bestSpread(mu, best.tau)
-}
-
-// meanLimit returns the limit of μ, towards the sign of se. τ is followed uphill
-// from one mean to the next; at the end it is looked for everywhere, and should
-// the likelihood be higher elsewhere the search goes on from there.
-func (l *logistic) meanLimit(top place, se float64) (float64, error) {
-	tau := top.tau
-	follow := func(mu float64) (place, error) {
-		p, err := l.bestSpread(mu, tau)
-		tau = p.tau
-		return p, err
-	}
-	found, err := l.limit(top, se, follow)
-	if err != nil {
-		return 0, err
-	}
-	other, err := l.bestSpreadAnywhere(found.mu)
-	if err != nil {
-		return 0, err
-	}
-	if other.lnL > found.lnL+1e-7 {
-		if found, err = l.limit(top, se, l.bestSpreadAnywhere); err != nil {
-			return 0, err
-		}
-	}
-	return found.mu, nil
 }
 
 // spreadLimits returns the profile-likelihood limits of τ², the furthest ones

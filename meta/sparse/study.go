@@ -65,18 +65,19 @@ type marginal struct{ lnL, a, m, aa, am, mm, tau2 float64 }
 
 // The nodes of the integral over u stand at most a share nodeWidth of the
 // integrand's standard deviation apart, and at most nodeReach in θ, and go out
-// to where it has fallen to e^−nodeDepth of its top. The sum is then exact to
-// about 1e-13: the error of equally spaced nodes at distance h is the Fourier
-// transform of the integrand at 2π/h, which is exp(−2π²(sd/h)²) for a normal one,
-// and no more than exp(−2π²/h) in θ for any pair of binomial likelihoods.
+// to where it has fallen to e^−nodeDepth of its top. The sum is then right to
+// about 1e-12: for nodes h apart its error is e^(−2πy/h) times the growth of the
+// integrand at a distance y from the real axis, up to y = π in θ. A standard
+// deviation of s lets it grow as e^(y²/2s²), which leaves e^(−2π²(s/h)²) for small
+// s and e^(−2π²/h + π²/2s²) for large.
 const (
-	nodeWidth = 0.8
-	nodeReach = 0.6
+	nodeWidth = 0.7
+	nodeReach = 0.5
 	nodeDepth = 36
 )
 
-// widestMode and modeTolerance are for the search of the integrand's top, which
-// need not be exact.
+// widestMode, a step in u or in θ, and modeTolerance are for the search of the
+// integrand's top, which need not be exact.
 const (
 	widestMode    = 4
 	modeTolerance = 1e-3
@@ -99,7 +100,7 @@ func (s *study) integrate(alpha, mu, tau float64) (marginal, error) {
 	mode, err := ascend(func(u float64) (float64, float64) {
 		p := s.point(alpha, mu+tau*u)
 		return tau*p.t - u, tau*tau*p.tt - 1
-	}, s.mode, widestMode, modeTolerance)
+	}, s.mode, widestMode*max(1, 1/tau), modeTolerance)
 	if err != nil {
 		return marginal{}, err
 	}
