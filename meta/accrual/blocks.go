@@ -22,10 +22,10 @@ type Draws struct {
 	Work meta.Work // Progress counts draws
 }
 
-// check returns an *InputError unless 100 ≤ N ≤ 1e8.
+// check returns an *InputError unless 100 ≤ N ≤ 1e7.
 func (d Draws) check() error {
-	if d.N < 100 || d.N > 1e8 {
-		return &InputError{"the number of draws must be from 100 to 100,000,000: take 10,000 for a first look, 100,000 for a report"}
+	if d.N < 100 || d.N > 1e7 {
+		return &InputError{"the number of draws must be from 100 to 10,000,000: take 10,000 for a first look, 100,000 for a report"}
 	}
 	return nil
 }
