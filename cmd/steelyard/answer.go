@@ -168,6 +168,13 @@ func (p *page) evidence(s *synthesis.Synthesis, o *synthesis.Outcome) {
 		return
 	}
 	p.value("Evidence", words.Evidence(mean.Evidence), words.Strength(mean.Evidence)+"; "+words.Test(mean))
+	if r := o.Result.Integrated; r != nil {
+		text := words.Strength(r.Effect()) + "; " + words.TauPrior(r.Prior)
+		if r.Exceeded {
+			text += ", which the estimate of τ exceeds twice: doubt it"
+		}
+		p.value("", words.Evidence(r.Effect()), text)
+	}
 	if remark := words.BiasRemark(o); remark != "" {
 		k := len(o.Studies)
 		p.value("", "", fmt.Sprintf("%s: %d of %d %s at high risk", remark, words.HighRisk(o), k, words.Noun(s, k)))

@@ -6,6 +6,7 @@ import (
 	"strings"
 
 	"steelyard/meta"
+	"steelyard/meta/bayes"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
 	"steelyard/meta/numeric"
@@ -276,4 +277,13 @@ func BiasRemark(o *synthesis.Outcome) string {
 		return ""
 	}
 	return "bias is not in this number"
+}
+
+// TauPrior says over which prior the spread was integrated: "τ integrated over a
+// half-normal prior of scale 0.5".
+func TauPrior(p bayes.TauPrior) string {
+	if p.Kind == bayes.Uniform {
+		return "τ integrated over a uniform prior"
+	}
+	return fmt.Sprintf("τ integrated over a %s prior of scale %s", p.Kind, plain(p.Scale))
 }

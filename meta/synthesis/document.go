@@ -98,6 +98,7 @@ type ResultDocument struct {
 	Without       *SubsetDocument         `json:"without_converted,omitempty"`
 	Posterior     []PosteriorDocument     `json:"posterior,omitempty"`
 	Doubter       *DoubterDocument        `json:"doubters_prior,omitempty"`
+	Integrated    *IntegratedDocument     `json:"integrated,omitempty"`
 	Regions       []RegionDocument        `json:"regions,omitempty"`
 	Caveats       []string                `json:"caveats,omitempty"`
 	*AccrualDocument

@@ -33,6 +33,7 @@ func (o *Outcome) pool(asked review.Analysis) error {
 	}
 	o.Result.Posterior = o.posterior(fit.Mean.Evidence)
 	o.Result.DoubtersPrior = Belief{Prior: evidence.DoubtersPrior(fit.Mean.Evidence, believed), Posterior: believed}
+	o.Result.Integrated = o.integrate()
 	o.Result.Regions, err = o.regions()
 	return err
 }

@@ -10,6 +10,7 @@ import (
 	"strings"
 
 	"steelyard/meta"
+	"steelyard/meta/bayes"
 	"steelyard/meta/choice"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
@@ -121,7 +122,8 @@ type Result struct {
 	Posterior     []Belief
 	DoubtersPrior Belief // Posterior is the level, Prior the doubter's prior
 	Regions       []Region
-	Without       *meta.Fit // without the converted studies; nil if there are none, or no others
+	Without       *meta.Fit         // without the converted studies; nil if there are none, or no others
+	Integrated    *bayes.Integrated // with τ integrated over its prior; nil unless the studies are few
 }
 
 // Belief is a probability of an effect before and after the data.

@@ -1,0 +1,86 @@
+package synthesis
+
+import (
+	"slices"
+
+	"steelyard/meta"
+	"steelyard/meta/bayes"
+	"steelyard/meta/effect"
+	"steelyard/meta/review"
+)
+
+// mostFew is up to how many studies the evidence integrated over τ stands beside
+// the primary one, which then knows little of the agreement of the studies.
+const mostFew = 5
+
+// usualScale is the scale of the half-normal prior for τ, in the unit of log
+// ratios and of standardised differences, and in SDs of mean differences.
+//
+// Source: Röver et al. (2021), Research Synthesis Methods 12:448-474.
+const usualScale = 0.5
+
+// integrate returns the evidence integrated over τ for few studies under random
+// effects; nil where it is not given: more studies, a common effect, another
+// method, or a prior that needs a third study.
+func (o *Outcome) integrate() *bayes.Integrated {
+	k := len(o.Studies)
+	model := o.Analysis.Model
+	if k < 2 || k > mostFew || model.Effects != meta.RandomEffects || o.Analysis.Method != review.InverseVariance {
+		return nil
+	}
+	y, s := estimates(o.Studies)
+	result, err := bayes.Integrate(y, s, model.Null, o.tauPrior())
+	if err != nil {
+		return nil
+	}
+	return result
+}
+
+// tauPrior returns the usual prior for τ of the outcome's measure: half-normal
+// where its unit is known, else uniform.
+func (o *Outcome) tauPrior() bayes.TauPrior {
+	m := o.Analysis.Measure
+	if m.Log() || m == effect.StandardisedMeanDifference {
+		return bayes.TauPrior{Kind: bayes.HalfNormal, Scale: usualScale}
+	}
+	if sd := o.medianSD(); m == effect.MeanDifference && sd > 0 {
+		return bayes.TauPrior{Kind: bayes.HalfNormal, Scale: usualScale * sd}
+	}
+	return bayes.TauPrior{Kind: bayes.Uniform}
+}
+
+// medianSD returns the median standard deviation of the arms that give one; 0 if
+// none does.
+func (o *Outcome) medianSD() float64 {
+	var all []float64
+	for _, study := range o.Studies {
+		for _, n := range study.Source.Numbers {
+			if n.Field == review.SDTreated || n.Field == review.SDControl {
+				all = append(all, n.Value)
+			}
+		}
+	}
+	if len(all) == 0 {
+		return 0
+	}
+	slices.Sort(all)
+	return (all[(len(all)-1)/2] + all[len(all)/2]) / 2
+}
+
+// IntegratedDocument is the evidence with τ integrated over its prior.
+type IntegratedDocument struct {
+	Prior    string  `json:"prior"`
+	Scale    float64 `json:"scale,omitempty"`
+	Exceeded bool    `json:"exceeded,omitempty"` // τ is estimated at more than twice the prior's scale
+	EvidenceDocument
+}
+
+func integratedDocument(r *bayes.Integrated) *IntegratedDocument {
+	if r == nil {
+		return nil
+	}
+	return &IntegratedDocument{
+		Prior: r.Prior.Kind.String(), Scale: r.Prior.Scale, Exceeded: r.Exceeded,
+		EvidenceDocument: evidenceDocument(r.Effect()),
+	}
+}
