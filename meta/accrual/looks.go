@@ -120,13 +120,9 @@ func (q Sequence) plan(ctx context.Context, scenarios []Scenario, draws Draws) (
 			return nil, &InputError{fmt.Sprintf("a mean of %v with τ² %v is no truth to simulate: give a finite mean and a τ² of 0 or more", truth.Mean, truth.Tau2)}
 		}
 	}
-	// Pooling estimates that all lie at the null checks standard errors and model;
-	// accumulating them checks the order.
-	y := make([]float64, len(q.SE))
-	for i := range y {
-		y[i] = q.Model.Null
-	}
-	pairs, err := meta.NewPairs(q.Model, y, q.SE)
+	// Pooling estimates of 0 checks standard errors and model, accumulating them the
+	// order.
+	pairs, err := meta.NewPairs(q.Model, make([]float64, len(q.SE)), q.SE)
 	if err != nil {
 		return nil, err
 	}

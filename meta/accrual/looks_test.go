@@ -266,12 +266,16 @@ func TestLooksRefuse(t *testing.T) {
 		"a row twice":      {func(q *Sequence, _ *Scenario, _ *Draws) { q.Groups = [][]int{{0, 1}, {1, 2}} }, &order},
 		"standard error 0": {func(q *Sequence, _ *Scenario, _ *Draws) { q.SE = []float64{1, 0, 1} }, &study},
 		"level 2":          {func(q *Sequence, _ *Scenario, _ *Draws) { q.Model.Level = 2 }, &model},
+		"null no number":   {func(q *Sequence, _ *Scenario, _ *Draws) { q.Model.Null = math.NaN() }, &model},
 	} {
 		q, truth, d := good, Scenario{}, draws
 		c.change(&q, &truth, &d)
 		if r, err := Looks(background, q, []Scenario{truth}, d); r != nil || !errors.As(err, c.as) {
 			t.Errorf("%s: %v, %v", name, r, err)
 		}
+	}
+	if _, err := Looks(background, Sequence{Model: good.Model}, nil, draws); !errors.Is(err, meta.ErrNoStudies) {
+		t.Errorf("no studies: %v", err)
 	}
 }
 
