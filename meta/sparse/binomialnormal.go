@@ -152,39 +152,48 @@ func (l *logistic) commonResult(m Model, top place) (*Result, error) {
 // looked for.
 const farthestLimit = 100
 
+// limitSteps caps the search for a limit, and limitClose is the last step in it,
+// in standard errors.
+const (
+	limitSteps = 100
+	limitClose = 1e-9
+)
+
 // limit returns the μ beside top, towards the sign of se, where the profile
 // likelihood of μ is as low as the level allows. The signed root of the
-// likelihood ratio is nearly straight in μ, and solved for.
+// likelihood ratio is nearly straight in μ: Newton's steps, halved towards the
+// known ends of an interval round the limit where they leave it. profile gives
+// the highest place for a μ, whose slope is that of the profile likelihood.
 func (l *logistic) limit(top place, se float64, profile func(mu float64) (place, error)) (float64, error) {
-	var failed error
-	known := map[float64]float64{0: -l.critical}
-	root := func(steps float64) float64 {
-		if value, ok := known[steps]; ok {
-			return value
+	near, far := 0.0, math.Inf(1)
+	steps := l.critical
+	for range limitSteps {
+		if steps*math.Abs(se) > farthestLimit {
+			return 0, &UnboundedError{What: "the interval for the mean log odds ratio"}
 		}
 		p, err := profile(top.mu + steps*se)
 		if err != nil {
-			failed = err
-			return math.NaN()
+			return 0, err
 		}
-		known[steps] = math.Sqrt(2*max(0, top.lnL-p.lnL)) - l.critical
-		return known[steps]
-	}
-	near, far := 0.0, l.critical
-	for root(far) < 0 {
-		near, far = far, 1.5*far
-		if far*math.Abs(se) > farthestLimit {
-			return 0, &UnboundedError{What: "the interval for the mean log odds ratio"}
+		root := math.Sqrt(2 * max(0, top.lnL-p.lnL))
+		if root < l.critical {
+			near = steps
+		} else {
+			far = steps
 		}
+		next := steps + (l.critical-root)*root/(-p.slope*se)
+		switch {
+		case math.Abs(next-steps) < limitClose:
+			return top.mu + next*se, nil
+		case far-near < limitClose:
+			return top.mu + steps*se, nil
+		}
+		if !(next > near && next < far) || next > 2*steps {
+			next = min(2*steps, 0.5*(near+far))
+		}
+		steps = next
 	}
-	steps, err := numeric.Root(root, near, far, 1e-9)
-	if failed != nil {
-		return 0, failed
-	}
-	if err != nil {
-		return 0, fmt.Errorf("profile-likelihood limit of the mean: %w", err)
-	}
-	return top.mu + steps*se, nil
+	return 0, fmt.Errorf("profile-likelihood limit of the mean: %w", numeric.ErrNotConverged)
 }
 
 // oneSided returns the error of an estimate at 0 (side −1) or infinity (side 1),

@@ -61,12 +61,12 @@ func (g margins) at(theta float64, share []float64) (law, error) {
 	psi := math.Exp(theta)
 	mode := g.mode(psi)
 	first, down := mode, 1.0
-	for first > g.low && down >= negligible {
+	for first > g.low && down >= negligible && mode-first < widestLaw {
 		down /= psi * g.rise(first)
 		first--
 	}
 	last, up := mode, 1.0
-	for last < g.high && up >= negligible {
+	for last < g.high && up >= negligible && last-mode < widestLaw {
 		last++
 		up *= psi * g.rise(last)
 	}

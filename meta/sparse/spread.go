@@ -162,17 +162,12 @@ func (l *logistic) standardError(top place) (float64, error) {
 	return 1 / math.Sqrt(information), nil
 }
 
-// bestSpread returns the place of the best τ for a given mean, uphill from the
-// start.
-func (l *logistic) bestSpread(mu, start float64) (place, error) {
+// bestSpread returns the place of the best τ for the mean of p, uphill from p.
+func (l *logistic) bestSpread(p place) (place, error) {
 	lowest := l.scan[1].tau
-	p, err := l.at(mu, max(start, lowest))
-	if err != nil {
-		return p, err
-	}
 	rising := p.slopeTau2 > 0
 	for {
-		next := 1.5 * p.tau
+		next := max(lowest, 1.5*p.tau)
 		switch {
 		case rising && next > 4*widestSpread:
 			return p, &UnboundedError{What: "the spread between studies"}
@@ -184,12 +179,12 @@ func (l *logistic) bestSpread(mu, start float64) (place, error) {
 				next = 0
 			}
 		}
-		q, err := l.at(mu, next)
+		q, err := l.at(p.mu, next)
 		if err != nil {
 			return q, err
 		}
 		if (q.slopeTau2 > 0) != rising {
-			return l.spreadBetween(mu, p, q)
+			return l.spreadBetween(p.mu, p, q)
 		}
 		p = q
 	}
@@ -247,7 +242,7 @@ func (l *logistic) bestSpreadAnywhere(mu float64) (place, error) {
 			break
 		}
 	}
-	return l.bestSpread(mu, best.tau)
+	return l.bestSpread(best)
 }
 
 // spreadLimits returns the profile-likelihood limits of τ², the furthest ones
