@@ -1,6 +1,8 @@
 package ingest
 
 import (
+	"fmt"
+
 	"steelyard/ingest/grid"
 	"steelyard/meta/choice"
 )
@@ -17,10 +19,15 @@ func chooseSheet(book *grid.Book, asked string, columns []request) (*grid.Sheet,
 	var sheets []*grid.Sheet
 	var headers []*header
 	var nearest *HeaderError
+	scanned := 0
 	for i := range book.Sheets {
 		s := &book.Sheets[i]
 		if s.Hidden || reserved[choice.Fold(s.Name)] || len(s.Rows) == 0 {
 			continue
+		}
+		if scanned += headerCells(s); scanned > maxHeaderCells {
+			return nil, nil, &grid.FileError{File: book.File, Problem: fmt.Sprintf("has sheets with more than %d cells in which the header may stand", maxHeaderCells),
+				Remedy: "name the sheet of the studies with --sheet"}
 		}
 		r := &headerReader{file: book.File, sheet: s, asked: columns}
 		h, ok := r.find()
@@ -42,6 +49,19 @@ func chooseSheet(book *grid.Book, asked string, columns []request) (*grid.Sheet,
 	}
 	return nil, nil, &grid.FileError{File: book.File, Problem: "no visible sheet holds a table of studies",
 		Remedy: "write one with a header and one row for each study, or name a hidden one with --sheet"}
+}
+
+// maxHeaderCells bounds the cells of all sheets that are looked at for a header; a
+// hundred sheets of fifty columns stay below it.
+const maxHeaderCells = 200_000
+
+// headerCells counts the cells of a sheet that may be part of its header.
+func headerCells(s *grid.Sheet) int {
+	n := 0
+	for i := range s.Rows[:min(scanRows, len(s.Rows))] {
+		n += len(s.Rows[i].Cells)
+	}
+	return n
 }
 
 func askedSheet(book *grid.Book, asked string, columns []request) (*grid.Sheet, *header, error) {

@@ -17,6 +17,9 @@ type mergedCells struct {
 	refused map[cellKey]bool      // number cells that are merged with others
 }
 
+// maxMergedText bounds the bytes of the texts that are read anew for merged cells.
+const maxMergedText = 128 << 20
+
 // maxMergedCells bounds the cells that merged ranges may cover in all; ranges of
 // an honest file do not overlap and stay far below it.
 const maxMergedCells = 1 << 20
@@ -25,13 +28,20 @@ const maxMergedCells = 1 << 20
 // refuses merged cells of numbers.
 func (t *tableReader) readMerges() error {
 	t.merged = mergedCells{above: map[cellKey]grid.Cell{}, refused: map[cellKey]bool{}}
-	covered := 0
+	covered, text := 0, 0
 	for _, m := range t.sheet.Merges {
 		first := sort.Search(len(t.rows), func(i int) bool { return t.rows[i].Number >= m.FirstRow })
 		end := sort.Search(len(t.rows), func(i int) bool { return t.rows[i].Number > m.LastRow })
 		covered += max(0, end-first) * (min(m.LastCol, len(t.header.columns)) - m.FirstCol + 1)
 		if covered > maxMergedCells {
 			return &grid.FileError{File: t.book.File, Sheet: t.sheet.Name, Problem: fmt.Sprintf("merged cells cover more than %d cells of the table", maxMergedCells),
+				Remedy: "unmerge them"}
+		}
+		if first < end && t.rows[first].Number == m.FirstRow {
+			text += (end - first) * len(t.rows[first].Cell(m.FirstCol).Text)
+		}
+		if text > maxMergedText {
+			return &grid.FileError{File: t.book.File, Sheet: t.sheet.Name, Problem: fmt.Sprintf("merged cells repeat texts of more than %d MB", maxMergedText>>20),
 				Remedy: "unmerge them"}
 		}
 		if first < end {

@@ -5,6 +5,7 @@ import (
 	"slices"
 	"strings"
 	"unicode"
+	"unicode/utf8"
 
 	"golang.org/x/text/unicode/norm"
 
@@ -20,6 +21,9 @@ var joinedLetters = strings.NewReplacer("ß", "ss", "æ", "ae", "œ", "oe", "ø"
 func foldName(name string) string {
 	if folded(name) {
 		return name
+	}
+	if plain, ok := foldASCII(name); ok {
+		return plain
 	}
 	bare := strings.Map(func(r rune) rune {
 		if unicode.Is(unicode.Mn, r) {
@@ -47,6 +51,28 @@ func folded(name string) bool {
 	return name != ""
 }
 
+// foldASCII is foldName for the names that have ASCII letters and digits alone, as
+// most do; ok is false for others.
+func foldASCII(name string) (plain string, ok bool) {
+	bare := make([]byte, 0, 64)
+	for i := 0; i < len(name); i++ {
+		c := name[i]
+		if 'A' <= c && c <= 'Z' {
+			c += 'a' - 'A'
+		}
+		switch {
+		case c >= utf8.RuneSelf:
+			return "", false
+		case 'a' <= c && c <= 'z' || '0' <= c && c <= '9':
+			bare = append(bare, c)
+		case len(bare) > 0 && bare[len(bare)-1] != ' ':
+			bare = append(bare, ' ')
+		}
+	}
+	plain = strings.TrimSuffix(string(bare), " ")
+	return plain, plain != ""
+}
+
 // mostTwins bounds how many earlier rows of the same name a row is compared with.
 const mostTwins = 30
 
@@ -57,6 +83,9 @@ func (t *tableReader) checkNames() {
 	first := make(map[key]int, len(t.x.Studies))
 	more := map[key][]int{}
 	for i := range t.x.Studies {
+		if len(t.x.Findings) > maxFindings {
+			return
+		}
 		s := &t.x.Studies[i]
 		k := key{s.Outcome, foldName(s.Name)}
 		j, twice := first[k]

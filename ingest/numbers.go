@@ -128,9 +128,10 @@ func (t *tableReader) decide(c *numberColumn, texts []string, rows []int) {
 
 func shortest(x float64) string { return strconv.FormatFloat(x, 'g', -1, 64) }
 
-// readNumbers reads the row's numbers into the space allotted to all.
+// readNumbers reads the row's numbers.
 func (r *rowReader) readNumbers() {
 	t := r.t
+	t.numbers = room(t.numbers, len(t.numeric)+1) // with that of a header's level
 	start := len(t.numbers)
 	for i := range t.numeric {
 		c := &t.numeric[i]

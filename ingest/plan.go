@@ -49,6 +49,9 @@ func readPlan(book, planBook *grid.Book) *planDraft {
 // planHeaderRows is how many rows are searched for the header of a plan.
 const planHeaderRows = 20
 
+// maxPlanRows is far above the settings of any review.
+const maxPlanRows = 10_000
+
 // read reads the rows of a plan sheet.
 func (d *planDraft) read(file string, s *grid.Sheet) {
 	if len(s.Rows) == 0 {
@@ -58,6 +61,10 @@ func (d *planDraft) read(file string, s *grid.Sheet) {
 		columns := planHeader(&s.Rows[i])
 		if columns.setting == 0 || columns.value == 0 {
 			continue
+		}
+		if rows := len(s.Rows) - i - 1; rows > maxPlanRows {
+			d.find(review.Place{File: file, Sheet: s.Name}, "", fmt.Sprintf("the plan has %d rows, more than the limit of %d, and was not read; keep those that set something", rows, maxPlanRows))
+			return
 		}
 		for j := i + 1; j < len(s.Rows); j++ {
 			d.readRow(file, s, &s.Rows[j], columns)

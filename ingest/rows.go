@@ -159,6 +159,7 @@ func (r *rowReader) readOutcome(seen map[string]string) {
 // readContext keeps every other filled cell as a remark.
 func (r *rowReader) readContext() {
 	t := r.t
+	t.remarks = room(t.remarks, len(t.context))
 	start := len(t.remarks)
 	for _, i := range t.context {
 		text := tidy(r.text(i + 1))

@@ -285,11 +285,17 @@ func recognise(header string) (m meaning, ok bool) {
 // maxHeaderBytes is the length beyond which a text is no header but a sentence.
 const maxHeaderBytes = 200
 
+// maxHeaderWords is more than the words of any phrase that aboutEstimate knows.
+const maxHeaderWords = 12
+
 // aboutEstimate recognises limits and standard errors that name their measure,
 // such as "hr ci low", "upper limit odds ratio" or "se log or". A standard error
 // of a ratio that is not logged is not taken for one of its logarithm.
 func (d *dictionary) aboutEstimate(phrase string) (meaning, bool) {
 	words := strings.Split(phrase, " ")
+	if len(words) > maxHeaderWords {
+		return meaning{}, false
+	}
 	for cut := 1; cut < len(words); cut++ {
 		head, tail := strings.Join(words[:cut], " "), strings.Join(words[cut:], " ")
 		for _, split := range [2][2]string{{head, tail}, {tail, head}} {

@@ -20,7 +20,7 @@ type tableReader struct {
 	role    roles
 	merged  mergedCells
 	x       *review.Extraction
-	numbers []review.Number // space for all studies
+	numbers []review.Number // a block of those read last, see room
 	remarks []review.Remark
 	armRows bool         // each row is of one arm
 	final   map[int]bool // findings, by index, whose numbers no acceptance makes usable
@@ -56,7 +56,7 @@ func readTable(ctx context.Context, book *grid.Book, sheet *grid.Sheet, h *heade
 	if err := t.chooseDecimals(); err != nil {
 		return nil, err
 	}
-	t.allot()
+	t.x.Studies = make([]review.Study, 0, len(t.rows))
 	if err := t.readRows(ctx); err != nil {
 		return nil, err
 	}
@@ -90,10 +90,14 @@ func (t *tableReader) noteSheet() {
 				"the column "+quote(t.header.columns[col-1].Header)+" is hidden and was read; show it, or delete it if it is not meant to count")
 		}
 	}
+	scanned := 0
 	for i := range t.book.Sheets {
 		s := &t.book.Sheets[i]
 		if !s.Hidden || s == t.sheet || len(s.Rows) == 0 {
 			continue
+		}
+		if scanned += headerCells(s); scanned > maxHeaderCells {
+			break // enough to warn of
 		}
 		r := &headerReader{file: t.book.File, sheet: s}
 		if _, ok := r.find(); ok {
@@ -160,28 +164,15 @@ func (t *tableReader) noteHeadless() {
 	}
 }
 
-// allot makes room for the numbers and remarks of all rows in one piece each.
-func (t *tableReader) allot() {
-	numbers, remarks := 0, 0
-	for i := range t.rows {
-		cells := t.rows[i].Cells
-		for _, c := range t.numeric {
-			if c.col <= len(cells) && cells[c.col-1].Kind != grid.Blank {
-				numbers++
-			}
-			if t.header.columns[c.col-1].level != 0 {
-				numbers++
-			}
-		}
-		for _, c := range t.context {
-			if c < len(cells) && cells[c].Kind != grid.Blank {
-				remarks++
-			}
-		}
+// blockSize is the number of numbers or remarks that are given room at a time.
+const blockSize = 16 << 10
+
+// room returns the block if it has room for n more, else a new one.
+func room[T any](block []T, n int) []T {
+	if cap(block)-len(block) >= n {
+		return block
 	}
-	t.numbers = make([]review.Number, 0, numbers)
-	t.remarks = make([]review.Remark, 0, remarks)
-	t.x.Studies = make([]review.Study, 0, len(t.rows))
+	return make([]T, 0, max(n, min(blockSize, 2*cap(block)+64)))
 }
 
 func (t *tableReader) place(row, col int, text string) review.Place {

@@ -79,13 +79,18 @@ func levelOf(word, next string, before []string) (level float64, rest string, ok
 // tidy returns a cell's text in one line: surrounding blanks gone, every run of
 // white space one blank. Control characters are gone already.
 func tidy(text string) string {
-	for i := 0; i < len(text); i++ {
-		c := text[i]
-		if c < ' ' || c >= 0x7f || (c == ' ' && (i == 0 || i == len(text)-1 || text[i-1] == ' ')) {
+	space := true // before the text, where a blank is one too many
+	for _, c := range text {
+		switch {
+		case c == ' ' && !space:
+			space = true
+		case unicode.IsSpace(c):
 			return strings.Join(strings.FieldsFunc(text, unicode.IsSpace), " ")
+		default:
+			space = false
 		}
 	}
-	return text
+	return strings.TrimSuffix(text, " ")
 }
 
 // plural returns a number with its noun, "1 row" or "2 rows".

@@ -10,9 +10,15 @@ import (
 	"context"
 	"os"
 	"os/signal"
+	"runtime/debug"
+
+	"steelyard/ingest"
 )
 
 func main() {
+	if os.Getenv("GOMEMLIMIT") == "" { // else the runtime has taken that
+		debug.SetMemoryLimit(ingest.MemoryLimit)
+	}
 	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt)
 	code := run(ctx, os.Args, streams{in: os.Stdin, out: os.Stdout, err: os.Stderr})
 	stop()

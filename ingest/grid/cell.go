@@ -161,6 +161,9 @@ func (s *sheetReader) textCell(text sharedString, col int) (Cell, error) {
 	if isBlank(text.text) {
 		return Cell{}, nil
 	}
+	if s.book.text += len(text.text); s.book.text > MaxWorkbookText {
+		return Cell{}, s.tooMany(fmt.Sprintf("the texts of all cells up to here are longer than %d MB together, the limit", MaxWorkbookText>>20), "save the sheet of studies alone, without long texts")
+	}
 	return Cell{Kind: Text, Text: text.text}, nil
 }
 

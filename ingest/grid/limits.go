@@ -30,6 +30,12 @@ const (
 	MaxWorkbookCells = 5_000_000
 	// MaxTextCells is the number of cells of a text file, gaps included.
 	MaxTextCells = 10_500_000
+	// MaxWorkbookText is the number of bytes of the texts of all cells, counted for
+	// each cell that shows a text, since a file can show one text in millions of cells.
+	MaxWorkbookText = 128 << 20
+	// MaxNamespaces is the number of namespaces that may be declared at once in a part
+	// of a workbook.
+	MaxNamespaces = 100
 	// MaxStrings is the number of entries of a workbook's string table.
 	MaxStrings = 2_000_000
 	// MaxStyles is the number of cell styles or number formats of a workbook.

@@ -121,6 +121,22 @@ func TestCellsAreCountedWithGaps(t *testing.T) {
 	}
 }
 
+// TestTextsAreCountedForEachCell: a file can show one long text in millions of cells.
+func TestTextsAreCountedForEachCell(t *testing.T) {
+	p := rows(strings.Repeat(`<row><c t="s"><v>0</v></c></row>`, MaxWorkbookText/MaxFieldBytes+1))
+	p[shared] = []byte(`<sst ` + mainNS + `><si><t>` + strings.Repeat("w", MaxFieldBytes) + `</t></si></sst>`)
+	frugal(t, 30, func() { mustRefuse(t, p.packStored(t), "a.xlsx", "Data", "longer than 128 MB together") })
+}
+
+// TestNamespacesAreLimited: each is looked through for every element.
+func TestNamespacesAreLimited(t *testing.T) {
+	var b strings.Builder
+	for i := range MaxNamespaces {
+		fmt.Fprintf(&b, ` xmlns:n%d="u"`, i)
+	}
+	mustRefuse(t, rows(`<row`+b.String()+`/>`).packStored(t), "a.xlsx", "more than 100 namespaces")
+}
+
 // TestBlankStyledCellsBeyondTheColumnsAreNothing: whole rows are often coloured.
 func TestBlankStyledCellsBeyondTheColumnsAreNothing(t *testing.T) {
 	book := mustRead(t, rows(`<row r="1"><c r="A1"><v>1</v></c><c r="XFD1" s="1"/></row>`).pack(t), "a.xlsx")

@@ -15,6 +15,7 @@ type workbook struct {
 	strings  []sharedString
 	styles   []dateFormat // by cell style
 	cells    cellStore
+	text     int // bytes of the texts of all cells
 	remarks  remarker
 }
 

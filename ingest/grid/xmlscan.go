@@ -387,6 +387,9 @@ func (s *xmlScanner) readAttributes(b []byte) error {
 			return err
 		}
 		s.attribute(xml.Attr{Name: splitName(s.keep(name)), Value: s.keep(value)})
+		if len(s.spaces) > MaxNamespaces {
+			return s.syntax("more than %d namespaces declared", MaxNamespaces)
+		}
 		b = rest[end+2:]
 	}
 }
