@@ -6,7 +6,7 @@ VERSION := $(shell git describe --tags --always --dirty 2>/dev/null || echo unre
 FUZZCOUNT ?= 20000x
 
 .DEFAULT_GOAL := help
-.PHONY: help build demo test race office check fuzz bench golden dist clean
+.PHONY: help build demo test race office soak check fuzz bench golden dist clean
 
 help: ## list the targets
 	@awk -F ':.*## ' '/^[a-z]+:.*## / { printf "  make %-8s %s\n", $$1, $$2 }' $(MAKEFILE_LIST)
@@ -32,11 +32,14 @@ race: ## run every test under the race detector
 office: ## what needs LibreOffice Calc: the template keeps its lists, comments and numbers in another program
 	go test -tags office -run Office ./ingest
 
+soak: ## hostile files: worst cases of memory and time, 10,000 damaged workbooks
+	go test -tags soak -run 'WorstCases|TenThousand' -v ./ingest
+
 check: ## formatting, vet, tidiness, static analysis, imports
 	@unformatted="$$(gofmt -l .)"; if [ -n "$$unformatted" ]; then echo "gofmt would change: $$unformatted"; exit 1; fi
 	go vet ./... ./testdata/demo
 	GOOS=windows go vet ./...
-	go vet -tags office ./ingest
+	go vet -tags office,soak ./ingest
 	go mod tidy -diff
 	go tool staticcheck ./...
 	go test -count=1 -run TestRooms ./cmd/steelyard
