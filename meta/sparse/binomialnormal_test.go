@@ -48,6 +48,50 @@ func TestBinomialNormalAgainstReference(t *testing.T) {
 	}
 }
 
+// twoMaxima are two tables whose likelihood, at means around 3, has one maximum at
+// a small spread and another at a large one.
+var twoMaxima = tablesOf([4]float64{5, 6, 106, 111}, [4]float64{20, 34, 27, 145})
+
+// Source: as TestBinomialNormalAgainstReference, the best spread for a mean being
+// the best of 17 starts.
+func TestBinomialNormalTwoMaxima(t *testing.T) {
+	r := mustFit(t, Model{Method: BinomialNormal}, twoMaxima)
+	compare(t,
+		want{"estimate", r.Mean.Estimate, 1.6766262665, 1e-7}, want{"τ²", r.Mean.Tau2, 0, 0},
+		want{"low", r.Mean.Low, -1.58628380, 1e-7}, want{"high", r.Mean.High, 2.54806547, 1e-7},
+		want{"z", r.Mean.Statistic, 1.46085275, 1e-7},
+	)
+}
+
+// No spread on a fine grid has a higher likelihood than the best one, whatever
+// the mean.
+func TestBestSpreadIsHighest(t *testing.T) {
+	l := newLogistic(twoMaxima, 1.96)
+	common, err := l.bestMean(0, 0)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := l.search(common); err != nil {
+		t.Fatal(err)
+	}
+	small, large := false, false
+	for mu := -3.0; mu <= 5; mu += 0.25 {
+		best, err := l.bestSpreadAnywhere(mu)
+		if err != nil {
+			t.Fatal(err)
+		}
+		small, large = small || best.tau < 1, large || best.tau > 1
+		for tau := 0.0; tau < 20; tau += 0.05 {
+			if p, err := l.at(mu, tau); err != nil || p.lnL > best.lnL+1e-9 {
+				t.Fatalf("mean %v: %v at spread %v, %v at the best %v; %v", mu, p.lnL, tau, best.lnL, best.tau, err)
+			}
+		}
+	}
+	if !small || !large {
+		t.Error("the best spread stays on one side of 1: the means try nothing")
+	}
+}
+
 // newtonLogistic fits a logistic model with an intercept for each study and one
 // coefficient for treatment, coded ±½, by Newton's method on the full matrix, and
 // returns the coefficient, its standard error and the deviance.
