@@ -75,7 +75,7 @@ func FuzzFilter(f *testing.F) {
 			return
 		}
 		all := func(string) string { return value }
-		if filter.Match(all) != filter.Match(all) || len(filter.Columns()) == 0 {
+		if first, again := filter.Match(all), filter.Match(all); first != again || len(filter.Columns()) == 0 {
 			t.Errorf("%q matches %q differently, or looks at nothing", text, value)
 		}
 	})
