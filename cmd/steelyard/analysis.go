@@ -9,6 +9,7 @@ import (
 	"github.com/urfave/cli/v2"
 
 	"steelyard/ingest"
+	"steelyard/ingest/rules"
 	"steelyard/meta/choice"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
@@ -20,30 +21,38 @@ const mostInput = 200 << 20
 // analyse reads the call's file and runs the plan over it; want says which parts
 // beyond the pooled results.
 func analyse(c *cli.Context, want synthesis.Want) (*synthesis.Synthesis, error) {
+	s, _, err := analyseSheet(c, want)
+	return s, err
+}
+
+// analyseSheet is analyse that hands on the sheet too, as it was read and checked by
+// the catalogue of rules.
+func analyseSheet(c *cli.Context, want synthesis.Want) (*synthesis.Synthesis, *review.Extraction, error) {
 	path, err := oneFile(c)
 	if err != nil {
-		return nil, err
+		return nil, nil, err
 	}
 	if sameFile(path, c.String(flagOut)) {
-		return nil, &callError{"the input is never overwritten; choose another name for --out"}
+		return nil, nil, &callError{"the input is never overwritten; choose another name for --out"}
 	}
 	x, plan, err := readSheet(c, path)
 	if err != nil {
-		return nil, err
+		return nil, nil, err
 	}
 	if err := applySettings(c, plan); err != nil {
-		return nil, err
+		return nil, nil, err
 	}
+	rules.Apply(x, plan)
 	want.Outcomes = c.StringSlice(flagOutcome)
 	if want.Work, err = work(c); err != nil {
-		return nil, err
+		return nil, nil, err
 	}
 	s, err := synthesis.Run(c.Context, x, plan, want)
 	var unknown *choice.UnknownError
 	if errors.As(err, &unknown) {
-		return nil, &callError{err.Error()}
+		return nil, nil, &callError{err.Error()}
 	}
-	return s, err
+	return s, x, err
 }
 
 // readSheet reads a file, or standard input for "-".

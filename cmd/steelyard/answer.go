@@ -319,10 +319,10 @@ func (p *page) findings(s *synthesis.Synthesis) {
 		return strings.Compare(a.Rule, b.Rule)
 	})
 	p.line("")
-	p.line("Findings in the sheet")
+	p.line("Findings")
 	for i, f := range rest {
 		if i == mostFindings {
-			p.item("·", fmt.Sprintf("and %d more; --format json lists them all", len(rest)-i))
+			p.item("·", fmt.Sprintf("and %d more; see: steelyard check %s", len(rest)-i, s.Source.File))
 			return
 		}
 		p.item("·", findingText(s.Findings[f]))
@@ -350,6 +350,15 @@ func (p *page) readings(s *synthesis.Synthesis, finding int) {
 	}
 }
 
+// findingAbout returns the study that a finding is about, else its outcome, unless its
+// message names it.
+func findingAbout(f review.Finding) string {
+	if f.Study != "" || strings.Contains(f.Message, f.Outcome) {
+		return f.Study
+	}
+	return f.Outcome
+}
+
 func findingText(f review.Finding) string {
 	text := f.Severity.String()
 	if f.Rule != "" {
@@ -358,12 +367,12 @@ func findingText(f review.Finding) string {
 	if where := f.Place.String(); where != "" {
 		text += ", " + where
 	}
-	if f.Study != "" {
-		text += ", " + f.Study
+	if about := findingAbout(f); about != "" {
+		text += ", " + about
 	}
 	text += ": " + f.Message
 	if f.Accepted != "" {
-		text += " Accepted: " + f.Accepted
+		text += ". Accepted: " + f.Accepted
 	}
 	return text
 }

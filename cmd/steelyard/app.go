@@ -51,7 +51,7 @@ func newApp(s streams) *cli.App {
 		CustomAppHelpTemplate:     appHelp,
 		DisableSliceFlagSeparator: true,
 		Commands: slices.Concat(
-			[]*cli.Command{poolCommand()},
+			[]*cli.Command{checkCommand(), poolCommand()},
 			accrualCommands(),
 			[]*cli.Command{weighCommand(), chartCommand(), templateCommand()},
 		),

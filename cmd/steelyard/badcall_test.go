@@ -22,7 +22,7 @@ func TestBadCalls(t *testing.T) {
 		says []string
 	}{
 		{"pol x.csv", codeCall, []string{"did you mean pool?"}},
-		{"frobnicate", codeCall, []string{"the commands are: pool"}},
+		{"frobnicate", codeCall, []string{"the commands are: check, pool"}},
 		{"trials.csv", codeCall, []string{"steelyard pool trials.csv"}},
 		{"pool", codeCall, []string{"which file?"}},
 		{"pool a.csv b.csv", codeCall, []string{"2 are given", "quotes"}},

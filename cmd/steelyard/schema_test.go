@@ -15,6 +15,7 @@ import (
 // schemaFiles are the schemas that stand beside the code.
 var schemaFiles = map[string]any{
 	"../../meta/synthesis/steelyard-1.schema.json":       synthesis.Document{},
+	"../../meta/synthesis/steelyard-check-1.schema.json": synthesis.CheckDocument{},
 	"../../meta/synthesis/steelyard-weigh-1.schema.json": synthesis.WeighingDocument{},
 }
 
@@ -54,6 +55,10 @@ func TestSchema(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
+	check, err := compiler.Compile("../../meta/synthesis/steelyard-check-1.schema.json")
+	if err != nil {
+		t.Fatal(err)
+	}
 	header := "study,estimate,se\n"
 	for _, c := range []struct {
 		schema *jsonschema.Schema
@@ -73,6 +78,9 @@ func TestSchema(t *testing.T) {
 		{pool, "study,p,direction,n\nA,0.03,higher,50\n", "pool -"},
 		{pool, "study;md;se\nA;1,234;1\nB;2,234;1\n", "pool -"},
 		{pool, "study,OR,p,n treated,n control\nA,0.5,0.03,50,50\n", "pool - --measure standardised-mean-difference"},
+		{check, "", "check " + data + "demo.xlsx"},
+		{check, "", "check " + data + "findings/M1.csv"},
+		{check, "", "check " + data + "findings/C3.csv"},
 		{weigh, "", "weigh --z 20000"},
 		{weigh, "", "weigh --ratio --estimate 0.7 --se 0.1 --important 0.8 --df 5"},
 		{weigh, "", "weigh --p 0.03"},

@@ -47,7 +47,8 @@ func (s *Synthesis) read(ctx context.Context, x *review.Extraction, plan *review
 }
 
 // applied returns the extraction with a reading's numbers in place, and without
-// the errors of the same rule at the cells that it settles.
+// the errors at the cells that it settles; a finding about a whole column is settled
+// by each of its readings.
 func applied(x *review.Extraction, f review.Finding, reading review.Reading) *review.Extraction {
 	changed := *x
 	changed.Studies = slices.Clone(x.Studies)
@@ -76,8 +77,8 @@ func applied(x *review.Extraction, f review.Finding, reading review.Reading) *re
 		}
 	}
 	changed.Findings = slices.DeleteFunc(slices.Clone(x.Findings), func(g review.Finding) bool {
-		if g.Rule != f.Rule {
-			return false
+		if f.Place.Row == 0 && g.Rule == f.Rule && g.Place == f.Place && g.Outcome == f.Outcome {
+			return true
 		}
 		for _, n := range settled[keyOf(g.Place)] {
 			if n.Place.Col == g.Place.Col {

@@ -169,8 +169,12 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 				return nil, err
 			}
 		}
+		more, err := o.examine(ctx)
+		if err != nil {
+			return nil, err
+		}
 		s.Outcomes = append(s.Outcomes, *o)
-		s.Findings = append(s.Findings, findings...)
+		s.Findings = append(s.Findings, slices.Concat(findings, more)...)
 	}
 	if err := s.read(ctx, x, plan); err != nil {
 		return nil, err
