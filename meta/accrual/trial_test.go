@@ -72,6 +72,25 @@ func TestCommonEffectClosedForm(t *testing.T) {
 	}
 }
 
+// TestSpreadBetweenStudiesCounts: with equal standard errors the updated mean is
+// the plain one whatever τ² is, and restricted likelihood gives τ² = S² − s², so
+// that y_new has the variance S²/k + S². By hand: S² = 4, variance 16/3.
+func TestSpreadBetweenStudiesCounts(t *testing.T) {
+	q := Trial{Y: []float64{0, 2, 4}, SE: []float64{1, 1, 1}, Model: meta.Model{Level: 0.95}}
+	want := 2 + 1.6448536269514722*math.Sqrt(16./3)/4
+	sure := mustForesee(t, q, 1)
+	drawn, err := q.Simulate(background, 1, Draws{N: 20_000, Seed: 2})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if got := sure.Spread[4].Estimate; math.Abs(got-want) > 1e-3 {
+		t.Errorf("95 %% of updated means lie below %v, want %v", got, want)
+	}
+	if got := drawn.Spread[4].Estimate; math.Abs(got-want) > 0.04 { // 4·√(0.05·0.95/20,000)·sd/(4·φ(1.645)) = 0.035
+		t.Errorf("95 %% of simulated means lie below %v, want %v", got, want)
+	}
+}
+
 // TestQuadratureMatchesSimulation: every number within four Monte-Carlo errors.
 func TestQuadratureMatchesSimulation(t *testing.T) {
 	const n = 8_000

@@ -60,17 +60,10 @@ func survey(f func(float64) float64, lo, hi float64) (mass, error) {
 	return m, nil
 }
 
-// add appends a stretch between a peak and the foot of its slope, divided near
-// the peak whichever end that is.
+// add appends the stretch between a peak and the foot of its slope.
 func (m *mass) add(a, b float64) {
-	if !(b > a) {
-		return
-	}
-	cuts := []float64{a, a + (b-a)/16, b - (b-a)/16, b}
-	for i := 1; i < len(cuts); i++ {
-		if cuts[i] > cuts[i-1] {
-			m.panels = append(m.panels, [2]float64{cuts[i-1], cuts[i]})
-		}
+	if b > a {
+		m.panels = append(m.panels, [2]float64{a, b})
 	}
 }
 

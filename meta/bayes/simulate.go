@@ -148,8 +148,8 @@ const (
 	gridMost = 1 << 24
 )
 
-// newGrid places nodes from far below the smallest distance, where the integrand
-// no longer changes with τ, to far above the largest that a τ can draw.
+// newGrid places nodes from so far below the smallest distance that what lies
+// lower is a ten-thousandth part, to far above the largest that a τ can draw.
 func (d *studies) newGrid(tau float64) (*grid, error) {
 	step := gridFine / math.Sqrt(float64(max(d.k(), 4)))
 	smallest, largest := math.Inf(1), tau*tau
@@ -178,12 +178,8 @@ func (d *studies) newGrid(tau float64) (*grid, error) {
 	for j := range int(n) + 2 {
 		x := lo + step*float64(j)
 		m := d.at(math.Exp(x))
-		width := step
-		if j == 0 { // half a step, and all that lies below
-			width = 0.5*step + 1
-		}
 		g.total = append(g.total, m.w)
-		g.lnWeight = append(g.lnWeight, 2*m.lnC+d.prior.lnDensity(x)+x+math.Log(width))
+		g.lnWeight = append(g.lnWeight, 2*m.lnC+d.prior.lnDensity(x)+x+math.Log(step))
 		for _, v := range d.v {
 			g.w = append(g.w, 1/(v+math.Exp(2*x)))
 		}
