@@ -25,7 +25,7 @@ func LeaveOneOutOf(s *synthesis.Synthesis, o *synthesis.Outcome) (LeaveOneOutInp
 	}
 	in := LeaveOneOutInput{
 		Title: "What each " + one + " carries", Subtitle: accrualSubtitle(s, o, effectsText(o)+", pooled again without one "+one), Study: one,
-		Scale: accrualScale(o), Sides: sidesOf(s, o), Below: math.NaN(), Notes: biasNotes(o), Level: o.Result.Fit.Model.Level,
+		Scale: accrualScale(o), Sides: sidesOf(s, o), Below: math.NaN(), Notes: methodNotes(o), Level: o.Result.Fit.Model.Level,
 		All: omissionOf(o, o.Result.Fit.Mean),
 	}
 	if t := o.Accrual.Tipping; t != nil {
