@@ -50,7 +50,21 @@ func TestCommonEffectClosedForm(t *testing.T) {
 		between := func(a, b float64) float64 {
 			return max(0, numeric.NormalTail((a-mean)/spread)-numeric.NormalTail((b-mean)/spread))
 		}
+		// The evidence for a zone that is symmetrical falls as the mean leaves 0.
+		zone := evidence.Region{{Low: -0.4, High: 0.4}}
+		zoneSteps := func(mean float64) float64 {
+			r, err := evidence.Location{Estimate: mean, SE: 1 / math.Sqrt(total+w), DF: math.Inf(1)}.Region(zone, zone.Complement())
+			if err != nil {
+				t.Fatal(err)
+			}
+			return r.Steps()
+		}
+		turn, err := numeric.Root(func(mean float64) float64 { return zoneSteps(mean) - 1 }, 0, 0.5, 1e-10)
+		if err != nil {
+			t.Fatal(err)
+		}
 		for name, pair := range map[string][2]float64{
+			"zone 1 step":   {o.Zone.Passing[0].Value.Value, between(-turn, turn)},
 			"1 step":        {o.Passing[0].Value.Value, beyond(criticalZ(1), m, sd)},
 			"2 steps":       {o.Passing[1].Value.Value, beyond(criticalZ(2), m, sd)},
 			"½ step for H0": {o.Passing[2].Value.Value, 1 - beyond(criticalZ(-0.5), m, sd)},
