@@ -30,8 +30,10 @@ func accrualCommands() []*cli.Command {
 		{
 			name: "cumulative", usage: "the result as each study arrived",
 			description: "Studies enter by date; those of one date together unless --ties file. Without dates, and beyond\n" +
-				"a column named by --order, they enter in the order of the file. The model is refitted at each step.",
-			want:  func(*cli.Context) (synthesis.Want, error) { return synthesis.Want{Cumulative: true}, nil },
+				"a column named by --order, they enter in the order of the file. The model is refitted at each step.\n" +
+				"With --looks: how often looks at a growing review pass each step by chance alone.",
+			flags: looksFlags(),
+			want:  wantCumulative,
 			write: (*page).cumulative,
 		},
 		{

@@ -70,6 +70,7 @@ func (p *page) cumulative(s *synthesis.Synthesis, o *synthesis.Outcome) {
 		p.item("·", fmt.Sprintf("Each row starts from the stated prior of %s; the steps of rows are not multiplied together.", words.Probability(prior)))
 	}
 	p.item("·", orderNote(o.Accrual.Order))
+	p.looks(s, o)
 }
 
 // predictions writes the prediction interval of each step that has one.

@@ -10,6 +10,7 @@ import (
 
 	"steelyard/ingest"
 	"steelyard/ingest/rules"
+	"steelyard/meta/accrual"
 	"steelyard/meta/choice"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
@@ -49,7 +50,8 @@ func analyseSheet(c *cli.Context, want synthesis.Want) (*synthesis.Synthesis, *r
 	}
 	s, err := synthesis.Run(c.Context, x, plan, want)
 	var unknown *choice.UnknownError
-	if errors.As(err, &unknown) {
+	var input *accrual.InputError
+	if errors.As(err, &unknown) || errors.As(err, &input) {
 		return nil, nil, &callError{err.Error()}
 	}
 	return s, x, err

@@ -38,7 +38,8 @@ var chartKinds = []chartKind{
 		draw: laidOut(layout.ForestOf, layout.Forest),
 	},
 	{
-		name: "cumulative", usage: "how the evidence arrived, study by study", setting: "cumulative", want: wanting(synthesis.Want{Cumulative: true}),
+		name: "cumulative", usage: "how the evidence arrived, study by study", setting: "cumulative",
+		flags: slices.Concat(looksFlags(), workFlags()), want: wantCumulative,
 		draw: laidOut(layout.CumulativeOf, layout.Cumulative),
 	},
 	{

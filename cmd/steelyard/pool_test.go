@@ -199,6 +199,7 @@ func TestGoldenAnswers(t *testing.T) {
 		"weigh-f.txt":         {"weigh", "--f", "4.1", "--df", "2", "--df2", "30"},
 		"cumulative.txt":      {"cumulative", data + "demo.xlsx"},
 		"cumulative-bcg.txt":  {"cumulative", data + "checks/bcg_counts.csv", "--order", "latitude", "--ties", "file"},
+		"looks.txt":           {"cumulative", data + "checks/bcg_counts.csv", "--looks", "1000"},
 		"leave-one-out.txt":   {"leave-one-out", data + "demo.xlsx", "--below", "2"},
 		"influence.txt":       {"influence", data + "checks/bcg_counts.csv"},
 		"subsets.txt":         {"subsets", data + "demo.xlsx", "--outcome", "flare within 24 weeks"},

@@ -2,11 +2,13 @@ package layout
 
 import (
 	"fmt"
+	"math"
 	"strconv"
 	"strings"
 
 	"steelyard/forest/words"
 	"steelyard/meta"
+	"steelyard/meta/accrual"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
 	"steelyard/meta/review"
@@ -40,7 +42,7 @@ func CumulativeOf(s *synthesis.Synthesis, o *synthesis.Outcome) (CumulativeInput
 	}
 	var failed int
 	in.Points, failed = accrualPoints(o, in.Order != "")
-	in.Notes = accrualNotes(o)
+	in.Notes = append([]Note{looksNote(s, o.Accrual.Looks)}, biasNotes(o)...)
 	if failed > 0 {
 		in.Notes = append(in.Notes, Note{Head: "Left out", Text: fmt.Sprintf("%s of the points, where the %s so far cannot be pooled.", words.Count(failed), noun)})
 	}
@@ -72,6 +74,25 @@ func accrualPoints(o *synthesis.Outcome, labelled bool) (points []CumulativePoin
 		waiting = nil
 	}
 	return points, failed
+}
+
+// looksNote says what repeated looks do: how often they pass each step under no
+// effect, if that was simulated.
+func looksNote(s *synthesis.Synthesis, l *synthesis.Looks) Note {
+	if l == nil {
+		return Note{Head: "Repeated looks", Text: "each point is one look at growing data; the more looks, the likelier that chance alone passes a line at one of them."}
+	}
+	r := l.Scenarios[0]
+	pass := func(chances []accrual.Chance) string {
+		var all []string
+		for _, c := range chances {
+			all = append(all, words.Probability(c.Value.Value)+" for "+words.Odds(c.Steps*evidence.LnStep))
+		}
+		return strings.Join(all, ", ")
+	}
+	return Note{Head: "Repeated looks", Text: fmt.Sprintf("chance, were there no effect and τ %s, to pass a line at one of the %s from two %s on: %s; at the last look: %s (%s simulated sequences). "+
+		"With looks that never end each line is passed in time.",
+		words.Tau(math.Sqrt(r.Scenario.Tau2)), words.Number(r.Looks, "look", "looks"), words.Noun(s, 2), pass(r.AnyLook), pass(r.LastLook), words.Count(r.Sequences))}
 }
 
 // drawable returns an error if an outcome has no result whose evidence can be
@@ -144,12 +165,6 @@ func nameAndYear(study *review.Study) (name, year string) {
 		return study.Name, ""
 	}
 	return study.Name, year
-}
-
-// accrualNotes are those on repeated looks and on bias.
-func accrualNotes(o *synthesis.Outcome) []Note {
-	notes := []Note{{Head: "Repeated looks", Text: "each point is one look at growing data; the more looks, the likelier that chance alone passes a line at one of them."}}
-	return append(notes, biasNotes(o)...)
 }
 
 // biasNotes says that bias is not in the evidence while studies at high risk of it

@@ -17,6 +17,7 @@ import (
 type Accrual struct {
 	Order       Order // of Cumulative
 	Cumulative  []Entry
+	Looks       *Looks          // repeated looks at Cumulative
 	LeaveOneOut []meta.Omission // in the order of Outcome.Studies, as all rows here
 	Tipping     *meta.Tipping
 	Influence   []meta.Influence
@@ -76,6 +77,11 @@ func (o *Outcome) accrue(ctx context.Context, columns []review.Column, plan *rev
 		}
 		if err := o.cumulative(ctx, refit, groups, a, want.Work); err != nil {
 			return err
+		}
+		if want.Looks != nil {
+			if a.Looks, err = o.looks(ctx, groups, want); err != nil {
+				return err
+			}
 		}
 	}
 	if want.LeaveOneOut {

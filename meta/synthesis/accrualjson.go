@@ -11,6 +11,7 @@ import (
 type AccrualDocument struct {
 	Order       *OrderDocument      `json:"order,omitempty"`
 	Cumulative  []EntryDocument     `json:"cumulative,omitempty"`
+	Looks       *LooksDocument      `json:"repeated_looks,omitempty"`
 	LeaveOneOut []OmissionDocument  `json:"leave_one_out,omitempty"`
 	Tipping     *TippingDocument    `json:"tipping_set,omitempty"`
 	Influence   []InfluenceDocument `json:"influence,omitempty"`
@@ -144,6 +145,9 @@ func (o *Outcome) accrualDocument() *AccrualDocument {
 	}
 	for _, entry := range a.Cumulative {
 		d.Cumulative = append(d.Cumulative, o.entryDocument(entry))
+	}
+	if a.Looks != nil {
+		d.Looks = looksDocument(a.Looks)
 	}
 	for _, omission := range a.LeaveOneOut {
 		d.LeaveOneOut = append(d.LeaveOneOut, o.omissionDocument(omission))

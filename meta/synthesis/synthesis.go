@@ -22,6 +22,7 @@ import (
 type Want struct {
 	Outcomes    []string
 	Cumulative  bool
+	Looks       *LooksWanted // repeated looks, beside Cumulative; nil: not wanted
 	LeaveOneOut bool
 	Influence   bool
 	Subsets     *SubsetsWanted // nil: not wanted
