@@ -70,12 +70,18 @@ func TestExactIsQuick(t *testing.T) {
 
 // Source: testdata/checks/PUBLISHED.md §4: Egger & Davey Smith, BMJ
 // 1995;310:752-754, in whose cumulative analysis seven trials sufficed for
-// P < 0.001 [seen]; odds ratios and limits recalculated there.
+// P < 0.001 [seen]; odds ratios and limits recalculated there, with O − E and V.
 func TestMagnesiumCumulative(t *testing.T) {
 	o := accrualDocument(t, "cumulative", magnesium, "--method", "peto", "--order", "order")
 	want := [][3]float64{
 		{0.4515, 0.0454, 4.4901}, {0.3787, 0.1878, 0.7638}, {0.3654, 0.1967, 0.6789}, {0.3823, 0.2088, 0.7000},
 		{0.5373, 0.3225, 0.8951}, {0.4586, 0.2853, 0.7372}, {0.4496, 0.2832, 0.7138}, {0.6468, 0.5076, 0.8243},
+	}
+	difference := []float64{-0.5789, -7.0000, -2.5000, -0.0213, 0.9396, -4.1304, -1.0833, -14.0898}
+	variance := []float64{0.7280, 7.0781, 2.2049, 0.4944, 4.2422, 2.3011, 0.9345, 47.3503}
+	for i, study := range o.Studies {
+		compared(t, study.Study, study.Estimate, difference[i]/variance[i], 2e-4)
+		compared(t, study.Study+" weight", study.Weight, variance[i]/65.3336, 1e-5)
 	}
 	if len(o.Cumulative) != len(want) {
 		t.Fatalf("%d entries", len(o.Cumulative))

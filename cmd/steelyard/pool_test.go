@@ -193,6 +193,7 @@ func TestGoldenAnswers(t *testing.T) {
 		"pool-bcg.txt":        {"pool", data + "checks/bcg_counts.csv"},
 		"pool-bcg-or.txt":     {"pool", data + "checks/bcg_counts.csv", "--measure", "odds ratio", "--better", "lower", "--important", "0.8"},
 		"pool-demo.txt":       {"pool", data + "demo.xlsx"},
+		"pool-methods.txt":    {"pool", data + "demo.xlsx", "--outcome", "serious harm", "--method", "binomial-normal", "--all-methods"},
 		"pool-schools.txt":    {"pool", data + "checks/eight_schools.csv", "--measure", "mean difference", "--effects", "common"},
 		"weigh-ratio.txt":     {"weigh", "--ratio", "--estimate", "0.71", "--ci-low", "0.58", "--ci-high", "0.86", "--important", "0.8"},
 		"weigh-z.txt":         {"weigh", "--z", "2"},

@@ -66,9 +66,13 @@ func TestSchema(t *testing.T) {
 		args   string
 	}{
 		{pool, "", "pool " + data + "demo.xlsx"},
+		{pool, "", "pool " + data + "demo.xlsx --beliefs"},
 		{pool, "", "pool " + data + "checks/bcg_counts.csv --effects common"},
 		{pool, "", "pool " + data + "checks/bcg_lor.csv --interval henmi-copas"},
 		{pool, "", "pool " + data + "checks/eight_schools.csv --important 5 --prediction bootstrap"},
+		{pool, "", "pool " + bcgCounts + " --method binomial-normal --all-methods"},
+		{pool, "", "influence " + bcgCounts + " --method conditional-exact"},
+		{pool, zeroCells, "pool - --all-methods"},
 		{pool, header + "A,1,0.5\n", "pool -"},
 		{pool, header + "A,1,0.5\nB,x,1\n", "pool -"},
 		{pool, header + "A,700,0.5\nB,-700,1\n", "pool - --measure hazard_ratio"},
