@@ -16,6 +16,7 @@ type fit struct {
 	measure effect.Measure // Unspecified for what is no effect measure
 	value   float64        // as it would be reported
 	log     bool           // values are compared as logarithms
+	open    float64        // what rounding of the row's own numbers leaves open
 }
 
 // compared is a row whose reported result is compared with its counts or means.
@@ -56,6 +57,13 @@ func (r *row) compared(a result) (v compared, ok bool) {
 		all, v.s = r.countFits(a, t)
 	} else if treated, control, ok := r.groups(); ok && !r.adjusted() {
 		all, v.s = meanFits(treated, control)
+		open := halfUnit(*r.at(review.MeanTreated)) + halfUnit(*r.at(review.MeanControl))
+		for i := range all {
+			all[i].open = open
+			if all[i].measure != effect.MeanDifference && !strings.HasPrefix(all[i].name, "mean difference") {
+				all[i].open = 2 * open / math.Min(treated.SD, control.SD) // the SDs are rounded as well
+			}
+		}
 	}
 	if len(all) == 0 {
 		return v, false
@@ -84,34 +92,34 @@ func (r *row) countFits(a result, t effect.Table) (all []fit, s float64) {
 			s = e.SE
 		}
 		if logged || r.measure == effect.Unspecified {
-			all = append(all, fit{"log " + m.String(), m, e.Y, false}, fit{"log " + m.String() + " to base 10", effect.Unspecified, e.Y / math.Ln10, false})
+			all = append(all, fit{"log " + m.String(), m, e.Y, false, 0}, fit{"log " + m.String() + " to base 10", effect.Unspecified, e.Y / math.Ln10, false, 0})
 		}
 		if logged {
 			continue
 		}
-		all = append(all, fit{m.String(), m, math.Exp(e.Y), true}, fit{m.String() + " the other way round", effect.Unspecified, math.Exp(-e.Y), true})
+		all = append(all, fit{m.String(), m, math.Exp(e.Y), true, 0}, fit{m.String() + " the other way round", effect.Unspecified, math.Exp(-e.Y), true, 0})
 		if m == effect.RiskRatio {
-			all = append(all, fit{"relative risk reduction, 1 less the risk ratio", effect.Unspecified, 1 - math.Exp(e.Y), false})
+			all = append(all, fit{"relative risk reduction, 1 less the risk ratio", effect.Unspecified, 1 - math.Exp(e.Y), false, 0})
 		}
 	}
 	if logged {
 		return all, s
 	}
 	difference := t.Events1/t.Total1 - t.Events2/t.Total2
-	return append(all, fit{"risk difference", effect.RiskDifference, difference, false}, fit{"risk difference in per cent", effect.Unspecified, 100 * difference, false}), s
+	return append(all, fit{"risk difference", effect.RiskDifference, difference, false, 0}, fit{"risk difference in per cent", effect.Unspecified, 100 * difference, false, 0}), s
 }
 
 // meanFits returns what two arms of means may be reported as, and the standard error
 // of their difference.
 func meanFits(treated, control effect.Arm) (all []fit, s float64) {
 	difference := treated.Mean - control.Mean
-	all = []fit{{"mean difference", effect.MeanDifference, difference, false}, {"mean difference with the other sign", effect.Unspecified, -difference, false}}
+	all = []fit{{"mean difference", effect.MeanDifference, difference, false, 0}, {"mean difference with the other sign", effect.Unspecified, -difference, false, 0}}
 	if e, _, err := effect.FromArms(effect.StandardisedMeanDifference, treated, control); err == nil {
-		all = append(all, fit{"standardised mean difference", effect.StandardisedMeanDifference, e.Y, false},
-			fit{"standardised mean difference with the other sign", effect.Unspecified, -e.Y, false})
+		all = append(all, fit{"standardised mean difference", effect.StandardisedMeanDifference, e.Y, false, 0},
+			fit{"standardised mean difference with the other sign", effect.Unspecified, -e.Y, false, 0})
 	}
 	if treated.Mean > 0 && control.Mean > 0 {
-		all = append(all, fit{"ratio of means", effect.RatioOfMeans, treated.Mean / control.Mean, true})
+		all = append(all, fit{"ratio of means", effect.RatioOfMeans, treated.Mean / control.Mean, true, 0})
 	}
 	return all, math.Sqrt(treated.SD*treated.SD/treated.N + control.SD*control.SD/control.N)
 }
@@ -135,7 +143,7 @@ func (v *compared) agrees(f fit) bool {
 	case !f.log:
 		allowed = slack * math.Max(math.Abs(f.value), v.s)
 	}
-	return math.Abs(b.gap(box{at, at})) <= allowed
+	return math.Abs(b.gap(box{at, at})) <= allowed+f.open
 }
 
 // matching returns the fit of a measure among those that agree.

@@ -66,18 +66,21 @@ func (c *checker) symmetry(r *row, a *result) {
 }
 
 // unevenness returns by how much of half their width the limits' middle lies beside
-// the estimate, as the numbers stand and as logarithms; ok is false unless all
-// three are above 0.
+// the estimate: as the numbers stand, and as logarithms beyond what rounding
+// explains; ok is false unless all three are above 0 and in order.
 func (a *result) unevenness() (raw, logged float64, ok bool) {
 	if a.estimate == nil || !a.hasLimits() {
 		return 0, 0, false
 	}
 	e, l, u := a.estimate.Value, a.low.Value, a.high.Value
-	if !(0 < l && l < e && e < u) {
+	at, low, high := boxOf(*a.estimate), boxOf(*a.low), boxOf(*a.high)
+	if !(0 < low.low && l < e && e < u) {
 		return 0, 0, false
 	}
 	raw = math.Abs((l+u)/2-e) / ((u - l) / 2)
-	logged = math.Abs((math.Log(l)+math.Log(u))/2-math.Log(e)) / ((math.Log(u) - math.Log(l)) / 2)
+	low, high = low.mapped(math.Log), high.mapped(math.Log)
+	middle := box{(low.low + high.low) / 2, (low.high + high.high) / 2}
+	logged = math.Abs(middle.gap(at.mapped(math.Log))) / ((math.Log(u) - math.Log(l)) / 2)
 	return raw, logged, true
 }
 

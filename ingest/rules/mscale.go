@@ -66,13 +66,13 @@ func (c *checker) deviations(rows []*row) {
 // deviation compares a row's SD with the median of all: a standard error in its
 // place (M2), or a range between quartiles (M9).
 func (c *checker) deviation(r *row, sd, n float64, usual scale, k int) {
-	const apart, within, quartiles, clear = 3.0, 1.5, 1.35, 3.5
+	const apart, within, quartiles, clear, enough, closest = 3.0, 1.5, 1.35, 3.5, 8, 0.07
 	center := math.Exp(usual.center)
 	ratio := sd / center
 	switch asError := sd * math.Sqrt(n) / center; {
 	case ratio < 1/apart && 1/within <= asError && asError <= within:
 		c.add(r, review.Warning, "M2", review.SDTreated, fmt.Sprintf("the SDs are about %s where the other studies have a median of %s; times the root of the number of people they would be %s: are they standard errors?", shown(sd), shown(center), shown(sd*math.Sqrt(n))), r.asErrors()...)
-	case k >= 6 && near(ratio, quartiles, 0.1) && math.Log(ratio) > clear*usual.seen:
+	case k >= enough && near(ratio, quartiles, 0.1) && math.Log(ratio) > clear*math.Max(usual.seen, closest):
 		c.add(r, review.Warning, "M9", review.SDTreated, fmt.Sprintf("the SDs are about %s, which is %.2f times the median of the other studies (%s); a range between quartiles is about 1.35 SDs: was that entered?", shown(sd), ratio, shown(center)))
 	}
 }

@@ -14,6 +14,8 @@ import (
 	"steelyard/meta/synthesis"
 )
 
+var catalogue = rules.Catalogue
+
 const sheets = "../../testdata/findings/"
 
 // found reads a sheet and returns all that is found in it: by the reader, by the
