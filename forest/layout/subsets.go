@@ -206,7 +206,7 @@ func (c *subsets) page() Drawing {
 	d.Items = append(d.Items, c.titles.items(1, 1)...)
 	d.Items = append(d.Items,
 		Group{ID: "density", Items: c.densityItems()},
-		Group{ID: "ladder", Items: c.ladderItems()},
+		Group{ID: "ladder", Items: c.ladder.items(c.plot, c.metrics.second)},
 		Group{ID: "heads", Items: c.headItems()},
 		Group{ID: "lines", Items: c.lineItems()},
 		Group{ID: "outlines", Items: c.outlines()},

@@ -45,7 +45,7 @@ func (c *subsets) placeLabels() []Item {
 	for _, line := range c.uprightLines() {
 		l.xs = append(l.xs, line.x)
 	}
-	for _, line := range c.stepLines() {
+	for _, line := range c.ladder.stepLines(c.metrics.second) {
 		l.ys = append(l.ys, c.ladder.y(line.steps))
 	}
 	all := "All " + words.Count(c.in.Full.K)

@@ -28,7 +28,7 @@ func (c *subsets) shareTexts() []subsetsShare {
 			all = append(all, subsetsShare{y, shareText(share), text})
 		}
 	}
-	s, every := c.in.Shares, int(math.Min(c.labelEvery(), mostSteps))
+	s, every := c.in.Shares, int(math.Min(c.ladder.labelEvery(c.metrics.second), mostSteps))
 	add(0, s.Reach[0], "for an effect")
 	for i, name := range evidence.WordNames() {
 		if i > 0 && i%every == 0 {

@@ -99,6 +99,7 @@ type ResultDocument struct {
 	Posterior     []PosteriorDocument     `json:"posterior,omitempty"`
 	Doubter       *DoubterDocument        `json:"doubters_prior,omitempty"`
 	Integrated    *IntegratedDocument     `json:"integrated,omitempty"`
+	Beliefs       *BeliefsDocument        `json:"beliefs,omitempty"`
 	Regions       []RegionDocument        `json:"regions,omitempty"`
 	Caveats       []string                `json:"caveats,omitempty"`
 	*AccrualDocument

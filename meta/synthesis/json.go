@@ -199,7 +199,7 @@ func namedValues(values []effect.Value, row *review.Study) map[string]float64 {
 
 func (o *Outcome) resultDocument(plan *review.Plan) *ResultDocument {
 	r, fit := o.Result, o.Result.Fit
-	d := &ResultDocument{Pooled: o.pooledDocument(fit), Without: subsetDocument(r.Without, o.Analysis.NullMissing), Integrated: integratedDocument(r.Integrated)}
+	d := &ResultDocument{Pooled: o.pooledDocument(fit), Without: subsetDocument(r.Without, o.Analysis.NullMissing), Integrated: integratedDocument(r.Integrated), Beliefs: o.Beliefs.document()}
 	if !o.Analysis.NullMissing {
 		d.Doubter = &DoubterDocument{Level: r.DoubtersPrior.Posterior, Prior: r.DoubtersPrior.Prior}
 	}

@@ -27,6 +27,7 @@ type Want struct {
 	Influence   bool
 	Subsets     *SubsetsWanted // nil: not wanted
 	Methods     bool           // all methods for counts side by side
+	Beliefs     bool           // what sceptics make of the evidence
 	Below       *float64       // steps under which the tipping set brings the evidence; nil: not wanted
 	Work        meta.Work      // how all this is done; its progress starts anew with each part
 }
@@ -57,6 +58,7 @@ type Outcome struct {
 	Notes    []string // what was assumed, in sentences
 	Accrual  *Accrual // nil unless some of it was wanted
 	Methods  *Methods // all methods side by side; nil unless wanted
+	Beliefs  *Beliefs // what sceptics make of the evidence; nil unless wanted
 }
 
 // Analysis is what was settled before pooling, null and thresholds on the
@@ -169,6 +171,9 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 			if err := o.compare(plan); err != nil {
 				return nil, err
 			}
+		}
+		if want.Beliefs {
+			o.believe()
 		}
 		more, err := o.examine(ctx)
 		if err != nil {
