@@ -108,6 +108,7 @@ func (p *page) outcome(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	p.pValues(o)
 	p.regions(o)
 	p.remarks(o)
+	p.sceptics(o)
 	p.methods(s, o)
 }
 
@@ -237,18 +238,23 @@ func (p *page) beliefs(r *synthesis.Result) {
 	if len(r.Posterior) == 0 {
 		return
 	}
+	p.beliefTable(r.Posterior)
+	p.row("", words.Doubter(r.DoubtersPrior))
+}
+
+// beliefTable writes probabilities before over those after.
+func (p *page) beliefTable(beliefs []synthesis.Belief) {
 	const column = 8
 	perLine := (answerWidth - labelWidth) / column
-	for from := 0; from < len(r.Posterior); from += perLine {
+	for from := 0; from < len(beliefs); from += perLine {
 		before, after := "", ""
-		for _, b := range r.Posterior[from:min(from+perLine, len(r.Posterior))] {
+		for _, b := range beliefs[from:min(from+perLine, len(beliefs))] {
 			before += pad(words.Probability(b.Prior), column)
 			after += pad(words.Probability(b.Posterior), column)
 		}
 		p.line("  " + pad("Belief before", labelWidth) + before)
 		p.line("  " + pad("becomes", labelWidth) + after)
 	}
-	p.row("", words.Doubter(r.DoubtersPrior))
 }
 
 // scatter writes how much the studies differ.

@@ -55,6 +55,10 @@ var chartKinds = []chartKind{
 		flags: slices.Concat(subsetsFlags(), workFlags()), want: wantSubsets,
 		draw: laidOut(layout.SubsetsOf, layout.Subsets),
 	},
+	{
+		name: "prior-sensitivity", usage: "evidence by the width of a prior", setting: "pool", want: wanting(synthesis.Want{Beliefs: true}),
+		draw: laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity),
+	},
 }
 
 // wanting asks for the same whatever the flags.

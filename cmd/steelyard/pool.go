@@ -9,8 +9,12 @@ import (
 	"steelyard/meta/synthesis"
 )
 
-// flagAllMethods asks pool for a comparison of methods.
-const flagAllMethods = "all-methods"
+// Names of pool's own flags: flagAllMethods asks for a comparison of methods,
+// flagBeliefs for what sceptics make of the evidence.
+const (
+	flagAllMethods = "all-methods"
+	flagBeliefs    = "beliefs"
+)
 
 func poolCommand() *cli.Command {
 	return &cli.Command{
@@ -22,6 +26,7 @@ func poolCommand() *cli.Command {
 			"holds settings; flags go before it.",
 		Flags: slices.Concat(sheetFlags(), settingFlags("pool"), []cli.Flag{
 			&cli.BoolFlag{Name: flagAllMethods, Usage: "besides, the results of all methods for counts and all zero-cell corrections side by side, and which are apt here"},
+			&cli.BoolFlag{Name: flagBeliefs, Usage: "besides, what sceptics make of the evidence: beliefs over a range of priors, the scepticism limit, Bayes factors by the scale of a prior and their bound"},
 			formatFlag(),
 		}, outputFlags()),
 		Action: pool,
@@ -33,7 +38,7 @@ func pool(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	s, err := analyse(c, synthesis.Want{Methods: c.Bool(flagAllMethods)})
+	s, err := analyse(c, synthesis.Want{Methods: c.Bool(flagAllMethods), Beliefs: c.Bool(flagBeliefs)})
 	if err != nil {
 		return err
 	}
