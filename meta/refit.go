@@ -29,6 +29,22 @@ type Foreseeing interface {
 	Prediction() *Prediction
 }
 
+// Sparing is a Refit that can leave out what only the interval needs.
+type Sparing interface {
+	Refit
+	// Point is Mean for what asks for the estimate and its evidence alone: these are
+	// the same, bit for bit, while the limits may be rougher.
+	Point(rows []int) (Mean, error)
+}
+
+// point pools rows as sparingly as the method can.
+func point(r Refit, rows []int) (Mean, error) {
+	if s, ok := r.(Sparing); ok {
+		return s.Point(rows)
+	}
+	return r.Mean(rows)
+}
+
 // Pairs is the Refit of estimates with standard errors under a model. It fits in
 // scratch space of its own: once it has seen its largest set, Mean allocates
 // nothing.

@@ -278,7 +278,7 @@ func (p *subsetPooler) pool(s subset) subsetPoint {
 		p.rows = rowsOf(p.rows[:0], s.mask)
 		rows = p.rows
 	}
-	mean, err := p.Mean(rows)
+	mean, err := point(p.Refit, rows)
 	if err != nil {
 		return subsetPoint{failed: true}
 	}

@@ -26,7 +26,7 @@ import (
 // Sources: Turner, Omar, Yang, Goldstein & Thompson (2000), Statistics in
 // Medicine 19:3417-3432; Jackson, Law, Stijnen, Viechtbauer & White (2018),
 // Statistics in Medicine 37:1059-1085 (both from memory).
-func (m Model) binomialNormal(tables []effect.Table, whole bool) (*Result, error) {
+func (m Model) binomialNormal(tables []effect.Table, d detail) (*Result, error) {
 	if len(tables) < 2 {
 		m.Effects = meta.CommonEffect
 	}
@@ -42,7 +42,7 @@ func (m Model) binomialNormal(tables []effect.Table, whole bool) (*Result, error
 	if m.Effects == meta.CommonEffect {
 		r, err = l.commonResult(m, common)
 	} else {
-		r, err = l.randomResult(m, common, whole)
+		r, err = l.randomResult(m, common, d)
 	}
 	if err != nil {
 		return nil, err

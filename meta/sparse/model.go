@@ -105,18 +105,34 @@ type Heterogeneity struct {
 // an *UnboundedError where BinomialNormal has no largest likelihood or no limit.
 // A nil error guarantees finite numbers throughout; the degrees of freedom of
 // the mean alone are +Inf, for a normal law.
-func (m Model) Fit(tables []effect.Table) (*Result, error) { return m.fit(tables, true) }
+func (m Model) Fit(tables []effect.Table) (*Result, error) { return m.fit(tables, everything) }
 
 // Refit is Fit for the mean alone. It spares what only Fit returns.
 func (m Model) Refit(tables []effect.Table) (meta.Mean, error) {
-	r, err := m.fit(tables, false)
+	return m.mean(tables, meanOnly)
+}
+
+// mean returns the mean of a fit.
+func (m Model) mean(tables []effect.Table, d detail) (meta.Mean, error) {
+	r, err := m.fit(tables, d)
 	if err != nil {
 		return meta.Mean{}, err
 	}
 	return r.Mean, nil
 }
 
-func (m Model) fit(tables []effect.Table, whole bool) (*Result, error) {
+// detail is how much of a result is worked out.
+type detail int
+
+// From the estimate with its evidence, whose limits are those of a normal law
+// where others cost much, to everything.
+const (
+	pointOnly detail = iota
+	meanOnly
+	everything
+)
+
+func (m Model) fit(tables []effect.Table, d detail) (*Result, error) {
 	m, err := m.resolve()
 	if err != nil {
 		return nil, err
@@ -134,7 +150,7 @@ func (m Model) fit(tables []effect.Table, whole bool) (*Result, error) {
 	case ConditionalExact:
 		r, err = m.conditionalExact(used)
 	default:
-		r, err = m.binomialNormal(used, whole)
+		r, err = m.binomialNormal(used, d)
 	}
 	if boundary, ok := err.(*BoundaryError); ok {
 		boundary.Method, boundary.Measure, boundary.Tally = m.Method, m.Measure, tally

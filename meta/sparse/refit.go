@@ -43,11 +43,21 @@ func (t *Tables) Clone() meta.Refit { return &Tables{model: t.model, tables: t.t
 // Mean pools the tables of the given rows; see meta.Refit. Errors are those of
 // Model.Fit.
 func (t *Tables) Mean(rows []int) (meta.Mean, error) {
+	return t.model.Refit(t.choose(rows))
+}
+
+// Point is Mean without what only its interval needs; see meta.Sparing.
+func (t *Tables) Point(rows []int) (meta.Mean, error) {
+	return t.model.mean(t.choose(rows), pointOnly)
+}
+
+// choose returns the tables of the given rows, until the next choice.
+func (t *Tables) choose(rows []int) []effect.Table {
 	t.part = t.part[:0]
 	for _, row := range rows {
 		t.part = append(t.part, t.tables[row])
 	}
-	return t.model.Refit(t.part)
+	return t.part
 }
 
 // Pooled returns the result in the form that every pooling method shares. Its

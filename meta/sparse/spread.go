@@ -21,7 +21,7 @@ const (
 const spreadTolerance = 1e-8
 
 // randomResult is the result with τ at its maximum; common is the place at τ = 0.
-func (l *logistic) randomResult(m Model, common place, whole bool) (*Result, error) {
+func (l *logistic) randomResult(m Model, common place, d detail) (*Result, error) {
 	if err := l.search(common); err != nil {
 		return nil, err
 	}
@@ -41,17 +41,18 @@ func (l *logistic) randomResult(m Model, common place, whole bool) (*Result, err
 	if err != nil {
 		return nil, err
 	}
-	low, err := l.limit(top, -se, l.bestSpreadAnywhere)
-	if err != nil {
-		return nil, err
-	}
-	high, err := l.limit(top, se, l.bestSpreadAnywhere)
-	if err != nil {
-		return nil, err
+	low, high := top.mu-l.critical*se, top.mu+l.critical*se
+	if d > pointOnly {
+		if low, err = l.limit(top, -se, l.bestSpreadAnywhere); err != nil {
+			return nil, err
+		}
+		if high, err = l.limit(top, se, l.bestSpreadAnywhere); err != nil {
+			return nil, err
+		}
 	}
 	r := m.rooted(top.mu, se, signedRoot(top.lnL-atNull.lnL, top.mu, m.Null), low, high)
 	r.Weights, r.Mean.Tau2 = weights, top.tau*top.tau
-	if whole {
+	if d == everything {
 		r.Tau2, err = l.spreadLimits(top)
 	}
 	return r, err
