@@ -66,6 +66,16 @@ func accrualCommands() []*cli.Command {
 			want:        wantSubsets,
 			write:       (*page).subsets,
 		},
+		{
+			name: "next-trial", usage: "what one more study could change",
+			description: "The chance that the review, pooled anew with the next study, passes each step and that its\n" +
+				"interval excludes no effect or the important difference; over sizes of the study, and the smallest\n" +
+				"that suffices.\n" +
+				"Example: steelyard next-trial FILE --size 400 --control-risk 0.2",
+			flags: nextFlags(),
+			want:  wantNext,
+			write: (*page).next,
+		},
 	} {
 		commands = append(commands, kind.command())
 	}

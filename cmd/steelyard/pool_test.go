@@ -203,6 +203,8 @@ func TestGoldenAnswers(t *testing.T) {
 		"looks.txt":           {"cumulative", data + "checks/bcg_counts.csv", "--looks", "1000"},
 		"leave-one-out.txt":   {"leave-one-out", data + "demo.xlsx", "--below", "2"},
 		"influence.txt":       {"influence", data + "checks/bcg_counts.csv"},
+		"next-trial.txt":      {"next-trial", data + "demo.xlsx", "--outcome", "flare within 24 weeks", "--arms", "200,100", "--control-risk", "0.4"},
+		"help-next-trial.txt": {"next-trial", "--help"},
 		"subsets.txt":         {"subsets", data + "demo.xlsx", "--outcome", "flare within 24 weeks"},
 		"help-cumulative.txt": {"cumulative", "--help"},
 		"help.txt":            {"--help"},

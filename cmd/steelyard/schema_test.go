@@ -86,6 +86,8 @@ func TestSchema(t *testing.T) {
 		{check, "", "check " + data + "findings/M1.csv"},
 		{check, "", "check " + data + "findings/C3.csv"},
 		{pool, "", "cumulative " + data + "checks/bcg_counts.csv --looks 100"},
+		{pool, "", "next-trial " + data + "checks/bcg_counts.csv --size 100 --control-risk 0.1 --important 0.8"},
+		{pool, "", "next-trial " + data + "checks/bcg_counts.csv --se 0.1"},
 		{weigh, "", "weigh --z 20000"},
 		{weigh, "", "weigh --ratio --estimate 0.7 --se 0.1 --important 0.8 --df 5"},
 		{weigh, "", "weigh --p 0.03"},

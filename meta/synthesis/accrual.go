@@ -22,6 +22,7 @@ type Accrual struct {
 	Tipping     *meta.Tipping
 	Influence   []meta.Influence
 	Subsets     *Subsets
+	Next        *Next // what one more study could change
 }
 
 // Entry is a step of a cumulative analysis.
@@ -45,7 +46,7 @@ type Subsets struct {
 
 // accrual reports whether anything is wanted beyond the pooled result.
 func (w Want) accrual() bool {
-	return w.Cumulative || w.LeaveOneOut || w.Influence || w.Subsets != nil || w.Below != nil
+	return w.Cumulative || w.LeaveOneOut || w.Influence || w.Subsets != nil || w.Below != nil || w.Next != nil
 }
 
 // refit returns what pools any part of the outcome's studies by its method.
@@ -108,6 +109,11 @@ func (o *Outcome) accrue(ctx context.Context, columns []review.Column, plan *rev
 	}
 	if want.Subsets != nil {
 		if a.Subsets, err = o.subsets(ctx, refit, want); err != nil {
+			return err
+		}
+	}
+	if want.Next != nil {
+		if a.Next, err = o.next(ctx, *want.Next); err != nil {
 			return err
 		}
 	}

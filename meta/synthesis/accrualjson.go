@@ -16,6 +16,7 @@ type AccrualDocument struct {
 	Tipping     *TippingDocument    `json:"tipping_set,omitempty"`
 	Influence   []InfluenceDocument `json:"influence,omitempty"`
 	Subsets     *SubsetsDocument    `json:"subsets,omitempty"`
+	Next        *NextDocument       `json:"next_trial,omitempty"`
 }
 
 // OrderDocument says by what the studies enter: "date", "file" or a column.
@@ -171,6 +172,9 @@ func (o *Outcome) accrualDocument() *AccrualDocument {
 	}
 	if a.Subsets != nil {
 		d.Subsets = subsetsDocument(a.Subsets.Subsets)
+	}
+	if a.Next != nil {
+		d.Next = nextDocument(a.Next)
 	}
 	return d
 }

@@ -26,6 +26,7 @@ type Want struct {
 	LeaveOneOut bool
 	Influence   bool
 	Subsets     *SubsetsWanted // nil: not wanted
+	Next        *NextWanted    // what one more study could change; nil: not wanted
 	Methods     bool           // all methods for counts side by side
 	Beliefs     bool           // what sceptics make of the evidence
 	Below       *float64       // steps under which the tipping set brings the evidence; nil: not wanted
