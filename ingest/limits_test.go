@@ -80,19 +80,3 @@ func TestTidyKeepsTidyTexts(t *testing.T) {
 		t.Errorf("a tidy text is copied in %v pieces", n)
 	}
 }
-
-// TestFoldASCII: the quick way for plain names gives what the general one does.
-func TestFoldASCII(t *testing.T) {
-	for _, name := range []string{"Smith 2001", "smith, j. (2001)", "  A--B  ", "O'Neill", "...", "", "x", "Ünlü 2003"} {
-		general := foldName(name + "\u0301") // an accent, which is taken off, takes the general way
-		if name == "" || name == "..." {
-			general = name
-		}
-		if plain, ok := foldASCII(name); ok && plain != general || !ok && strings.ContainsAny(name, "abxs") {
-			t.Errorf("%q is folded to %q (%v), want %q", name, plain, ok, general)
-		}
-		if got := foldName(name); got != general {
-			t.Errorf("%q is folded to %q, want %q", name, got, general)
-		}
-	}
-}

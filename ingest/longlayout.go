@@ -35,7 +35,7 @@ func armRows(s *grid.Sheet, h *header) string {
 	rows := s.Rows[h.bottom+1:]
 	for i := range rows[:min(mostArmRows, len(rows))] {
 		if text := tidy(rows[i].Cell(name).Text); text != "" {
-			study = foldName(text)
+			study = review.FoldName(text)
 		}
 		text := tidy(rows[i].Cell(arm).Text)
 		if text == "" || study == "" {

@@ -8,20 +8,6 @@ import (
 	"steelyard/meta/review"
 )
 
-// TestFoldName wants the same name however it is typed, and other names apart.
-func TestFoldName(t *testing.T) {
-	for _, name := range []string{"Adams 2001", "ADAMS 2001", "Adams (2001)", "Adams, 2001", " Ádams  2001 ", "adams\u00a02001", "Ａdams-2001", "adams 2001"} {
-		if got := foldName(name); got != "adams 2001" {
-			t.Errorf("%q is folded to %q", name, got)
-		}
-	}
-	for name, want := range map[string]string{"Müller": "muller", "Ørsted & Weiß": "orsted weiss", "Łukasz": "lukasz", "?": "?", "Adams 2001a": "adams 2001a", "田中": "田中", "محمد 2010": "محمد 2010"} {
-		if got := foldName(name); got != want {
-			t.Errorf("%q is folded to %q, want %q", name, got, want)
-		}
-	}
-}
-
 // TestFootnotes tells texts below a table from studies without numbers.
 func TestFootnotes(t *testing.T) {
 	head := "study,estimate,se\nA,1,2\nB,1,2\n"

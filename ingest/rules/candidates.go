@@ -7,8 +7,6 @@ import (
 	"strings"
 	"unicode"
 
-	"golang.org/x/text/unicode/norm"
-
 	"steelyard/meta/review"
 )
 
@@ -80,22 +78,8 @@ func textPrint(texts ...string) print {
 	return print(h.Sum64())
 }
 
-// joined are letters that no decomposition takes apart.
-var joined = strings.NewReplacer("ß", "ss", "æ", "ae", "œ", "oe", "ø", "o", "ł", "l", "đ", "d", "ð", "d", "þ", "th", "ı", "i")
-
-// foldedWords brings a name to the words by which names are compared: small
-// letters without accents, and digits, whatever stands between them.
-func foldedWords(name string) []string {
-	bare := strings.Map(func(r rune) rune {
-		if unicode.Is(unicode.Mn, r) {
-			return -1
-		}
-		return r
-	}, norm.NFKD.String(name))
-	return strings.FieldsFunc(joined.Replace(strings.ToLower(bare)), func(r rune) bool {
-		return !unicode.IsLetter(r) && !unicode.IsDigit(r)
-	})
-}
+// foldedWords returns the words by which names are compared.
+func foldedWords(name string) []string { return strings.Fields(review.FoldName(name)) }
 
 // identity returns what tells one study from another: its id, else its name
 // without what stands in parentheses.

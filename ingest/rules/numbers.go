@@ -4,7 +4,6 @@ import (
 	"math"
 	"slices"
 	"strconv"
-	"strings"
 
 	"steelyard/meta/review"
 )
@@ -37,32 +36,9 @@ func (a box) finite() bool { return finite(a.low) && finite(a.high) }
 
 func finite(x float64) bool { return !math.IsNaN(x) && !math.IsInf(x, 0) }
 
-// halfUnit returns half a unit in the last decimal of a number as it was typed.
-func halfUnit(n review.Number) float64 { return 0.5 * math.Pow10(-decimals(n)) }
-
-// decimals counts the digits that a number as typed has after its decimal mark.
-// Where the text has no point, or is not the number itself, they are those of the
-// shortest text of the value.
-func decimals(n review.Number) int {
-	text := strings.TrimSpace(n.Place.Text)
-	point := strings.LastIndexAny(text, ".·")
-	if point < 0 || strings.ContainsAny(text, "eE%") {
-		text = strconv.FormatFloat(n.Value, 'f', -1, 64)
-		point = strings.LastIndexByte(text, '.')
-	}
-	if point < 0 {
-		return 0
-	}
-	return min(len(strings.TrimRight(text[point:], " \t%*"))-1, 15)
-}
-
-// typed returns a number as a reader of the sheet sees it.
-func typed(n review.Number) string {
-	if text := strings.TrimSpace(n.Place.Text); text != "" && len(text) < 12 {
-		return text
-	}
-	return shown(n.Value)
-}
+func halfUnit(n review.Number) float64 { return n.HalfUnit() }
+func decimals(n review.Number) int     { return n.Decimals() }
+func typed(n review.Number) string     { return n.Typed() }
 
 // shown returns a computed number with about three significant digits.
 func shown(x float64) string {
