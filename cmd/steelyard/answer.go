@@ -101,7 +101,7 @@ func (p *page) outcome(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	p.evidence(s, o)
 	p.beliefs(o.Result)
 	if fit.Mean.K > 1 {
-		p.scatter(fit)
+		p.scatter(o.Result)
 		p.otherModel(o)
 	}
 	p.converted(o)
@@ -258,11 +258,15 @@ func (p *page) beliefTable(beliefs []synthesis.Belief) {
 }
 
 // scatter writes how much the studies differ.
-func (p *page) scatter(fit *meta.Fit) {
+func (p *page) scatter(r *synthesis.Result) {
+	fit := r.Fit
 	if fit.Model.Effects == meta.RandomEffects {
 		p.row("Spread", words.Spread(fit))
 	}
 	p.row("Heterogeneity", words.Scatter(fit))
+	if r.Differing != nil {
+		p.row("", words.Differing(r.Differing))
+	}
 }
 
 // regions writes what the data say of an important difference.

@@ -161,6 +161,23 @@ func Scatter(fit *meta.Fit) string {
 	return fmt.Sprintf("%s; one common effect against %s unrelated ones: %s (no proof that the effects are alike)", test, k, OddsInSentence(-ratio))
 }
 
+// Differing words the evidence on heterogeneity with τ integrated over its prior.
+func Differing(r *bayes.Integrated) string {
+	ratio := r.Heterogeneity()
+	ln := ratio.Ln()
+	prior := TauPrior(r.Prior)
+	if r.Exceeded {
+		prior += ", which the estimate of τ exceeds twice: doubt it"
+	}
+	switch {
+	case math.Abs(math.Expm1(math.Abs(ln))) <= even:
+		return "even between effects that differ and one common effect; " + prior
+	case ln > 0:
+		return fmt.Sprintf("%s for effects that differ over one common effect: %s; %s", OddsInSentence(ln), Strength(ratio), prior)
+	}
+	return fmt.Sprintf("%s for one common effect over effects that differ, up to twofold too much: %s; %s", OddsInSentence(-ln), Strength(ratio), prior)
+}
+
 // Spread returns τ with its limits and the share of the scatter that it makes up:
 // "τ 0.13 (0 to 0.48); I² 25% (0% to 81%) of the scatter is beyond chance".
 func Spread(fit *meta.Fit) string {

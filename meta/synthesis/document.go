@@ -229,6 +229,7 @@ type HeterogeneityDocument struct {
 	H2        float64        `json:"h2"`
 	H2Tau     *float64       `json:"h2_tau,omitempty"`
 	EvidenceDocument
+	Integrated *IntegratedDocument `json:"integrated,omitempty"` // effects that differ over one common effect
 }
 
 // ShareDocument is a fraction with limits.

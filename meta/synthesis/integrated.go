@@ -6,6 +6,7 @@ import (
 	"steelyard/meta"
 	"steelyard/meta/bayes"
 	"steelyard/meta/effect"
+	"steelyard/meta/evidence"
 	"steelyard/meta/review"
 )
 
@@ -34,6 +35,25 @@ func (o *Outcome) integrate() *bayes.Integrated {
 		return nil
 	}
 	return result
+}
+
+// mostIntegrated bounds the studies whose differing is weighed with τ integrated:
+// the time grows with their number, to a tenth of a second here.
+const mostIntegrated = 1000
+
+// weighDiffering weighs effects that differ against one common effect, with τ
+// integrated over its usual prior; not where Q is not that of inverse variances,
+// or where the prior needs more studies.
+func (o *Outcome) weighDiffering() {
+	k := len(o.Studies)
+	if o.Result == nil || o.Analysis.Method != review.InverseVariance || k < 2 || k > mostIntegrated {
+		return
+	}
+	y, s := estimates(o.Studies)
+	null := y[0] // the mean is free: its null plays no part
+	if result, err := bayes.Integrate(y, s, null, o.tauPrior()); err == nil {
+		o.Result.Differing = result
+	}
 }
 
 // tauPrior returns the usual prior for τ of the outcome's measure: half-normal
@@ -75,12 +95,13 @@ type IntegratedDocument struct {
 	EvidenceDocument
 }
 
-func integratedDocument(r *bayes.Integrated) *IntegratedDocument {
+// integratedDocument writes one of the ratios of r; nil where r is nil.
+func integratedDocument(r *bayes.Integrated, ratio func(*bayes.Integrated) evidence.Ratio) *IntegratedDocument {
 	if r == nil {
 		return nil
 	}
 	return &IntegratedDocument{
 		Prior: r.Prior.Kind.String(), Scale: r.Prior.Scale, Exceeded: r.Exceeded,
-		EvidenceDocument: evidenceDocument(r.Effect()),
+		EvidenceDocument: evidenceDocument(ratio(r)),
 	}
 }

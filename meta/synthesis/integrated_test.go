@@ -1,6 +1,7 @@
 package synthesis
 
 import (
+	"fmt"
 	"math"
 	"testing"
 
@@ -54,5 +55,30 @@ func TestIntegratedOverSDs(t *testing.T) {
 	_, o := runOne(t, &s)
 	if r := o.Result.Integrated; r == nil || r.Prior.Kind != bayes.HalfNormal || math.Abs(r.Prior.Scale-4) > 1e-12 {
 		t.Errorf("%+v, want a half-normal prior of scale 4", r)
+	}
+}
+
+// TestDifferingStands: effects that differ are weighed for any number of studies
+// and either model, but not for one study, nor for two under a uniform prior.
+func TestDifferingStands(t *testing.T) {
+	for _, c := range []struct {
+		k        int
+		settings []string
+		stands   bool
+	}{
+		{1, []string{"measure", "risk ratio"}, false},
+		{2, []string{"measure", "risk ratio"}, true},
+		{2, []string{"measure", "mean difference"}, false},
+		{9, []string{"measure", "mean difference"}, true},
+		{9, []string{"measure", "risk ratio", "effects", "common"}, true},
+		{mostIntegrated + 1, []string{"measure", "risk ratio"}, false},
+	} {
+		var s sheet
+		for i := range c.k {
+			s.row(fmt.Sprintf("study %d", i), "", estimate(0.7+0.0002*float64(i), 0.15))
+		}
+		if _, o := runOne(t, &s, c.settings...); (o.Result.Differing != nil) != c.stands {
+			t.Errorf("%d studies, %v: %+v", c.k, c.settings, o.Result.Differing)
+		}
 	}
 }

@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"steelyard/meta"
+	"steelyard/meta/bayes"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
 	"steelyard/meta/review"
@@ -199,7 +200,7 @@ func namedValues(values []effect.Value, row *review.Study) map[string]float64 {
 
 func (o *Outcome) resultDocument(plan *review.Plan) *ResultDocument {
 	r, fit := o.Result, o.Result.Fit
-	d := &ResultDocument{Pooled: o.pooledDocument(fit), Without: subsetDocument(r.Without, o.Analysis.NullMissing), Integrated: integratedDocument(r.Integrated), Beliefs: o.Beliefs.document()}
+	d := &ResultDocument{Pooled: o.pooledDocument(fit), Without: subsetDocument(r.Without, o.Analysis.NullMissing), Integrated: integratedDocument(r.Integrated, (*bayes.Integrated).Effect), Beliefs: o.Beliefs.document()}
 	if !o.Analysis.NullMissing {
 		d.Doubter = &DoubterDocument{Level: r.DoubtersPrior.Posterior, Prior: r.DoubtersPrior.Prior}
 	}
@@ -214,7 +215,9 @@ func (o *Outcome) resultDocument(plan *review.Plan) *ResultDocument {
 		if fit.Model.Effects == meta.RandomEffects {
 			d.Tau = &TauDocument{Tau2: fit.Mean.Tau2, Low: fit.Tau2.Low, High: finite(fit.Tau2.High)}
 		}
-		d.Heterogeneity = heterogeneityDocument(fit)
+		if d.Heterogeneity = heterogeneityDocument(fit); d.Heterogeneity != nil {
+			d.Heterogeneity.Integrated = integratedDocument(r.Differing, (*bayes.Integrated).Heterogeneity)
+		}
 	}
 	if p := fit.Prediction; p != nil {
 		d.Prediction = &PredictionDocument{Low: p.Low, High: p.High, DF: finite(p.DF), Method: p.Method.String(), Widened: p.Widened}

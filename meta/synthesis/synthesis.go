@@ -128,6 +128,7 @@ type Result struct {
 	Regions       []Region
 	Without       *meta.Fit         // without the converted studies; nil if there are none, or no others
 	Integrated    *bayes.Integrated // with τ integrated over its prior; nil unless the studies are few
+	Differing     *bayes.Integrated // the same for effects that differ, whatever their number; nil where not weighed
 }
 
 // Belief is a probability of an effect before and after the data.
@@ -173,6 +174,7 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 				return nil, err
 			}
 		}
+		o.weighDiffering()
 		if want.Beliefs {
 			o.believe()
 		}
