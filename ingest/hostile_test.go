@@ -8,7 +8,6 @@ import (
 	"math"
 	"strings"
 	"testing"
-	"time"
 
 	"steelyard/ingest/grid"
 	"steelyard/meta/review"
@@ -37,7 +36,8 @@ func TestTextStaysText(t *testing.T) {
 	}
 }
 
-// TestHostileSheets wants an error or an answer, soon, of what no reviewer writes.
+// TestHostileSheets wants an error or an answer of what no reviewer writes; "make
+// soak" measures what it costs.
 func TestHostileSheets(t *testing.T) {
 	wide := strings.Repeat("x,", 9_999) + "x\n"
 	for name, data := range map[string]string{
@@ -49,13 +49,9 @@ func TestHostileSheets(t *testing.T) {
 		"zeros":                 "study,y,se\n\x00\x00\x00,\x00,\x00\n",
 		"quotes":                "study,y,se\n\"\"\"\",\"1\",\"\"\n",
 	} {
-		start := time.Now()
 		x, plan, err := Read(context.Background(), []byte(data), "a.csv", Options{})
 		if (err == nil) != (x != nil) || (err == nil) != (plan != nil) {
 			t.Errorf("%s: extraction %v with error %v", name, x != nil, err)
-		}
-		if took := time.Since(start); took > 2*time.Second {
-			t.Errorf("%s: took %v", name, took)
 		}
 	}
 }

@@ -132,7 +132,7 @@ func TestLooksInterrupted(t *testing.T) {
 	start := time.Now()
 	cancel()
 	code := <-done
-	if took := time.Since(start); code != codeInterrupted || out.Len() > 0 || took > time.Second {
+	if took := time.Since(start); code != codeInterrupted || out.Len() > 0 || took > 10*time.Second { // uninterrupted it takes minutes
 		t.Errorf("exit %d after %v, wrote %q", code, took, out.String())
 	}
 }

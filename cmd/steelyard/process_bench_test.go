@@ -22,6 +22,7 @@ func BenchmarkProcess(b *testing.B) {
 		{"call=version", []string{"--version"}},
 		{"call=pool/studies=13", []string{"pool", data + "checks/bcg_counts.csv"}},
 		{"call=pool/workbook=demo", []string{"pool", data + "demo.xlsx"}},
+		{"call=pool/method=conditional-exact", []string{"pool", data + "checks/bcg_counts.csv", "--method", "conditional-exact"}},
 		{"call=chart/studies=13", []string{"chart", "forest", data + "checks/bcg_counts.csv", "--overwrite", "--out", out}},
 	} {
 		b.Run(call.name, func(b *testing.B) {

@@ -13,21 +13,16 @@ import (
 	"time"
 )
 
-// frugal runs f and demands that it takes little time and allocates little in
-// all, most of which is garbage soon.
+// frugal runs f and demands that it allocates little in all, most of which is
+// garbage soon: so it cannot take long either.
 func frugal(t *testing.T, megabytes uint64, f func()) {
 	t.Helper()
 	var before, after runtime.MemStats
 	runtime.ReadMemStats(&before)
-	start := time.Now()
 	f()
-	took := time.Since(start)
 	runtime.ReadMemStats(&after)
 	if got := (after.TotalAlloc - before.TotalAlloc) >> 20; got > megabytes {
 		t.Errorf("%d MB were allocated, want at most %d", got, megabytes)
-	}
-	if took > 5*time.Second {
-		t.Errorf("took %v", took)
 	}
 }
 

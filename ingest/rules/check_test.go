@@ -6,7 +6,6 @@ import (
 	"math/rand/v2"
 	"strings"
 	"testing"
-	"time"
 
 	"github.com/google/go-cmp/cmp"
 	"pgregory.net/rapid"
@@ -174,22 +173,7 @@ func large(rows int, maker func(*rand.Rand) *clean) []byte {
 	return all.csv()
 }
 
-// TestSpeed wants 2,000 rows of one outcome to be looked through in 0.3 s; the limit
-// here is wider, for slow machines.
-func TestSpeed(t *testing.T) {
-	for name, maker := range map[string]func(*rand.Rand) *clean{"counts": cleanCounts, "means": cleanMeans, "ratios": cleanRatios} {
-		x, plan, err := ingest.Read(context.Background(), large(2000, maker), "a.csv", ingest.Options{})
-		if err != nil {
-			t.Fatal(err)
-		}
-		start := time.Now()
-		rules.Check(x, plan)
-		if took := time.Since(start); took > 2*time.Second {
-			t.Errorf("2,000 rows of %s took %s", name, took)
-		}
-	}
-}
-
+// BenchmarkCheck2000 looks through 2,000 rows of one outcome: 0.3 s is the aim.
 func BenchmarkCheck2000(b *testing.B) {
 	for name, maker := range map[string]func(*rand.Rand) *clean{"counts": cleanCounts, "means": cleanMeans, "ratios": cleanRatios} {
 		x, plan, err := ingest.Read(context.Background(), large(2000, maker), "a.csv", ingest.Options{})
