@@ -56,6 +56,11 @@ var chartKinds = []chartKind{
 		draw: laidOut(layout.SubsetsOf, layout.Subsets),
 	},
 	{
+		name: "next-trial", usage: "what the next study could change, over its size", setting: "next-trial",
+		flags: nextFlags(), want: wantNext,
+		draw: laidOut(layout.NextTrialOf, layout.NextTrial),
+	},
+	{
 		name: "prior-sensitivity", usage: "evidence by the width of a prior", setting: "pool", want: wanting(synthesis.Want{Beliefs: true}),
 		draw: laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity),
 	},

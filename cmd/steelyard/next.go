@@ -3,6 +3,7 @@ package main
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -170,35 +171,13 @@ func (p *page) sizes(n *synthesis.Next) {
 	columns = append(columns, column{head: "excludes none", right: true}, column{head: "steps", right: true})
 	var rows [][]string
 	for _, point := range n.Curve {
+		if !slices.Contains([]string{"1", "2", "5"}, strings.TrimRight(words.Linear(point.Size, 0), "0")) {
+			continue // the chart has finer steps
+		}
 		row := append([]string{words.People(point.Size), words.Linear(point.Outlook.SE, 3)}, chanceCells(point.Outlook.Passing)...)
 		rows = append(rows, append(row, words.Probability(point.Outlook.ExcludesNull.Value), words.Steps(point.Outlook.Expected.Value)))
 	}
 	p.table(columns, rows)
 	p.line("")
-	p.item("·", smallestText(n))
-}
-
-// smallestText says how large the next study must be, or that none suffices.
-func smallestText(n *synthesis.Next) string {
-	goal := fmt.Sprintf("%s with a chance of %s", words.Odds(n.Wanted.Toward*evidence.LnStep), words.Probability(n.Wanted.Chance))
-	at := n.Smallest.At
-	if n.Smallest.Found {
-		return fmt.Sprintf("The smallest size that reaches %s: %s people in all.", goal, words.People(n.Smallest.Size))
-	}
-	reason := "what is not known of the mean remains"
-	if n.Tau > 0 {
-		reason = fmt.Sprintf("the variance between studies (τ %s) and what is not known of the mean remain", words.Tau(n.Tau))
-	}
-	return fmt.Sprintf("No size reaches %s: %s however large one study is. The best chance of sizes up to ten million people is %s.",
-		goal, reason, words.Probability(passing(at.Outlook, n.Wanted.Toward)))
-}
-
-// passing is the chance of an outlook to reach a number of steps.
-func passing(o *accrual.Outlook, steps float64) float64 {
-	for _, c := range o.Passing {
-		if c.Steps == steps {
-			return c.Value.Value
-		}
-	}
-	return math.NaN()
+	p.item("·", "Smallest size: "+words.SmallestSize(n))
 }

@@ -2,11 +2,13 @@ package main
 
 import (
 	"context"
+	"fmt"
 	"math"
 	"os"
 	"strings"
 	"testing"
 
+	"steelyard/forest/words"
 	"steelyard/meta"
 	"steelyard/meta/accrual"
 	"steelyard/meta/synthesis"
@@ -146,8 +148,8 @@ func TestNextCalls(t *testing.T) {
 		{meansSheet, "next-trial - --size 100 --measure mean-difference --control-risk 0.2", codeCall, "leave --control-risk away"},
 		{"study,events,total\nA,3,50\nB,9,80\n", "next-trial - --se 0.2", codeDone, "state one with --null"},
 		{"study,estimate,se\nA,1,1\n", "next-trial - --se 0.2", codeDone, "steps expected"},
-		{"", "next-trial BCG --size 500 --control-risk 0.02", codeDone, "No size reaches 194 : 1 with a chance of 80%: the variance between studies (τ 0.56)"},
-		{"", "next-trial BCG --size 500 --control-risk 0.02 --toward 2 --chance 0.9", codeDone, "The smallest size that reaches 14 : 1 with a chance of 90%: 10 people"},
+		{"", "next-trial BCG --size 500 --control-risk 0.02", codeDone, "no size reaches 194 : 1 with a chance of 80%: the variance between studies (τ 0.56)"},
+		{"", "next-trial BCG --size 500 --control-risk 0.02 --toward 2 --chance 0.9", codeDone, "14 : 1 with a chance of 90% is reached from 10 people"},
 		{"", "next-trial BCG --se 0.2 --method mantel-haenszel --effects common", codeDone, "not by the method for counts"},
 	} {
 		args := strings.Fields(strings.ReplaceAll(c.args, "BCG", bcg))
@@ -155,5 +157,21 @@ func TestNextCalls(t *testing.T) {
 		if code != c.code || !strings.Contains(strings.Join(strings.Fields(stdout+stderr), " "), c.says) {
 			t.Errorf("%s: exit %d, want %d; want %q in:\n%s%s", c.args, code, c.code, c.says, stdout, stderr)
 		}
+	}
+}
+
+// TestChartNextTrial: the chart says what the command says, and refuses what has no
+// size.
+func TestChartNextTrial(t *testing.T) {
+	args := []string{"--size", "400", "--control-risk", "0.4"}
+	_, n := nextDocument(t, data+"demo.xlsx", append([]string{"--outcome", "flare within 24 weeks"}, args...)...)
+	svg := drawnSVG(t, append([]string{"next-trial"}, args...)...)
+	holds(t, svg, "people in each arm", "194 : 1", "Dashed upright: 200 people in each arm",
+		fmt.Sprintf("52 : 1 with a chance of 80%% is reached from %s people in all", words.People(n.Smallest.Size)))
+	holds(t, drawnSVG(t, "next-trial", "--arms", "300,100", "--control-risk", "0.4", "--width", "85", "--mono"), "people in all", `width="85mm"`)
+	out := t.TempDir() + "/f.svg"
+	_, stderr, code := call(t, "", "chart", "next-trial", data+"checks/bcg_counts.csv", "--se", "0.2", "--out", out)
+	if code != codeData || !strings.Contains(stderr, "--size or --arms in place of --se") {
+		t.Errorf("a standard error alone: exit %d, %s", code, stderr)
 	}
 }

@@ -40,8 +40,18 @@ const towardNone = -0.5
 // MostForNone is the number of steps that evidence for a null of one value can reach.
 var MostForNone = -(math.Log(2) + 1) / 2 / math.Log(2+math.Sqrt(3))
 
-// nextSizes are the people in all of the size curve.
-var nextSizes = []float64{50, 100, 200, 500, 1000, 2000, 5000, 10_000, 20_000, 50_000, 100_000}
+// nextSizes are the people in all of the size curve, 50 to 100,000.
+var nextSizes = curveSizes()
+
+func curveSizes() []float64 {
+	sizes := []float64{50, 60, 70, 80}
+	for _, decade := range []float64{10, 100, 1000} {
+		for _, tenths := range []float64{10, 12, 15, 20, 25, 30, 40, 50, 70} {
+			sizes = append(sizes, decade*tenths)
+		}
+	}
+	return append(sizes, 100_000)
+}
 
 // next foresees the next study. An outcome without evidence says so in a note. It
 // returns an *accrual.InputError if its size gives no standard error, and the cause
@@ -87,12 +97,12 @@ func (o *Outcome) next(ctx context.Context, w NextWanted) (*Next, error) {
 	if n.Curve, err = trial.Curve(ctx, design.SizeToSE, nextSizes); err != nil {
 		return nil, err
 	}
-	n.Smallest, err = trial.SmallestSize(ctx, design.SizeToSE, n.reaches, w.Chance)
+	n.Smallest, err = trial.SmallestSize(ctx, design.SizeToSE, n.Reaches, w.Chance)
 	return n, err
 }
 
-// reaches is the chance in an outlook that the wanted step is passed.
-func (n *Next) reaches(o *accrual.Outlook) float64 {
+// Reaches is the chance in an outlook that the wanted step is passed.
+func (n *Next) Reaches(o *accrual.Outlook) float64 {
 	for _, c := range o.Passing {
 		if c.Steps == n.Wanted.Toward {
 			return c.Value.Value
