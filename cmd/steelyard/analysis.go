@@ -36,6 +36,17 @@ func analyseSheet(c *cli.Context, want synthesis.Want) (*synthesis.Synthesis, *r
 	if sameFile(path, c.String(flagOut)) {
 		return nil, nil, &callError{"the input is never overwritten; choose another name for --out"}
 	}
+	x, plan, err := checkedSheet(c, path)
+	if err != nil {
+		return nil, nil, err
+	}
+	s, err := pooledSheet(c, x, plan, want)
+	return s, x, err
+}
+
+// checkedSheet reads a file with its plan and the call's settings, and adds what the
+// catalogue of rules finds.
+func checkedSheet(c *cli.Context, path string) (*review.Extraction, *review.Plan, error) {
 	x, plan, err := readSheet(c, path)
 	if err != nil {
 		return nil, nil, err
@@ -44,17 +55,23 @@ func analyseSheet(c *cli.Context, want synthesis.Want) (*synthesis.Synthesis, *r
 		return nil, nil, err
 	}
 	rules.Apply(x, plan)
+	return x, plan, nil
+}
+
+// pooledSheet runs the plan over a sheet; want says which parts.
+func pooledSheet(c *cli.Context, x *review.Extraction, plan *review.Plan, want synthesis.Want) (*synthesis.Synthesis, error) {
+	var err error
 	want.Outcomes = c.StringSlice(flagOutcome)
 	if want.Work, err = work(c); err != nil {
-		return nil, nil, err
+		return nil, err
 	}
 	s, err := synthesis.Run(c.Context, x, plan, want)
 	var unknown *choice.UnknownError
 	var input *accrual.InputError
 	if errors.As(err, &unknown) || errors.As(err, &input) {
-		return nil, nil, &callError{err.Error()}
+		return nil, &callError{err.Error()}
 	}
-	return s, x, err
+	return s, err
 }
 
 // readSheet reads a file, or standard input for "-".

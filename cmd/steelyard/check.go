@@ -13,18 +13,28 @@ import (
 	"steelyard/meta/synthesis"
 )
 
-// flagRules asks check for the catalogue in place of a sheet's findings.
-const flagRules = "rules"
+// Names of check's own flags: the catalogue in place of a sheet's findings, another
+// extraction to compare with, and the workbook to settle the differences in.
+const (
+	flagRules   = "rules"
+	flagCompare = "compare"
+	flagSettle  = "settle"
+)
 
 func checkCommand() *cli.Command {
 	return &cli.Command{
 		Name:      "check",
 		Usage:     "look through a sheet for errors of extraction before it is pooled",
-		UsageText: "steelyard check FILE [flags]\n  steelyard check --rules",
+		UsageText: "steelyard check FILE [--compare OTHER [--settle F.xlsx]] [flags]\n  steelyard check --rules",
 		Description: "Lists what the catalogue of rules finds, errors first. Rows with an error are not pooled until they\n" +
 			"are mended, or accepted by writing the rule and a reason in the accept column. Nothing is corrected;\n" +
-			"where a number can be read in two ways, the pooled answer under each is printed.",
-		Flags: slices.Concat([]cli.Flag{&cli.BoolFlag{Name: flagRules, Usage: "list the catalogue: every rule with its threshold and source"}},
+			"where a number can be read in two ways, the pooled answer under each is printed. With --compare, two\n" +
+			"extractions of the same studies are set side by side, rows paired by outcome and id, else by name and year.",
+		Flags: slices.Concat([]cli.Flag{
+			&cli.BoolFlag{Name: flagRules, Usage: "list the catalogue: every rule with its threshold and source"},
+			&cli.StringFlag{Name: flagCompare, Usage: "another extraction of the same studies: what differs, and what each choice does to the answer"},
+			&cli.StringFlag{Name: flagSettle, Usage: "workbook to write, F.xlsx, in which the differences are settled; it is read back as the agreed sheet"},
+		},
 			sheetFlags(), settingFlags("check"), []cli.Flag{formatFlag()}, outputFlags()),
 		Action: check,
 	}
@@ -38,18 +48,20 @@ func check(c *cli.Context) error {
 	if c.Bool(flagRules) {
 		return listRules(c, wantJSON)
 	}
-	s, x, err := analyseSheet(c, synthesis.Want{})
+	s, x, compared, err := checkSheet(c)
 	if err != nil {
 		return err
 	}
 	unchecked := rules.NotChecked(x)
-	content := []byte(checkAnswer(s, x, unchecked))
+	content := []byte(checkAnswer(s, x, unchecked, compared))
 	if wantJSON {
 		numbers := 0
 		for i := range x.Studies {
 			numbers += len(x.Studies[i].Numbers)
 		}
-		if content, err = indented(s.CheckDocument(version, len(x.Studies), numbers, notCheckedDocuments(unchecked))); err != nil {
+		d := s.CheckDocument(version, len(x.Studies), numbers, notCheckedDocuments(unchecked))
+		d.Compared = compared
+		if content, err = indented(d); err != nil {
 			return err
 		}
 	}
@@ -75,7 +87,7 @@ func notCheckedDocuments(unchecked []rules.Unchecked) []synthesis.NotCheckedDocu
 }
 
 // checkAnswer is the text answer of check.
-func checkAnswer(s *synthesis.Synthesis, x *review.Extraction, unchecked []rules.Unchecked) string {
+func checkAnswer(s *synthesis.Synthesis, x *review.Extraction, unchecked []rules.Unchecked, compared *synthesis.ComparedDocument) string {
 	var p page
 	n := s.CountFindings()
 	numbers := 0
@@ -89,6 +101,9 @@ func checkAnswer(s *synthesis.Synthesis, x *review.Extraction, unchecked []rules
 		text += fmt.Sprintf("; %s accepted", words.Count(n.Accepted))
 	}
 	p.wrapped("", text)
+	if compared != nil {
+		p.wrapped("", comparedText(compared))
+	}
 	titles := map[string]string{review.RulePlan: "the plan"}
 	for _, r := range rules.Catalogue() {
 		titles[r.ID] = r.Title

@@ -197,4 +197,5 @@ var analysisRules = []Rule{
 	{"A4", "common and random effects differ", "warning", "ratios apart by a factor above 1.2, or one interval leaves no effect and the other does not", "Higgins and Spiegelhalter 2002", nil},
 	{"A6", "prediction interval imprecise", "remark beside the result", "none below 3 studies; degrees of freedom are stated", "Higgins 2009; Cochrane Handbook 10.10.4.3" + confirmed, nil},
 	{"A7", "studies of one date", "remark beside the cumulative result", "two studies or more of one date; the rule for ties is printed", practice, one(review.DateField)},
+	{"A9", "two extractions differ", "warning", "rows of one study differ by more than rounding; first those whose effects differ by 0.1 SD or 10%, or their standard errors by 10%", "Buscemi 2006; Gøtzsche 2007", nil},
 }

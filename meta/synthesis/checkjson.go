@@ -14,7 +14,19 @@ type CheckDocument struct {
 	Counts     FindingCountsDocument   `json:"counts"`
 	Findings   []FindingDocument       `json:"findings"`
 	NotChecked []NotCheckedDocument    `json:"not_checked"`
+	Compared   *ComparedDocument       `json:"compared,omitempty"`
 	Cautions   []string                `json:"cautions"`
+}
+
+// ComparedDocument counts the rows of two extractions of the same studies.
+type ComparedDocument struct {
+	Other      SourceDocument `json:"other"`
+	Identical  int            `json:"identical"`
+	Rounding   int            `json:"rounding"`
+	Differing  int            `json:"differing"`
+	Large      int            `json:"large"` // of the differing ones: by more than the tolerance
+	OnlyFirst  int            `json:"only_first"`
+	OnlySecond int            `json:"only_second"`
 }
 
 // FindingCountsDocument counts findings by severity; accepted ones stand apart.
