@@ -73,6 +73,7 @@ func TestSchema(t *testing.T) {
 		{pool, "", "pool " + bcgCounts + " --method binomial-normal --all-methods"},
 		{pool, "", "influence " + bcgCounts + " --method conditional-exact"},
 		{pool, zeroCells, "pool - --all-methods"},
+		{pool, "study,events treated,total treated,events control,total control\nA,90000,90000,0,5\n", "pool - --method peto --all-methods"},
 		{pool, header + "A,1,0.5\n", "pool -"},
 		{pool, header + "A,1,0.5\nB,x,1\n", "pool -"},
 		{pool, header + "A,700,0.5\nB,-700,1\n", "pool - --measure hazard_ratio"},

@@ -18,6 +18,10 @@ func (k FactKind) Source() string {
 	return ""
 }
 
+// mostShown is the odds ratio beyond which a sentence gives no digits: no event
+// speaks against it then, or hardly any.
+const mostShown = 10000
+
 // Text returns the fact in a sentence.
 func (f Fact) Text() string {
 	switch f.Kind {
@@ -30,6 +34,9 @@ func (f Fact) Text() string {
 	case ArmRatio:
 		return fmt.Sprintf("The larger arm has %.3g times the people of the smaller one%s.", f.Value, beyond(f, "unequal beyond %.3g"))
 	case EffectSize:
+		if f.Value > mostShown {
+			return fmt.Sprintf("The common odds ratio, or 1 over it, is above %d%s.", mostShown, beyond(f, "large beyond %.3g"))
+		}
 		return fmt.Sprintf("The common odds ratio is %.3g, or 1 over that%s.", f.Value, beyond(f, "large beyond %.3g"))
 	case ZeroCells:
 		return fmt.Sprintf("%.3g%% of the tables have a zero cell.", 100*f.Value)
@@ -40,7 +47,7 @@ func (f Fact) Text() string {
 	case ArmEvents:
 		return fmt.Sprintf("The arms with fewer events have %.0f in all%s.", f.Value, beyond(f, "below %.0f large-sample intervals are unreliable"))
 	case TableCount:
-		return fmt.Sprintf("%.0f tables carry information%s.", f.Value, beyond(f, "fewer than %.0f say little of the spread between studies"))
+		return fmt.Sprintf("Tables that carry information: %.0f%s.", f.Value, beyond(f, "fewer than %.0f say little of the spread between studies"))
 	case ScatterP:
 		return fmt.Sprintf("The tables scatter about a common odds ratio with p = %.2g%s.", f.Value, beyond(f, "below %.2g one odds ratio may not fit all"))
 	}

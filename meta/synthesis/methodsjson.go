@@ -49,14 +49,15 @@ type ScatteredDocument struct {
 	EvidenceDocument
 }
 
-// FactDocument is a fact that decides which methods are apt.
+// FactDocument is a fact that decides which methods are apt; an absent value is
+// too large for a number.
 type FactDocument struct {
-	Fact   string  `json:"fact"`
-	Value  float64 `json:"value"`
-	Limit  float64 `json:"limit"`
-	Marked bool    `json:"marked"`
-	Text   string  `json:"text"`
-	Source string  `json:"source,omitempty"`
+	Fact   string   `json:"fact"`
+	Value  *float64 `json:"value,omitempty"`
+	Limit  float64  `json:"limit"`
+	Marked bool     `json:"marked"`
+	Text   string   `json:"text"`
+	Source string   `json:"source,omitempty"`
 }
 
 // VerdictDocument says whether a method is apt for an odds ratio of these counts,
@@ -83,7 +84,7 @@ func (c *Methods) document() *MethodsDocument {
 		return d
 	}
 	for _, f := range c.Advice.Facts {
-		d.Facts = append(d.Facts, FactDocument{Fact: f.Kind.String(), Value: f.Value, Limit: f.Limit, Marked: f.Marked, Text: f.Text(), Source: f.Kind.Source()})
+		d.Facts = append(d.Facts, FactDocument{Fact: f.Kind.String(), Value: finite(f.Value), Limit: f.Limit, Marked: f.Marked, Text: f.Text(), Source: f.Kind.Source()})
 	}
 	for _, method := range review.MethodNames() {
 		m, err := review.ParseMethod(method)
