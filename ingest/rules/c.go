@@ -79,46 +79,44 @@ func (r *row) rates() (treated, control float64, ok bool) {
 // reversedOutcome reports a study in which most have the event while few do in all
 // others, or the reverse (C4).
 func (c *checker) reversedOutcome(rows []*row) {
-	const many, few, least = 0.5, 0.2, 3
-	var low, high []*row
-	known := 0
-	for _, r := range rows {
-		p, q, ok := r.rates()
-		switch {
-		case !ok:
-			continue
-		case p > many && q > many:
-			high = append(high, r)
-		case p < few && q < few:
-			low = append(low, r)
-		}
-		known++
+	odd := alone(rows, func(risk float64) float64 { return risk })
+	if odd == nil {
+		odd = alone(rows, func(risk float64) float64 { return 1 - risk })
 	}
-	mirrored := false
-	if len(low) == 1 && len(high) == known-1 {
-		mirrored = true // few where all others have many: more than 0.8 in them is asked below
-		for _, r := range high {
-			p, q, _ := r.rates()
-			mirrored = mirrored && p > 1-few && q > 1-few
-		}
-		p, q, _ := low[0].rates()
-		mirrored = mirrored && p < many && q < many
-	}
-	var odd *row
-	switch {
-	case known < least+1:
-		return
-	case len(high) == 1 && len(low) == known-1:
-		odd = high[0]
-	case mirrored:
-		odd = low[0]
-	default:
+	if odd == nil {
 		return
 	}
 	t, _ := odd.table()
 	c.add(odd, review.Warning, "C4", review.EventsTreated, fmt.Sprintf("%s of %s and %s of %s had the event, far from all other studies of this outcome; were people without the event entered?", shown(t.Events1), shown(t.Total1), shown(t.Events2), shown(t.Total2)),
 		odd.asEntered(review.EventsTreated, review.EventsControl),
 		odd.with("people without the event", fieldValue{review.EventsTreated, t.Total1 - t.Events1}, fieldValue{review.EventsControl, t.Total2 - t.Events2}))
+}
+
+// alone returns the one study of four or more whose risks exceed 0.5 in both arms while
+// those of all others are below 0.2, of is what of a risk is looked at; nil if there is
+// none.
+func alone(rows []*row, of func(risk float64) float64) *row {
+	const many, few, least = 0.5, 0.2, 4
+	var odd *row
+	known := 0
+	for _, r := range rows {
+		p, q, ok := r.rates()
+		if !ok {
+			continue
+		}
+		known++
+		switch p, q = of(p), of(q); {
+		case p < few && q < few:
+		case p > many && q > many && odd == nil:
+			odd = r
+		default:
+			return nil
+		}
+	}
+	if known < least {
+		return nil
+	}
+	return odd
 }
 
 // denominators compares people analysed with people randomised (C5).

@@ -43,24 +43,27 @@ func TestBetterThanReader(t *testing.T) {
 	}
 }
 
+// run reads, checks and pools one of the small sheets.
+func run(t *testing.T, name string) *synthesis.Synthesis {
+	t.Helper()
+	x, plan, err := ingest.Open(context.Background(), sheets+name, ingest.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	rules.Apply(x, plan)
+	s, err := synthesis.Run(context.Background(), x, plan, synthesis.Want{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return s
+}
+
 // TestReadings wants both readings of SDs that may be standard errors, with their
 // answers. The second is that of the sheet without the error, M1-near.csv: its SDs of
 // 6.6 and 6.2 divided by √61 and √63 are 0.845 and 0.781, which the sheet rounds to
 // 0.85 and 0.78; so the answers agree within that rounding.
 func TestReadings(t *testing.T) {
-	run := func(name string) *synthesis.Synthesis {
-		x, plan, err := ingest.Open(context.Background(), sheets+name, ingest.Options{})
-		if err != nil {
-			t.Fatal(err)
-		}
-		rules.Apply(x, plan)
-		s, err := synthesis.Run(context.Background(), x, plan, synthesis.Want{})
-		if err != nil {
-			t.Fatal(err)
-		}
-		return s
-	}
-	wrong, right := run("M1.csv"), run("M1-near.csv")
+	wrong, right := run(t, "M1.csv"), run(t, "M1-near.csv")
 	if len(wrong.Readings) != 2 {
 		t.Fatalf("%d readings, want 2", len(wrong.Readings))
 	}
@@ -74,6 +77,20 @@ func TestReadings(t *testing.T) {
 	}
 	if first := wrong.Readings[0].Outcome.Result; first == nil || first.Fit.Mean.K != want.K || within(first.Fit.Mean.SE, want.SE, 0.2) {
 		t.Errorf("as entered: %+v, want all %d studies and another standard error", first, want.K)
+	}
+}
+
+// TestColumnReading wants the reading of a column of percentages to settle the error of
+// the column: the answer is that of the same counts, which F9-near.csv holds (11.5% of
+// 104 people are 12, and so on).
+func TestColumnReading(t *testing.T) {
+	wrong, right := run(t, "C3.csv"), run(t, "F9-near.csv")
+	if wrong.Outcomes[0].Result != nil || len(wrong.Readings) != 1 {
+		t.Fatalf("percentages are pooled, or have %d readings", len(wrong.Readings))
+	}
+	got, want := wrong.Readings[0].Outcome, right.Outcomes[0].Result.Fit.Mean
+	if got.Result == nil || got.Result.Fit.Mean.Estimate != want.Estimate || got.Result.Fit.Mean.SE != want.SE {
+		t.Errorf("read as percentages: %s %+v, want %+v", got.Problem, got.Result, want)
 	}
 }
 
@@ -137,8 +154,9 @@ func TestInterval(t *testing.T) {
 		{"study,mean difference,se\nA,1.0,0.5\nB,1.1,0.4\nC,0.9,0.5\nD,1.05,0.3\n", "interval", "hartung-knapp-floor", "A2", false},
 		{"study,mean difference,se\nA,3.0,0.5\nB,-1.1,0.4\nC,0.9,0.5\nD,1.05,0.3\n", "interval", "hartung-knapp", "A2", false},
 		// DerSimonian–Laird's τ² is above 0 since Q exceeds its degrees of freedom, while
-		// the small trials that scatter weigh nothing in the likelihood.
-		{"study,mean difference,se\nA,0.9,0.1\nB,1.0,0.1\nC,1.05,0.1\nD,-2.6,1.5\nE,4.2,1.4\n", "interval", "wald", "A3", true},
+		// the small trials that scatter weigh nothing in the likelihood; no interval comes
+		// near no effect.
+		{"study,mean difference,se\nA,10.9,0.1\nB,11.0,0.1\nC,11.05,0.1\nD,7.4,1.5\nE,14.2,1.4\n", "interval", "wald", "A3", true},
 		{"study,mean difference,se\nA,3.0,0.5\nB,1.1,0.4\nC,2.0,0.5\nD,1.05,0.3\nE,2.5,0.3\n", "interval", "wald", "A3", false},
 	} {
 		x, plan, err := ingest.Read(context.Background(), []byte(tt.sheet), "a.csv", ingest.Options{})
