@@ -7,8 +7,8 @@ import (
 )
 
 // bootstrapDraws is the number of draws behind a bootstrap prediction interval.
-// At 95 % they place each limit to about 1 % of the half-width.
-const bootstrapDraws = 25_000
+// At 95 % they place each limit to about half a per cent of the half-width.
+const bootstrapDraws = 100_000
 
 // bootstrapStream tells the bootstrap's random numbers from others of one seed.
 const bootstrapStream = 0x9e3779b97f4a7c15
