@@ -109,6 +109,7 @@ type ResultDocument struct {
 type ExcludedDocument struct {
 	Study  string `json:"study"`
 	Cell   string `json:"cell"`
+	Rule   string `json:"rule,omitempty"` // by which accepting it is written
 	Reason string `json:"reason"`
 }
 

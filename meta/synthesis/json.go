@@ -67,7 +67,7 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 		Excluded: []ExcludedDocument{}, Conversions: []ConversionDocument{}, Studies: []StudyDocument{},
 	}
 	for _, e := range o.Excluded {
-		d.Excluded = append(d.Excluded, ExcludedDocument{Study: e.Study, Cell: firstCell(e.Place), Reason: e.Reason})
+		d.Excluded = append(d.Excluded, ExcludedDocument{Study: e.Study, Cell: firstCell(e.Place), Rule: e.Rule, Reason: e.Reason})
 	}
 	d.POnly, d.Methods = o.PValues.document(), o.Methods.document()
 	if len(o.Silent) > 0 {
