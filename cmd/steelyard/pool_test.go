@@ -196,6 +196,7 @@ func TestGoldenAnswers(t *testing.T) {
 		"pool-methods.txt":    {"pool", data + "demo.xlsx", "--outcome", "serious harm", "--method", "binomial-normal", "--all-methods"},
 		"pool-schools.txt":    {"pool", data + "checks/eight_schools.csv", "--measure", "mean difference", "--effects", "common"},
 		"weigh-ratio.txt":     {"weigh", "--ratio", "--estimate", "0.71", "--ci-low", "0.58", "--ci-high", "0.86", "--important", "0.8"},
+		"weigh-named.txt":     {"weigh", "--t", "3.4", "--df", "9", "--categories"},
 		"weigh-z.txt":         {"weigh", "--z", "2"},
 		"weigh-f.txt":         {"weigh", "--f", "4.1", "--df", "2", "--df2", "30"},
 		"cumulative.txt":      {"cumulative", data + "demo.xlsx"},

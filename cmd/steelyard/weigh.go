@@ -31,6 +31,7 @@ const (
 	flagHigh     = "ci-high"
 	flagRatio    = "ratio"
 	flagOneSided = "one-sided"
+	flagNamed    = "categories"
 )
 
 func weighCommand() *cli.Command {
@@ -49,6 +50,7 @@ func weighCommand() *cli.Command {
 		number(flagHigh, "upper limit of the interval"),
 		&cli.BoolFlag{Name: flagRatio, Usage: "the estimate, its limits and thresholds are ratios: they are logged, and no effect is 1"},
 		&cli.BoolFlag{Name: flagOneSided, Usage: "weigh an effect above none against none; turn the sign for one below"},
+		&cli.BoolFlag{Name: flagNamed, Usage: "also the categories of Jeffreys (1961) and of Kass & Raftery (1995)"},
 	}
 	for _, name := range []string{review.SettingNull, review.SettingImportant, review.SettingPrior, review.SettingLevel, review.SettingEvidence} {
 		setting, err := review.FindSetting(name)
@@ -85,7 +87,7 @@ func weigh(c *cli.Context) error {
 		// Any ratio is weighed as a risk ratio; the message is about ratios.
 		return &callError{strings.ReplaceAll(err.Error(), "risk ratio", "ratio")}
 	}
-	content := []byte(weighAnswer(w, numbers.Level))
+	content := []byte(weighAnswer(w, numbers.Level, c.Bool(flagNamed)))
 	if wantJSON {
 		if content, err = indented(w.Document()); err != nil {
 			return err
@@ -151,8 +153,8 @@ func strayFlags(c *cli.Context, statistic synthesis.Statistic) error {
 	return nil
 }
 
-// weighAnswer is the text answer of weigh.
-func weighAnswer(w *synthesis.Weighing, level float64) string {
+// weighAnswer is the text answer of weigh; categories adds two published scales.
+func weighAnswer(w *synthesis.Weighing, level float64, categories bool) string {
 	var p page
 	measure := "estimate"
 	if w.Measure.Log() {
@@ -176,6 +178,9 @@ func weighAnswer(w *synthesis.Weighing, level float64) string {
 	} else {
 		p.value("Evidence", words.Evidence(w.Evidence), words.Strength(w.Evidence))
 		p.value("", "", w.Form+" form"+boundText(w))
+		if categories {
+			p.value("", "", fmt.Sprintf("Jeffreys (1961): %s; Kass & Raftery (1995): %s", evidence.Jeffreys(w.Evidence), evidence.KassRaftery(w.Evidence)))
+		}
 		p.beliefs(&synthesis.Result{Posterior: w.Posterior, DoubtersPrior: w.Doubter})
 	}
 	for _, region := range w.Regions {
