@@ -19,7 +19,7 @@ var (
 // totalPhrases are whole names of rows of totals that hold none of these words.
 var totalPhrases = map[string]bool{
 	"all": true, "all studies": true, "all trials": true, "all patients": true, "all participants": true,
-	"meta analysis": true, "metaanalysis": true, "meta analyse": true, "metaanalyse": true, "re model": true, "fe model": true,
+	"meta analysis": true, "metaanalysis": true, "meta analyse": true, "metaanalyse": true,
 	"random effects": true, "random effect": true, "random effects model": true, "random effect model": true,
 	"fixed effects": true, "fixed effect": true, "fixed effects model": true, "fixed effect model": true,
 	"common effect": true, "common effect model": true, "model random effects": true, "model fixed effect": true, "model common effect": true,
@@ -27,7 +27,7 @@ var totalPhrases = map[string]bool{
 }
 
 // startOfPhrase are first words of these that stand in no other list.
-var startOfPhrase = []string{"metaanalysis", "metaanalyse", "re", "fe", "model", "alle", "toutes", "todos"}
+var startOfPhrase = []string{"metaanalysis", "metaanalyse", "model", "alle", "toutes", "todos"}
 
 // namesTotal reports whether a study's name is that of a row of totals, such as
 // "Total", "Subtotal (95% CI)", "All studies" or "Random effects model".

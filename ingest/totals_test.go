@@ -5,7 +5,7 @@ import "testing"
 // TestNamesTotal tells rows of totals from studies.
 func TestNamesTotal(t *testing.T) {
 	for _, name := range []string{"Total", "TOTAL", "Total (95% CI)", "Subtotal:", "Sub-total", "Overall", "Overall effect", "Pooled estimate", "Random effects, pooled", "All studies, total",
-		"Grand total", "Sum", "Total events: 45", "All", "ALL", "All studies", "all trials (n = 12)", "Gesamt", "Σ", "Meta-analysis", "Metaanalysis", "RE model", "FE Model", "Random effects model",
+		"Grand total", "Sum", "Total events: 45", "All", "ALL", "All studies", "all trials (n = 12)", "Gesamt", "Σ", "Meta-analysis", "Metaanalysis", "Random effects model",
 		"Random-effects model (95% CI)", "Fixed effect", "Common effect model", "Toutes les études", "Summary (fixed effect model)"} {
 		if !namesTotal(name) {
 			t.Errorf("%q is taken for a study", name)
