@@ -82,8 +82,8 @@ type OutcomeDocument struct {
 	Conversions  []ConversionDocument `json:"conversions"`
 	Silent       *SilentDocument      `json:"without_information,omitempty"`
 	POnly        *POnlyDocument       `json:"p_only,omitempty"`
-	Methods      *MethodsDocument     `json:"methods,omitempty"`
 	*ResultDocument
+	PartsDocument
 	Studies []StudyDocument `json:"studies"`
 }
 
@@ -99,10 +99,16 @@ type ResultDocument struct {
 	Posterior     []PosteriorDocument     `json:"posterior,omitempty"`
 	Doubter       *DoubterDocument        `json:"doubters_prior,omitempty"`
 	Integrated    *IntegratedDocument     `json:"integrated,omitempty"`
-	Beliefs       *BeliefsDocument        `json:"beliefs,omitempty"`
 	Regions       []RegionDocument        `json:"regions,omitempty"`
 	Caveats       []string                `json:"caveats,omitempty"`
 	*AccrualDocument
+}
+
+// PartsDocument holds the capabilities beyond the pooled result; what was not wanted
+// is absent.
+type PartsDocument struct {
+	Methods *MethodsDocument `json:"methods,omitempty"`
+	Beliefs *BeliefsDocument `json:"beliefs,omitempty"`
 }
 
 // ExcludedDocument is a row that was not pooled.

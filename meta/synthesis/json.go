@@ -69,7 +69,7 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 	for _, e := range o.Excluded {
 		d.Excluded = append(d.Excluded, ExcludedDocument{Study: e.Study, Cell: firstCell(e.Place), Rule: e.Rule, Reason: e.Reason})
 	}
-	d.POnly, d.Methods = o.PValues.document(), o.Methods.document()
+	d.POnly, d.PartsDocument = o.PValues.document(), o.Parts.document()
 	if len(o.Silent) > 0 {
 		d.Silent = &SilentDocument{Studies: len(o.Silent), Participants: o.Counts.Silent}
 	}
@@ -94,6 +94,10 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 	}
 	d.ResultDocument = o.resultDocument(plan)
 	return d
+}
+
+func (p *Parts) document() PartsDocument {
+	return PartsDocument{Methods: p.Methods.document(), Beliefs: p.Beliefs.document()}
 }
 
 // scaleName names the scale on which a measure is analysed.
@@ -200,7 +204,7 @@ func namedValues(values []effect.Value, row *review.Study) map[string]float64 {
 
 func (o *Outcome) resultDocument(plan *review.Plan) *ResultDocument {
 	r, fit := o.Result, o.Result.Fit
-	d := &ResultDocument{Pooled: o.pooledDocument(fit), Without: subsetDocument(r.Without, o.Analysis.NullMissing), Integrated: integratedDocument(r.Integrated, (*bayes.Integrated).Effect), Beliefs: o.Beliefs.document()}
+	d := &ResultDocument{Pooled: o.pooledDocument(fit), Without: subsetDocument(r.Without, o.Analysis.NullMissing), Integrated: integratedDocument(r.Integrated, (*bayes.Integrated).Effect)}
 	if !o.Analysis.NullMissing {
 		d.Doubter = &DoubterDocument{Level: r.DoubtersPrior.Posterior, Prior: r.DoubtersPrior.Prior}
 	}

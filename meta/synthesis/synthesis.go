@@ -57,9 +57,14 @@ type Outcome struct {
 	Result   *Result         // nil when nothing could be pooled; Problem then says why
 	Problem  string
 	Notes    []string // what was assumed, in sentences
-	Accrual  *Accrual // nil unless some of it was wanted
-	Methods  *Methods // all methods side by side; nil unless wanted
-	Beliefs  *Beliefs // what sceptics make of the evidence; nil unless wanted
+	Parts
+}
+
+// Parts are the capabilities beyond the pooled result; each is nil unless wanted.
+type Parts struct {
+	Accrual *Accrual // how the evidence arrived, who carries it, what the next study could change
+	Methods *Methods // all methods for counts side by side
+	Beliefs *Beliefs // what sceptics make of the evidence
 }
 
 // Analysis is what was settled before pooling, null and thresholds on the
