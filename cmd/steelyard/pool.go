@@ -1,7 +1,6 @@
 package main
 
 import (
-	"encoding/json"
 	"slices"
 
 	"github.com/urfave/cli/v2"
@@ -34,7 +33,7 @@ func poolCommand() *cli.Command {
 }
 
 func pool(c *cli.Context) error {
-	wantJSON, err := outputWanted(c)
+	format, err := outputWanted(c)
 	if err != nil {
 		return err
 	}
@@ -42,20 +41,12 @@ func pool(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	content := []byte(answer(s))
-	if wantJSON {
-		if content, err = indented(s.Document(version)); err != nil {
-			return err
-		}
+	table := []string{"outcomes"}
+	if c.Bool(flagAllMethods) {
+		table = append(table, "methods", "rows")
 	}
-	if err := deliver(c, content); err != nil {
+	if err := reply(c, format, answer(s), s.Document(version), table...); err != nil {
 		return err
 	}
 	return incomplete(s)
-}
-
-// indented returns a value as JSON for reading, with a line end.
-func indented(v any) ([]byte, error) {
-	content, err := json.MarshalIndent(v, "", "  ")
-	return append(content, '\n'), err
 }
