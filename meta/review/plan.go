@@ -1,6 +1,7 @@
 package review
 
 import (
+	"cmp"
 	"errors"
 	"fmt"
 	"maps"
@@ -119,6 +120,31 @@ func (p *Plan) Outcomes() (names []string, places map[string]Place) {
 
 // before reports whether a stands before b in reading order.
 func before(a, b Place) bool { return a.Row < b.Row || (a.Row == b.Row && a.Col < b.Col) }
+
+// Given is a setting as somebody gave it.
+type Given struct {
+	Setting string
+	Outcome string // folded; blank for all
+	Value   Value
+}
+
+// Given returns the settings of an origin, in the order of the settings' table, those
+// for all outcomes first.
+func (p *Plan) Given(from From) []Given {
+	var all []Given
+	for key, v := range p.values {
+		if key.from == from {
+			all = append(all, Given{key.setting, key.outcome, v})
+		}
+	}
+	rank := func(name string) int {
+		return slices.IndexFunc(settings, func(s Setting) bool { return s.Name == name })
+	}
+	slices.SortFunc(all, func(a, b Given) int {
+		return cmp.Or(cmp.Compare(rank(a.Setting), rank(b.Setting)), cmp.Compare(a.Outcome, b.Outcome))
+	})
+	return all
+}
 
 // Analysis is the typed form of the settings for one outcome.
 type Analysis struct {
