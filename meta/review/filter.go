@@ -2,6 +2,7 @@ package review
 
 import (
 	"fmt"
+	"slices"
 	"strconv"
 	"strings"
 	"unicode"
@@ -45,6 +46,22 @@ func ParseFilter(text string) (*Filter, error) {
 
 // String returns the filter as written.
 func (f *Filter) String() string { return f.text }
+
+// And writes the filter that holds where f and g both do; without parentheses, each
+// alternative of f stands beside each of g.
+func (f *Filter) And(g *Filter) string {
+	var alternatives []string
+	for _, a := range f.any {
+		for _, b := range g.any {
+			var all []string
+			for _, c := range slices.Concat(a, b) {
+				all = append(all, c.text)
+			}
+			alternatives = append(alternatives, strings.Join(all, " and "))
+		}
+	}
+	return strings.Join(alternatives, " or ")
+}
 
 // Columns returns the folded names of the columns the filter looks at.
 func (f *Filter) Columns() []string {
