@@ -47,20 +47,34 @@ func ParseFilter(text string) (*Filter, error) {
 // String returns the filter as written.
 func (f *Filter) String() string { return f.text }
 
-// And writes the filter that holds where f and g both do; without parentheses, each
-// alternative of f stands beside each of g.
-func (f *Filter) And(g *Filter) string {
-	var alternatives []string
+// And returns the filter that keeps what both keep; a nil filter keeps every row.
+func (f *Filter) And(g *Filter) *Filter {
+	switch {
+	case f == nil:
+		return g
+	case g == nil:
+		return f
+	}
+	both := &Filter{}
+	var texts []string
 	for _, a := range f.any {
 		for _, b := range g.any {
-			var all []string
-			for _, c := range slices.Concat(a, b) {
-				all = append(all, c.text)
-			}
-			alternatives = append(alternatives, strings.Join(all, " and "))
+			all := slices.Concat(a, b)
+			both.any = append(both.any, all)
+			texts = append(texts, conjunction(all))
 		}
 	}
-	return strings.Join(alternatives, " or ")
+	both.text = strings.Join(texts, " or ")
+	return both
+}
+
+// conjunction writes conditions as a filter has them.
+func conjunction(all []condition) string {
+	texts := make([]string, len(all))
+	for i, c := range all {
+		texts[i] = c.text
+	}
+	return strings.Join(texts, " and ")
 }
 
 // Columns returns the folded names of the columns the filter looks at.

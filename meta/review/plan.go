@@ -156,7 +156,7 @@ func bothFilters(a, b string) (string, error) {
 	if err != nil {
 		return "", err
 	}
-	return first.And(second), nil
+	return first.And(second).String(), nil
 }
 
 // before reports whether a stands before b in reading order.
