@@ -21,7 +21,7 @@ func (p *Pooler) wald() answer {
 	a.lnP = math.Ln2 + numeric.LogNormalTail(math.Abs(a.statistic))
 	a.evidence = evidence.Normal(a.statistic)
 	a.locationSE = a.se
-	return a.around(numeric.NormalCritical(1 - p.model.Level))
+	return a.around(p.critical.of(p.model.Level, infinite))
 }
 
 // hartungKnapp returns mean ± t·se·√q on k − 1 degrees of freedom, with evidence
@@ -42,7 +42,7 @@ func (p *Pooler) hartungKnapp(q float64) answer {
 		a.evidence = evidence.Matched(a.statistic, df)
 	}
 	a.locationSE = a.se
-	return a.around(numeric.StudentCritical(1-p.model.Level, df))
+	return a.around(p.critical.of(p.model.Level, df))
 }
 
 // around returns the answer with the limits estimate ± critical·se.

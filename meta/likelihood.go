@@ -52,37 +52,38 @@ type slopeAt struct{ tau2, slope float64 }
 // slopePoint is a slope with what it is made of: slope = scatter/weight − 1, both
 // of which fall as τ² grows. For P = W − W11ᵀW/(1ᵀW1), scatter is |Py|² and weight
 // tr P (restricted), and dP/dτ² = −P².
+//
+// The rates say how fast they fall: d ln scatter/dτ² = −2·scatterRate and
+// d ln weight/dτ² = −weightRate. onlyMaximum rests on them.
 type slopePoint struct {
 	slopeAt
-	scatter, weight float64
+	scatter, weight         float64
+	scatterRate, weightRate float64
 }
 
 func (l likelihood) point(tau2 float64) slopePoint {
+	d := l.data
 	if l.kind == fixedMeanLikelihood {
-		return l.pointOf(l.data.about(l.mean, tau2))
+		return l.pointOf(d.about(l.mean, tau2))
 	}
-	return l.pointOf(l.data.at(tau2))
+	return l.pointOf(d.at(tau2))
 }
 
+// pointOf returns the point of the moments whose weights stand in l.data.w.
 func (l likelihood) pointOf(m moments) slopePoint {
 	p := slopePoint{scatter: m.s, weight: m.w}
-	if l.kind == restrictedLikelihood {
+	c := l.data.cubes(m)
+	switch l.kind {
+	case fullLikelihood:
+		p.weightRate, p.scatterRate = c.squares/m.w, c.projected/m.s
+	case fixedMeanLikelihood:
+		p.weightRate, p.scatterRate = c.squares/m.w, c.scatter/m.s
+	case restrictedLikelihood:
 		p.weight = m.c
+		p.weightRate, p.scatterRate = c.trace/m.c, c.projected/m.s
 	}
 	p.slopeAt = slopeAt{m.tau2, p.scatter/p.weight - 1}
 	return p
-}
-
-// scout is point by plain sums where these leave no doubt about the sign.
-func (l likelihood) scout(tau2 float64) slopePoint {
-	if l.kind != fixedMeanLikelihood {
-		if m, ok := l.data.quick(tau2); ok {
-			if p := l.pointOf(m); math.Abs(p.slope) > 1e-6 {
-				return p
-			}
-		}
-	}
-	return l.point(tau2)
 }
 
 // value returns the log-likelihood without its constant.
@@ -119,10 +120,19 @@ func (l likelihood) top() float64 {
 }
 
 // modes appends all local maxima in τ² ≥ 0 to into[:0], in ascending order,
-// without their heights.
+// without their heights. Where a few points prove that there is one only, it is
+// found by Newton's steps; else all are looked for.
 func (l likelihood) modes(into []mode) ([]mode, error) {
 	into = into[:0]
 	zero := l.point(0)
+	if tau2, ok := l.onlyMaximum(zero); ok {
+		return append(into, mode{tau2: tau2}), nil
+	}
+	return l.scan(into, zero)
+}
+
+// scan appends all local maxima in ascending order, wherever they may lie.
+func (l likelihood) scan(into []mode, zero slopePoint) ([]mode, error) {
 	if !(zero.slope > 0) {
 		into = append(into, mode{})
 	}
@@ -130,21 +140,21 @@ func (l likelihood) modes(into []mode) ([]mode, error) {
 	if top <= smallest {
 		return into, nil // falling from 0 on
 	}
-	low := l.scout(0.01 * smallest) // below it the slope is straight to 1 %
+	low := l.point(0.01 * smallest) // below it the slope is straight to 1 %
 	var err error
 	if zero.slope > 0 && low.slope <= 0 {
 		if into, err = l.peak(into, zero.slopeAt, low.slopeAt); err != nil {
 			return into, err
 		}
 	}
-	return l.search(into, low, l.scout(top))
+	return l.search(into, low, l.point(top))
 }
 
 // search appends the maxima between two points. Scatter and weight fall, so that
 // the slope keeps its sign where one stays above the other whatever they do in
 // between; other stretches are divided.
 func (l likelihood) search(into []mode, left, right slopePoint) ([]mode, error) {
-	const margin = 1 + 1e-8 // over what scout may be off
+	const margin = 1 + 1e-8 // over rounding
 	if margin*left.scatter < right.weight || right.scatter > margin*left.weight {
 		return into, nil
 	}
@@ -159,7 +169,7 @@ func (l likelihood) search(into []mode, left, right slopePoint) ([]mode, error) 
 		}
 		return l.peak(into, from, to)
 	}
-	middle := l.scout(math.Sqrt(left.tau2) * math.Sqrt(right.tau2))
+	middle := l.point(math.Sqrt(left.tau2) * math.Sqrt(right.tau2))
 	into, err := l.search(into, left, middle)
 	if err != nil {
 		return into, err
@@ -198,15 +208,24 @@ func (l likelihood) hidden(a, c slopeAt) (from, to slopeAt, found bool, err erro
 }
 
 // highestMode returns the τ² of the highest of all local maxima, which are left
-// in p.modes with their heights.
+// in p.modes.
 func (p *Pooler) highestMode(l likelihood) (float64, error) {
 	var err error
 	if p.modes, err = l.modes(p.modes); err != nil {
 		return 0, err
 	}
-	if len(p.modes) == 0 {
+	switch len(p.modes) {
+	case 0:
 		return 0, &ModelError{Problem: "the likelihood of τ² has no maximum for these data: use dersimonian-laird"}
+	case 1:
+		return p.modes[0].tau2, nil
 	}
+	return p.compareModes(l), nil
+}
+
+// compareModes fills in the heights of p.modes, the maxima of l, and returns the
+// τ² of the highest.
+func (p *Pooler) compareModes(l likelihood) float64 {
 	best := 0
 	for i := range p.modes {
 		p.modes[i].logL = l.value(p.modes[i].tau2)
@@ -215,5 +234,5 @@ func (p *Pooler) highestMode(l likelihood) (float64, error) {
 		}
 	}
 	p.height = p.modes[best].logL
-	return p.modes[best].tau2, nil
+	return p.modes[best].tau2
 }

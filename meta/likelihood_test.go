@@ -75,32 +75,6 @@ func TestScatterAndWeightFall(t *testing.T) {
 	}
 }
 
-// TestQuickMoments: where the plain sums are trusted, they agree with the
-// compensated ones, also with an outlying precise study.
-func TestQuickMoments(t *testing.T) {
-	y, s := drawn(50)
-	far := append([]float64{1e6}, y...)
-	trusted := 0
-	for _, d := range []studies{{y: y, s: s}, readStudies(t, "bcg_lor"), readStudies(t, "eight_schools"), {y: far, s: append([]float64{0.001}, s...)}} {
-		p := prepared(t, with(RestrictedML, Wald), d.y, d.s)
-		for tau2 := 1e-4; tau2 < 1e14; tau2 *= 3 {
-			got, ok := p.data.quick(tau2)
-			if !ok {
-				continue
-			}
-			trusted++
-			want := p.data.at(tau2)
-			c := checker{t, 1e-9}
-			c.near("Σw", got.w, want.w)
-			c.near("Σw − Σw²/Σw", got.c, want.c)
-			c.near("Σw²(y − mean)²", got.s, want.s)
-		}
-	}
-	if trusted != 152 {
-		t.Errorf("%d sums of 152 trusted", trusted)
-	}
-}
-
 // TestPlusIsAdd: the two ways to add give the same bits.
 func TestPlusIsAdd(t *testing.T) {
 	y, s := drawn(500)

@@ -17,9 +17,11 @@ type Pooler struct {
 	zero   moments // at τ² = 0
 	final  moments // at the τ² used
 	modes  []mode  // of the latest likelihood searched
-	height float64 // of its highest mode
+	height float64 // of the highest of them, where they were compared
 	floor  bool    // the Hartung–Knapp floor stood in: all estimates are equal
 	answer answer  // about the mean
+
+	critical criticals
 }
 
 // answer is an inference about the mean in working units.

@@ -18,6 +18,7 @@ const profileSteps = 48
 // Source: Hardy & Thompson (1996), Statistics in Medicine 15:619-629.
 func (p *Pooler) profile() (answer, error) {
 	full := likelihood{data: &p.data, kind: fullLikelihood}
+	p.compareModes(full)
 	a := answer{estimate: p.final.mean, se: p.final.se(), df: infinite}
 	critical := numeric.NormalCritical(1 - p.model.Level)
 	cut := p.height - 0.5*critical*critical
@@ -32,9 +33,11 @@ func (p *Pooler) profile() (answer, error) {
 		return a, err
 	}
 	top := p.height
-	if _, err = p.highestMode(likelihood{data: &p.data, kind: fixedMeanLikelihood, mean: p.null}); err != nil {
+	held := likelihood{data: &p.data, kind: fixedMeanLikelihood, mean: p.null}
+	if _, err = p.highestMode(held); err != nil {
 		return a, err
 	}
+	p.compareModes(held)
 	z := math.Copysign(math.Sqrt(2*max(0, top-p.height)), a.estimate-p.null)
 	a.statistic = z
 	a.lnP = math.Ln2 + numeric.LogNormalTail(math.Abs(z))

@@ -26,19 +26,22 @@ const equalWithin = 1e-15
 // weight is the largest at every τ², stands at 0, so that neither its residual
 // nor its share of the weight suffers from cancellation.
 type sample struct {
-	y, v   []float64
-	w      []float64 // weights of the latest call of at
-	best   int       // the most precise study
-	centre float64   // its estimate as given
-	unit   float64   // size of a working unit as given
-	spread float64   // largest less smallest estimate, working units
-	equal  bool      // the estimates agree to the last digits
+	y, v    []float64
+	others  []float64 // v, but +Inf for the most precise study, which gives it no weight
+	w       []float64 // weights of the latest call of at
+	best    int       // the most precise study
+	centre  float64   // its estimate as given
+	unit    float64   // size of a working unit as given
+	spread  float64   // largest less smallest estimate, working units
+	largest float64   // largest of v
+	equal   bool      // the estimates agree to the last digits
 }
 
 // moments are the weighted sums at one τ², with wᵢ = 1/(vᵢ + τ²).
 type moments struct {
 	tau2 float64
 	w    float64 // Σw
+	rest float64 // Σw without the most precise study
 	c    float64 // Σw − Σw²/Σw
 	mean float64 // Σwy/Σw
 	q    float64 // Σw(y − mean)²
@@ -92,14 +95,34 @@ func unusable(y, s float64) string {
 
 // scale fills the sample in working units.
 func (d *sample) scale(y, s []float64) error {
-	d.y, d.v, d.w = resize(d.y, len(y)), resize(d.v, len(y)), resize(d.w, len(y))
-	low, high, magnitude := 0.0, 0.0, 0.0
+	k := len(y)
+	d.y, d.v, d.w, d.others = resize(d.y, k), resize(d.v, k), resize(d.w, k), resize(d.others, k)
+	perUnit := 1 / d.unit // exact, as the unit is a power of two
+	low, high, magnitude, largest := 0.0, 0.0, 0.0, 0.0
+	ys, vs, others, s := d.y[:k], d.v[:k], d.others[:k], s[:k]
+	for i, given := range y {
+		scaled, v := (given-d.centre)*perUnit, s[i]*perUnit
+		v *= v
+		ys[i], vs[i], others[i] = scaled, v, v
+		low, high = min(low, scaled), max(high, scaled)
+		magnitude, largest = max(magnitude, math.Abs(given)), max(largest, v)
+	}
+	others[d.best] = infinite
+	d.spread, d.largest = high-low, largest
+	d.equal = d.spread <= equalWithin*max(1, magnitude*perUnit)
+	if d.spread > widest || largest > widest*widest {
+		return d.tooWide(y, s)
+	}
+	return nil
+}
+
+// tooWide names the first study too far from the most precise one, or too
+// imprecise beside it, to be compared with it.
+func (d *sample) tooWide(y, s []float64) error {
+	low, high := 0.0, 0.0
 	for i := range y {
-		scaled := s[i] / d.unit
-		d.y[i], d.v[i] = (y[i]-d.centre)/d.unit, scaled*scaled
 		low, high = min(low, d.y[i]), max(high, d.y[i])
-		magnitude = max(magnitude, math.Abs(y[i]))
-		if scaled > widest {
+		if s[i]/d.unit > widest {
 			return &InputError{Index: i, Problem: fmt.Sprintf(
 				"the standard error %v is more than %g times that of study %d: leave one of them out", s[i], widest, d.best+1)}
 		}
@@ -108,8 +131,6 @@ func (d *sample) scale(y, s []float64) error {
 				"the estimate %v lies more than %g standard errors of study %d from the others: check both", y[i], widest, d.best+1)}
 		}
 	}
-	d.spread = high - low
-	d.equal = d.spread <= equalWithin*max(1, magnitude/d.unit)
 	return nil
 }
 
@@ -127,73 +148,100 @@ func (d *sample) k() int { return len(d.y) }
 // df returns k − 1.
 func (d *sample) df() float64 { return float64(len(d.y) - 1) }
 
+// sumBlock is how many terms are added plainly; the sums of blocks are added with
+// compensation, so that no digits are lost however many studies there are.
+const sumBlock = 128
+
 // at returns the moments at tau2 and leaves the weights in d.w. All pooling spends
 // its time here.
 func (d *sample) at(tau2 float64) moments {
-	var rest, wy numeric.Sum
-	weights, ys := d.w[:len(d.v)], d.y[:len(d.v)]
-	for i, v := range d.v {
-		w := 1 / (v + tau2)
-		weights[i] = w
-		if i != d.best {
-			rest, wy = rest.Plus(w), wy.Plus(w*ys[i])
+	var rest, squares, wy numeric.Sum // without the most precise study, which has y = 0
+	for from := 0; from < len(d.w); from += sumBlock {
+		to := min(from+sumBlock, len(d.w))
+		v, y, weights := d.others[from:to], d.y[from:to], d.w[from:to]
+		var sumW, sumWW, sumWY float64
+		for i, v := range v {
+			w := 1 / (v + tau2)
+			weights[i] = w
+			sumW += w
+			sumWW += w * w
+			sumWY += w * y[i]
 		}
+		rest, squares, wy = rest.Plus(sumW), squares.Plus(sumWW), wy.Plus(sumWY)
 	}
-	largestWeight := weights[d.best]
-	m := moments{tau2: tau2, w: largestWeight + rest.Value()}
+	best := 1 / (d.v[d.best] + tau2)
+	d.w[d.best] = best
+	m := moments{tau2: tau2, w: best + rest.Value(), rest: rest.Value()}
 	m.mean = wy.Value() / m.w
-	var c, q, s numeric.Sum
-	c = c.Plus(largestWeight * (rest.Value() / m.w))
-	inverse := 1 / m.w
-	for i, w := range weights {
-		r := ys[i] - m.mean
-		wr := w * r
-		q, s = q.Plus(wr*r), s.Plus(wr*wr)
-		if i != d.best {
-			c = c.Plus(w * (1 - w*inverse))
-		}
-	}
-	m.c, m.q, m.s = c.Value(), q.Value(), s.Value()
+	// No weight of the rest is above Σw/2, so that nothing cancels.
+	m.c = best*(rest.Value()/m.w) + (rest.Value() - squares.Value()/m.w)
+	d.scatterAbout(&m)
 	return m
 }
 
-// quick returns w, mean, c and s at tau2 from plain sums in one pass, right to
-// 1e-9; false where more digits would cancel, which takes thousands of studies: the
-// most precise one stands apart with at least a fair share of the weight.
-func (d *sample) quick(tau2 float64) (moments, bool) {
-	var rest, ww, wy, wwy, wwyy float64 // the most precise study has y = 0
-	ys := d.y[:len(d.v)]
-	for i, v := range d.v {
-		if i != d.best {
-			w := 1 / (v + tau2)
-			u := w * ys[i]
-			rest += w
-			ww += w * w
-			wy += u
-			wwy += w * u
-			wwyy += u * u
+// scatterAbout fills in the weighted squares about the mean, with the weights that
+// stand in d.w.
+func (d *sample) scatterAbout(m *moments) {
+	var q, s numeric.Sum
+	for from := 0; from < len(d.w); from += sumBlock {
+		to := min(from+sumBlock, len(d.w))
+		y, weights := d.y[from:to], d.w[from:to]
+		var sumQ, sumS float64
+		for i, w := range weights {
+			r := y[i] - m.mean
+			wr := w * r
+			sumQ += wr * r
+			sumS += wr * wr
 		}
+		q, s = q.Plus(sumQ), s.Plus(sumS)
 	}
-	best := 1 / (d.v[d.best] + tau2)
-	m := moments{tau2: tau2, w: best + rest}
-	m.mean = wy / m.w
-	m.c = best*(rest/m.w) + (rest - ww/m.w) // no w of the rest is above Σw/2
-	m.s = wwyy - m.mean*(2*wwy-m.mean*(ww+best*best))
-	return m, m.s > 1e-4*wwyy
+	m.q, m.s = q.Value(), s.Value()
 }
 
 // about returns Σw, Σw(y − mu)² and Σw²(y − mu)² at tau2 about a given mean.
 func (d *sample) about(mu, tau2 float64) moments {
-	var total, q, s numeric.Sum
-	for i, v := range d.v {
-		w := 1 / (v + tau2)
-		r := d.y[i] - mu
-		wr := w * r
-		total.Add(w)
-		q.Add(wr * r)
-		s.Add(wr * wr)
+	m := d.at(tau2)
+	m.mean = mu
+	d.scatterAbout(&m)
+	return m
+}
+
+// cubes are sums of the second and third order in w, for P = W − W11ᵀW/Σw.
+type cubes struct {
+	squares   float64 // Σw²
+	trace     float64 // tr P²
+	scatter   float64 // Σw³(y − mean)²
+	projected float64 // yᵀP³y
+}
+
+// cubes returns the sums that belong to m, whose weights stand in d.w.
+func (d *sample) cubes(m moments) cubes {
+	var squares, cubed, wwr, scatter numeric.Sum // without the most precise study
+	best := d.w[d.best]
+	d.w[d.best] = 0
+	for from := 0; from < len(d.w); from += sumBlock {
+		to := min(from+sumBlock, len(d.w))
+		y, weights := d.y[from:to], d.w[from:to]
+		var sumW2, sumW3, sumWR, sumS float64
+		for i, w := range weights {
+			wr := w * (y[i] - m.mean)
+			sumW2 += w * w
+			sumW3 += w * w * w
+			sumWR += w * wr
+			sumS += w * wr * wr
+		}
+		squares, cubed, wwr, scatter = squares.Plus(sumW2), cubed.Plus(sumW3), wwr.Plus(sumWR), scatter.Plus(sumS)
 	}
-	return moments{tau2: tau2, w: total.Value(), mean: mu, q: q.Value(), s: s.Value()}
+	d.w[d.best] = best
+	w2, w3, s1, s2 := squares.Value(), cubed.Value(), wwr.Value(), scatter.Value()
+	share, rest := best/m.w, m.rest/m.w // rest is 1 − share to full precision
+	bestWR := -best * m.mean
+	return cubes{
+		squares:   best*best + w2,
+		trace:     best*best*rest*rest + w2 - 2*w3/m.w + 2*share*share*w2 + w2/m.w*(w2/m.w),
+		scatter:   best*bestWR*bestWR + s2,
+		projected: best*bestWR*bestWR*rest + s2 - s1*s1/m.w - 2*s1*share*bestWR,
+	}
 }
 
 // scatter returns Σ(y − ȳ)², unweighted.

@@ -2,12 +2,17 @@ package meta
 
 import (
 	"fmt"
+	"math"
 
 	"steelyard/meta/numeric"
 )
 
 // rootTolerance is the relative accuracy asked of iterative roots.
 const rootTolerance = 1e-12
+
+// rootSteps caps Newton's steps towards a root; a handful is usual, and every step
+// but the last few doubles τ² at least where the studies differ very much.
+const rootSteps = 2000
 
 // estimateTau2 returns the estimate of τ² by a method, in squared working units;
 // 0 for a single study.
@@ -73,18 +78,23 @@ func sidikJonkman(d *sample) float64 {
 }
 
 // tau2WhereQ returns the τ² at which the generalised Q(τ²) = Σw(y − mean)²
-// equals target, or 0 where Q(0) is at or below it. Q falls as τ² grows and is at
-// most Σ(y − ȳ)²/τ², which brackets the root.
+// equals target, or 0 where Q(0) is at or below it.
+//
+// 1/Q rises with τ² and is concave, by the inequality of Cauchy and Schwarz, so
+// that Newton's steps from 0 close in on the root from below. dQ/dτ² is
+// −Σw²(y − mean)².
 func tau2WhereQ(d *sample, target float64) (float64, error) {
-	if d.at(0).q <= target {
+	m := d.at(0)
+	if m.q <= target {
 		return 0, nil
 	}
-	// target/Q is nearly straight in τ², which Q is not.
-	excess := func(tau2 float64) float64 { return target/d.at(tau2).q - 1 }
-	top := d.scatter() / target * (1 + 1e-6)
-	root, err := numeric.Root(excess, 0, top, rootTolerance)
-	if err != nil {
-		return 0, fmt.Errorf("τ² where Q is %.6g: %w", target, err)
+	for range rootSteps {
+		step := (m.q/target - 1) * (m.q / m.s)
+		next := m.tau2 + step
+		if math.Abs(step) <= newtonStep*next {
+			return next, nil
+		}
+		m = d.at(next)
 	}
-	return root, nil
+	return 0, fmt.Errorf("τ² where Q is %.6g: %w", target, numeric.ErrNotConverged)
 }

@@ -28,6 +28,7 @@ func (p *Pooler) tau2Limits() (Limits, error) {
 		if _, err := p.highestMode(l); err != nil {
 			return Limits{}, err
 		}
+		p.compareModes(l)
 		z := numeric.NormalCritical(alpha)
 		return p.tau2Above(l, p.height-0.5*z*z)
 	}

@@ -41,25 +41,31 @@ func checkCommand() *cli.Command {
 }
 
 func check(c *cli.Context) error {
-	format, err := outputWanted(c)
+	wantJSON, err := outputWanted(c)
 	if err != nil {
 		return err
 	}
 	if c.Bool(flagRules) {
-		return listRules(c, format)
+		return listRules(c, wantJSON)
 	}
 	s, x, compared, err := checkSheet(c)
 	if err != nil {
 		return err
 	}
 	unchecked := rules.NotChecked(x)
-	numbers := 0
-	for i := range x.Studies {
-		numbers += len(x.Studies[i].Numbers)
+	content := []byte(checkAnswer(s, x, unchecked, compared))
+	if wantJSON {
+		numbers := 0
+		for i := range x.Studies {
+			numbers += len(x.Studies[i].Numbers)
+		}
+		d := s.CheckDocument(version, len(x.Studies), numbers, notCheckedDocuments(unchecked))
+		d.Compared = compared
+		if content, err = indented(d); err != nil {
+			return err
+		}
 	}
-	d := s.CheckDocument(version, len(x.Studies), numbers, notCheckedDocuments(unchecked))
-	d.Compared = compared
-	if err := reply(c, format, checkAnswer(s, x, unchecked, compared), d, "findings"); err != nil {
+	if err := deliver(c, content); err != nil {
 		return err
 	}
 	if s.CountFindings().Errors > 0 {
@@ -80,8 +86,8 @@ func notCheckedDocuments(unchecked []rules.Unchecked) []synthesis.NotCheckedDocu
 	return all
 }
 
-// checkAnswer is the answer of check.
-func checkAnswer(s *synthesis.Synthesis, x *review.Extraction, unchecked []rules.Unchecked, compared *synthesis.ComparedDocument) *page {
+// checkAnswer is the text answer of check.
+func checkAnswer(s *synthesis.Synthesis, x *review.Extraction, unchecked []rules.Unchecked, compared *synthesis.ComparedDocument) string {
 	var p page
 	n := s.CountFindings()
 	numbers := 0
@@ -116,7 +122,7 @@ func checkAnswer(s *synthesis.Synthesis, x *review.Extraction, unchecked []rules
 	p.unchecked(unchecked)
 	p.line("")
 	p.item("·", "A clean check does not mean correct data: it finds what contradicts itself or stands out. Have a second person check every number.")
-	return &p
+	return p.String()
 }
 
 // checked writes the findings of one kind, grouped by rule.
@@ -196,33 +202,17 @@ func (p *page) unchecked(unchecked []rules.Unchecked) {
 	}
 }
 
-// ruleList is the catalogue as a table.
-type ruleList struct {
-	Rules []listedRule `json:"rules"`
-}
-
-// listedRule is a rule of the catalogue as a table shows it.
-type listedRule struct {
-	Rule      string `json:"rule"`
-	Title     string `json:"title"`
-	Severity  string `json:"severity"`
-	Threshold string `json:"threshold"`
-	Source    string `json:"source"`
-}
-
 // listRules writes the catalogue.
-func listRules(c *cli.Context, format answerFormat) error {
+func listRules(c *cli.Context, wantJSON bool) error {
 	switch {
 	case c.NArg() > 0:
 		return &callError{fmt.Sprintf("--%s lists the catalogue and takes no file; leave out one of the two: %s", flagRules, c.Args().First())}
-	case format == asJSON:
+	case wantJSON:
 		return &callError{fmt.Sprintf("--%s is for reading; leave --%s json away", flagRules, flagFormat)}
 	}
 	var p page
-	var all ruleList
 	for _, r := range rules.Catalogue() {
 		p.wrapped(pad(r.ID, 5), r.Title+" ("+r.Severity+"): "+r.Threshold+". Source: "+r.Source+".")
-		all.Rules = append(all.Rules, listedRule{r.ID, r.Title, r.Severity, r.Threshold, r.Source})
 	}
-	return reply(c, format, &p, all, "rules")
+	return deliver(c, []byte(p.String()))
 }

@@ -1,7 +1,6 @@
 package main
 
 import (
-	"slices"
 	"strings"
 
 	"github.com/rivo/uniseg"
@@ -22,7 +21,7 @@ const (
 )
 
 // table writes rows under their heads, each column as wide as its widest cell.
-// Names in the first column are cut to fit.
+// Names in the first column are cut to fit, in the rows themselves.
 func (p *page) table(columns []column, rows [][]string) {
 	p.tableNamed(columns, rows, narrowestName, widestName)
 }
@@ -30,10 +29,6 @@ func (p *page) table(columns []column, rows [][]string) {
 // tableNamed is table with the first column cut to widest, and further, down to
 // narrowest, where that is needed.
 func (p *page) tableNamed(columns []column, rows [][]string, narrowest, widest int) {
-	p.record(block{kind: tableBlock, columns: columns, rows: slices.Clone(rows)})
-	for i, row := range rows {
-		rows[i] = slices.Clone(row)
-	}
 	widths := make([]int, len(columns))
 	for i, c := range columns {
 		widths[i] = width(c.head)
@@ -65,7 +60,7 @@ func (p *page) tableNamed(columns []column, rows [][]string, narrowest, widest i
 			}
 			line += cell + "  "
 		}
-		p.write(line)
+		p.line(line)
 	}
 }
 

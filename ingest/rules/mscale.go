@@ -47,8 +47,8 @@ func (c *checker) acrossScale(rows []*row) {
 func (c *checker) deviations(rows []*row) {
 	var logs []float64
 	for _, r := range rows {
-		if sd, ok := r.spread(); ok {
-			logs = append(logs, math.Log(sd))
+		if treated, control, ok := r.groups(); ok {
+			logs = append(logs, math.Log(pooledSD(treated, control)))
 		}
 	}
 	usual := scaleOf(logs)

@@ -97,11 +97,7 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 }
 
 func (p *Parts) document() PartsDocument {
-	d := PartsDocument{Methods: p.Methods.document(), Beliefs: p.Beliefs.document()}
-	for i := range p.Runs {
-		d.Runs = append(d.Runs, p.Runs[i].document())
-	}
-	return d
+	return PartsDocument{Methods: p.Methods.document(), Beliefs: p.Beliefs.document()}
 }
 
 // scaleName names the scale on which a measure is analysed.

@@ -33,7 +33,7 @@ func knownColumns(where *review.Filter, columns []review.Column) error {
 	if where == nil {
 		return nil
 	}
-	names := []string{convertedColumn, review.RowColumn}
+	names := []string{convertedColumn}
 	for _, c := range columns {
 		names = append(names, c.Names()...)
 	}
