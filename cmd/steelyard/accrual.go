@@ -22,6 +22,7 @@ type accrualKind struct {
 	flags                    []cli.Flag
 	want                     func(c *cli.Context) (synthesis.Want, error)
 	write                    func(p *page, s *synthesis.Synthesis, o *synthesis.Outcome)
+	records                  []string // where the JSON holds its table; see records
 }
 
 func accrualCommands() []*cli.Command {
@@ -32,9 +33,10 @@ func accrualCommands() []*cli.Command {
 			description: "Studies enter by date; those of one date together unless --ties file. Without dates, and beyond\n" +
 				"a column named by --order, they enter in the order of the file. The model is refitted at each step.\n" +
 				"With --looks: how often looks at a growing review pass each step by chance alone.",
-			flags: looksFlags(),
-			want:  wantCumulative,
-			write: (*page).cumulative,
+			flags:   looksFlags(),
+			want:    wantCumulative,
+			write:   (*page).cumulative,
+			records: []string{"outcomes", "cumulative"},
 		},
 		{
 			name: "leave-one-out", usage: "the result without each study, and what each carries",
@@ -52,12 +54,14 @@ func accrualCommands() []*cli.Command {
 				}
 				return want, nil
 			},
-			write: (*page).leaveOneOut,
+			write:   (*page).leaveOneOut,
+			records: []string{"outcomes", "leave_one_out"},
 		},
 		{
 			name: "influence", usage: "how each study pulls on the result",
-			want:  func(*cli.Context) (synthesis.Want, error) { return synthesis.Want{Influence: true}, nil },
-			write: (*page).influence,
+			want:    func(*cli.Context) (synthesis.Want, error) { return synthesis.Want{Influence: true}, nil },
+			write:   (*page).influence,
+			records: []string{"outcomes", "influence"},
 		},
 		{
 			name: "subsets", usage: "the result of every subset of the studies",
@@ -65,6 +69,7 @@ func accrualCommands() []*cli.Command {
 			flags:       subsetsFlags(),
 			want:        wantSubsets,
 			write:       (*page).subsets,
+			records:     []string{"outcomes", "subsets"},
 		},
 		{
 			name: "next-trial", usage: "what one more study could change",
@@ -72,9 +77,10 @@ func accrualCommands() []*cli.Command {
 				"interval excludes no effect or the important difference; over sizes of the study, and the smallest\n" +
 				"that suffices.\n" +
 				"Example: steelyard next-trial FILE --size 400 --control-risk 0.2",
-			flags: nextFlags(),
-			want:  wantNext,
-			write: (*page).next,
+			flags:   nextFlags(),
+			want:    wantNext,
+			write:   (*page).next,
+			records: []string{"outcomes", "next_trial", "size_curve"},
 		},
 	} {
 		commands = append(commands, kind.command())
@@ -106,7 +112,7 @@ func (k accrualKind) command() *cli.Command {
 		Description: k.description,
 		Flags:       slices.Concat(k.flags, sheetFlags(), settingFlags(k.name), []cli.Flag{formatFlag()}, outputFlags(), workFlags()),
 		Action: func(c *cli.Context) error {
-			wantJSON, err := outputWanted(c)
+			format, err := outputWanted(c)
 			if err != nil {
 				return err
 			}
@@ -118,13 +124,7 @@ func (k accrualKind) command() *cli.Command {
 			if err != nil {
 				return err
 			}
-			content := []byte(accrualAnswer(s, k.write))
-			if wantJSON {
-				if content, err = indented(s.Document(version)); err != nil {
-					return err
-				}
-			}
-			if err := deliver(c, content); err != nil {
+			if err := reply(c, format, accrualAnswer(s, k.write), s.Document(version), k.records...); err != nil {
 				return err
 			}
 			return incomplete(s)
@@ -132,9 +132,9 @@ func (k accrualKind) command() *cli.Command {
 	}
 }
 
-// accrualAnswer is the text of an accrual command: each outcome's table, and the
+// accrualAnswer is the answer of an accrual command: each outcome's table, and the
 // cautions that belong to it.
-func accrualAnswer(s *synthesis.Synthesis, write func(*page, *synthesis.Synthesis, *synthesis.Outcome)) string {
+func accrualAnswer(s *synthesis.Synthesis, write func(*page, *synthesis.Synthesis, *synthesis.Outcome)) *page {
 	var p page
 	for i := range s.Outcomes {
 		o := &s.Outcomes[i]
@@ -159,5 +159,5 @@ func accrualAnswer(s *synthesis.Synthesis, write func(*page, *synthesis.Synthesi
 	p.line("")
 	p.item("·", synthesis.AccrualCaution)
 	p.item("·", synthesis.EvidenceCaution)
-	return p.String()
+	return &p
 }

@@ -11,63 +11,11 @@ import (
 	"steelyard/meta/synthesis"
 )
 
-// The shape of the text answer, in characters.
-const (
-	answerWidth = 96
-	labelWidth  = 18
-	valueWidth  = 24
-)
-
 // mostFindings is how many findings an answer shows.
 const mostFindings = 10
 
-// page collects the lines of a text answer.
-type page struct{ strings.Builder }
-
-// line writes one line as it stands.
-func (p *page) line(text string) { p.WriteString(strings.TrimRight(text, " ") + "\n") }
-
-// row writes a label and its text, wrapped under itself.
-func (p *page) row(label, text string) { p.wrapped(pad(label, labelWidth), text) }
-
-// value writes a label, a value and what is to be said about it, in three
-// columns.
-func (p *page) value(label, value, about string) {
-	head := pad(label, labelWidth) + pad(value, valueWidth) + "  "
-	if width(value) > valueWidth && about != "" { // what is said about it keeps its column
-		p.line("  " + strings.TrimRight(head, " "))
-		head = strings.Repeat(" ", labelWidth+valueWidth+2)
-	}
-	p.wrapped(head, about)
-}
-
-// wrapped writes a head and a text that is wrapped under its own beginning.
-func (p *page) wrapped(head, text string) {
-	indent := width(head)
-	for i, line := range wrap(text, answerWidth-indent-2) {
-		if i > 0 {
-			head = strings.Repeat(" ", indent)
-		}
-		p.line("  " + head + line)
-	}
-}
-
-// item writes a paragraph with a hanging mark.
-func (p *page) item(mark, text string) {
-	for i, line := range wrap(text, answerWidth-4) {
-		if i > 0 {
-			mark = " "
-		}
-		p.line("  " + mark + " " + line)
-	}
-}
-
-func pad(text string, columns int) string {
-	return text + strings.Repeat(" ", max(0, columns-width(text)))
-}
-
-// answer returns the text answer of a synthesis.
-func answer(s *synthesis.Synthesis) string {
+// answer returns the answer of a synthesis.
+func answer(s *synthesis.Synthesis) *page {
 	var p page
 	for i := range s.Outcomes {
 		if i > 0 {
@@ -81,7 +29,7 @@ func answer(s *synthesis.Synthesis) string {
 	for _, c := range s.Cautions {
 		p.item("·", c)
 	}
-	return p.String()
+	return &p
 }
 
 // outcome writes one outcome: what was pooled, how large, how sure, how strong.
@@ -109,6 +57,7 @@ func (p *page) outcome(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	p.regions(o)
 	p.remarks(o)
 	p.sceptics(o)
+	p.runs(o)
 	p.methods(s, o)
 }
 
@@ -244,17 +193,22 @@ func (p *page) beliefs(r *synthesis.Result) {
 
 // beliefTable writes probabilities before over those after.
 func (p *page) beliefTable(beliefs []synthesis.Belief) {
-	const column = 8
-	perLine := (answerWidth - labelWidth) / column
+	const each = 8
+	perLine := (answerWidth - labelWidth) / each
 	for from := 0; from < len(beliefs); from += perLine {
 		before, after := "", ""
 		for _, b := range beliefs[from:min(from+perLine, len(beliefs))] {
-			before += pad(words.Probability(b.Prior), column)
-			after += pad(words.Probability(b.Posterior), column)
+			before += pad(words.Probability(b.Prior), each)
+			after += pad(words.Probability(b.Posterior), each)
 		}
-		p.line("  " + pad("Belief before", labelWidth) + before)
-		p.line("  " + pad("becomes", labelWidth) + after)
+		p.write("  " + pad("Belief before", labelWidth) + before)
+		p.write("  " + pad("becomes", labelWidth) + after)
 	}
+	changes := make([]string, len(beliefs))
+	for i, b := range beliefs {
+		changes[i] = fmt.Sprintf("from %s to %s", words.Probability(b.Prior), words.Probability(b.Posterior))
+	}
+	p.record(block{kind: labelledBlock, label: "Belief in an effect", text: strings.Join(changes, ", ")})
 }
 
 // scatter writes how much the studies differ.

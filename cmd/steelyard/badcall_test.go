@@ -41,7 +41,7 @@ func TestBadCalls(t *testing.T) {
 		{"pool BCG --outcome flares", codeCall, []string{"no column of outcomes"}},
 		{"pool DEMO --outcome flares", codeCall, []string{"flare within 24 weeks"}},
 		{"pool BCG --format xml", codeCall, []string{"text, json"}},
-		{"pool BCG --out BCG --overwrite", codeCall, []string{"text or JSON"}},
+		{"pool BCG --out BCG --overwrite", codeCall, []string{"would hold text; add --format csv"}},
 		{"pool BCG --out x.json", codeCall, []string{"--format json"}},
 		{"pool BCG --out FOLDER --overwrite", codeCall, []string{"is a folder"}},
 		{"pool BCG --tau paule-mandel --tau hedges-olkin", codeCall, []string{"given twice"}},

@@ -41,31 +41,25 @@ func checkCommand() *cli.Command {
 }
 
 func check(c *cli.Context) error {
-	wantJSON, err := outputWanted(c)
+	format, err := outputWanted(c)
 	if err != nil {
 		return err
 	}
 	if c.Bool(flagRules) {
-		return listRules(c, wantJSON)
+		return listRules(c, format)
 	}
 	s, x, compared, err := checkSheet(c)
 	if err != nil {
 		return err
 	}
 	unchecked := rules.NotChecked(x)
-	content := []byte(checkAnswer(s, x, unchecked, compared))
-	if wantJSON {
-		numbers := 0
-		for i := range x.Studies {
-			numbers += len(x.Studies[i].Numbers)
-		}
-		d := s.CheckDocument(version, len(x.Studies), numbers, notCheckedDocuments(unchecked))
-		d.Compared = compared
-		if content, err = indented(d); err != nil {
-			return err
-		}
+	numbers := 0
+	for i := range x.Studies {
+		numbers += len(x.Studies[i].Numbers)
 	}
-	if err := deliver(c, content); err != nil {
+	d := s.CheckDocument(version, len(x.Studies), numbers, notCheckedDocuments(unchecked))
+	d.Compared = compared
+	if err := reply(c, format, checkAnswer(s, x, unchecked, compared), d, "findings"); err != nil {
 		return err
 	}
 	if s.CountFindings().Errors > 0 {
@@ -86,8 +80,8 @@ func notCheckedDocuments(unchecked []rules.Unchecked) []synthesis.NotCheckedDocu
 	return all
 }
 
-// checkAnswer is the text answer of check.
-func checkAnswer(s *synthesis.Synthesis, x *review.Extraction, unchecked []rules.Unchecked, compared *synthesis.ComparedDocument) string {
+// checkAnswer is the answer of check.
+func checkAnswer(s *synthesis.Synthesis, x *review.Extraction, unchecked []rules.Unchecked, compared *synthesis.ComparedDocument) *page {
 	var p page
 	n := s.CountFindings()
 	numbers := 0
@@ -122,7 +116,7 @@ func checkAnswer(s *synthesis.Synthesis, x *review.Extraction, unchecked []rules
 	p.unchecked(unchecked)
 	p.line("")
 	p.item("·", "A clean check does not mean correct data: it finds what contradicts itself or stands out. Have a second person check every number.")
-	return p.String()
+	return &p
 }
 
 // checked writes the findings of one kind, grouped by rule.
@@ -202,17 +196,33 @@ func (p *page) unchecked(unchecked []rules.Unchecked) {
 	}
 }
 
+// ruleList is the catalogue as a table.
+type ruleList struct {
+	Rules []listedRule `json:"rules"`
+}
+
+// listedRule is a rule of the catalogue as a table shows it.
+type listedRule struct {
+	Rule      string `json:"rule"`
+	Title     string `json:"title"`
+	Severity  string `json:"severity"`
+	Threshold string `json:"threshold"`
+	Source    string `json:"source"`
+}
+
 // listRules writes the catalogue.
-func listRules(c *cli.Context, wantJSON bool) error {
+func listRules(c *cli.Context, format answerFormat) error {
 	switch {
 	case c.NArg() > 0:
 		return &callError{fmt.Sprintf("--%s lists the catalogue and takes no file; leave out one of the two: %s", flagRules, c.Args().First())}
-	case wantJSON:
+	case format == asJSON:
 		return &callError{fmt.Sprintf("--%s is for reading; leave --%s json away", flagRules, flagFormat)}
 	}
 	var p page
+	var all ruleList
 	for _, r := range rules.Catalogue() {
 		p.wrapped(pad(r.ID, 5), r.Title+" ("+r.Severity+"): "+r.Threshold+". Source: "+r.Source+".")
+		all.Rules = append(all.Rules, listedRule{r.ID, r.Title, r.Severity, r.Threshold, r.Source})
 	}
-	return deliver(c, []byte(p.String()))
+	return reply(c, format, &p, all, "rules")
 }

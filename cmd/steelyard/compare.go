@@ -42,7 +42,7 @@ func checkSheet(c *cli.Context) (*synthesis.Synthesis, *review.Extraction, *synt
 		return nil, nil, nil, err
 	}
 	if settle != "" {
-		content, err := comparison.Workbook()
+		content, err := comparison.Workbook(s.Plan)
 		if err != nil {
 			return nil, nil, nil, err
 		}

@@ -70,10 +70,6 @@ func outputFlags() []cli.Flag {
 	}
 }
 
-func formatFlag() cli.Flag {
-	return &cli.StringFlag{Name: flagFormat, Value: "text", Usage: "text for reading, json for programs"}
-}
-
 // applySettings puts the settings given as flags into the plan.
 func applySettings(c *cli.Context, plan *review.Plan) error {
 	for _, s := range review.Settings() {
@@ -85,26 +81,6 @@ func applySettings(c *cli.Context, plan *review.Plan) error {
 		}
 	}
 	return nil
-}
-
-// jsonWanted reads --format.
-func jsonWanted(c *cli.Context) (bool, error) {
-	switch format := c.String(flagFormat); format {
-	case "text":
-		return false, nil
-	case "json":
-		return true, nil
-	default:
-		return false, &callError{fmt.Sprintf("--format: %q is not known; use one of: text, json", format)}
-	}
-}
-
-// outputWanted reads --format and checks that --out fits it.
-func outputWanted(c *cli.Context) (wantJSON bool, err error) {
-	if wantJSON, err = jsonWanted(c); err != nil {
-		return wantJSON, err
-	}
-	return wantJSON, checkOut(c, wantJSON)
 }
 
 // oneFile returns the call's single operand.

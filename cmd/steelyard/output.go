@@ -7,8 +7,6 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
-	"slices"
-	"strings"
 
 	"github.com/urfave/cli/v2"
 )
@@ -23,21 +21,6 @@ func deliver(c *cli.Context, content []byte) error {
 		return nil
 	}
 	return writeWhole(path, content, c.Bool(flagOverwrite))
-}
-
-// checkOut refuses an output whose name promises another kind of file.
-func checkOut(c *cli.Context, wantJSON bool) error {
-	path := c.String(flagOut)
-	ending := strings.ToLower(filepath.Ext(path))
-	switch {
-	case path == "" && c.IsSet(flagOut):
-		return &callError{"--out needs the name of a file, or - for the terminal"}
-	case ending == ".json" && !wantJSON:
-		return &callError{fmt.Sprintf("--out %s would hold text; add --format json, or name it .txt", path)}
-	case slices.Contains([]string{".svg", ".pdf", ".png", ".xlsx", ".html", ".csv"}, ending):
-		return &callError{fmt.Sprintf("--out %s: this command writes text or JSON; name it .txt or .json", path)}
-	}
-	return nil
 }
 
 // writeWhole writes a file whole or not at all: to a temporary file in the same

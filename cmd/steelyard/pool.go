@@ -1,7 +1,6 @@
 package main
 
 import (
-	"encoding/json"
 	"slices"
 
 	"github.com/urfave/cli/v2"
@@ -10,10 +9,12 @@ import (
 )
 
 // Names of pool's own flags: flagAllMethods asks for a comparison of methods,
-// flagBeliefs for what sceptics make of the evidence.
+// flagBeliefs for what sceptics make of the evidence, flagRuns for the planned
+// sensitivity runs.
 const (
 	flagAllMethods = "all-methods"
 	flagBeliefs    = "beliefs"
+	flagRuns       = "runs"
 )
 
 func poolCommand() *cli.Command {
@@ -27,6 +28,7 @@ func poolCommand() *cli.Command {
 		Flags: slices.Concat(sheetFlags(), settingFlags("pool"), []cli.Flag{
 			&cli.BoolFlag{Name: flagAllMethods, Usage: "besides, the results of all methods for counts and all zero-cell corrections side by side, and which are apt here"},
 			&cli.BoolFlag{Name: flagBeliefs, Usage: "besides, what sceptics make of the evidence: beliefs over a range of priors, the scepticism limit, Bayes factors by the scale of a prior and their bound"},
+			&cli.BoolFlag{Name: flagRuns, Usage: "besides, the sensitivity runs that the plan names, side by side"},
 			formatFlag(),
 		}, outputFlags()),
 		Action: pool,
@@ -34,28 +36,23 @@ func poolCommand() *cli.Command {
 }
 
 func pool(c *cli.Context) error {
-	wantJSON, err := outputWanted(c)
+	format, err := outputWanted(c)
 	if err != nil {
 		return err
 	}
-	s, err := analyse(c, synthesis.Want{Methods: c.Bool(flagAllMethods), Beliefs: c.Bool(flagBeliefs)})
+	s, err := analyse(c, synthesis.Want{Methods: c.Bool(flagAllMethods), Beliefs: c.Bool(flagBeliefs), Runs: c.Bool(flagRuns)})
 	if err != nil {
 		return err
 	}
-	content := []byte(answer(s))
-	if wantJSON {
-		if content, err = indented(s.Document(version)); err != nil {
-			return err
-		}
+	table := []string{"outcomes"}
+	switch {
+	case c.Bool(flagAllMethods):
+		table = append(table, "methods", "rows")
+	case c.Bool(flagRuns):
+		table = append(table, "runs")
 	}
-	if err := deliver(c, content); err != nil {
+	if err := reply(c, format, answer(s), s.Document(version), table...); err != nil {
 		return err
 	}
 	return incomplete(s)
-}
-
-// indented returns a value as JSON for reading, with a line end.
-func indented(v any) ([]byte, error) {
-	content, err := json.MarshalIndent(v, "", "  ")
-	return append(content, '\n'), err
 }

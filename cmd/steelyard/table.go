@@ -1,6 +1,7 @@
 package main
 
 import (
+	"slices"
 	"strings"
 
 	"github.com/rivo/uniseg"
@@ -21,7 +22,7 @@ const (
 )
 
 // table writes rows under their heads, each column as wide as its widest cell.
-// Names in the first column are cut to fit, in the rows themselves.
+// Names in the first column are cut to fit.
 func (p *page) table(columns []column, rows [][]string) {
 	p.tableNamed(columns, rows, narrowestName, widestName)
 }
@@ -29,6 +30,10 @@ func (p *page) table(columns []column, rows [][]string) {
 // tableNamed is table with the first column cut to widest, and further, down to
 // narrowest, where that is needed.
 func (p *page) tableNamed(columns []column, rows [][]string, narrowest, widest int) {
+	p.record(block{kind: tableBlock, columns: columns, rows: slices.Clone(rows)})
+	for i, row := range rows {
+		rows[i] = slices.Clone(row)
+	}
 	widths := make([]int, len(columns))
 	for i, c := range columns {
 		widths[i] = width(c.head)
@@ -60,7 +65,7 @@ func (p *page) tableNamed(columns []column, rows [][]string, narrowest, widest i
 			}
 			line += cell + "  "
 		}
-		p.line(line)
+		p.write(line)
 	}
 }
 

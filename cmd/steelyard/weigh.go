@@ -74,7 +74,7 @@ func weigh(c *cli.Context) error {
 	if c.NArg() > 0 {
 		return &callError{fmt.Sprintf("weigh takes no file, but %q is given; to pool a sheet: steelyard pool %s", c.Args().First(), c.Args().First())}
 	}
-	wantJSON, err := outputWanted(c)
+	format, err := outputWanted(c)
 	if err != nil {
 		return err
 	}
@@ -87,13 +87,7 @@ func weigh(c *cli.Context) error {
 		// Any ratio is weighed as a risk ratio; the message is about ratios.
 		return &callError{strings.ReplaceAll(err.Error(), "risk ratio", "ratio")}
 	}
-	content := []byte(weighAnswer(w, numbers.Level, c.Bool(flagNamed)))
-	if wantJSON {
-		if content, err = indented(w.Document()); err != nil {
-			return err
-		}
-	}
-	return deliver(c, content)
+	return reply(c, format, weighAnswer(w, numbers.Level, c.Bool(flagNamed)), w.Document())
 }
 
 // weighNumbers reads the flags: exactly one statistic with what goes with it.
@@ -153,8 +147,8 @@ func strayFlags(c *cli.Context, statistic synthesis.Statistic) error {
 	return nil
 }
 
-// weighAnswer is the text answer of weigh; categories adds two published scales.
-func weighAnswer(w *synthesis.Weighing, level float64, categories bool) string {
+// weighAnswer is the answer of weigh; categories adds two published scales.
+func weighAnswer(w *synthesis.Weighing, level float64, categories bool) *page {
 	var p page
 	measure := "estimate"
 	if w.Measure.Log() {
@@ -188,7 +182,7 @@ func weighAnswer(w *synthesis.Weighing, level float64, categories bool) string {
 	}
 	p.line("")
 	p.item("·", synthesis.EvidenceCaution)
-	return p.String()
+	return &p
 }
 
 // boundText says what stands beside the evidence: the most that any prior could

@@ -3,6 +3,8 @@ package agree
 import (
 	"bytes"
 	"context"
+	"fmt"
+	"maps"
 	"strings"
 	"testing"
 
@@ -115,8 +117,8 @@ func first(x *review.Extraction, _ *review.Plan) *review.Extraction { return x }
 // TestWorkbook wants the workbook to read back with an error for each unsettled number
 // and, once they are typed over, as the agreed sheet.
 func TestWorkbook(t *testing.T) {
-	c, _ := compared(t)
-	data, err := c.Workbook()
+	c, plan := compared(t)
+	data, err := c.Workbook(plan)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -174,5 +176,48 @@ func TestIdentical(t *testing.T) {
 	c := Compare(x, y)
 	if f := c.Findings(); len(f) != 0 || len(c.Pairs) != 5 {
 		t.Errorf("%d pairs, findings %v", len(c.Pairs), f)
+	}
+}
+
+// TestWorkbookKeepsThePlan wants the settings and runs of the first sheet's plan to read
+// back from the workbook as they were.
+func TestWorkbookKeepsThePlan(t *testing.T) {
+	f := excelize.NewFile()
+	for _, sheet := range []struct {
+		name string
+		rows [][]any
+	}{
+		{"Sheet1", [][]any{{"study", "outcome", "odds ratio", "ci low", "ci high"}, {"Ahlgren 2001", "Pain (12 weeks)", 0.71, 0.49, 1.03}, {"Becker 2004", "Pain (12 weeks)", 0.8, 0.52, 1.23}}},
+		{"plan", [][]any{{"setting", "value", "outcome", "reason"}, {"tau", "paule-mandel", "", "protocol"}, {"important", "0.8", "Pain (12 weeks)", "panel of May"}, {"run", "low risk: risk of bias is low", "", ""}}},
+	} {
+		if _, err := f.NewSheet(sheet.name); err != nil {
+			t.Fatal(err)
+		}
+		for i, row := range sheet.rows {
+			if err := f.SetSheetRow(sheet.name, fmt.Sprintf("A%d", i+1), &row); err != nil {
+				t.Fatal(err)
+			}
+		}
+	}
+	book, err := f.WriteToBuffer()
+	if err != nil {
+		t.Fatal(err)
+	}
+	x, plan := read(t, book.Bytes(), "first.xlsx")
+	data, err := Compare(x, x).Workbook(plan)
+	if err != nil {
+		t.Fatal(err)
+	}
+	_, agreed := read(t, data, "settle.xlsx")
+	for _, setting := range []string{"tau", "important", "seed"} {
+		for _, outcome := range []string{"", "Pain (12 weeks)"} {
+			was, is := plan.Value(setting, outcome), agreed.Value(setting, outcome)
+			if was.Text != is.Text || was.From != is.From || was.Reason != is.Reason {
+				t.Errorf("%s of %q: %+v, want %+v", setting, outcome, is, was)
+			}
+		}
+	}
+	if len(plan.Runs) != 1 || len(agreed.Runs) != 1 || agreed.Runs[0].Name != plan.Runs[0].Name || !maps.Equal(agreed.Runs[0].Changes, plan.Runs[0].Changes) {
+		t.Errorf("runs %+v, want %+v", agreed.Runs, plan.Runs)
 	}
 }

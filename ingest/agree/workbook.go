@@ -14,6 +14,7 @@ import (
 const (
 	studiesSheet = "studies"
 	listSheet    = "disagreements"
+	planSheet    = "plan"
 )
 
 // column is a column of the agreed sheet.
@@ -26,8 +27,8 @@ type column struct {
 // every row of both extractions; a cell in which they differ holds both texts, with a
 // bar between them, until somebody types the right one over it. It is read like any
 // sheet: unsettled numbers are errors of their rows. A second sheet lists what is to be
-// settled, large differences first.
-func (c *Comparison) Workbook() ([]byte, error) {
+// settled, large differences first; a third holds the plan of the first, if it has one.
+func (c *Comparison) Workbook(plan *review.Plan) ([]byte, error) {
 	w := &writer{f: excelize.NewFile(), columns: c.columns()}
 	w.do(w.f.SetSheetName("Sheet1", studiesSheet))
 	bold, err := w.f.NewStyle(&excelize.Style{Font: &excelize.Font{Bold: true}})
@@ -61,6 +62,7 @@ func (c *Comparison) Workbook() ([]byte, error) {
 			row++
 		}
 	}
+	w.plan(plan)
 	if w.err != nil {
 		return nil, fmt.Errorf("writing the workbook: %w", w.err)
 	}
@@ -210,4 +212,26 @@ func (w *writer) entry(at string, s *review.Study, cell Cell, what string) {
 		w.text(listSheet, i+1, w.list, text)
 	}
 	w.list++
+}
+
+// plan writes the settings and the planned runs that a plan sheet gave.
+func (w *writer) plan(plan *review.Plan) {
+	given := plan.Given(review.FromSheet)
+	if len(given)+len(plan.Runs) == 0 {
+		return
+	}
+	_, err := w.f.NewSheet(planSheet)
+	w.do(err)
+	rows := [][]string{{"setting", "value", "outcome", "reason"}}
+	for _, g := range given {
+		rows = append(rows, []string{g.Setting, g.Value.Text, g.Outcome, g.Value.Reason})
+	}
+	for _, r := range plan.Runs {
+		rows = append(rows, []string{"run", r.Place.Text, r.Outcome, ""})
+	}
+	for i, row := range rows {
+		for j, text := range row {
+			w.text(planSheet, j+1, i+1, text)
+		}
+	}
 }

@@ -47,8 +47,8 @@ func (c *checker) acrossScale(rows []*row) {
 func (c *checker) deviations(rows []*row) {
 	var logs []float64
 	for _, r := range rows {
-		if treated, control, ok := r.groups(); ok {
-			logs = append(logs, math.Log(pooledSD(treated, control)))
+		if sd, ok := r.spread(); ok {
+			logs = append(logs, math.Log(sd))
 		}
 	}
 	usual := scaleOf(logs)

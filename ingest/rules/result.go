@@ -178,6 +178,25 @@ func (r *row) groups() (treated, control effect.Arm, ok bool) {
 	return treated, control, treated.SD > 0 && control.SD > 0 && treated.N > 1 && control.N > 1
 }
 
+// spread returns the standard deviation of both arms together, from their SDs or from
+// their standard errors.
+func (r *row) spread() (sd float64, ok bool) {
+	if treated, control, ok := r.groups(); ok {
+		return pooledSD(treated, control), true
+	}
+	if !r.has(review.SETreated, review.TotalTreated, review.SEControl, review.TotalControl) {
+		return 0, false
+	}
+	treated, control := r.errorArm(review.SETreated, review.TotalTreated), r.errorArm(review.SEControl, review.TotalControl)
+	return pooledSD(treated, control), treated.SD > 0 && control.SD > 0 && treated.N > 1 && control.N > 1
+}
+
+// errorArm is an arm known by the standard error of its mean.
+func (r *row) errorArm(se, total review.Field) effect.Arm {
+	n := r.value(total)
+	return effect.Arm{SD: r.value(se) * math.Sqrt(n), N: n}
+}
+
 // pooledSD returns the standard deviation of both arms together.
 func pooledSD(a, b effect.Arm) float64 {
 	return math.Sqrt(((a.N-1)*a.SD*a.SD + (b.N-1)*b.SD*b.SD) / (a.N + b.N - 2))

@@ -2,6 +2,7 @@ package review
 
 import (
 	"fmt"
+	"slices"
 	"strconv"
 	"strings"
 	"unicode"
@@ -45,6 +46,36 @@ func ParseFilter(text string) (*Filter, error) {
 
 // String returns the filter as written.
 func (f *Filter) String() string { return f.text }
+
+// And returns the filter that keeps what both keep; a nil filter keeps every row.
+func (f *Filter) And(g *Filter) *Filter {
+	switch {
+	case f == nil:
+		return g
+	case g == nil:
+		return f
+	}
+	both := &Filter{}
+	var texts []string
+	for _, a := range f.any {
+		for _, b := range g.any {
+			all := slices.Concat(a, b)
+			both.any = append(both.any, all)
+			texts = append(texts, conjunction(all))
+		}
+	}
+	both.text = strings.Join(texts, " or ")
+	return both
+}
+
+// conjunction writes conditions as a filter has them.
+func conjunction(all []condition) string {
+	texts := make([]string, len(all))
+	for i, c := range all {
+		texts[i] = c.text
+	}
+	return strings.Join(texts, " and ")
+}
 
 // Columns returns the folded names of the columns the filter looks at.
 func (f *Filter) Columns() []string {

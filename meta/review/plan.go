@@ -1,6 +1,7 @@
 package review
 
 import (
+	"cmp"
 	"errors"
 	"fmt"
 	"maps"
@@ -102,23 +103,89 @@ func (p *Plan) Value(setting, outcome string) Value {
 	return Value{Text: s.Default}
 }
 
-// Outcomes returns the outcomes that have settings of their own, as folded names
-// in order, each with the place of one of its settings.
+// Outcomes returns the outcomes that have settings or runs of their own, as folded
+// names in order, each with the place of the first of these.
 func (p *Plan) Outcomes() (names []string, places map[string]Place) {
 	places = map[string]Place{}
+	add := func(outcome string, at Place) {
+		if old, seen := places[outcome]; outcome != "" && (!seen || before(at, old)) {
+			places[outcome] = at
+		}
+	}
 	for key, v := range p.values {
-		if key.outcome == "" {
-			continue
-		}
-		if old, seen := places[key.outcome]; !seen || before(v.Place, old) {
-			places[key.outcome] = v.Place
-		}
+		add(key.outcome, v.Place)
+	}
+	for _, run := range p.Runs {
+		add(choice.Fold(run.Outcome), run.Place)
 	}
 	return slices.Sorted(maps.Keys(places)), places
 }
 
+// With returns the plan for one outcome as a planned run changes it: the run's
+// settings go before all others, and its filter holds besides the plan's own. The
+// error of a value that ParseRun has checked cannot occur.
+func (p *Plan) With(run Run, outcome string) (*Plan, error) {
+	changed := &Plan{values: maps.Clone(p.values), Runs: p.Runs}
+	if changed.values == nil {
+		changed.values = map[planKey]Value{}
+	}
+	for _, setting := range slices.Sorted(maps.Keys(run.Changes)) {
+		text := run.Changes[setting]
+		if own := p.Value(SettingWhere, outcome).Text; setting == SettingWhere && own != "" {
+			both, err := bothFilters(own, text)
+			if err != nil {
+				return nil, err
+			}
+			text = both
+		}
+		delete(changed.values, planKey{setting, choice.Fold(outcome), FromFlag})
+		if err := changed.Set(setting, outcome, Value{Text: text, From: FromFlag, Place: run.Place}); err != nil {
+			return nil, err
+		}
+	}
+	return changed, nil
+}
+
+// bothFilters joins two filters into one that holds where both do.
+func bothFilters(a, b string) (string, error) {
+	first, err := ParseFilter(a)
+	if err != nil {
+		return "", err
+	}
+	second, err := ParseFilter(b)
+	if err != nil {
+		return "", err
+	}
+	return first.And(second).String(), nil
+}
+
 // before reports whether a stands before b in reading order.
 func before(a, b Place) bool { return a.Row < b.Row || (a.Row == b.Row && a.Col < b.Col) }
+
+// Given is a setting as somebody gave it.
+type Given struct {
+	Setting string
+	Outcome string // folded; blank for all
+	Value   Value
+}
+
+// Given returns the settings of an origin, in the order of the settings' table, those
+// for all outcomes first.
+func (p *Plan) Given(from From) []Given {
+	var all []Given
+	for key, v := range p.values {
+		if key.from == from {
+			all = append(all, Given{key.setting, key.outcome, v})
+		}
+	}
+	rank := func(name string) int {
+		return slices.IndexFunc(settings, func(s Setting) bool { return s.Name == name })
+	}
+	slices.SortFunc(all, func(a, b Given) int {
+		return cmp.Or(cmp.Compare(rank(a.Setting), rank(b.Setting)), cmp.Compare(a.Outcome, b.Outcome))
+	})
+	return all
+}
 
 // Analysis is the typed form of the settings for one outcome.
 type Analysis struct {

@@ -130,6 +130,10 @@ func (x *Extraction) Outcomes() []string {
 	return names
 }
 
+// RowColumn is the name by which filters call the number of a row in the sheet, as in
+// "row is not 7", unless the sheet has a column of that name.
+const RowColumn = "row"
+
 // Cell returns the text of a column by its folded name, for filters: identity
 // first, then numbers, then context and covariates. It is blank where the row has
 // nothing. The year is that of a column of its own beside the date where the row
@@ -150,6 +154,11 @@ func (s *Study) Cell(column string) string {
 		return s.Date.String()
 	case "outcome":
 		return s.Outcome
+	case RowColumn:
+		if own := s.remarkText(column); own != "" {
+			return own
+		}
+		return strconv.Itoa(s.Row.Row)
 	}
 	for _, n := range s.Numbers {
 		if choice.Fold(n.Field.String()) == column {

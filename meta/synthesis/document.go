@@ -109,6 +109,7 @@ type ResultDocument struct {
 type PartsDocument struct {
 	Methods *MethodsDocument `json:"methods,omitempty"`
 	Beliefs *BeliefsDocument `json:"beliefs,omitempty"`
+	Runs    []RunDocument    `json:"runs,omitempty"`
 }
 
 // ExcludedDocument is a row that was not pooled.

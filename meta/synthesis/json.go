@@ -97,7 +97,11 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 }
 
 func (p *Parts) document() PartsDocument {
-	return PartsDocument{Methods: p.Methods.document(), Beliefs: p.Beliefs.document()}
+	d := PartsDocument{Methods: p.Methods.document(), Beliefs: p.Beliefs.document()}
+	for i := range p.Runs {
+		d.Runs = append(d.Runs, p.Runs[i].document())
+	}
+	return d
 }
 
 // scaleName names the scale on which a measure is analysed.

@@ -33,7 +33,7 @@ func knownColumns(where *review.Filter, columns []review.Column) error {
 	if where == nil {
 		return nil
 	}
-	names := []string{convertedColumn}
+	names := []string{convertedColumn, review.RowColumn}
 	for _, c := range columns {
 		names = append(names, c.Names()...)
 	}

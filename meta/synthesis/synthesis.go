@@ -29,6 +29,7 @@ type Want struct {
 	Next        *NextWanted    // what one more study could change; nil: not wanted
 	Methods     bool           // all methods for counts side by side
 	Beliefs     bool           // what sceptics make of the evidence
+	Runs        bool           // the planned sensitivity runs
 	Below       *float64       // steps under which the tipping set brings the evidence; nil: not wanted
 	Work        meta.Work      // how all this is done; its progress starts anew with each part
 }
@@ -62,9 +63,10 @@ type Outcome struct {
 
 // Parts are the capabilities beyond the pooled result; each is nil unless wanted.
 type Parts struct {
-	Accrual *Accrual // how the evidence arrived, who carries it, what the next study could change
-	Methods *Methods // all methods for counts side by side
-	Beliefs *Beliefs // what sceptics make of the evidence
+	Accrual *Accrual    // how the evidence arrived, who carries it, what the next study could change
+	Methods *Methods    // all methods for counts side by side
+	Beliefs *Beliefs    // what sceptics make of the evidence
+	Runs    []RunResult // the planned sensitivity runs; empty where none is planned
 }
 
 // Analysis is what was settled before pooling, null and thresholds on the
@@ -182,6 +184,11 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 		o.weighDiffering()
 		if want.Beliefs {
 			o.believe()
+		}
+		if want.Runs {
+			if err := o.runPlanned(ctx, x, plan, blocked); err != nil {
+				return nil, err
+			}
 		}
 		more, err := o.examine(ctx)
 		if err != nil {
