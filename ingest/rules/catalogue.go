@@ -195,6 +195,7 @@ var analysisRules = []Rule{
 	{"A2", "narrower than the ordinary interval", "warning", "the Hartung–Knapp factor is below 1 and the interval without floor is asked for", "Röver 2015", nil},
 	{"A3", "estimators of the spread disagree", "warning", "τ² is 0 by one of DerSimonian–Laird, restricted maximum likelihood, Paule–Mandel and maximum likelihood and above 0 by another, or the interval leaves no effect by one and not by another", "Veroniki 2016", nil},
 	{"A4", "common and random effects differ", "warning", "ratios apart by a factor above 1.2, or one interval leaves no effect and the other does not", "Higgins and Spiegelhalter 2002", nil},
+	{"A5", "small studies differ", "warning", "Egger's test has p below 0.1, or Harbord's score test where an odds ratio is above 2 or below 0.5 and there are counts; from 10 studies on, if the largest standard error is 1.5 times the smallest", "Sterne 2011; Egger 1997", nil},
 	{"A6", "prediction interval imprecise", "remark beside the result", "none below 3 studies; degrees of freedom are stated", "Higgins 2009; Cochrane Handbook 10.10.4.3" + confirmed, nil},
 	{"A7", "studies of one date", "remark beside the cumulative result", "two studies or more of one date; the rule for ties is printed", practice, one(review.DateField)},
 	{"A9", "two extractions differ", "warning", "rows of one study differ by more than rounding; first those whose effects differ by 0.1 SD or 10%, or their standard errors by 10%", "Buscemi 2006; Gøtzsche 2007", nil},

@@ -85,7 +85,7 @@ func accrued(t *testing.T, s *sheet, want Want, settings ...string) *Outcome {
 
 func everything() Want {
 	below := 1.0
-	return Want{Cumulative: true, LeaveOneOut: true, Influence: true, Subsets: &SubsetsWanted{}, Below: &below}
+	return Want{Cumulative: true, LeaveOneOut: true, Influence: true, Subsets: &SubsetsWanted{}, Further: Further{Below: &below}}
 }
 
 func nearly(t *testing.T, name string, got, want float64) {

@@ -20,6 +20,7 @@ func (o *Outcome) examine(ctx context.Context) ([]review.Finding, error) {
 	}
 	e := &examination{o: o}
 	e.events()
+	e.asymmetry()
 	if _, isTables := o.Analysis.Method.Tables(); isTables || len(o.Studies) < 2 {
 		return e.findings, nil
 	}

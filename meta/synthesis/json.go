@@ -69,7 +69,7 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 	for _, e := range o.Excluded {
 		d.Excluded = append(d.Excluded, ExcludedDocument{Study: e.Study, Cell: firstCell(e.Place), Rule: e.Rule, Reason: e.Reason})
 	}
-	d.POnly, d.PartsDocument = o.PValues.document(), o.Parts.document()
+	d.POnly, d.PartsDocument = o.PValues.document(), o.Parts.document(o.Analysis.NullMissing)
 	if len(o.Silent) > 0 {
 		d.Silent = &SilentDocument{Studies: len(o.Silent), Participants: o.Counts.Silent}
 	}
@@ -96,8 +96,8 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 	return d
 }
 
-func (p *Parts) document() PartsDocument {
-	d := PartsDocument{Methods: p.Methods.document(), Beliefs: p.Beliefs.document()}
+func (p *Parts) document(nullMissing bool) PartsDocument {
+	d := PartsDocument{Methods: p.Methods.document(), Beliefs: p.Beliefs.document(), SmallStudy: p.SmallStudy.document(nullMissing)}
 	for i := range p.Runs {
 		d.Runs = append(d.Runs, p.Runs[i].document())
 	}

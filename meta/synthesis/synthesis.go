@@ -30,8 +30,14 @@ type Want struct {
 	Methods     bool           // all methods for counts side by side
 	Beliefs     bool           // what sceptics make of the evidence
 	Runs        bool           // the planned sensitivity runs
-	Below       *float64       // steps under which the tipping set brings the evidence; nil: not wanted
 	Work        meta.Work      // how all this is done; its progress starts anew with each part
+	Further
+}
+
+// Further is what else may be wanted; each is nil unless it is.
+type Further struct {
+	Below      *float64          // steps under which the tipping set brings the evidence
+	SmallStudy *SmallStudyWanted // whether small studies show other effects
 }
 
 // Synthesis is the result of an analysis. Every output prints its numbers.
@@ -63,10 +69,11 @@ type Outcome struct {
 
 // Parts are the capabilities beyond the pooled result; each is nil unless wanted.
 type Parts struct {
-	Accrual *Accrual    // how the evidence arrived, who carries it, what the next study could change
-	Methods *Methods    // all methods for counts side by side
-	Beliefs *Beliefs    // what sceptics make of the evidence
-	Runs    []RunResult // the planned sensitivity runs; empty where none is planned
+	Accrual    *Accrual    // how the evidence arrived, who carries it, what the next study could change
+	Methods    *Methods    // all methods for counts side by side
+	Beliefs    *Beliefs    // what sceptics make of the evidence
+	Runs       []RunResult // the planned sensitivity runs; empty where none is planned
+	SmallStudy *SmallStudy // whether small studies show other effects
 }
 
 // Analysis is what was settled before pooling, null and thresholds on the
@@ -184,6 +191,9 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 		o.weighDiffering()
 		if want.Beliefs {
 			o.believe()
+		}
+		if want.SmallStudy != nil {
+			o.seekAsymmetry(*want.SmallStudy)
 		}
 		if want.Runs {
 			if err := o.runPlanned(ctx, x, plan, blocked); err != nil {
