@@ -44,7 +44,7 @@ func Influences(ctx context.Context, r Refit, work Work) ([]Influence, error) {
 	}
 	var details []Detail
 	var variance float64
-	if p, ok := r.(*Pairs); ok {
+	if p, ok := pairsOf(r); ok {
 		details, variance = p.details(), p.pool.modelVariance()
 	}
 	list := make([]Influence, k)
@@ -57,7 +57,7 @@ func Influences(ctx context.Context, r Refit, work Work) ([]Influence, error) {
 		o.Carried = all.Evidence.Steps() - o.Mean.Evidence.Steps()
 		change := all.Estimate - o.Mean.Estimate
 		o.Pull = change / o.Mean.SE
-		if p, ok := r.(*Pairs); ok {
+		if p, ok := pairsOf(r); ok {
 			d, without := &details[i], p.pool.modelVariance()
 			total := p.s[i]*p.s[i] + o.Mean.Tau2
 			d.Residual = (p.y[i] - o.Mean.Estimate) / math.Sqrt(total+without)

@@ -37,6 +37,23 @@ type Sparing interface {
 	Point(rows []int) (Mean, error)
 }
 
+// Reweighing is a Refit that changes nothing of another's means but the evidence
+// that they carry.
+type Reweighing interface {
+	Refit
+	// Pooling returns the Refit that pools.
+	Pooling() Refit
+}
+
+// pairsOf returns the pairs that r pools, if it pools pairs.
+func pairsOf(r Refit) (*Pairs, bool) {
+	if other, ok := r.(Reweighing); ok {
+		r = other.Pooling()
+	}
+	p, ok := r.(*Pairs)
+	return p, ok
+}
+
 // point pools rows as sparingly as the method can.
 func point(r Refit, rows []int) (Mean, error) {
 	if s, ok := r.(Sparing); ok {

@@ -71,7 +71,7 @@ func (m Model) check() error {
 	case m.TauInterval < QProfile || m.TauInterval > TauProfileLikelihood:
 		return &ModelError{Problem: fmt.Sprintf("interval for τ² %d is unknown: use the Q-profile or the profile likelihood", int(m.TauInterval))}
 	case m.Evidence != evidence.Empirical && m.Evidence != evidence.StudentForm:
-		return &ModelError{Problem: fmt.Sprintf("evidence form %d is unknown: use empirical or student-t", int(m.Evidence))}
+		return &ModelError{Problem: fmt.Sprintf("the evidence %v is none that a model weighs by itself: use empirical or student-t", m.Evidence)}
 	}
 	return m.checkPairs()
 }

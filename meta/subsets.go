@@ -11,8 +11,8 @@ import (
 )
 
 const (
-	// everySubset is the largest number of studies of which every subset is taken.
-	everySubset = 24
+	// EverySubset is the largest number of studies of which every subset is taken.
+	EverySubset = 24
 	// defaultSample is how many subsets are drawn from more studies.
 	defaultSample = 1 << 18
 	// exactSubsets is the largest number of subsets whose values are all kept, for
@@ -111,17 +111,23 @@ type subsetQuest struct {
 }
 
 func newSubsetQuest(r Refit, options SubsetOptions) *subsetQuest {
-	q := &subsetQuest{k: r.K(), options: options, every: r.K() <= everySubset}
-	switch {
-	case q.every:
-		q.count = 1<<q.k - 1
+	q := &subsetQuest{k: r.K(), options: options, every: r.K() <= EverySubset, count: SubsetCount(r.K(), options.Sample)}
+	if q.every {
 		q.sums = newSubsetSums(r)
-	case options.Sample > 0:
-		q.count = options.Sample
-	default:
-		q.count = defaultSample
 	}
 	return q
+}
+
+// SubsetCount returns how many subsets of k studies AllSubsets takes; sample is that
+// of SubsetOptions.
+func SubsetCount(k, sample int) int {
+	switch {
+	case k <= EverySubset:
+		return 1<<k - 1
+	case sample > 0:
+		return sample
+	}
+	return defaultSample
 }
 
 // subset is one set of studies: bits where every subset is taken, rows else.

@@ -6,6 +6,7 @@ import (
 
 	"github.com/urfave/cli/v2"
 
+	"steelyard/forest/words"
 	"steelyard/meta/synthesis"
 )
 
@@ -148,6 +149,9 @@ func accrualAnswer(s *synthesis.Synthesis, write func(*page, *synthesis.Synthesi
 			continue
 		}
 		p.wrapped("", size(s, o))
+		if text := words.Rests(o); text != "" && !o.Analysis.NullMissing {
+			p.wrapped("", "Evidence: "+text)
+		}
 		p.line("")
 		if o.Accrual != nil {
 			write(&p, s, o)
@@ -158,6 +162,6 @@ func accrualAnswer(s *synthesis.Synthesis, write func(*page, *synthesis.Synthesi
 	}
 	p.line("")
 	p.item("·", synthesis.AccrualCaution)
-	p.item("·", synthesis.EvidenceCaution)
+	p.item("·", synthesis.EvidenceCaution(s.Forms()...))
 	return &p
 }

@@ -93,7 +93,7 @@ func size(s *synthesis.Synthesis, o *synthesis.Outcome) string {
 	if o.Counts.Events > 0 {
 		text += fmt.Sprintf(", %s events", words.Count(o.Counts.Events))
 	}
-	return text + "; " + words.Model(o.Result.Fit)
+	return text + "; " + words.ModelOf(o)
 }
 
 // effect writes the estimate and the prediction.
@@ -118,6 +118,12 @@ func (p *page) evidence(s *synthesis.Synthesis, o *synthesis.Outcome) {
 		return
 	}
 	p.value("Evidence", words.Evidence(mean.Evidence), words.Strength(mean.Evidence)+"; "+words.Test(mean))
+	if text := words.Rests(o); text != "" {
+		p.value("", "", text)
+	}
+	if text := words.OtherForm(o); text != "" {
+		p.value("", "", text)
+	}
 	if r := o.Result.Integrated; r != nil {
 		text := words.Strength(r.Effect()) + "; " + words.TauPrior(r.Prior)
 		if r.Exceeded {
@@ -137,7 +143,7 @@ func (p *page) otherModel(o *synthesis.Outcome) {
 		interval := meta.Limits{Low: other.Mean.Low, High: other.Mean.High}
 		about := "for comparison"
 		if !o.Analysis.NullMissing {
-			about = words.Evidence(other.Mean.Evidence) + ", " + about
+			about = words.OtherEvidence(o, other) + ", " + about
 		}
 		p.value(otherName(other), words.Reader(o, other.Mean.Estimate, interval), about)
 	}
@@ -235,6 +241,9 @@ func (p *page) regions(o *synthesis.Outcome) {
 			text += fmt.Sprintf("; %s of settings predicted there", words.Probability(r.Settings))
 		}
 		p.row(label, text)
+	}
+	if text := words.RegionForm(o); text != "" {
+		p.row("", text)
 	}
 }
 

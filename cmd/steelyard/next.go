@@ -31,7 +31,7 @@ func nextFlags() []cli.Flag {
 	return []cli.Flag{
 		&cli.Float64Flag{Name: flagSize, Usage: "people in the next study, half of them in each arm"},
 		&cli.StringFlag{Name: flagArms, Usage: "people in its treated and its control arm, such as 200,100, in place of --size"},
-		&cli.Float64Flag{Name: flagControlRisk, Usage: "risk in its control arm, for an odds ratio, a risk ratio or a risk difference"},
+		&cli.Float64Flag{Name: flagControlRisk, Usage: "risk in its control arm, for an odds ratio, a risk ratio or a risk difference (default: the median of the studies' control arms, named as such)"},
 		&cli.Float64Flag{Name: flagSD, Usage: "standard deviation of the outcome, for a mean difference"},
 		&cli.Float64Flag{Name: flagSE, Usage: "its standard error, of the logarithm for a ratio, in place of --size"},
 		&cli.Float64Flag{Name: flagToward, Usage: "steps that the evidence is to reach, below 0 for none, such as 3 (default: the next whole step above the present evidence)"},
@@ -75,8 +75,8 @@ func wantNext(c *cli.Context) (synthesis.Want, error) {
 			}
 		}
 	}
-	if c.IsSet(flagToward) && !(w.Toward > synthesis.MostForNone && w.Toward < 1e6 && w.Toward != 0) {
-		return want, &callError{fmt.Sprintf("--toward %v: give steps above 0 for an effect, or below 0 for none, down to −0.64: no evidence for a null of one value is stronger", w.Toward)}
+	if c.IsSet(flagToward) && !(math.Abs(w.Toward) < 1e6 && w.Toward != 0) {
+		return want, &callError{fmt.Sprintf("--toward %v: give steps above 0 for an effect, or below 0 for none", w.Toward)}
 	}
 	return want, nil
 }
@@ -118,7 +118,7 @@ func (p *page) next(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	study := words.Noun(s, 1)
 	about := "standard error " + words.Linear(n.Outlook.SE, 3)
 	if n.Wanted.SE == 0 {
-		about = fmt.Sprintf("%s people treated, %s in the control arm; %s", words.People(n.Wanted.Treated), words.People(n.Wanted.Control), about)
+		about = fmt.Sprintf("%s people treated, %s in the control arm; %s%s", words.People(n.Wanted.Treated), words.People(n.Wanted.Control), words.AssumedRisk(s, n), about)
 	}
 	p.row("Next "+study, about)
 	p.row("Evidence now", fmt.Sprintf("%s, %s steps", words.OddsInSentence(n.Now*evidence.LnStep), words.Steps(n.Now)))
@@ -138,7 +138,9 @@ func (p *page) next(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	p.sizes(n)
 	p.line("")
 	p.item("·", fmt.Sprintf("Over what the next %s may find: its estimate is drawn around the pooled one with the variance of the mean, between studies (τ %s) and of its own; τ is estimated anew with it.", study, words.Tau(n.Tau)))
-	p.item("·", fmt.Sprintf("For none the evidence can reach %s at most, however large the %s.", words.Odds(synthesis.MostForNone*evidence.LnStep), study))
+	if n.MostForNone != nil {
+		p.item("·", fmt.Sprintf("For none the evidence can reach %s at most, however large the %s.", words.Odds(*n.MostForNone*evidence.LnStep), study))
+	}
 }
 
 // zone writes what the next study could show about an important difference.

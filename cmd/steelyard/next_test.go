@@ -124,6 +124,8 @@ func TestNextIsSimulation(t *testing.T) {
 // TestNextCalls: what is said, and what is refused.
 func TestNextCalls(t *testing.T) {
 	bcg := data + "checks/bcg_counts.csv"
+	odds := "study,date,OR,se\nA,2001,0.7,0.2\nB,2002,0.8,0.2\n"
+	zeros := "study,events treated,total treated,events control,total control\nA,3,50,0,50\nB,2,40,0,40\nC,1,60,4,60\n"
 	rates := "study,date,HR,se\nA,2001,0.7,0.2\nB,2002,0.8,0.2\n"
 	for _, c := range []struct {
 		stdin, args string
@@ -132,7 +134,9 @@ func TestNextCalls(t *testing.T) {
 	}{
 		{"", "next-trial BCG", codeCall, "give one of --size, --arms and --se"},
 		{"", "next-trial BCG --size 100 --se 0.2", codeCall, "2 are given"},
-		{"", "next-trial BCG --size 100", codeCall, "--control-risk"},
+		{"", "next-trial BCG --size 100", codeDone, "control risk 1.6%, the median of 13 studies' control arms"},
+		{odds, "next-trial - --size 100", codeCall, "give it with --control-risk"},
+		{zeros, "next-trial - --size 100", codeCall, "the median risk of the studies' 3 control arms is 0"},
 		{"", "next-trial BCG --size 100 --control-risk 1", codeCall, "--control-risk 1"},
 		{"", "next-trial BCG --size 100 --control-risk 0.1 --sd 2", codeCall, "leave --sd away"},
 		{"", "next-trial BCG --size NaN --control-risk 0.1", codeCall, "--size NaN"},
@@ -140,7 +144,7 @@ func TestNextCalls(t *testing.T) {
 		{"", "next-trial BCG --arms 100,x --control-risk 0.1", codeCall, `"x"`},
 		{"", "next-trial BCG --se 0", codeCall, "--se 0"},
 		{"", "next-trial BCG --se 0.2 --chance 0.9", codeCall, "beside --se"},
-		{"", "next-trial BCG --se 0.2 --toward -1", codeCall, "−0.64"},
+		{"", "next-trial BCG --se 0.2 --toward -1", codeCall, "0.64 steps at most"},
 		{"", "next-trial BCG --size 100 --control-risk 0.1 --chance 1", codeCall, "--chance 1"},
 		{rates, "next-trial - --size 100", codeCall, "give it with --se"},
 		{rates, "next-trial - --se 0.2", codeDone, "that the 95% interval excludes no effect"},
@@ -150,7 +154,7 @@ func TestNextCalls(t *testing.T) {
 		{"study,estimate,se\nA,1,1\n", "next-trial - --se 0.2", codeDone, "steps expected"},
 		{"", "next-trial BCG --size 500 --control-risk 0.02", codeDone, "no size reaches 194 : 1 with a chance of 80%: the variance between studies (τ 0.56)"},
 		{"", "next-trial BCG --size 500 --control-risk 0.02 --toward 2 --chance 0.9", codeDone, "14 : 1 with a chance of 90% is reached from 10 people"},
-		{"", "next-trial BCG --se 0.2 --method mantel-haenszel --effects common", codeDone, "not by the method for counts"},
+		{"", "next-trial BCG --se 0.2 --method mantel-haenszel --effects common", codeDone, "What is foreseen is not pooling by mantel-haenszel"},
 	} {
 		args := strings.Fields(strings.ReplaceAll(c.args, "BCG", bcg))
 		stdout, stderr, code := call(t, c.stdin, args...)

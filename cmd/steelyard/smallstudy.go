@@ -76,6 +76,6 @@ func smallStudyAnswer(s *synthesis.Synthesis) *page {
 	p.line("Cautions")
 	p.item("·", synthesis.SmallStudyCaution)
 	p.item("·", synthesis.NoProofCaution)
-	p.item("·", synthesis.EvidenceCaution)
+	p.item("·", synthesis.EvidenceCaution(s.Forms()...))
 	return &p
 }

@@ -1,6 +1,7 @@
 package main
 
 import (
+	"cmp"
 	"fmt"
 	"maps"
 	"slices"
@@ -52,7 +53,8 @@ func weighCommand() *cli.Command {
 		&cli.BoolFlag{Name: flagOneSided, Usage: "weigh an effect above none against none; turn the sign for one below"},
 		&cli.BoolFlag{Name: flagNamed, Usage: "also the categories of Jeffreys (1961) and of Kass & Raftery (1995)"},
 	}
-	for _, name := range []string{review.SettingNull, review.SettingImportant, review.SettingPrior, review.SettingLevel, review.SettingEvidence} {
+	for _, name := range []string{review.SettingNull, review.SettingImportant, review.SettingPrior, review.SettingLevel, review.SettingEvidence,
+		review.SettingEffectMean, review.SettingEffectSD, review.SettingEffectSide} {
 		setting, err := review.FindSetting(name)
 		if err != nil {
 			panic(err) // a name that the table of settings does not have is a bug of this file
@@ -78,11 +80,11 @@ func weigh(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	numbers, prior, err := weighNumbers(c)
+	numbers, err := weighNumbers(c)
 	if err != nil {
 		return err
 	}
-	w, err := synthesis.Weigh(numbers, prior)
+	w, err := synthesis.Weigh(numbers)
 	if err != nil {
 		// Any ratio is weighed as a risk ratio; the message is about ratios.
 		return &callError{strings.ReplaceAll(err.Error(), "risk ratio", "ratio")}
@@ -91,57 +93,66 @@ func weigh(c *cli.Context) error {
 }
 
 // weighNumbers reads the flags: exactly one statistic with what goes with it.
-func weighNumbers(c *cli.Context) (synthesis.Numbers, []float64, error) {
+func weighNumbers(c *cli.Context) (synthesis.Numbers, error) {
 	var n synthesis.Numbers
 	statistics := []string{flagZ, flagT, flagChi2, flagF, flagP, flagEstimate} // in the order of synthesis.Statistic
 	given := slices.DeleteFunc(slices.Clone(statistics), func(name string) bool { return !c.IsSet(name) })
 	if len(given) != 1 {
-		return n, nil, &callError{fmt.Sprintf("give one of --%s; %d are given; see: steelyard weigh --help", strings.Join(statistics, ", --"), len(given))}
+		return n, &callError{fmt.Sprintf("give one of --%s; %d are given; see: steelyard weigh --help", strings.Join(statistics, ", --"), len(given))}
 	}
 	n.Statistic = synthesis.Statistic(slices.Index(statistics, given[0]))
 	n.Value = c.Float64(given[0])
 	n.DF, n.DF2, n.SE = c.Float64(flagDF), c.Float64(flagDF2), c.Float64(flagSE)
 	n.Ratio, n.OneSided = c.Bool(flagRatio), c.Bool(flagOneSided)
 	if err := strayFlags(c, n.Statistic); err != nil {
-		return n, nil, err
+		return n, err
 	}
 	if c.IsSet(flagSE) && !(n.SE > 0) {
-		return n, nil, &callError{"--se must be greater than 0"}
+		return n, &callError{"--se must be greater than 0"}
 	}
 	if c.IsSet(flagDF) && !(n.DF > 0) {
-		return n, nil, &callError{"--df must be greater than 0"}
+		return n, &callError{"--df must be greater than 0"}
 	}
 	if c.IsSet(flagLow) != c.IsSet(flagHigh) {
-		return n, nil, &callError{"both limits are needed: --ci-low and --ci-high"}
+		return n, &callError{"both limits are needed: --ci-low and --ci-high"}
 	}
 	if c.IsSet(flagLow) {
 		n.Limits = &meta.Limits{Low: c.Float64(flagLow), High: c.Float64(flagHigh)}
 	}
 	var plan review.Plan
 	if err := applySettings(c, &plan); err != nil {
-		return n, nil, err
+		return n, err
 	}
 	a, err := plan.Analysis("")
-	n.Null, n.Important, n.Level, n.Form = a.Null, a.Important, a.Model.Level, a.Model.Evidence
-	return n, a.Prior, err
+	n.Null, n.Important, n.Level, n.Weighing = a.Null, a.Important, a.Model.Level, a.Weighing
+	return n, err
 }
 
 // strayFlags refuses flags that the given statistic cannot use.
 func strayFlags(c *cli.Context, statistic synthesis.Statistic) error {
 	uses := map[string][]synthesis.Statistic{
-		flagDF:                 {synthesis.StatisticT, synthesis.StatisticChiSquare, synthesis.StatisticF, synthesis.Estimated},
-		flagDF2:                {synthesis.StatisticF},
-		flagSE:                 {synthesis.Estimated},
-		flagLow:                {synthesis.Estimated},
-		review.SettingLevel:    {synthesis.Estimated},
-		review.SettingEvidence: {synthesis.StatisticT, synthesis.StatisticF, synthesis.Estimated},
+		flagDF:              {synthesis.StatisticT, synthesis.StatisticChiSquare, synthesis.StatisticF, synthesis.Estimated},
+		flagDF2:             {synthesis.StatisticF},
+		flagSE:              {synthesis.Estimated},
+		flagLow:             {synthesis.Estimated},
+		review.SettingLevel: {synthesis.Estimated},
+	}
+	needsPrior := []string{review.SettingEffectMean, review.SettingEffectSD, review.SettingEffectSide}
+	form, err := evidence.ParseForm(cmp.Or(c.String(review.SettingEvidence), evidence.Empirical.String()))
+	if err == nil && !form.UnderPrior() {
+		for _, name := range needsPrior {
+			uses[name] = nil
+		}
+		if !form.OverTau() {
+			uses[review.SettingEvidence] = []synthesis.Statistic{synthesis.StatisticT, synthesis.StatisticF, synthesis.Estimated}
+		}
 	}
 	for _, name := range slices.Sorted(maps.Keys(uses)) {
 		if c.IsSet(name) && !slices.Contains(uses[name], statistic) {
 			return &callError{fmt.Sprintf("--%s means nothing beside --%s; leave it away", name, statistic)}
 		}
 	}
-	if c.IsSet(review.SettingEvidence) && statistic == synthesis.Estimated && !c.IsSet(flagDF) {
+	if _, restricted := uses[review.SettingEvidence]; restricted && c.IsSet(review.SettingEvidence) && statistic == synthesis.Estimated && !c.IsSet(flagDF) {
 		return &callError{"--evidence means nothing beside an estimate without --df; leave it away"}
 	}
 	return nil
@@ -171,7 +182,7 @@ func weighAnswer(w *synthesis.Weighing, level float64, categories bool) *page {
 		p.value("Evidence", "none for an effect", "a p-value this large is no evidence for an effect; alone it is never evidence of none")
 	} else {
 		p.value("Evidence", words.Evidence(w.Evidence), words.Strength(w.Evidence))
-		p.value("", "", w.Form+" form"+boundText(w))
+		p.value("", "", weighForm(w)+boundText(w))
 		if categories {
 			p.value("", "", fmt.Sprintf("Jeffreys (1961): %s; Kass & Raftery (1995): %s", evidence.Jeffreys(w.Evidence), evidence.KassRaftery(w.Evidence)))
 		}
@@ -181,8 +192,32 @@ func weighAnswer(w *synthesis.Weighing, level float64, categories bool) *page {
 		p.row(region.Name, words.RegionEvidence(region))
 	}
 	p.line("")
-	p.item("·", synthesis.EvidenceCaution)
+	p.item("·", synthesis.EvidenceCaution(weighedForm(w)...))
 	return &p
+}
+
+// weighForm says in which form the evidence is, and under which prior.
+func weighForm(w *synthesis.Weighing) string {
+	if w.Prior == nil {
+		return w.Form + " form"
+	}
+	if w.Mean == nil {
+		return fmt.Sprintf("Bayes factor, prior for the effect: %s of scale %s standard errors", words.PriorKind(w.Prior.Kind), words.PriorScale(w.Prior.Scale)) + words.PriorSide(w.Prior.Side)
+	}
+	return "Bayes factor, prior for the effect: " + words.EffectPrior(w.Measure, w.Null, *w.Prior)
+}
+
+// weighedForm is the form that the caution is about; those that have no limit against
+// no effect have none.
+func weighedForm(w *synthesis.Weighing) []evidence.Form {
+	form, err := evidence.ParseForm(w.Form)
+	switch {
+	case w.Form == "student-t" || (err == nil && form.UnderPrior()):
+		return []evidence.Form{form}
+	case w.Form == "normal" || w.Form == "matched":
+		return []evidence.Form{evidence.Empirical}
+	}
+	return nil
 }
 
 // boundText says what stands beside the evidence: the most that any prior could

@@ -28,7 +28,7 @@ func CumulativeOf(s *synthesis.Synthesis, o *synthesis.Outcome) (CumulativeInput
 	noun := words.Noun(s, 2)
 	in := CumulativeInput{
 		Title: "Evidence as the " + noun + " arrived", Subtitle: accrualSubtitle(s, o, effectsText(o)), Study: words.Noun(s, 1),
-		Scale: accrualScale(o), Sides: sidesOf(s, o), Method: refitText(o.Result.Fit), Level: o.Result.Fit.Model.Level,
+		Scale: accrualScale(o), Sides: sidesOf(s, o), Method: words.FormText(o, refitText(o.Result.Fit)), Level: o.Result.Fit.Model.Level,
 	}
 	if len(o.Analysis.Prior) > 0 {
 		in.Prior = o.Analysis.Prior[0]
@@ -167,11 +167,25 @@ func nameAndYear(study *review.Study) (name, year string) {
 	return study.Name, year
 }
 
-// biasNotes says that bias is not in the evidence while studies at high risk of it
-// are pooled.
+// biasNotes says what the evidence rests on, and that bias is not in it while studies
+// at high risk of bias are pooled.
 func biasNotes(o *synthesis.Outcome) []Note {
-	if words.BiasRemark(o) == "" {
+	var notes []Note
+	if text := words.Rests(o); !o.Analysis.Weighing.Own() && text != "" {
+		notes = append(notes, Note{Head: "Evidence", Text: text + "."})
+	}
+	if words.BiasRemark(o) != "" {
+		notes = append(notes, Note{Head: "Bias", Text: "is not in these numbers."})
+	}
+	return notes
+}
+
+// formNotes says, in a chart that shows each study's evidence too, what that of the
+// mean rests on where it has another form.
+func formNotes(o *synthesis.Outcome) []Note {
+	text := words.StudyForm(o)
+	if text == "" {
 		return nil
 	}
-	return []Note{{Head: "Bias", Text: "is not in these numbers."}}
+	return []Note{{Head: "Evidence", Text: "of the mean: " + words.Rests(o) + ". " + text}}
 }

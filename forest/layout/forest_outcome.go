@@ -203,13 +203,14 @@ func forestSpread(fit *meta.Fit, noun string) (*ForestPrediction, *ForestSpread)
 }
 
 func forestNotes(o *synthesis.Outcome) []Note {
-	notes := []Note{{Head: "Model", Text: words.Model(o.Result.Fit) + "."}}
+	notes := []Note{{Head: "Model", Text: words.ModelOf(o) + "."}}
 	if text := daggerNote(o); text != "" {
 		notes[0].Text += " † " + text
 	}
 	if text := zeroCellNote(o); text != "" {
 		notes[0].Text += " " + text
 	}
+	notes = append(notes, formNotes(o)...)
 	if len(o.Excluded) > 0 {
 		notes = append(notes, Note{Head: "Left out", Text: leftOutNote(o)})
 	}

@@ -45,5 +45,5 @@ func InfluenceOf(s *synthesis.Synthesis, o *synthesis.Outcome) (InfluenceInput, 
 
 // methodNotes name the model, and say that bias is not in the evidence.
 func methodNotes(o *synthesis.Outcome) []Note {
-	return append([]Note{{Head: "Model", Text: words.Model(o.Result.Fit) + "."}}, biasNotes(o)...)
+	return append([]Note{{Head: "Model", Text: words.ModelOf(o) + "."}}, biasNotes(o)...)
 }

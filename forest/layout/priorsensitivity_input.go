@@ -9,9 +9,10 @@ import (
 // data. Evidence is the natural log of the ratio, effect over none.
 type PriorSensitivityInput struct {
 	Title, Subtitle string
-	ScaleName       string // of the prior's scale, such as "log risk ratio"
-	RangeName       string // of what the ranges give, such as "risk ratios"
-	LnEvidence      float64
+	ScaleName       string       // of the prior's scale, such as "log risk ratio"
+	RangeName       string       // of what the ranges give, such as "risk ratios"
+	LevelName       string       // what the level line is; blank for the empirical Bayes factor
+	LnEvidence      float64      // of the level line
 	LnBound         float64      // what no prior can pass
 	Scales          []PriorScale // labelled, ascending; the axis ends at the outermost
 	Curve           []PriorPoint // ascending, from the first of the scales to the last
@@ -77,6 +78,9 @@ func ascending(scales []float64) error {
 func (in *PriorSensitivityInput) cleaned() PriorSensitivityInput {
 	out := *in
 	out.Title, out.Subtitle = Clean(in.Title), Clean(in.Subtitle)
+	if out.LevelName = Clean(in.LevelName); out.LevelName == "" {
+		out.LevelName = "empirical Bayes factor"
+	}
 	out.ScaleName, out.RangeName = Clean(in.ScaleName), Clean(in.RangeName)
 	out.Notes = cleanNotes(in.Notes)
 	out.Scales = make([]PriorScale, len(in.Scales))

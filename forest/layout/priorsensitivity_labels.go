@@ -53,7 +53,7 @@ func (c *priorSensitivity) levelLabels() [2]Text {
 	size, right := c.metrics.second, c.plot.high
 	bound, level := c.ladder.place(c.in.LnBound/lnStep), c.ladder.place(c.in.LnEvidence/lnStep)
 	limit := label(right, bound-3.2, size, End, Ordinary, "no prior can pass "+words.Odds(c.in.LnBound))
-	text := "empirical Bayes factor  " + words.Odds(c.in.LnEvidence)
+	text := c.in.LevelName + "  " + words.Odds(c.in.LnEvidence)
 	value := boldLabel(right, level-3.6, size, End, text)
 	if above := roomOf(value); above.across(bound) || above.across(c.ladder.y(0)) || above.overlaps(roomOf(limit)) {
 		value.Y = level + 0.78*size + 3
@@ -129,7 +129,7 @@ func (c *priorSensitivity) description() string {
 	if c.in.Title != "" {
 		b.WriteString(c.in.Title + " ")
 	}
-	fmt.Fprintf(&b, "Empirical Bayes factor, effect against none: %s, %s, whatever the prior’s scale. ", words.Odds(c.in.LnEvidence), strengthText(c.in.LnEvidence))
+	fmt.Fprintf(&b, "%s, effect against none: %s, %s, whatever the scale of these priors. ", capital(c.in.LevelName), words.Odds(c.in.LnEvidence), strengthText(c.in.LnEvidence))
 	b.WriteString(c.highest("Normal", func(p PriorPoint) float64 { return p.Normal }))
 	b.WriteString(c.highest("Cauchy", func(p PriorPoint) float64 { return p.Cauchy }))
 	fmt.Fprintf(&b, "No prior can pass %s, %s steps. By scale, %s: ", words.Odds(c.in.LnBound), words.Steps(evidence.FromLn(c.in.LnBound).Steps()), c.in.ScaleName)

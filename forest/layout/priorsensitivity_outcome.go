@@ -27,6 +27,9 @@ func PriorSensitivityOf(s *synthesis.Synthesis, o *synthesis.Outcome) (PriorSens
 		LnEvidence: o.Result.Fit.Mean.Evidence.Ln(), LnBound: b.Bound.Ln(),
 		Notes: append([]Note{{Head: "Level line", Text: priorNote(o)}}, biasNotes(o)...),
 	}
+	if form := o.FormOf(o.Result.Fit); form != evidence.Empirical {
+		in.LevelName = words.EvidenceName(form)
+	}
 	for _, f := range b.Table {
 		text := words.PriorRange(o, f.Scale)
 		if strings.ContainsAny(text, "<>") {
@@ -42,7 +45,7 @@ func PriorSensitivityOf(s *synthesis.Synthesis, o *synthesis.Outcome) (PriorSens
 
 // priorNote says what line and curves are, and what they are weighed against.
 func priorNote(o *synthesis.Outcome) string {
-	text := "the evidence of this review, which needs no prior scale. Curves: priors for the " + words.PriorUnit(o) +
+	text := "the evidence of this review, " + words.NeedsScale(o) + ". Curves: priors for the " + words.PriorUnit(o) +
 		" centred on no effect, normal (solid) and Cauchy (dashed); as they widen, any data drift towards none. "
 	location := o.Result.Fit.Mean.Location()
 	switch {

@@ -76,8 +76,8 @@ func PriorBound(b *synthesis.Beliefs) string {
 // none, and what they are weighed against.
 func PriorDrift(o *synthesis.Outcome, b *synthesis.Beliefs) string {
 	mean := o.Result.Fit.Mean
-	text := fmt.Sprintf("Evidence, effect : none, under priors for the %s centred on no effect; as they widen, any data drift towards none. The evidence above, %s, needs no scale.",
-		PriorUnit(o), OddsInSentence(mean.Evidence.Ln()))
+	text := fmt.Sprintf("Evidence, effect : none, under priors for the %s centred on no effect; as they widen, any data drift towards none. The evidence above, %s, %s.",
+		PriorUnit(o), OddsInSentence(mean.Evidence.Ln()), strings.TrimPrefix(NeedsScale(o), "which "))
 	location := mean.Location()
 	switch {
 	case math.IsInf(location.DF, 1):

@@ -7,6 +7,19 @@ import (
 	"steelyard/meta/synthesis"
 )
 
+// AssumedRisk names the control risk of the next study and where it is from, to stand
+// before what follows from it; blank where it plays no part.
+func AssumedRisk(s *synthesis.Synthesis, n *synthesis.Next) string {
+	switch risk := n.Wanted.ControlRisk; {
+	case risk == 0:
+		return ""
+	case n.RiskFrom > 0:
+		return fmt.Sprintf("control risk %s%%, the median of %s %s' control arms (--control-risk states another); ", PriorScale(100*risk), Count(n.RiskFrom), Noun(s, n.RiskFrom))
+	default:
+		return fmt.Sprintf("control risk %s%%; ", PriorScale(100*risk))
+	}
+}
+
 // SmallestSize says how large the next study must be for what is wanted, or that no
 // size suffices and why. The study has a size, not a standard error alone.
 func SmallestSize(n *synthesis.Next) string {

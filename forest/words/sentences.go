@@ -302,5 +302,8 @@ func TauPrior(p bayes.TauPrior) string {
 	if p.Kind == bayes.Uniform {
 		return "τ integrated over a uniform prior"
 	}
+	if p.Kind == bayes.LogNormal {
+		return fmt.Sprintf("τ integrated over a log-normal prior, ln τ with mean %s and standard deviation %s", plain(p.MeanLog), plain(p.SDLog))
+	}
 	return fmt.Sprintf("τ integrated over a %s prior of scale %s", p.Kind, plain(p.Scale))
 }

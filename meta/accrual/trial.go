@@ -25,6 +25,10 @@ type Trial struct {
 	// favour of no effect; none means 1 to 4. No point null can be favoured by more
 	// than 0.64 steps (see Zone for evidence that can).
 	Steps []float64
+	// Weigh gives a mean pooled of estimates y with standard errors s the evidence
+	// that is looked at; nil takes that of the model. It is called by several
+	// goroutines at once.
+	Weigh func(mean meta.Mean, y, s []float64) (evidence.Ratio, error)
 }
 
 // Outlook is the distribution of the updated result over what the next study may
@@ -101,6 +105,11 @@ func (f *foreseen) with(y, se float64) (updated, error) {
 	mean, err := f.pool.Pool(f.Model, f.y, f.s)
 	if err != nil {
 		return updated{}, err
+	}
+	if f.Weigh != nil {
+		if mean.Evidence, err = f.Weigh(mean, f.y, f.s); err != nil {
+			return updated{}, err
+		}
 	}
 	u := updated{steps: mean.Evidence.Steps(), estimate: mean.Estimate, low: mean.Low, high: mean.High}
 	if f.zone != nil {

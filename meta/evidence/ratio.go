@@ -125,20 +125,35 @@ func (w *Word) UnmarshalText(text []byte) (err error) {
 	return err
 }
 
-// Form is the form the evidence takes beside a Student-t interval.
+// Form is a form of evidence for an effect.
 type Form int
 
-// Empirical is the default: the normal form at the z that has the p-value of t.
-// StudentForm is the form derived from the t likelihood itself.
+// Empirical is the default: the empirical Bayes factor, beside a Student-t
+// interval at the z that has the p-value of t. StudentForm is derived from the t
+// likelihood itself. The others rest on prior distributions, which bayes.Weighing
+// holds: Integrated over the spread τ, Averaged over τ = 0 and τ > 0, or the
+// Bayes factor under a normal or a Cauchy prior for the effect.
 const (
 	Empirical Form = iota
 	StudentForm
+	IntegratedForm
+	AveragedForm
+	NormalPriorForm
+	CauchyPriorForm
 )
 
-var formNames = choice.Of[Form]("form of evidence", "empirical", "student-t")
+var formNames = choice.Of[Form]("form of evidence", "empirical", "student-t", "integrated", "averaged", "normal-prior", "cauchy-prior")
 
-// String returns "empirical" or "student-t".
+// String returns the form's name, such as "empirical".
 func (f Form) String() string { return formNames.String(f) }
+
+// OverTau reports whether the form integrates τ over a prior, for which it needs
+// the studies' own estimates.
+func (f Form) OverTau() bool { return f == IntegratedForm || f == AveragedForm }
+
+// UnderPrior reports whether the form is a Bayes factor under a prior for the
+// effect.
+func (f Form) UnderPrior() bool { return f == NormalPriorForm || f == CauchyPriorForm }
 
 // FormNames returns the names of all forms.
 func FormNames() []string { return formNames.All() }

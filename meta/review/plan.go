@@ -197,7 +197,7 @@ type Analysis struct {
 	Model      meta.Model // Null is not yet on the analysis scale: see NullGiven
 	Null       *float64   // in the reader's unit; nil for the measure's own
 	Important  []float64  // in the reader's unit; one or two values, or nil
-	Prior      []float64
+	Weighing   Weighing
 	Correction effect.Correction
 	Where      *Filter // nil pools every row
 	Baselines  []Baseline
@@ -229,7 +229,6 @@ func (p *Plan) Analysis(outcome string) (Analysis, error) {
 	read(SettingTau, func(t string) (err error) { a.Model.Tau, err = meta.ParseTau(t); return err })
 	read(SettingInterval, func(t string) (err error) { a.Model.Interval, err = meta.ParseInterval(t); return err })
 	read(SettingPrediction, func(t string) (err error) { a.Model.Prediction, err = meta.ParsePrediction(t); return err })
-	read(SettingEvidence, func(t string) (err error) { a.Model.Evidence, err = evidence.ParseForm(t); return err })
 	read(SettingLevel, func(t string) (err error) { a.Model.Level, err = parseLevel(t); return err })
 	read(SettingSeed, func(t string) (err error) { a.Model.Seed, err = parseSeed(t); return err })
 	read(SettingNull, func(t string) error {
@@ -239,10 +238,13 @@ func (p *Plan) Analysis(outcome string) (Analysis, error) {
 	})
 	read(SettingImportant, func(t string) (err error) { a.Important, err = parseNumbers(t); return err })
 	read(SettingBetter, func(t string) (err error) { a.Better, err = ParseBetter(t); return err })
-	read(SettingPrior, func(t string) (err error) { a.Prior, err = parseProbabilities(t); return err })
 	read(SettingBaseline, func(t string) (err error) { a.Baselines, err = parseBaselines(t); return err })
 	read(SettingCorrection, func(t string) (err error) { a.Correction, err = effect.ParseCorrection(t); return err })
 	read(SettingWhere, func(t string) (err error) { a.Where, err = ParseFilter(t); return err })
+	a.Weighing.read(read)
+	if a.Weighing.Form == evidence.StudentForm {
+		a.Model.Evidence = evidence.StudentForm
+	}
 	return a, errors.Join(errs...)
 }
 

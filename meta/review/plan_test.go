@@ -43,7 +43,7 @@ func TestAnalysis(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if a.Model.Tau != meta.DefaultTau || a.Model.Interval != meta.DefaultInterval || a.Model.Level != 0.95 || a.MeasureSet || a.Null != nil || len(a.Prior) != 4 {
+	if a.Model.Tau != meta.DefaultTau || a.Model.Interval != meta.DefaultInterval || a.Model.Level != 0.95 || a.MeasureSet || a.Null != nil || len(a.Weighing.Prior) != 4 {
 		t.Errorf("all defaults: %+v", a)
 	}
 	for setting, text := range map[string]string{
@@ -58,7 +58,7 @@ func TestAnalysis(t *testing.T) {
 		t.Fatal(err)
 	}
 	if a.Measure != effect.RiskRatio || !a.MeasureSet || a.Model.Effects != meta.CommonEffect || a.Model.Level != 0.9 ||
-		*a.Null != 0.9 || len(a.Important) != 2 || a.Important[1] != 1.2 || a.Prior[0] != 0.2 || a.Better != BetterLower ||
+		*a.Null != 0.9 || len(a.Important) != 2 || a.Important[1] != 1.2 || a.Weighing.Prior[0] != 0.2 || a.Better != BetterLower ||
 		a.Baselines[1] != (Baseline{Name: "very high", Risk: 0.2}) || a.Correction != effect.TreatmentArm ||
 		a.Model.Seed != 7 || a.Model.Interval != meta.HartungKnapp || a.Model.Prediction != meta.PredictionBootstrap {
 		t.Errorf("from the sheet: %+v", a)

@@ -8,6 +8,7 @@ import (
 	"strings"
 
 	"steelyard/meta"
+	"steelyard/meta/bayes"
 	"steelyard/meta/choice"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
@@ -36,6 +37,11 @@ const (
 	SettingInterval   = "interval"
 	SettingPrediction = "prediction"
 	SettingEvidence   = "evidence"
+	SettingTauPrior   = "tau-prior"
+	SettingTauScale   = "tau-scale"
+	SettingEffectMean = "effect-mean"
+	SettingEffectSD   = "effect-scale"
+	SettingEffectSide = "effect-side"
 	SettingLevel      = "level"
 	SettingNull       = "null"
 	SettingImportant  = "important"
@@ -64,7 +70,14 @@ var settings = []Setting{
 	choiceSetting(SettingInterval, meta.IntervalNames(), meta.HartungKnappFloor.String(), "interval and p-value of the mean effect; the evidence agrees with it").
 		unless("wald for a common effect or one study"),
 	choiceSetting(SettingPrediction, meta.PredictionNames(), meta.PredictionTwoLess.String(), "interval for the true effect in a new setting"),
-	choiceSetting(SettingEvidence, evidence.FormNames(), evidence.Empirical.String(), "form of the evidence ratio"),
+	choiceSetting(SettingEvidence, evidence.FormNames(), evidence.Empirical.String(), "form of the evidence ratio; the last four rest on the priors below"),
+	choiceSetting(SettingTauPrior, bayes.TauPriorNames(), "", "prior distribution of the spread τ between studies, for integrated and averaged evidence and for the posterior").
+		unless("half-normal; uniform for a measure whose unit is not known"),
+	freeSetting(SettingTauScale, "", "scale of that prior, as τ is counted; for log-normal the mean and the standard deviation of ln τ (half of those of ln τ²)", "on the analysis scale, such as 0.5, or \"-1.3, 0.8\"", checkTauScale).
+		unless("0.5 for log ratios and standardised differences, 0.5 standard deviations for mean differences"),
+	freeSetting(SettingEffectMean, "", "centre of the prior for the effect under normal-prior", "in the reader's unit", checkNumber).unless("no effect"),
+	freeSetting(SettingEffectSD, "", "scale of the prior for the effect: standard deviation of normal-prior, half width at half height of cauchy-prior; none is assumed", "on the analysis scale, such as 0.5 for a log ratio", checkPositive),
+	choiceSetting(SettingEffectSide, bayes.SideNames(), bayes.BothSides.String(), "on which side of no effect these two priors allow effects"),
 	freeSetting(SettingLevel, "0.95", "level of every interval", "a fraction between 0 and 1", checkLevel),
 	freeSetting(SettingNull, "", "the effect that counts as none", "in the reader's unit", checkNumber).unless("1 for ratios, else 0"),
 	freeSetting(SettingImportant, "", "smallest important difference; one value is mirrored, two give both sides", "in the reader's unit, such as 0.8 for a ratio", checkNumbers),

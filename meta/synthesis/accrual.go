@@ -6,6 +6,8 @@ import (
 	"fmt"
 
 	"steelyard/meta"
+	"steelyard/meta/accrual"
+	"steelyard/meta/bayes"
 	"steelyard/meta/choice"
 	"steelyard/meta/evidence"
 	"steelyard/meta/review"
@@ -58,6 +60,17 @@ func (o *Outcome) refit() (meta.Refit, error) {
 	return meta.NewPairs(o.Analysis.Model, y, s)
 }
 
+// weighedRefit is refit whose means carry the evidence of the outcome's form.
+func (o *Outcome) weighedRefit() (meta.Refit, error) {
+	r, err := o.refit()
+	w := o.Analysis.Weighing
+	if err != nil || w.Own() || o.Analysis.NullMissing {
+		return r, err
+	}
+	y, s := estimates(o.Studies)
+	return bayes.NewWeighed(r, w, o.Analysis.Model.Null, y, s)
+}
+
 // accrue adds the wanted parts to a pooled outcome. It returns an error for a
 // chosen study that is not there, and the cause if ctx ends; an order by an
 // unknown column is the outcome's Problem.
@@ -65,7 +78,7 @@ func (o *Outcome) accrue(ctx context.Context, columns []review.Column, plan *rev
 	if o.Result == nil || !want.accrual() {
 		return nil
 	}
-	refit, err := o.refit()
+	refit, err := o.weighedRefit()
 	if err != nil {
 		return fmt.Errorf("outcome %q: %w", o.Name, err)
 	}
@@ -148,7 +161,32 @@ func (o *Outcome) posterior(r evidence.Ratio) []Belief {
 	return all
 }
 
+// mostWeighed is how many subsets are pooled at most in a form of evidence that is
+// slow to weigh: about half a minute on one processor.
+var mostWeighed = map[evidence.Form]int{
+	evidence.IntegratedForm: 1 << 15, evidence.AveragedForm: 1 << 15, evidence.CauchyPriorForm: 1 << 18,
+}
+
+// checkAffordable returns an *accrual.InputError for more subsets than the form of
+// evidence can be weighed for.
+func (o *Outcome) checkAffordable(want SubsetsWanted) error {
+	form, k := o.Analysis.Weighing.Form, len(o.Studies)
+	most, slow := mostWeighed[form]
+	every := meta.SubsetCount(k, want.Sample)
+	if !slow || every <= most {
+		return nil
+	}
+	remedy := "choose --evidence empirical"
+	if k > meta.EverySubset {
+		remedy += fmt.Sprintf(", or --sample %d", most)
+	}
+	return &accrual.InputError{Problem: fmt.Sprintf("subsets: evidence %s is too slow for %d subsets of %d studies, at most %d are weighed; %s", form, every, k, most, remedy)}
+}
+
 func (o *Outcome) subsets(ctx context.Context, refit meta.Refit, want Want) (*Subsets, error) {
+	if err := o.checkAffordable(*want.Subsets); err != nil {
+		return nil, err
+	}
 	options := meta.SubsetOptions{
 		Important: o.Analysis.Important, Sample: want.Subsets.Sample,
 		Seed: o.Analysis.Model.Seed, Work: want.Work,

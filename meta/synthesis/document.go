@@ -205,8 +205,9 @@ type CombinedDocument struct {
 type EvidenceFormDocument struct {
 	Evidence string `json:"evidence"`
 	EvidenceDocument
-	Word    string `json:"word"`
-	Favours string `json:"favours"`
+	Word    string          `json:"word"`
+	Favours string          `json:"favours"`
+	Priors  *PriorsDocument `json:"priors,omitempty"` // of a form that rests on some
 }
 
 // DisplayDocument repeats an estimate as a reader sees it; a ratio too large for

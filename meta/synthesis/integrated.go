@@ -22,15 +22,16 @@ const usualScale = 0.5
 
 // integrate returns the evidence integrated over τ for few studies under random
 // effects; nil where it is not given: more studies, a common effect, another
-// method, or a prior that needs a third study.
+// method, a prior that needs a third study, or evidence that is of this form.
 func (o *Outcome) integrate() *bayes.Integrated {
 	k := len(o.Studies)
 	model := o.Analysis.Model
-	if k < 2 || k > mostFew || model.Effects != meta.RandomEffects || o.Analysis.Method != review.InverseVariance {
+	if k < 2 || k > mostFew || model.Effects != meta.RandomEffects || o.Analysis.Method != review.InverseVariance ||
+		o.Analysis.Weighing.Form == evidence.IntegratedForm {
 		return nil
 	}
 	y, s := estimates(o.Studies)
-	result, err := bayes.Integrate(y, s, model.Null, o.tauPrior())
+	result, err := bayes.Integrate(y, s, model.Null, o.Analysis.Weighing.Tau)
 	if err != nil {
 		return nil
 	}
@@ -51,14 +52,14 @@ func (o *Outcome) weighDiffering() {
 	}
 	y, s := estimates(o.Studies)
 	null := y[0] // the mean is free: its null plays no part
-	if result, err := bayes.Integrate(y, s, null, o.tauPrior()); err == nil {
+	if result, err := bayes.Integrate(y, s, null, o.Analysis.Weighing.Tau); err == nil {
 		o.Result.Differing = result
 	}
 }
 
-// tauPrior returns the usual prior for τ of the outcome's measure: half-normal
+// usualTauPrior returns the usual prior for τ of the outcome's measure: half-normal
 // where its unit is known, else uniform.
-func (o *Outcome) tauPrior() bayes.TauPrior {
+func (o *Outcome) usualTauPrior() bayes.TauPrior {
 	m := o.Analysis.Measure
 	if m.Log() || m == effect.StandardisedMeanDifference {
 		return bayes.TauPrior{Kind: bayes.HalfNormal, Scale: usualScale}
@@ -83,15 +84,19 @@ func (o *Outcome) medianSD() float64 {
 	if len(all) == 0 {
 		return 0
 	}
+	return medianOf(all)
+}
+
+// medianOf returns the median of some numbers, which it sorts.
+func medianOf(all []float64) float64 {
 	slices.Sort(all)
 	return (all[(len(all)-1)/2] + all[len(all)/2]) / 2
 }
 
 // IntegratedDocument is the evidence with τ integrated over its prior.
 type IntegratedDocument struct {
-	Prior    string  `json:"prior"`
-	Scale    float64 `json:"scale,omitempty"`
-	Exceeded bool    `json:"exceeded,omitempty"` // τ is estimated at more than twice the prior's scale
+	TauPriorDocument
+	Exceeded bool `json:"exceeded,omitempty"` // τ is estimated at more than twice the prior's scale
 	EvidenceDocument
 }
 
@@ -101,7 +106,7 @@ func integratedDocument(r *bayes.Integrated, ratio func(*bayes.Integrated) evide
 		return nil
 	}
 	return &IntegratedDocument{
-		Prior: r.Prior.Kind.String(), Scale: r.Prior.Scale, Exceeded: r.Exceeded,
+		TauPriorDocument: *tauPriorDocument(r.Prior), Exceeded: r.Exceeded,
 		EvidenceDocument: evidenceDocument(ratio(r)),
 	}
 }

@@ -280,7 +280,7 @@ func (o *Outcome) pooledDocument(fit *meta.Fit) PooledDocument {
 		Interval: intervalName(fit), Level: fit.Model.Level, Null: &fit.Model.Null,
 		MeanDocument: meanDocument(m),
 		EvidenceFormDocument: &EvidenceFormDocument{
-			Evidence: fit.Model.Evidence.String(), EvidenceDocument: evidenceDocument(m.Evidence),
+			Evidence: o.FormOf(fit).String(), EvidenceDocument: evidenceDocument(m.Evidence), Priors: o.priorsDocument(fit),
 			Word: m.Evidence.Word().String(), Favours: m.Evidence.Favours().String(),
 		},
 		Display: DisplayDocument{

@@ -40,6 +40,9 @@ func (o *Outcome) looks(ctx context.Context, order *order, want Want) (*Looks, e
 	case o.Analysis.NullMissing:
 		o.note("The measure has no value of no effect and none is given, so that there is no evidence to look at again: state one with --null.")
 		return nil, nil
+	case !o.Analysis.Weighing.Own():
+		return nil, &accrual.InputError{Problem: fmt.Sprintf("looks: repeated looks are simulated in the forms of evidence empirical and student-t, as the form %s is too slow or rests on a prior that the simulation does not draw from; choose one of these with --%s, or leave --looks away",
+			o.Analysis.Weighing.Form, review.SettingEvidence)}
 	case len(o.Studies) < 2:
 		o.note("There is one study only: repeated looks begin with two.")
 		return nil, nil

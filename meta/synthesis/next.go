@@ -7,8 +7,10 @@ import (
 	"math"
 	"slices"
 
+	"steelyard/meta"
 	"steelyard/meta/accrual"
 	"steelyard/meta/effect"
+	"steelyard/meta/evidence"
 	"steelyard/meta/review"
 )
 
@@ -25,20 +27,36 @@ type NextWanted struct {
 
 // Next is what one more study could change.
 type Next struct {
-	Wanted   NextWanted // Toward settled
-	Now      float64    // steps of the present evidence
-	Tau      float64    // between the studies, as estimated
-	Outlook  *accrual.Outlook
-	Curve    []accrual.SizePoint // by people in all, the arms in proportion; nil with SE
-	Smallest *accrual.Smallest   // that reaches Toward with Chance; nil with SE
+	Wanted   NextWanted // Toward and ControlRisk settled
+	RiskFrom int        // control arms whose median the control risk is; 0: it was stated or plays no part
+	Now      float64    // steps of the present evidence, pooled as the next study will be
+	// MostForNone is the number of steps, below 0, that no evidence with the next study
+	// can go beyond for none; nil where the form of evidence has no such limit.
+	MostForNone *float64
+	Tau         float64 // between the studies, as estimated
+	Outlook     *accrual.Outlook
+	Curve       []accrual.SizePoint // by people in all, the arms in proportion; nil with SE
+	Smallest    *accrual.Smallest   // that reaches Toward with Chance; nil with SE
 }
 
 // towardNone is the number of steps for none whose passing is always told: against no
-// effect the evidence can reach 0.64 steps at most.
+// effect the empirical form can reach 0.64 steps at most.
 const towardNone = -0.5
 
-// MostForNone is the number of steps that evidence for a null of one value can reach.
-var MostForNone = -(math.Log(2) + 1) / 2 / math.Log(2+math.Sqrt(3))
+// mostForNone returns the steps that the form of evidence cannot go beyond for none
+// with one study more: those of an estimate of exactly none. It is nil for a form
+// that rests on priors.
+func (o *Outcome) mostForNone() *float64 {
+	most := evidence.Normal(0).Steps()
+	switch model := o.Analysis.Model; {
+	case !o.Analysis.Weighing.Own():
+		return nil
+	case o.Analysis.Weighing.Form == evidence.StudentForm && model.Effects == meta.RandomEffects &&
+		(model.Interval == meta.HartungKnapp || model.Interval == meta.HartungKnappFloor):
+		most = evidence.Student(0, float64(len(o.Studies))).Steps()
+	}
+	return &most
+}
 
 // nextSizes are the people in all of the size curve, 50 to 100,000.
 var nextSizes = curveSizes()
@@ -61,23 +79,36 @@ func (o *Outcome) next(ctx context.Context, w NextWanted) (*Next, error) {
 		o.note("The measure has no value of no effect and none is given, so that there is no evidence that another study could change: state one with --null.")
 		return nil, nil
 	}
-	pooled := o.Result.Fit.Mean
-	n := &Next{Wanted: w, Now: pooled.Evidence.Steps(), Tau: math.Sqrt(pooled.Tau2)}
+	y, s := estimates(o.Studies)
+	pooled, err := o.pooledByPairs(y, s)
+	if err != nil {
+		return nil, err
+	}
+	if err := o.checkSlowNext(w); err != nil {
+		return nil, err
+	}
+	n := &Next{Wanted: w, Now: pooled.Evidence.Steps(), Tau: math.Sqrt(pooled.Tau2), MostForNone: o.mostForNone()}
+	if most := n.MostForNone; most != nil && w.Toward < 0 && w.Toward <= *most {
+		return nil, &accrual.InputError{Problem: fmt.Sprintf("toward %v steps: for none the evidence in the form %s can reach %.2f steps at most; ask for fewer", w.Toward, o.Analysis.Weighing.Form, -*most)}
+	}
 	if w.Toward == 0 {
 		n.Wanted.Toward = max(1, math.Floor(n.Now)+1)
 	}
-	y, s := estimates(o.Studies)
 	trial := accrual.Trial{Y: y, SE: s, Model: o.Analysis.Model, Important: o.Analysis.Important, Steps: []float64{1, 2, 3, 4, towardNone}}
 	if !slices.Contains(trial.Steps, n.Wanted.Toward) {
 		trial.Steps = append(trial.Steps, n.Wanted.Toward)
 	}
-	if o.Analysis.Method != review.InverseVariance {
-		o.note(fmt.Sprintf("The next study is pooled with the studies' own estimates by %s, not by the method for counts.", review.InverseVariance))
+	if !o.Analysis.Weighing.Own() {
+		trial.Weigh = func(mean meta.Mean, y, s []float64) (evidence.Ratio, error) {
+			return o.Analysis.Weighing.Evidence(mean, o.Analysis.Model.Null, y, s)
+		}
 	}
 	if w.SE > 0 {
-		var err error
 		n.Outlook, err = trial.Foresee(ctx, w.SE)
 		return n, err
+	}
+	if w, err = o.riskOfSheet(w, n); err != nil {
+		return nil, err
 	}
 	if err := o.unusedBySize(w); err != nil {
 		return nil, err
@@ -101,6 +132,75 @@ func (o *Outcome) next(ctx context.Context, w NextWanted) (*Next, error) {
 	return n, err
 }
 
+// pooledByPairs returns the present result as the next study will be pooled with it:
+// for a method for counts, whose counts no draw of a next study has, that of the
+// studies' own estimates, as a note says.
+func (o *Outcome) pooledByPairs(y, s []float64) (meta.Mean, error) {
+	own := o.Result.Fit.Mean
+	if o.Analysis.Method == review.InverseVariance {
+		return own, nil
+	}
+	var pool meta.Pooler
+	mean, err := pool.Pool(o.Analysis.Model, y, s)
+	if err != nil {
+		return mean, o.explain(err)
+	}
+	if mean.Evidence, err = o.Analysis.Weighing.Evidence(mean, o.Analysis.Model.Null, y, s); err != nil {
+		return mean, err
+	}
+	o.note(fmt.Sprintf("What is foreseen is not pooling by %s, which needs the next study's counts: its estimate is drawn with a standard error and pooled with the studies' own estimates by %s, where the evidence now is %.1f steps and by %s %.1f.",
+		o.Analysis.Method, review.InverseVariance, mean.Evidence.Steps(), o.Analysis.Method, own.Evidence.Steps()))
+	return mean, nil
+}
+
+// checkSlowNext refuses sizes of the next study in a form of evidence that would
+// take minutes over them.
+func (o *Outcome) checkSlowNext(w NextWanted) error {
+	if form := o.Analysis.Weighing.Form; form.OverTau() && w.SE == 0 {
+		return &accrual.InputError{Problem: fmt.Sprintf("next-trial: evidence %s is too slow to weigh over the sizes of a study; give the next study's standard error with --se in place of its size, or choose another form with --%s", form, review.SettingEvidence)}
+	}
+	return nil
+}
+
+// riskOfSheet takes the median control risk of the studies where a measure of counts
+// needs one and none is stated.
+func (o *Outcome) riskOfSheet(w NextWanted, n *Next) (NextWanted, error) {
+	if !comparesRisks(o.Analysis.Measure) || w.ControlRisk != 0 {
+		return w, nil
+	}
+	risk, arms := o.medianControlRisk()
+	if arms == 0 {
+		return w, nil
+	}
+	if !(risk > 0 && risk < 1) {
+		return w, &accrual.InputError{Problem: fmt.Sprintf("the median risk of the studies' %d control arms is %v, which gives no standard error: state the risk in the control arm with --control-risk, such as 0.2", arms, risk)}
+	}
+	w.ControlRisk = risk
+	n.Wanted.ControlRisk, n.RiskFrom = risk, arms
+	return w, nil
+}
+
+// comparesRisks reports whether a measure compares the risks of two arms.
+func comparesRisks(m effect.Measure) bool {
+	return m == effect.OddsRatio || m == effect.RiskRatio || m == effect.RiskDifference
+}
+
+// medianControlRisk returns the median risk of the control arms of the pooled studies
+// that give one, and how many these are.
+func (o *Outcome) medianControlRisk() (risk float64, arms int) {
+	var all []float64
+	for i := range o.Studies {
+		d := derivation{row: o.Studies[i].Source}
+		if total := d.value(review.TotalControl); d.has(review.EventsControl) && total > 0 {
+			all = append(all, d.value(review.EventsControl)/total)
+		}
+	}
+	if len(all) == 0 {
+		return 0, 0
+	}
+	return medianOf(all), len(all)
+}
+
 // Reaches is the chance in an outlook that the wanted step is passed.
 func (n *Next) Reaches(o *accrual.Outlook) float64 {
 	for _, c := range o.Passing {
@@ -114,7 +214,7 @@ func (n *Next) Reaches(o *accrual.Outlook) float64 {
 // unusedBySize refuses what the measure has no use for.
 func (o *Outcome) unusedBySize(w NextWanted) error {
 	m := o.Analysis.Measure
-	binary := m == effect.OddsRatio || m == effect.RiskRatio || m == effect.RiskDifference
+	binary := comparesRisks(m)
 	switch {
 	case w.ControlRisk > 0 && !binary:
 		return &accrual.InputError{Problem: fmt.Sprintf("a %s has no use for a control risk: leave --control-risk away", m)}
@@ -134,6 +234,7 @@ type NextDocument struct {
 	Treated     float64             `json:"treated,omitempty"`
 	Control     float64             `json:"control,omitempty"`
 	ControlRisk float64             `json:"control_risk,omitempty"`
+	RiskFrom    int                 `json:"control_risk_median_of_arms,omitempty"` // absent where the risk was stated
 	SD          float64             `json:"sd,omitempty"`
 	Toward      float64             `json:"toward_steps"`
 	Chance      float64             `json:"wanted_chance"`
@@ -188,7 +289,7 @@ type SmallestDocument struct {
 func nextDocument(n *Next) *NextDocument {
 	w := n.Wanted
 	d := &NextDocument{
-		Treated: w.Treated, Control: w.Control, ControlRisk: w.ControlRisk, SD: w.SD,
+		Treated: w.Treated, Control: w.Control, ControlRisk: w.ControlRisk, RiskFrom: n.RiskFrom, SD: w.SD,
 		Toward: w.Toward, Chance: w.Chance, Outlook: outlookDocument(n.Outlook),
 	}
 	for _, point := range n.Curve {

@@ -14,9 +14,16 @@ import (
 
 // pool fits the model and what stands beside it.
 func (o *Outcome) pool(asked review.Analysis) error {
-	fit, err := o.fit(o.Analysis.Model, o.Studies)
+	if err := o.settleWeighing(asked); err != nil {
+		return err
+	}
+	fit, err := o.fitOwn(o.Analysis.Model, o.Studies)
 	if err != nil {
 		return o.explain(err)
+	}
+	own := fit.Mean.Evidence
+	if err := o.weigh(fit, o.Studies); err != nil {
+		return err
 	}
 	o.Result = &Result{Fit: fit, Other: o.otherFit(asked.Model, fit.Model.Null), Without: o.withoutConverted()}
 	o.Analysis.Model = fit.Model
@@ -30,6 +37,9 @@ func (o *Outcome) pool(asked review.Analysis) error {
 	}
 	if o.Analysis.NullMissing {
 		return nil
+	}
+	if !o.Analysis.Weighing.Own() {
+		o.Result.Empirical = &own
 	}
 	o.Result.Posterior = o.posterior(fit.Mean.Evidence)
 	o.Result.DoubtersPrior = Belief{Prior: evidence.DoubtersPrior(fit.Mean.Evidence, believed), Posterior: believed}

@@ -22,7 +22,7 @@ func (o *Outcome) settle(asked review.Analysis, rows []*review.Study) error {
 		Better:     o.better(asked.Better, rows),
 		Method:     asked.Method,
 		Model:      asked.Model,
-		Prior:      asked.Prior,
+		Prior:      asked.Weighing.Prior,
 		Correction: asked.Correction,
 	}
 	if err := o.settleMethod(asked); err != nil {

@@ -83,7 +83,8 @@ type Analysis struct {
 	Better     review.Better
 	Method     review.Method
 	Model      meta.Model
-	Important  *meta.Limits // the trivial zone's limits; nil without an important difference
+	Important  *meta.Limits   // the trivial zone's limits; nil without an important difference
+	Weighing   bayes.Weighing // which evidence the means carry; its Tau is the prior for τ of all that has one
 	Prior      []float64
 	Correction effect.Correction
 	// NullMissing: the measure has no value of no effect and none is given, so
@@ -141,6 +142,7 @@ type Result struct {
 	DoubtersPrior Belief // Posterior is the level, Prior the doubter's prior
 	Regions       []Region
 	Without       *meta.Fit         // without the converted studies; nil if there are none, or no others
+	Empirical     *evidence.Ratio   // in the empirical form beside another that rests on priors; else nil
 	Integrated    *bayes.Integrated // with τ integrated over its prior; nil unless the studies are few
 	Differing     *bayes.Integrated // the same for effects that differ, whatever their number; nil where not weighed
 }
@@ -311,7 +313,7 @@ type idleSetting struct {
 }
 
 // idleByMethod lists the settings that a method for 2×2 tables has no use for.
-func idleByMethod(method review.Method, common bool) []idleSetting {
+func idleByMethod(method review.Method, common, own bool) []idleSetting {
 	tau := fmt.Sprintf("%s estimates τ² by maximum likelihood", method)
 	if common {
 		tau = "a common effect has no τ²"
@@ -320,7 +322,7 @@ func idleByMethod(method review.Method, common bool) []idleSetting {
 		{review.SettingTau, true, tau},
 		{review.SettingInterval, true, fmt.Sprintf("%s has an interval of its own", method)},
 		{review.SettingPrediction, true, fmt.Sprintf("%s gives no prediction interval", method)},
-		{review.SettingEvidence, true, fmt.Sprintf("beside %s the evidence has the normal form", method)},
+		{review.SettingEvidence, own, fmt.Sprintf("beside %s the evidence has the normal form", method)},
 		{review.SettingCorrection, true, fmt.Sprintf("%s corrects no table; a study's own estimate alone may have a correction", method)},
 	}
 }
@@ -336,10 +338,13 @@ func (o *Outcome) idleSettings(plan *review.Plan) {
 	idle := []idleSetting{
 		{review.SettingTau, common, "a common effect has no τ²"},
 		{review.SettingPrediction, common, "a common effect has no prediction interval"},
-		{review.SettingEvidence, !student, fmt.Sprintf("beside the %s interval the evidence has the normal form", model.Interval)},
+		{review.SettingEvidence, !student && o.Analysis.Weighing.Own(), fmt.Sprintf("beside the %s interval the evidence has the normal form", model.Interval)},
 	}
 	if method := o.Analysis.Method; method != review.InverseVariance {
-		idle = idleByMethod(method, common)
+		idle = idleByMethod(method, common, o.Analysis.Weighing.Own())
+	}
+	for _, name := range []string{review.SettingEffectMean, review.SettingEffectSD, review.SettingEffectSide} {
+		idle = append(idle, idleSetting{name, !o.Analysis.Weighing.Form.UnderPrior(), "evidence normal-prior and cauchy-prior alone have a prior for the effect"})
 	}
 	for _, s := range idle {
 		if v := plan.Value(s.name, o.Name); s.idle && v.From != review.FromDefault {

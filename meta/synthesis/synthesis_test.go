@@ -321,7 +321,7 @@ func TestWeighAgreesWithPool(t *testing.T) {
 	var s sheet
 	s.row("a", "", estimate(0.7, 0.15))
 	_, o := runOne(t, &s, "measure", "risk ratio", "important", "0.8")
-	w, err := Weigh(Numbers{Statistic: Estimated, Value: 0.7, SE: 0.15, Ratio: true, Level: 0.95, Important: []float64{0.8}}, []float64{0.5})
+	w, err := Weigh(Numbers{Statistic: Estimated, Value: 0.7, SE: 0.15, Ratio: true, Level: 0.95, Important: []float64{0.8}, Weighing: review.Weighing{Prior: []float64{0.5}}})
 	if err != nil {
 		t.Fatal(err)
 	}

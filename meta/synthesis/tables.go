@@ -93,8 +93,18 @@ func (d *derivation) ownEstimate(m effect.Measure) (effect.Estimate, error) {
 	return d.made(effect.FromTable(m, t, correction))
 }
 
-// fit pools studies by the outcome's method with a model.
+// fit pools studies by the outcome's method with a model; its evidence is of the
+// outcome's form.
 func (o *Outcome) fit(model meta.Model, studies []Study) (*meta.Fit, error) {
+	fit, err := o.fitOwn(model, studies)
+	if err != nil {
+		return nil, err
+	}
+	return fit, o.weigh(fit, studies)
+}
+
+// fitOwn is fit with the evidence that the model gives by itself.
+func (o *Outcome) fitOwn(model meta.Model, studies []Study) (*meta.Fit, error) {
 	if _, isTables := o.Analysis.Method.Tables(); isTables {
 		r, err := o.tableModel(model).Fit(tablesOf(studies))
 		if err != nil {

@@ -5,10 +5,12 @@ import (
 	"math"
 
 	"steelyard/meta"
+	"steelyard/meta/bayes"
 	"steelyard/meta/choice"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
 	"steelyard/meta/numeric"
+	"steelyard/meta/review"
 )
 
 // Statistic is a kind of test statistic that evidence can be weighed from.
@@ -33,24 +35,26 @@ func (s Statistic) String() string { return statisticNames.String(s) }
 // sheet.
 type Numbers struct {
 	Statistic Statistic
-	Value     float64      // of the statistic, or the estimate in the reader's unit
-	DF, DF2   float64      // degrees of freedom; 0 where there are none
-	SE        float64      // on the analysis scale; 0 if the limits are given
-	Limits    *meta.Limits // in the reader's unit
-	Ratio     bool         // estimate, limits, null and thresholds are ratios
-	OneSided  bool         // H1 is an effect above the null
-	Null      *float64     // in the reader's unit; nil for 1 or 0
-	Important []float64    // in the reader's unit
-	Level     float64      // of the limits
-	Form      evidence.Form
+	Value     float64         // of the statistic, or the estimate in the reader's unit
+	DF, DF2   float64         // degrees of freedom; 0 where there are none
+	SE        float64         // on the analysis scale; 0 if the limits are given
+	Limits    *meta.Limits    // in the reader's unit
+	Ratio     bool            // estimate, limits, null and thresholds are ratios
+	OneSided  bool            // H1 is an effect above the null
+	Null      *float64        // in the reader's unit; nil for 1 or 0
+	Important []float64       // in the reader's unit
+	Level     float64         // of the limits
+	Weighing  review.Weighing // Prior and the other priors of its form
 }
 
 // Weighing is the evidence that numbers give.
 type Weighing struct {
-	Form      string // of the evidence: "normal", "matched", "student-t", "chi-square", "f", "p-value", "one-sided"
+	Form      string // of the evidence: "normal", "matched", "student-t", "chi-square", "f", "p-value", "one-sided", "normal-prior", "cauchy-prior"
 	Evidence  evidence.Ratio
-	Measure   effect.Measure // RiskRatio's scale stands for any ratio; Unspecified is linear
-	Mean      *meta.Mean     // of an estimate: on the analysis scale, with interval and p
+	Prior     *bayes.EffectPrior // for the effect, on the analysis scale or in standard errors; nil where there is none
+	Null      float64            // on the analysis scale
+	Measure   effect.Measure     // RiskRatio's scale stands for any ratio; Unspecified is linear
+	Mean      *meta.Mean         // of an estimate: on the analysis scale, with interval and p
 	Posterior []Belief
 	Doubter   Belief
 	Regions   []Region
@@ -59,9 +63,9 @@ type Weighing struct {
 	Uneven    bool            // the limits lie unevenly around the estimate on this scale
 }
 
-// Weigh returns the evidence in numbers alone, for the given prior
-// probabilities. The error says which number is missing or impossible.
-func Weigh(n Numbers, prior []float64) (*Weighing, error) {
+// Weigh returns the evidence in numbers alone, for the prior probabilities that they
+// hold. The error says which number is missing or impossible.
+func Weigh(n Numbers) (*Weighing, error) {
 	w := &Weighing{}
 	if n.Ratio {
 		w.Measure = effect.RiskRatio
@@ -73,12 +77,12 @@ func Weigh(n Numbers, prior []float64) (*Weighing, error) {
 	if n.Statistic == Estimated {
 		err = w.fromEstimate(n)
 	} else {
-		w.fromStatistic(n)
+		err = w.fromStatistic(n)
 	}
 	if err != nil {
 		return nil, err
 	}
-	for _, p := range prior {
+	for _, p := range n.Weighing.Prior {
 		w.Posterior = append(w.Posterior, Belief{Prior: p, Posterior: evidence.Posterior(p, w.Evidence)})
 	}
 	w.Doubter = Belief{Prior: evidence.DoubtersPrior(w.Evidence, believed), Posterior: believed}
@@ -110,20 +114,63 @@ func (n Numbers) check() error {
 	case n.Statistic != Estimated && (n.Important != nil || n.Null != nil || n.Ratio || n.SE != 0 || n.Limits != nil):
 		return fmt.Errorf("%s has no scale: --null, --important, --ratio, --se and limits go with --estimate", n.Statistic)
 	}
+	return n.checkForm(takesOneSide)
+}
+
+// checkForm refuses a form of evidence that numbers alone cannot have.
+func (n Numbers) checkForm(located bool) error {
+	switch form := n.Weighing.Form; {
+	case form.OverTau():
+		return fmt.Errorf("evidence: %s integrates over the spread between studies, and numbers alone have no studies: pool a sheet with it, or choose empirical, student-t, normal-prior or cauchy-prior", form)
+	case form.UnderPrior() && !located:
+		return fmt.Errorf("evidence: %s is for --z, --t or --estimate: %s alone does not say how far from none the effect is, or to which side", form, n.Statistic)
+	case form.UnderPrior() && n.OneSided:
+		return fmt.Errorf("evidence: beside %s an effect above none is asked for with --%s above, not with --one-sided", form, review.SettingEffectSide)
+	case form.UnderPrior() && n.Statistic != Estimated && n.Weighing.EffectMean != nil:
+		return fmt.Errorf("%s: %s has no scale on which an effect could be stated: give --estimate", review.SettingEffectMean, n.Statistic)
+	}
 	return nil
 }
 
-func (w *Weighing) fromStatistic(n Numbers) {
+// underPrior weighs an estimate under the prior for the effect that is asked for.
+func (w *Weighing) underPrior(n Numbers, l evidence.Location, null float64) error {
+	centre := 0.0
+	if mean := n.Weighing.EffectMean; mean != nil {
+		y, err := effect.FromReader(w.Measure, *mean)
+		if err != nil {
+			return fmt.Errorf("%s: %w", review.SettingEffectMean, err)
+		}
+		centre = y - null
+	}
+	prior, err := n.Weighing.Effect(centre)
+	if err != nil {
+		return err
+	}
+	at, err := bayes.Matched(l, null)
+	if err != nil {
+		return err
+	}
+	w.Form, w.Prior = n.Weighing.Form.String(), &prior
+	w.Evidence, err = at.Weigh(prior)
+	return err
+}
+
+func (w *Weighing) fromStatistic(n Numbers) error {
 	switch n.Statistic {
-	case StatisticZ:
-		w.fromZ(n.Value, math.Inf(1), n)
-	case StatisticT:
-		w.fromZ(n.Value, n.DF, n)
+	case StatisticZ, StatisticT:
+		df := math.Inf(1)
+		if n.Statistic == StatisticT {
+			df = n.DF
+		}
+		w.fromZ(n.Value, df, n)
+		if n.Weighing.Form.UnderPrior() {
+			return w.underPrior(n, evidence.Location{Estimate: n.Value, SE: 1, DF: df}, 0)
+		}
 	case StatisticChiSquare:
 		w.Form, w.Evidence = "chi-square", evidence.ChiSquare(n.Value, n.DF)
 	case StatisticF:
 		w.Form, w.Evidence = "matched", evidence.MatchedF(n.Value, n.DF, n.DF2)
-		if n.Form == evidence.StudentForm {
+		if n.Weighing.Form == evidence.StudentForm {
 			w.Form, w.Evidence = "f", evidence.F(n.Value, n.DF, n.DF2)
 		}
 	case StatisticP:
@@ -131,11 +178,12 @@ func (w *Weighing) fromStatistic(n Numbers) {
 		other := evidence.PValueBound(n.Value)
 		w.Sellke = &other
 	}
+	return nil
 }
 
 // fromZ weighs a normal (infinite df) or Student statistic.
 func (w *Weighing) fromZ(z, df float64, n Numbers) {
-	normal, student := math.IsInf(df, 1), n.Form == evidence.StudentForm
+	normal, student := math.IsInf(df, 1), n.Weighing.Form == evidence.StudentForm
 	var bound evidence.Ratio
 	switch {
 	case normal:
@@ -181,18 +229,27 @@ func (w *Weighing) fromEstimate(n Numbers) error {
 	if err != nil {
 		return fmt.Errorf("null: %w", err)
 	}
+	w.Null = scaledNull
 	mean.Statistic = (e.Y - scaledNull) / e.SE
 	mean.LnP = min(0, math.Ln2+numeric.LogStudentTail(math.Abs(mean.Statistic), mean.DF))
 	half := numeric.StudentCritical(1-n.Level, mean.DF) * e.SE
 	mean.Low, mean.High = e.Y-half, e.Y+half
 	w.fromZ(mean.Statistic, mean.DF, n)
+	location := evidence.Location{Estimate: e.Y, SE: e.SE, DF: mean.DF}
+	if n.Weighing.Form.UnderPrior() {
+		if err := w.underPrior(n, location, scaledNull); err != nil {
+			return err
+		}
+	}
 	mean.Evidence = w.Evidence
 	w.Mean = &mean
 	zone, err := important(w.Measure, n.Important, scaledNull)
 	if err != nil || zone == nil {
 		return err
 	}
-	location := evidence.Location{Estimate: e.Y, SE: e.SE, DF: mean.DF, Form: n.Form}
+	if n.Weighing.Form == evidence.StudentForm {
+		location.Form = evidence.StudentForm
+	}
 	w.Regions, err = regionsOf(location, *zone, "lower", "higher", func(_, _ float64) float64 { return -1 })
 	return err
 }
@@ -234,18 +291,19 @@ func (n Numbers) uneven(m effect.Measure, e effect.Estimate) bool {
 
 // WeighingDocument is the JSON of a weighing.
 type WeighingDocument struct {
-	Form       string              `json:"form"`
-	LnEvidence float64             `json:"ln_evidence"`
-	Ratio      *float64            `json:"ratio,omitempty"` // absent where it is too large for a float64
-	Steps      float64             `json:"steps"`
-	Word       string              `json:"word"`
-	Favours    string              `json:"favours"`
-	Estimate   *MeanDocument       `json:"estimate,omitempty"`
-	LnBound    *float64            `json:"ln_bound,omitempty"`
-	LnSellke   *float64            `json:"ln_sellke_bayarri_berger,omitempty"`
-	Posterior  []PosteriorDocument `json:"posterior"`
-	Doubter    DoubterDocument     `json:"doubters_prior"`
-	Regions    []RegionDocument    `json:"regions,omitempty"`
+	Form       string               `json:"form"`
+	LnEvidence float64              `json:"ln_evidence"`
+	Ratio      *float64             `json:"ratio,omitempty"` // absent where it is too large for a float64
+	Steps      float64              `json:"steps"`
+	Word       string               `json:"word"`
+	Favours    string               `json:"favours"`
+	Prior      *EffectPriorDocument `json:"effect_prior,omitempty"`
+	Estimate   *MeanDocument        `json:"estimate,omitempty"`
+	LnBound    *float64             `json:"ln_bound,omitempty"`
+	LnSellke   *float64             `json:"ln_sellke_bayarri_berger,omitempty"`
+	Posterior  []PosteriorDocument  `json:"posterior"`
+	Doubter    DoubterDocument      `json:"doubters_prior"`
+	Regions    []RegionDocument     `json:"regions,omitempty"`
 }
 
 // Document returns the weighing as its JSON structure.
@@ -255,6 +313,9 @@ func (w *Weighing) Document() WeighingDocument {
 		Word: w.Evidence.Word().String(), Favours: w.Evidence.Favours().String(),
 		Posterior: []PosteriorDocument{},
 		Doubter:   DoubterDocument{Level: w.Doubter.Posterior, Prior: w.Doubter.Prior},
+	}
+	if w.Prior != nil {
+		d.Prior = effectPriorDocument(*w.Prior)
 	}
 	if w.Mean != nil {
 		mean := meanDocument(*w.Mean)
