@@ -21,11 +21,12 @@ const (
 	FloorForEqualEstimates                    // all estimates equal: the unmodified factor would be 0
 	PredictionNeedsThree                      // no prediction interval for fewer than three studies
 	PredictionWidened                         // the prediction would lie inside the interval for the mean
+	FewDegrees                                // a robust variance with fewer than 4 degrees of freedom
 )
 
 var caveatNames = choice.Of[CaveatKind]("caveat",
 	"single-study", "wald-for-single-study", "two-studies", "few-studies", "tau-zero",
-	"less-scatter-than-expected", "floor-for-equal-estimates", "prediction-needs-three", "prediction-widened")
+	"less-scatter-than-expected", "floor-for-equal-estimates", "prediction-needs-three", "prediction-widened", "few-degrees")
 
 // String returns the caveat's name, such as "two-studies".
 func (k CaveatKind) String() string { return caveatNames.String(k) }
@@ -49,7 +50,7 @@ func (k *CaveatKind) UnmarshalText(text []byte) (err error) {
 type Caveat struct {
 	Kind CaveatKind
 	K    int     // number of studies
-	Size float64 // TwoStudies: half-width of the interval in standard errors; else 0
+	Size float64 // TwoStudies: half-width of the interval in standard errors; FewDegrees: their number; else 0
 }
 
 // Text returns the caveat in a sentence or two.
@@ -72,6 +73,8 @@ func (c Caveat) Text() string {
 		return "All estimates are equal, so the Hartung–Knapp factor would be 0 and the interval a point; it was held at 1."
 	case PredictionNeedsThree:
 		return fmt.Sprintf("No prediction interval: it needs at least 3 studies, there are %d.", c.K)
+	case FewDegrees:
+		return fmt.Sprintf("The robust variance has %.1f degrees of freedom, fewer than 4: too few studies or one with most of the weight; p-value and evidence are rough.", c.Size)
 	case PredictionWidened:
 		return "The prediction interval would lie inside the interval for the mean; it was widened by the latter's own standard error."
 	}

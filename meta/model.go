@@ -199,6 +199,7 @@ type Fit struct {
 	Weights       []float64   // per study, summing to 1
 	Predictors    []Predictor // study-level estimates under the model
 	Caveats       []Caveat
+	Clustered     *Clustered // nil where every estimate is a study of its own
 }
 
 // Limits is an interval.

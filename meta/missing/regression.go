@@ -40,9 +40,17 @@ func multiplicative(m meta.Model, method Method, y, x, w []float64) (*Regression
 		return nil, ErrExactLine
 	}
 	r := &Regression{Method: method, Dispersion: l.rss / l.df}
-	r.Slope = student(againstZero(m), len(y), l.slope, math.Sqrt(r.Dispersion*l.slopeVar), l.df)
-	r.Limit = student(m, len(y), l.level, math.Sqrt(r.Dispersion*l.levelVar), l.df)
-	return r, finite(r.Slope, r.Limit)
+	return r, r.infer(m, l, len(y))
+}
+
+// infer fills in slope and limit of a line with the regression's dispersion.
+func (r *Regression) infer(m meta.Model, l line, k int) (err error) {
+	if r.Slope, err = againstZero(m).StudentMean(k, l.slope, math.Sqrt(r.Dispersion*l.slopeVar), l.df); err != nil {
+		return err
+	}
+	r.Limit, err = m.StudentMean(k, l.level, math.Sqrt(r.Dispersion*l.levelVar), l.df)
+	r.Slope.Tau2, r.Limit.Tau2 = r.Tau2, r.Tau2
+	return err
 }
 
 // EggerMixed returns the regression test with true effects that scatter around the
@@ -68,12 +76,8 @@ func EggerMixed(m meta.Model, y, s []float64) (*Regression, error) {
 	if err != nil {
 		return nil, err
 	}
-	factor := max(1, l.rss/l.df)
-	r := &Regression{Method: EggerMixedEffects, Dispersion: factor, Tau2: tau2}
-	r.Slope = student(againstZero(m), len(y), l.slope, math.Sqrt(factor*l.slopeVar), l.df)
-	r.Limit = student(m, len(y), l.level, math.Sqrt(factor*l.levelVar), l.df)
-	r.Slope.Tau2, r.Limit.Tau2 = tau2, tau2
-	return r, finite(r.Slope, r.Limit)
+	r := &Regression{Method: EggerMixedEffects, Dispersion: max(1, l.rss/l.df), Tau2: tau2}
+	return r, r.infer(m, l, len(y))
 }
 
 // mixedLine is a line around which true effects scatter.
@@ -112,33 +116,8 @@ func (d mixedLine) restricted() (float64, error) {
 		}
 		return logs.Value() + fit.lnDet + fit.rss
 	}
-	tau, _, err := lowest(deviance, 0, math.Sqrt(2*l.rss), lineScan)
+	tau, _, err := numeric.ScannedMinimum(deviance, 0, math.Sqrt(2*l.rss), lineScan)
 	return tau * tau, err
-}
-
-// lowest returns where f is lowest in [low, high]: the lowest of a scan, which is
-// denser towards low, refined between its neighbours; the ends count too.
-func lowest(f func(float64) float64, low, high float64, points int) (x, fx float64, err error) {
-	if !(high > low) {
-		return low, f(low), nil
-	}
-	at := func(i int) float64 { return low + (high-low)*math.Pow(float64(i)/float64(points), 2) }
-	best := 0
-	fx = f(low)
-	for i := 1; i <= points; i++ {
-		if v := f(at(i)); v < fx {
-			best, fx = i, v
-		}
-	}
-	x = at(best)
-	refined, value, err := numeric.Minimum(f, at(max(0, best-1)), at(min(points, best+1)), 1e-10)
-	if err != nil {
-		return x, fx, err
-	}
-	if value < fx {
-		return refined, value, nil
-	}
-	return x, fx, nil
 }
 
 // Peters returns the regression of the log odds ratio on one over the number of

@@ -71,9 +71,7 @@ func OneStep(m meta.Model, y, s []float64, step float64, direction Side) (*Selec
 	out.Chi2 = max(0, plain-deviance)
 	out.LnP = min(0, numeric.LogChiSquareTail(out.Chi2, 1))
 	out.Evidence = evidence.Normal(math.Sqrt(out.Chi2))
-	check := out.Mean
-	check.Low, check.High = 0, 0
-	return out, finite(check)
+	return out, finite(out.Mean)
 }
 
 // The number of places at which the likelihood is looked at before it is refined.
@@ -166,7 +164,7 @@ func (d *stepped) penalty(lnRate float64) float64 {
 
 // bestTau returns the τ at which the likelihood of μ is highest, and the deviance.
 func (d *stepped) bestTau(mu float64) (tau, deviance float64) {
-	tau, deviance, err := lowest(func(tau float64) float64 { _, dev := d.bestRate(mu, tau); return dev }, 0, d.widest, tauScan)
+	tau, deviance, err := numeric.ScannedMinimum(func(tau float64) float64 { _, dev := d.bestRate(mu, tau); return dev }, 0, d.widest, tauScan)
 	if err != nil {
 		return 0, math.Inf(1)
 	}
@@ -181,7 +179,7 @@ func (d *stepped) profile(mu float64) float64 {
 
 // unselected is the deviance of μ with τ at its best and a rate of 1.
 func (d *stepped) unselected(mu float64) float64 {
-	_, deviance, err := lowest(func(tau float64) float64 {
+	_, deviance, err := numeric.ScannedMinimum(func(tau float64) float64 {
 		density, _ := d.lnRatios(mu, tau)
 		return density
 	}, 0, d.widest, tauScan)
@@ -191,7 +189,7 @@ func (d *stepped) unselected(mu float64) float64 {
 	return deviance
 }
 
-// lowestOf is lowest over an even scan.
+// lowestOf returns the lowest of an even scan, refined between its neighbours.
 func lowestOf(f func(float64) float64, low, high float64, points int) (x, fx float64, err error) {
 	step := (high - low) / float64(points)
 	best := 0
