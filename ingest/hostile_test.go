@@ -80,7 +80,7 @@ func TestInterrupted(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if x, _, err := read(ctx, cells, nil, Options{}); !errors.Is(err, context.Canceled) || x != nil {
+	if x, _, err := read(ctx, cells, beside{}, Options{}); !errors.Is(err, context.Canceled) || x != nil {
 		t.Errorf("the studies are read to the end: %v", err)
 	}
 }

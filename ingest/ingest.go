@@ -24,22 +24,22 @@ type Options struct {
 	Sheet string
 }
 
-// Open reads the file at path and its plan: the sheet "plan" of a workbook, or the
-// file NAME.plan.csv beside a text file. The error is a *grid.FileError, a
+// Open reads the file at path with its plan and its panel's judgements: the sheets
+// "plan" and "judgement" of a workbook, or the files NAME.plan.csv and
+// NAME.judgement.csv beside a text file. The error is a *grid.FileError, a
 // *HeaderError, a *SheetError, a *ColumnError or wraps ErrNoStudies.
 func Open(ctx context.Context, path string, o Options) (*review.Extraction, *review.Plan, error) {
 	book, err := grid.Open(ctx, path)
 	if err != nil {
 		return nil, nil, err
 	}
-	var plan *grid.Book
+	var with beside
 	if book.Text {
-		plan, err = grid.Open(ctx, planPath(path))
-		if err != nil && !errors.Is(err, fs.ErrNotExist) {
-			return nil, nil, planError(err)
+		if with, err = openBeside(ctx, path); err != nil {
+			return nil, nil, err
 		}
 	}
-	x, p, err := read(ctx, book, plan, o)
+	x, p, err := read(ctx, book, with, o)
 	var unknown *HeaderError
 	if errors.As(err, &unknown) {
 		unknown.Call = Call{Path: path, Sheet: o.Sheet}
@@ -47,23 +47,48 @@ func Open(ctx context.Context, path string, o Options) (*review.Extraction, *rev
 	return x, p, err
 }
 
+// beside holds the books of the files beside a text file, nil where there is none.
+type beside struct{ plan, judgement *grid.Book }
+
+// openBeside reads the plan and the judgements beside a text file.
+func openBeside(ctx context.Context, path string) (beside, error) {
+	var with beside
+	for _, one := range []struct {
+		to                  **grid.Book
+		path                string
+		what, head, without string
+	}{
+		{&with.plan, planPath(path), "the plan", "setting and value", "a plan"},
+		{&with.judgement, judgementPath(path), "the file of judgements", "outcome, domain, rating and reason", "judgements"},
+	} {
+		book, err := grid.Open(ctx, one.path)
+		if err != nil && !errors.Is(err, fs.ErrNotExist) {
+			return beside{}, besideError(err, one.what, one.head, one.without)
+		}
+		if err == nil {
+			*one.to = book
+		}
+	}
+	return with, nil
+}
+
 // Read reads a file's bytes like Open; name serves for messages. A text file has
-// no plan then.
+// no plan and no judgements then.
 func Read(ctx context.Context, data []byte, name string, o Options) (*review.Extraction, *review.Plan, error) {
 	book, err := grid.Read(ctx, data, name)
 	if err != nil {
 		return nil, nil, err
 	}
-	return read(ctx, book, nil, o)
+	return read(ctx, book, beside{}, o)
 }
 
-// planError says of an empty file what belongs into a plan.
-func planError(err error) error {
+// besideError says of an empty file beside a sheet what belongs into it.
+func besideError(err error, what, head, without string) error {
 	var file *grid.FileError
 	if errors.As(err, &file) && file.Problem == "is empty" {
 		empty := *file
-		empty.Problem = "the plan beside the sheet is empty"
-		empty.Remedy = "write setting and value above its rows, or delete the file to go without a plan"
+		empty.Problem = what + " beside the sheet is empty"
+		empty.Remedy = "write " + head + " above its rows, or delete the file to go without " + without
 		return &empty
 	}
 	return err
@@ -78,8 +103,8 @@ func planPath(path string) string {
 // ErrNoStudies reports a table whose header has no row of a study below it.
 var ErrNoStudies = errors.New("no row with a study follows the header; add the studies below it")
 
-func read(ctx context.Context, book, planBook *grid.Book, o Options) (*review.Extraction, *review.Plan, error) {
-	draft := readPlan(book, planBook)
+func read(ctx context.Context, book *grid.Book, with beside, o Options) (*review.Extraction, *review.Plan, error) {
+	draft := readPlan(book, with.plan)
 	asked, err := requests(o, draft)
 	if err != nil {
 		return nil, nil, err
@@ -96,6 +121,7 @@ func read(ctx context.Context, book, planBook *grid.Book, o Options) (*review.Ex
 		return nil, nil, err
 	}
 	x.Findings = append(x.Findings, draft.findings...)
+	readJudgements(x, book, with.judgement)
 	return x, draft.plan, nil
 }
 

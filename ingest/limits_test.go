@@ -62,7 +62,7 @@ func TestRepeatedTextsOfMergedCellsAreLimited(t *testing.T) {
 	for i := 3; i <= 3000; i++ {
 		sheet.Rows = append(sheet.Rows, grid.Row{Number: i, Cells: cells(grid.Cell{})})
 	}
-	_, _, err := read(context.Background(), &grid.Book{File: "a.xlsx", Sheets: []grid.Sheet{sheet}}, nil, Options{})
+	_, _, err := read(context.Background(), &grid.Book{File: "a.xlsx", Sheets: []grid.Sheet{sheet}}, beside{}, Options{})
 	if err == nil || !strings.Contains(err.Error(), "merged cells repeat texts of more than 128 MB") {
 		t.Errorf("error %v, want the limit of repeated texts", err)
 	}

@@ -17,7 +17,7 @@ type planDraft struct {
 }
 
 // planColumns are the 1-based columns of a plan sheet, 0 where there is none.
-type planColumns struct{ setting, value, outcome, reason int }
+type planColumns struct{ setting, value, outcome, reason, date int }
 
 // Rows of a plan that are no settings.
 const (
@@ -77,7 +77,7 @@ func (d *planDraft) read(file string, s *grid.Sheet) {
 func planHeader(row *grid.Row) planColumns {
 	var c planColumns
 	for i := range row.Cells {
-		column := map[string]*int{"setting": &c.setting, "value": &c.value, "outcome": &c.outcome, "reason": &c.reason}[choice.Fold(tidy(headerText(row, i+1)))]
+		column := map[string]*int{"setting": &c.setting, "value": &c.value, "outcome": &c.outcome, "reason": &c.reason, "date": &c.date}[choice.Fold(tidy(headerText(row, i+1)))]
 		if column != nil && *column == 0 {
 			*column = i + 1
 		}
@@ -113,7 +113,13 @@ func (d *planDraft) readRow(file string, s *grid.Sheet, row *grid.Row, c planCol
 	case planColumn:
 		err = d.addColumn(value)
 	default:
-		err = d.plan.Set(setting, outcome, review.Value{Text: value, From: review.FromSheet, Place: place, Reason: text(c.reason)})
+		agreed, readable := planDate(row.Cell(c.date))
+		if !readable {
+			place.Col, place.Text = c.date, row.Cell(c.date).Text
+			d.find(place, outcome, quote(place.Text)+" is not read as the date on which "+setting+" was agreed; type it as 2015, 2015-08 or 2015-08-31")
+			return
+		}
+		err = d.plan.Set(setting, outcome, review.Value{Text: value, From: review.FromSheet, Place: place, Reason: text(c.reason), Date: agreed})
 		if _, unknown := review.FindSetting(setting); unknown != nil {
 			place.Col, place.Text = c.setting, row.Cell(c.setting).Text
 			err = fmt.Errorf("%w, %s, %s", unknown, planRun, planColumn)
@@ -122,6 +128,15 @@ func (d *planDraft) readRow(file string, s *grid.Sheet, row *grid.Row, c planCol
 	if err != nil {
 		d.find(place, outcome, err.Error())
 	}
+}
+
+// planDate reads the date beside a setting or a judgement; a blank one is no date.
+func planDate(cell grid.Cell) (date review.Date, readable bool) {
+	if cell.Kind == grid.Blank {
+		return review.Date{}, true
+	}
+	date, letter, ok := parseDate(tidy(cell.Text))
+	return date, ok && letter == "" && date.Year >= firstYear && date.Year <= lastYear
 }
 
 func (d *planDraft) addRun(value, outcome string, place review.Place) error {

@@ -234,11 +234,12 @@ const exampleRun = "without high risk of bias: risk of bias is not high"
 // writePlan writes every setting, its value left blank so that the default holds;
 // the measure is the template's.
 func (t *templateWriter) writePlan() {
-	t.headerRow(planSheet, 0, "setting", "value", "outcome", "reason", "default", "meaning")
-	for col, width := range []float64{13, 34, 24, 34, 38, 70} {
+	t.headerRow(planSheet, 0, "setting", "value", "outcome", "reason", "default", "meaning", "date")
+	for col, width := range []float64{20, 34, 24, 34, 38, 70, 12} {
 		t.column(planSheet, col+1, width, t.text)
 	}
-	t.do(t.f.SetCellStyle(planSheet, "A1", "F1", t.header))
+	t.do(t.f.SetCellStyle(planSheet, "A1", "G1", t.header))
+	t.comment(planSheet, "G1", "When it was agreed: year-month-day. A threshold agreed after results were seen is flagged.")
 	t.comment(planSheet, "B1", "Leave a value blank for the default. A flag of the call wins over this sheet.")
 	t.comment(planSheet, "C1", "Blank for all outcomes. For one outcome, copy the row and write the outcome's name here.")
 	t.comment(planSheet, "D1", "Why this was chosen, and when. It is kept with the answer.")

@@ -1,6 +1,10 @@
 package ingest
 
-import "strings"
+import (
+	"strings"
+
+	"steelyard/meta/review"
+)
 
 // guideLines introduce the guide; the columns of "studies" follow them.
 var guideLines = [][2]string{
@@ -38,15 +42,6 @@ func (t *templateWriter) writeGuide() {
 	t.do(t.f.SetCellStyle(guideSheet, cellAt(1, row-len(t.fields)), cellAt(4, row-1), t.wrap))
 }
 
-// The domains in which the certainty of an outcome is judged, with its start and
-// its sum, and the ratings: levels for "start" and "certainty", moves for the
-// others. GRADE guidance, as in the handbook of its working group.
-var (
-	judgementDomains = []string{"start", "risk of bias", "inconsistency", "indirectness", "imprecision", "publication bias",
-		"large effect", "dose gradient", "opposing confounding", "certainty"}
-	judgementRatings = []string{"high", "moderate", "low", "very low", "no change", "down one", "down two", "down three", "up one", "up two"}
-)
-
 // writeJudgement writes the sheet of the panel's ratings.
 func (t *templateWriter) writeJudgement() {
 	t.headerRow(judgementSheet, 0, "outcome", "domain", "rating", "reason", "by", "date")
@@ -57,7 +52,7 @@ func (t *templateWriter) writeJudgement() {
 	for _, c := range [][2]string{
 		{"A1", "The outcome, spelt as on the sheet studies."},
 		{"B1", "What is judged. Randomised studies start high, others low; certainty is the level that results."},
-		{"C1", "A level for start and certainty; for the others how far they move it. Do not move it twice for one cause."},
+		{"C1", "A level for start and certainty; for the others how far they move it. Other words may stand here too. Do not move it twice for one cause."},
 		{"D1", "Why. A rating without a reason does not count."},
 		{"E1", "Who judged."},
 		{"F1", "When: year-month-day."},
@@ -65,6 +60,6 @@ func (t *templateWriter) writeJudgement() {
 		t.comment(judgementSheet, c[0], c[1])
 	}
 	rows := func(col int) string { return cellAt(col, 2) + ":" + cellAt(col, 500) }
-	t.dropDown(judgementSheet, rows(2), judgementDomains, false)
-	t.dropDown(judgementSheet, rows(3), judgementRatings, false)
+	t.dropDown(judgementSheet, rows(2), review.DomainNames(), false)
+	t.dropDown(judgementSheet, rows(3), review.RatingNames(), true)
 }

@@ -98,7 +98,7 @@ func checkAnswer(s *synthesis.Synthesis, x *review.Extraction, unchecked []rules
 	if compared != nil {
 		p.wrapped("", comparedText(compared))
 	}
-	titles := map[string]string{review.RulePlan: "the plan"}
+	titles := map[string]string{review.RulePlan: "the plan", review.RuleJudgement: "the panel's judgements"}
 	for _, r := range rules.Catalogue() {
 		titles[r.ID] = r.Title
 	}

@@ -38,6 +38,7 @@ type Value struct {
 	From   From
 	Place  Place  // of a value from the plan sheet
 	Reason string // as the plan gives it
+	Date   Date   // on which it was agreed, as the plan gives it; zero: not given
 }
 
 // Run is a planned sensitivity analysis: a filter, or changed settings, or both.
@@ -200,7 +201,16 @@ type Analysis struct {
 	Weighing   Weighing
 	Correction effect.Correction
 	Where      *Filter // nil pools every row
-	Baselines  []Baseline
+	Panel      PanelSettings
+}
+
+// PanelSettings are the settings that only a panel's card uses.
+type PanelSettings struct {
+	Baselines []Baseline
+	Per1000   []float64 // important difference per 1000, below 0 for fewer; one or two values, or nil
+	SD        float64   // in the unit of the outcome; 0: not stated
+	Reduction float64   // relative reduction of the risk that the information size is for
+	Power     float64   // with which
 }
 
 // Analysis returns the settings for an outcome, with Model.Tau and
@@ -238,7 +248,11 @@ func (p *Plan) Analysis(outcome string) (Analysis, error) {
 	})
 	read(SettingImportant, func(t string) (err error) { a.Important, err = parseNumbers(t); return err })
 	read(SettingBetter, func(t string) (err error) { a.Better, err = ParseBetter(t); return err })
-	read(SettingBaseline, func(t string) (err error) { a.Baselines, err = parseBaselines(t); return err })
+	read(SettingBaseline, func(t string) (err error) { a.Panel.Baselines, err = parseBaselines(t); return err })
+	read(SettingPer1000, func(t string) (err error) { a.Panel.Per1000, err = parsePer1000(t); return err })
+	read(SettingSD, func(t string) (err error) { a.Panel.SD, err = parsePositive(t); return err })
+	read(SettingReduction, func(t string) (err error) { a.Panel.Reduction, err = parseFraction(t); return err })
+	read(SettingPower, func(t string) (err error) { a.Panel.Power, err = parseFraction(t); return err })
 	read(SettingCorrection, func(t string) (err error) { a.Correction, err = effect.ParseCorrection(t); return err })
 	read(SettingWhere, func(t string) (err error) { a.Where, err = ParseFilter(t); return err })
 	a.Weighing.read(read)

@@ -59,7 +59,7 @@ func TestAnalysis(t *testing.T) {
 	}
 	if a.Measure != effect.RiskRatio || !a.MeasureSet || a.Model.Effects != meta.CommonEffect || a.Model.Level != 0.9 ||
 		*a.Null != 0.9 || len(a.Important) != 2 || a.Important[1] != 1.2 || a.Weighing.Prior[0] != 0.2 || a.Better != BetterLower ||
-		a.Baselines[1] != (Baseline{Name: "very high", Risk: 0.2}) || a.Correction != effect.TreatmentArm ||
+		a.Panel.Baselines[1] != (Baseline{Name: "very high", Risk: 0.2}) || a.Correction != effect.TreatmentArm ||
 		a.Model.Seed != 7 || a.Model.Interval != meta.HartungKnapp || a.Model.Prediction != meta.PredictionBootstrap {
 		t.Errorf("from the sheet: %+v", a)
 	}

@@ -47,6 +47,10 @@ const (
 	SettingImportant  = "important"
 	SettingBetter     = "better"
 	SettingBaseline   = "baseline"
+	SettingPer1000    = "important-per-1000"
+	SettingSD         = "standard-deviation"
+	SettingReduction  = "reduction"
+	SettingPower      = "power"
 	SettingPrior      = "prior"
 	SettingOrder      = "order"
 	SettingTies       = "ties"
@@ -82,7 +86,11 @@ var settings = []Setting{
 	freeSetting(SettingNull, "", "the effect that counts as none", "in the reader's unit", checkNumber).unless("1 for ratios, else 0"),
 	freeSetting(SettingImportant, "", "smallest important difference; one value is mirrored, two give both sides", "in the reader's unit, such as 0.8 for a ratio", checkNumbers),
 	choiceSetting(SettingBetter, BetterNames(), "", "which direction of the effect is wanted"),
-	freeSetting(SettingBaseline, "", "risks without treatment, each with a name", "such as \"low 0.05, high 0.2\"", checkBaselines).of("panel"),
+	freeSetting(SettingBaseline, "", "risks without treatment, each with a name", "such as \"low 0.05, high 0.2\"", checkBaselines).unless("the median risk of the studies' control arms, labelled so").of(panelCommand),
+	freeSetting(SettingPer1000, "", "smallest important difference per 1000 people at any baseline risk, in place of important; one value is mirrored, two give both sides", "such as 40, or \"-40, 20\" for 40 fewer and 20 more", checkPer1000).of(panelCommand),
+	freeSetting(SettingSD, "", "standard deviation of the outcome, to read standardised differences in its unit and for the information size of means", "in the unit of the outcome", checkPositive).of(panelCommand),
+	freeSetting(SettingReduction, "0.25", "relative reduction of the risk that the optimal information size is for, where no important difference is given", "a fraction between 0 and 1", checkFraction).of(panelCommand),
+	freeSetting(SettingPower, "0.8", "power of the optimal information size; its level is what the intervals leave", "a fraction between 0 and 1", checkFraction).of(panelCommand),
 	freeSetting(SettingPrior, "0.1, 0.25, 0.5, 0.75", "probabilities of an effect before the data, turned into probabilities after", "each between 0 and 1", checkPriors),
 	freeSetting(SettingOrder, "", "column that orders the studies as they accrue", "column name", checkText).unless("the date").of("cumulative"),
 	choiceSetting(SettingTies, TiesNames(), TiesTogether.String(), "whether studies of one date enter together or in the order of the file").of("cumulative"),
@@ -90,6 +98,9 @@ var settings = []Setting{
 	freeSetting(SettingWhere, "", "pool only the rows for which this holds", "such as \"risk of bias is not high and year >= 2010\", or \"converted is no\"", checkFilter),
 	freeSetting(SettingSeed, "1", "start of every random sequence", "whole number", checkSeed),
 }
+
+// panelCommand is the command that alone uses a panel's settings.
+const panelCommand = "panel"
 
 // FindSetting returns the setting of a name; the error lists the valid names.
 func FindSetting(name string) (Setting, error) {
@@ -181,12 +192,6 @@ func TiesNames() []string { return tiesNames.All() }
 // ParseTies returns the rule that text names.
 func ParseTies(text string) (Ties, error) { return tiesNames.Parse(text) }
 
-// Baseline is a named risk without treatment.
-type Baseline struct {
-	Name string
-	Risk float64
-}
-
 func parseNumber(text string) (float64, error) {
 	text = strings.NewReplacer("\u2212", "-", "\u2013", "-").Replace(strings.TrimSpace(text))
 	x, err := strconv.ParseFloat(text, 64)
@@ -243,33 +248,11 @@ func parseProbabilities(text string) ([]float64, error) {
 	return all, nil
 }
 
-// parseBaselines reads "low 0.05, high 0.2"; the name may hold blanks.
-func parseBaselines(text string) ([]Baseline, error) {
-	var all []Baseline
-	for _, part := range strings.FieldsFunc(text, func(r rune) bool { return r == ',' || r == ';' }) {
-		part = strings.TrimSpace(part)
-		cut := strings.LastIndexByte(part, ' ')
-		risk, err := parseNumber(part[cut+1:])
-		if err != nil {
-			return nil, err
-		}
-		if !(0 < risk && risk < 1) {
-			return nil, fmt.Errorf("%q is no risk between 0 and 1; 50 per 1000 is written 0.05", part)
-		}
-		all = append(all, Baseline{Name: strings.TrimSpace(part[:max(cut, 0)]), Risk: risk})
-	}
-	if len(all) == 0 {
-		return nil, fmt.Errorf("a risk is missing; write it such as \"low 0.05, high 0.2\"")
-	}
-	return all, nil
-}
-
-func checkLevel(text string) error     { _, err := parseLevel(text); return err }
-func checkNumber(text string) error    { _, err := parseNumber(text); return err }
-func checkPriors(text string) error    { _, err := parseProbabilities(text); return err }
-func checkBaselines(text string) error { _, err := parseBaselines(text); return err }
-func checkFilter(text string) error    { _, err := ParseFilter(text); return err }
-func checkSeed(text string) error      { _, err := parseSeed(text); return err }
+func checkLevel(text string) error  { _, err := parseLevel(text); return err }
+func checkNumber(text string) error { _, err := parseNumber(text); return err }
+func checkPriors(text string) error { _, err := parseProbabilities(text); return err }
+func checkFilter(text string) error { _, err := ParseFilter(text); return err }
+func checkSeed(text string) error   { _, err := parseSeed(text); return err }
 
 func checkText(text string) error {
 	if text == "" {

@@ -115,6 +115,8 @@ type Extraction struct {
 	Columns  []Column
 	Studies  []Study
 	Findings []Finding
+	// Judgements are the panel's own, those that could be read.
+	Judgements []Judgement
 }
 
 // Outcomes returns the names of the outcomes in the order of their first row.
