@@ -278,9 +278,8 @@ func PCombined(c synthesis.Combined) string {
 // HighRisk counts the pooled studies whose risk of bias is called high.
 func HighRisk(o *synthesis.Outcome) int {
 	n := 0
-	for _, study := range o.Studies {
-		risk := strings.ToLower(study.Source.Cell("risk-of-bias"))
-		if strings.Contains(risk, "high") || strings.Contains(risk, "serious") || strings.Contains(risk, "critical") {
+	for i := range o.Studies {
+		if o.Studies[i].HighRisk() {
 			n++
 		}
 	}

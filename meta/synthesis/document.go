@@ -31,6 +31,7 @@ type PlanDocument struct {
 	From   string `json:"from"`
 	Cell   string `json:"cell,omitempty"`
 	Reason string `json:"reason,omitempty"`
+	Date   string `json:"date,omitempty"` // on which it was agreed
 }
 
 // FindingDocument is a finding with its place.
@@ -111,6 +112,7 @@ type PartsDocument struct {
 	Beliefs    *BeliefsDocument    `json:"beliefs,omitempty"`
 	Runs       []RunDocument       `json:"runs,omitempty"`
 	SmallStudy *SmallStudyDocument `json:"small_study,omitempty"`
+	Panel      *PanelDocument      `json:"panel,omitempty"`
 }
 
 // ExcludedDocument is a row that was not pooled.

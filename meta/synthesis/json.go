@@ -41,7 +41,7 @@ func planDocument(plan *review.Plan, outcome string) map[string]PlanDocument {
 	for _, setting := range review.Settings() {
 		v := plan.Value(setting.Name, outcome)
 		if v.Text != "" {
-			all[setting.Name] = PlanDocument{Value: v.Text, From: v.From.String(), Cell: v.Place.String(), Reason: v.Reason}
+			all[setting.Name] = PlanDocument{Value: v.Text, From: v.From.String(), Cell: v.Place.String(), Reason: v.Reason, Date: v.Date.String()}
 		}
 	}
 	return all
@@ -69,7 +69,7 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 	for _, e := range o.Excluded {
 		d.Excluded = append(d.Excluded, ExcludedDocument{Study: e.Study, Cell: firstCell(e.Place), Rule: e.Rule, Reason: e.Reason})
 	}
-	d.POnly, d.PartsDocument = o.PValues.document(), o.Parts.document(o.Analysis.NullMissing)
+	d.POnly, d.PartsDocument = o.PValues.document(), o.Parts.document(o)
 	if len(o.Silent) > 0 {
 		d.Silent = &SilentDocument{Studies: len(o.Silent), Participants: o.Counts.Silent}
 	}
@@ -96,8 +96,8 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 	return d
 }
 
-func (p *Parts) document(nullMissing bool) PartsDocument {
-	d := PartsDocument{Methods: p.Methods.document(), Beliefs: p.Beliefs.document(), SmallStudy: p.SmallStudy.document(nullMissing)}
+func (p *Parts) document(o *Outcome) PartsDocument {
+	d := PartsDocument{Methods: p.Methods.document(), Beliefs: p.Beliefs.document(), SmallStudy: p.SmallStudy.document(o.Analysis.NullMissing), Panel: p.Panel.document(o)}
 	for i := range p.Runs {
 		d.Runs = append(d.Runs, p.Runs[i].document())
 	}

@@ -38,6 +38,7 @@ type Want struct {
 type Further struct {
 	Below      *float64          // steps under which the tipping set brings the evidence
 	SmallStudy *SmallStudyWanted // whether small studies show other effects
+	Panel      *PanelWanted      // what a guideline panel reads
 }
 
 // Synthesis is the result of an analysis. Every output prints its numbers.
@@ -74,6 +75,7 @@ type Parts struct {
 	Beliefs    *Beliefs    // what sceptics make of the evidence
 	Runs       []RunResult // the planned sensitivity runs; empty where none is planned
 	SmallStudy *SmallStudy // whether small studies show other effects
+	Panel      *Panel      // what a guideline panel reads
 }
 
 // Analysis is what was settled before pooling, null and thresholds on the
@@ -193,6 +195,11 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 		o.weighDiffering()
 		if want.Beliefs {
 			o.believe()
+		}
+		if want.Panel != nil {
+			if err := o.examinePanel(ctx, x, plan, *want.Panel); err != nil {
+				return nil, err
+			}
 		}
 		if want.SmallStudy != nil {
 			o.seekAsymmetry(*want.SmallStudy)
