@@ -148,7 +148,7 @@ func accrualAnswer(s *synthesis.Synthesis, write func(*page, *synthesis.Synthesi
 			p.wrapped("", "No result: "+o.Problem)
 			continue
 		}
-		p.wrapped("", size(s, o))
+		p.wrapped("", words.Pooled(s, o))
 		if text := words.Rests(o); text != "" && !o.Analysis.NullMissing {
 			p.wrapped("", "Evidence: "+text)
 		}

@@ -43,7 +43,7 @@ func (p *page) outcome(s *synthesis.Synthesis, o *synthesis.Outcome) {
 		return
 	}
 	fit := o.Result.Fit
-	p.wrapped("", size(s, o))
+	p.wrapped("", words.Pooled(s, o))
 	p.line("")
 	p.effect(s, o)
 	p.evidence(s, o)
@@ -81,19 +81,6 @@ func (p *page) leftOut(s *synthesis.Synthesis, o *synthesis.Outcome) {
 		}
 		p.item("-", fmt.Sprintf("%s (%s): %s", e.Study, e.Where(), e.Reason))
 	}
-}
-
-// size says how much was pooled, and how.
-func size(s *synthesis.Synthesis, o *synthesis.Outcome) string {
-	k := len(o.Studies)
-	text := fmt.Sprintf("%s %s", words.Count(k), words.Noun(s, k))
-	if o.Counts.Participants > 0 {
-		text += fmt.Sprintf(", %s participants", words.Count(o.Counts.Participants))
-	}
-	if o.Counts.Events > 0 {
-		text += fmt.Sprintf(", %s events", words.Count(o.Counts.Events))
-	}
-	return text + "; " + words.ModelOf(o)
 }
 
 // effect writes the estimate and the prediction.

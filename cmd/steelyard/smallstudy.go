@@ -65,7 +65,7 @@ func smallStudyAnswer(s *synthesis.Synthesis) *page {
 			p.wrapped("", "No result: "+o.Problem)
 			continue
 		}
-		p.wrapped("", size(s, o))
+		p.wrapped("", words.Pooled(s, o))
 		p.line("")
 		p.smallStudies(s, o)
 		for _, note := range o.Notes {

@@ -50,6 +50,17 @@ func (s *Synthesis) Forms() []evidence.Form {
 // AccrualCaution belongs under cumulative, leave-one-out and subset results.
 const AccrualCaution = "Cumulative, leave-one-out and subset results describe and are correlated; repeated looks raise false positives. Do not stop or start trials on them."
 
+// panelCautions belong under what a guideline panel reads.
+var panelCautions = []string{
+	"Absolute effects use an assumed baseline risk; a wrong baseline gives wrong numbers per 1000. Give its source.",
+	"Not significant is not no effect, and significant is not important: judge against the thresholds and the absolute effects. That there is no important effect only the regions can show.",
+	"Certainty levels were entered by the people named beside them; the program computes none. Its numbers prompt a judgement and never replace one.",
+	"Asymmetry of small studies has several causes, and its absence is no proof that nothing is missing.",
+	"Few studies measure harms well; absent data are not zero events.",
+	"If an error in the data could affect patients now, tell the authors and the guideline body; do not only mend the sheet.",
+	"The program needs summaries only: load no names or identifiers of patients.",
+}
+
 // cautions returns the short cautions that belong under these results, general
 // ones first.
 func cautions(s *Synthesis) []string {
@@ -83,6 +94,12 @@ func cautions(s *Synthesis) []string {
 	}
 	if converted {
 		all = append(all, "Converted numbers (marked †) rest on assumptions; see the result without them.")
+	}
+	for i := range s.Outcomes {
+		if s.Outcomes[i].Panel != nil {
+			all = append(all, panelCautions...)
+			break
+		}
 	}
 	if n := overrides(s.Findings); n > 0 {
 		all = append(all, fmt.Sprintf("Flagged findings accepted against advice: %d; their reasons stand with the findings.", n))

@@ -1,0 +1,2 @@
+// Package cards writes the panel's cards of a synthesis as a workbook.
+package cards

@@ -1,0 +1,220 @@
+package cards
+
+import (
+	"fmt"
+	"slices"
+
+	"github.com/xuri/excelize/v2"
+
+	"steelyard/forest/words"
+	"steelyard/meta/review"
+	"steelyard/meta/synthesis"
+)
+
+// Names of the sheets.
+const (
+	cardsSheet   = "panel"
+	numbersSheet = "numbers"
+)
+
+// fixedDate keeps the bytes the same in every run.
+const fixedDate = "2025-01-01T00:00:00Z"
+
+// Workbook returns the cards of a synthesis as a workbook (.xlsx), the same bytes for
+// the same results: the sheet "panel" holds the words of each card with the panel's own
+// ratings, "numbers" the absolute effects at full precision, a row for each outcome and
+// baseline. Everything from the sheet is written as text, never as a formula.
+func Workbook(s *synthesis.Synthesis) ([]byte, error) {
+	f := excelize.NewFile()
+	defer f.Close()
+	w := &writer{f: f}
+	w.do(f.SetSheetName("Sheet1", cardsSheet))
+	_, err := f.NewSheet(numbersSheet)
+	w.do(err)
+	w.styles()
+	w.cards(s)
+	w.numbers(s)
+	w.do(f.SetDocProps(&excelize.DocProperties{Title: "Panel cards", Creator: "steelyard", LastModifiedBy: "steelyard", Created: fixedDate, Modified: fixedDate}))
+	if w.err != nil {
+		return nil, fmt.Errorf("writing the workbook of cards: %w", w.err)
+	}
+	buffer, err := f.WriteToBuffer()
+	if err != nil {
+		return nil, fmt.Errorf("writing the workbook of cards: %w", err)
+	}
+	return buffer.Bytes(), nil
+}
+
+// writer fills the workbook and keeps the first error.
+type writer struct {
+	f                    *excelize.File
+	row                  int // of the sheet of cards, the next to be written
+	title, head, wrapped int // styles
+	err                  error
+}
+
+func (w *writer) do(err error) {
+	if w.err == nil {
+		w.err = err
+	}
+}
+
+func (w *writer) styles() {
+	style := func(s *excelize.Style) int {
+		id, err := w.f.NewStyle(s)
+		w.do(err)
+		return id
+	}
+	w.title = style(&excelize.Style{Font: &excelize.Font{Bold: true, Size: 13}})
+	w.head = style(&excelize.Style{Font: &excelize.Font{Bold: true}, Border: []excelize.Border{{Type: "bottom", Style: 1, Color: "1A1A1A"}}})
+	w.wrapped = style(&excelize.Style{Alignment: &excelize.Alignment{WrapText: true, Vertical: "top"}})
+	for col, width := range map[string]float64{"A": 24, "B": 76, "C": 24, "D": 44} {
+		w.do(w.f.SetColWidth(cardsSheet, col, col, width))
+	}
+	w.do(w.f.SetColWidth(numbersSheet, "A", "B", 26))
+	w.do(w.f.SetColWidth(numbersSheet, "C", "Z", 15))
+}
+
+// line writes texts into the next row of the cards.
+func (w *writer) line(style int, texts ...string) {
+	w.row++
+	for i, text := range texts {
+		w.text(cardsSheet, i+1, w.row, text)
+	}
+	w.do(w.f.SetCellStyle(cardsSheet, cell(1, w.row), cell(4, w.row), style))
+}
+
+func (w *writer) text(sheet string, col, row int, text string) {
+	if text != "" {
+		w.do(w.f.SetCellStr(sheet, cell(col, row), text))
+	}
+}
+
+func cell(col, row int) string { return fmt.Sprintf("%s%d", review.ColumnLetters(col), row) }
+
+// cards writes the words of every card.
+func (w *writer) cards(s *synthesis.Synthesis) {
+	for i := range s.Outcomes {
+		o := &s.Outcomes[i]
+		if o.Result == nil || o.Panel == nil {
+			w.line(w.title, o.Name)
+			w.line(w.wrapped, "No result", o.Problem)
+			w.row++
+			continue
+		}
+		w.card(words.PanelCard(s, o))
+	}
+	w.line(w.head, "Cautions")
+	for _, caution := range s.Cautions {
+		w.line(w.wrapped, "", caution)
+	}
+}
+
+func (w *writer) card(card words.Card) {
+	w.line(w.title, card.Title)
+	w.line(w.wrapped, "Pooled", card.Pooled)
+	for _, sentence := range card.Sentences {
+		w.line(w.wrapped, "In one line", sentence)
+	}
+	for _, fact := range card.Facts {
+		w.line(w.wrapped, fact.Label, fact.Text)
+	}
+	if t := card.Absolute; t != nil {
+		w.line(w.head, t.Heads...)
+		for _, row := range t.Rows {
+			w.line(w.wrapped, row...)
+		}
+	}
+	if len(card.Large) > 0 {
+		w.line(w.head, "Large enough to matter?")
+	}
+	for _, fact := range card.Large {
+		w.line(w.wrapped, fact.Label, fact.Text)
+	}
+	w.line(w.head, "domain", "numbers", "panel's rating", "panel's reason")
+	for _, d := range append(slices.Clone(card.Domains), card.Certainty) {
+		numbers := ""
+		for i, number := range d.Numbers {
+			if i > 0 {
+				numbers += "\n"
+			}
+			numbers += number
+		}
+		w.line(w.wrapped, d.Domain, numbers, d.Rating, d.Reason)
+	}
+	for _, remark := range card.Remarks {
+		w.line(w.wrapped, "", remark)
+	}
+	w.row++
+}
+
+// numberHeads are the columns of the sheet of numbers.
+var numberHeads = []string{"outcome", "baseline", "baseline risk", "treated risk", "treated low", "treated high",
+	"difference per 1000", "difference low", "difference high", "number needed", "threshold low per 1000", "threshold high per 1000",
+	"probability lower", "probability trivial", "probability higher", "information size", "share reached"}
+
+// numbers writes the absolute effects, each number as a number.
+func (w *writer) numbers(s *synthesis.Synthesis) {
+	for i, head := range numberHeads {
+		w.text(numbersSheet, i+1, 1, head)
+	}
+	w.do(w.f.SetCellStyle(numbersSheet, "A1", cell(len(numberHeads), 1), w.head))
+	row := 2
+	for i := range s.Outcomes {
+		o := &s.Outcomes[i]
+		if o.Panel == nil {
+			continue
+		}
+		for j := range o.Panel.Rows {
+			r := &o.Panel.Rows[j]
+			if r.Absolute == nil {
+				continue
+			}
+			w.text(numbersSheet, 1, row, o.Name)
+			w.text(numbersSheet, 2, row, r.Baseline.Name)
+			for col, value := range numbersOf(r) {
+				w.do(w.f.SetCellFloat(numbersSheet, cell(col, row), value, -1, 64))
+			}
+			row++
+		}
+	}
+	w.do(w.f.SetPanes(numbersSheet, &excelize.Panes{Freeze: true, YSplit: 1, TopLeftCell: "A2", ActivePane: "bottomLeft"}))
+}
+
+// numbersOf returns the numbers of a row by their column; what there is none of is left
+// out.
+func numbersOf(r *synthesis.PanelRow) map[int]float64 {
+	a := r.Absolute
+	values := map[int]float64{
+		3: a.Baseline, 4: a.Treated.Value, 5: a.Treated.Low, 6: a.Treated.High,
+		7: 1000 * a.Difference.Value, 8: 1000 * a.Difference.Low, 9: 1000 * a.Difference.High,
+	}
+	if n := r.Needed; n != nil && a.Difference.Value != 0 {
+		values[10] = n.Value
+	}
+	if z := r.Zone; z != nil {
+		if z.Per1000 != nil && z.Low != nil {
+			values[11] = z.Per1000.Low
+		}
+		if z.Per1000 != nil && z.High != nil {
+			values[12] = z.Per1000.High
+		}
+		for _, region := range z.Regions {
+			switch {
+			case region.Name == "trivial":
+				values[14] = region.Posterior
+			case region.High == z.Limits.Low:
+				values[13] = region.Posterior
+			default:
+				values[15] = region.Posterior
+			}
+		}
+	}
+	if i := r.Information; i != nil {
+		values[16] = i.Total()
+		if i.People > 0 {
+			values[17] = i.Share()
+		}
+	}
+	return values
+}
