@@ -6,6 +6,7 @@ import (
 
 	"github.com/urfave/cli/v2"
 
+	"steelyard/forest/words"
 	"steelyard/meta/synthesis"
 )
 

@@ -178,7 +178,7 @@ func (o *Outcome) adequacy(p0 float64, zone *zoneLimits, settings review.PanelSe
 		}
 		a.Information, err = panel.RiskInformation(a.From, a.To, level, settings.Power)
 	case zone != nil && (m == effect.StandardisedMeanDifference || m == effect.MeanDifference && sd != nil):
-		a.Delta, a.Important = o.wantedLimit(zone)-o.Analysis.Model.Null, true
+		a.Delta, a.Important = math.Abs(o.wantedLimit(zone)-o.Analysis.Model.Null), true
 		if m == effect.MeanDifference {
 			a.Delta /= sd.Value
 		}
