@@ -34,6 +34,9 @@ func panelRemarks(s *synthesis.Synthesis, o *synthesis.Outcome) []string {
 	if hasTrial(p) {
 		all = append(all, nullTrialRemark(o))
 	}
+	if form := o.Analysis.Weighing; hasZone(p) && !form.Own() {
+		all = append(all, fmt.Sprintf("The ranges are weighed in the empirical form, not with the %s.", formNames[form.Form]))
+	}
 	if hasZone(p) {
 		all = append(all, "Probability is the share of the estimate's own distribution in a region, before any belief about it; evidence weighs a region against all other effects. Both are of the mean effect, not of one setting.")
 	}
