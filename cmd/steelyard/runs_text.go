@@ -1,16 +1,11 @@
 package main
 
 import (
-	"fmt"
-	"maps"
 	"math"
-	"slices"
-	"strings"
 
 	"steelyard/forest/words"
 	"steelyard/meta"
 	"steelyard/meta/effect"
-	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
 )
 
@@ -34,7 +29,7 @@ func (p *page) runs(o *synthesis.Outcome) {
 	p.tableNamed(columns, rows, narrowestName, widestMethod)
 	for i := range o.Runs {
 		r := &o.Runs[i]
-		text := r.Run.Name + ": " + changesText(r.Run)
+		text := r.Run.Name + ": " + words.Changes(r.Run)
 		if r.Outcome.Result == nil {
 			text += "; no result: " + r.Outcome.Problem
 		}
@@ -60,18 +55,4 @@ func runCells(o, run *synthesis.Outcome) []string {
 		return []string{words.Count(m.K), estimate, tau, words.Missing, words.Missing}
 	}
 	return []string{words.Count(m.K), estimate, tau, words.Odds(m.Evidence.Ln()), words.Steps(m.Evidence.Steps())}
-}
-
-// changesText says what a run changes: "only where risk of bias is low", "effects
-// common".
-func changesText(run review.Run) string {
-	var all []string
-	for _, name := range slices.Sorted(maps.Keys(run.Changes)) {
-		if name == review.SettingWhere {
-			all = append(all, "only where "+run.Changes[name])
-		} else {
-			all = append(all, fmt.Sprintf("%s %s", name, run.Changes[name]))
-		}
-	}
-	return strings.Join(all, ", ")
 }

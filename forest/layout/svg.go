@@ -18,7 +18,7 @@ const millimetresPerPoint = 25.4 / 72
 // give the same bytes. Text stays text; it is escaped, and the image holds no
 // script, style or reference. Coordinates have at most two decimals.
 func WriteSVG(w io.Writer, d Drawing, theme Theme) error {
-	s := svg{theme: theme, id: d.ID, indent: "  "}
+	s := svg{theme: theme, id: d.ID, indent: "  ", digits: 100}
 	s.open(d)
 	s.items(d.Items)
 	s.raw("</svg>\n")
@@ -32,6 +32,9 @@ type svg struct {
 	theme  Theme
 	id     string
 	indent string
+	digits float64 // coordinates are multiples of 1/digits
+	inline bool    // for a page: see WriteInline
+	size   float64 // of the texts that name none, inline
 }
 
 func (s *svg) raw(text string) { s.out.WriteString(text) }
@@ -47,11 +50,11 @@ func (s *svg) attr(name, value string) {
 	s.raw(`"`)
 }
 
-func (s *svg) number(name string, v float64) { s.raw(" " + name + `="` + coordinate(v) + `"`) }
+func (s *svg) number(name string, v float64) { s.raw(" " + name + `="` + s.coordinate(v) + `"`) }
 
-// coordinate writes a number with at most two decimals.
-func coordinate(v float64) string {
-	v = math.Round(v*100) / 100
+// coordinate writes a number with as few decimals as its place needs.
+func (s *svg) coordinate(v float64) string {
+	v = math.Round(v*s.digits) / s.digits
 	if v == 0 {
 		return "0" // never "-0"
 	}
@@ -60,9 +63,9 @@ func coordinate(v float64) string {
 
 func (s *svg) open(d Drawing) {
 	s.raw(`<svg xmlns="http://www.w3.org/2000/svg"`)
-	s.attr("width", coordinate(d.Width*millimetresPerPoint)+"mm")
-	s.attr("height", coordinate(d.Height*millimetresPerPoint)+"mm")
-	s.attr("viewBox", "0 0 "+coordinate(d.Width)+" "+coordinate(d.Height))
+	s.attr("width", s.coordinate(d.Width*millimetresPerPoint)+"mm")
+	s.attr("height", s.coordinate(d.Height*millimetresPerPoint)+"mm")
+	s.attr("viewBox", "0 0 "+s.coordinate(d.Width)+" "+s.coordinate(d.Height))
 	s.attr("role", "img")
 	s.attr("aria-labelledby", d.ID+"-title "+d.ID+"-desc")
 	s.raw(` font-family="` + FontFamily + "\">\n")
@@ -84,9 +87,15 @@ func (s *svg) described(element, text string) {
 }
 
 func (s *svg) items(items []Item) {
-	for _, it := range items {
-		switch it := it.(type) {
+	for i := 0; i < len(items); i++ {
+		switch it := items[i].(type) {
 		case Line:
+			if s.inline {
+				run := alike(items[i:])
+				s.path(run)
+				i += len(run) - 1
+				continue
+			}
 			s.line(it)
 		case Rect:
 			s.rect(it)
@@ -126,6 +135,10 @@ func (s *svg) line(l Line) {
 	s.number("y1", l.Y1)
 	s.number("x2", l.X2)
 	s.number("y2", l.Y2)
+	s.stroke(l)
+}
+
+func (s *svg) stroke(l Line) {
 	s.attr("stroke", s.theme.Colour(l.Ink))
 	s.number("stroke-width", l.Width)
 	if len(l.Dash) > 0 {
@@ -134,7 +147,7 @@ func (s *svg) line(l Line) {
 			if i > 0 {
 				dash += " "
 			}
-			dash += coordinate(v)
+			dash += s.coordinate(v)
 		}
 		s.attr("stroke-dasharray", dash)
 	}
@@ -159,7 +172,7 @@ func (s *svg) polygon(p Polygon) {
 		if i > 0 {
 			s.raw(" ")
 		}
-		s.raw(coordinate(pt.X) + "," + coordinate(pt.Y))
+		s.raw(s.coordinate(pt.X) + "," + s.coordinate(pt.Y))
 	}
 	s.raw(`"`)
 	s.paint(p.Paint)
@@ -195,8 +208,12 @@ func (s *svg) text(t Text) {
 		s.number("x", first.X)
 	}
 	s.number("y", t.Y)
-	s.number("font-size", t.Size)
-	s.attr("fill", s.theme.Colour(first.Ink))
+	if !s.inline || t.Size != s.size {
+		s.number("font-size", t.Size)
+	}
+	if !s.inline || first.Ink != Ordinary {
+		s.attr("fill", s.theme.Colour(first.Ink))
+	}
 	if len(t.Spans) == 1 && first.Anchor != Start {
 		s.attr("text-anchor", anchorNames[first.Anchor])
 	}
@@ -220,7 +237,9 @@ func (s *svg) span(i int, span, first Span) {
 	s.raw("<tspan")
 	if i == 0 || !span.Follow {
 		s.number("x", span.X)
-		s.attr("text-anchor", anchorNames[span.Anchor])
+		if !s.inline || span.Anchor != Start {
+			s.attr("text-anchor", anchorNames[span.Anchor])
+		}
 	}
 	if span.Ink != first.Ink {
 		s.attr("fill", s.theme.Colour(span.Ink))

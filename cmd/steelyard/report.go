@@ -1,0 +1,125 @@
+package main
+
+import (
+	"context"
+	"fmt"
+	"slices"
+
+	"github.com/urfave/cli/v2"
+
+	"steelyard/forest/layout"
+	"steelyard/forest/report"
+	"steelyard/meta"
+	"steelyard/meta/review"
+	"steelyard/meta/synthesis"
+)
+
+func reportCommand() *cli.Command {
+	return &cli.Command{
+		Name:      "report",
+		Usage:     "write one page that a panel can read, print and question, with figures and data",
+		UsageText: "steelyard report FILE --out FOLDER [flags]",
+		Description: "Writes report.html, which needs no network, results.json and figures/ (SVG, PDF and PNG, 180 and\n" +
+			"85 mm wide) to the folder. It is built aside and put in place whole; with --overwrite only files that\n" +
+			"an earlier report wrote there are replaced. The same input gives the same files.",
+		Flags: slices.Concat([]cli.Flag{
+			&cli.StringFlag{Name: flagOut, Usage: "folder to write"},
+			&cli.BoolFlag{Name: flagOverwrite, Usage: "replace an earlier report in that folder"},
+			&cli.BoolFlag{Name: flagMono, Usage: "figures in shades of grey only"},
+		}, sheetFlags(), reportSettings(), workFlags()),
+		Action: writeReport,
+	}
+}
+
+// reportSettings are the settings of all commands whose results the report shows.
+func reportSettings() []cli.Flag {
+	flags := settingFlags("cumulative")
+	for _, command := range []string{"panel"} {
+		for _, flag := range settingFlags(command) {
+			if !slices.ContainsFunc(flags, func(f cli.Flag) bool { return f.Names()[0] == flag.Names()[0] }) {
+				flags = append(flags, flag)
+			}
+		}
+	}
+	return flags
+}
+
+// reported is what the parts of a report are made from.
+type reported struct {
+	sheet *review.Extraction
+	*synthesis.Synthesis
+	theme layout.Theme
+	work  meta.Work
+}
+
+// reportParts make the files of a report, each its own.
+var reportParts = []func(context.Context, reported) ([]report.File, error){
+	reportPage,
+	reportResults,
+	reportFigures,
+}
+
+func reportPage(_ context.Context, r reported) ([]report.File, error) {
+	content, err := report.Page(r.Synthesis, report.Options{Version: version})
+	return []report.File{{Name: "report.html", Content: content}}, err
+}
+
+func reportResults(_ context.Context, r reported) ([]report.File, error) {
+	content, err := indented(r.Document(version))
+	return []report.File{{Name: "results.json", Content: content}}, err
+}
+
+func reportFigures(ctx context.Context, r reported) ([]report.File, error) {
+	return report.Figures(ctx, r.Synthesis, r.theme, r.work)
+}
+
+func writeReport(c *cli.Context) error {
+	folder := c.String(flagOut)
+	if folder == "" || folder == "-" {
+		return &callError{"where to? add --out FOLDER"}
+	}
+	if err := checkFolder(folder, c.Bool(flagOverwrite)); err != nil {
+		return err
+	}
+	s, x, err := analyseSheet(c, report.Wanted())
+	if err != nil {
+		return err
+	}
+	r := reported{sheet: x, Synthesis: s, theme: layout.Light}
+	if c.Bool(flagMono) {
+		r.theme = layout.Mono
+	}
+	if r.work, err = work(c); err != nil {
+		return err
+	}
+	if missing := missingGlyphs(s); missing != "" {
+		fmt.Fprintln(c.App.ErrWriter, "steelyard: "+missing)
+	}
+	var files []report.File
+	for _, part := range reportParts {
+		more, err := part(c.Context, r)
+		if err != nil {
+			return err
+		}
+		files = append(files, more...)
+	}
+	if err := writeFolder(c.Context, folder, files, c.Bool(flagOverwrite)); err != nil {
+		return err
+	}
+	fmt.Fprintf(c.App.Writer, "%s: %s\n", folder, reportContents(files))
+	return incomplete(s)
+}
+
+// reportContents says what a report's folder holds.
+func reportContents(files []report.File) string {
+	figures := 0
+	text := ""
+	for _, f := range files {
+		if len(f.Name) > len("figures/") && f.Name[:len("figures/")] == "figures/" {
+			figures++
+			continue
+		}
+		text += f.Name + ", "
+	}
+	return fmt.Sprintf("%s%d figures", text, figures)
+}

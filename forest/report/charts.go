@@ -1,0 +1,176 @@
+package report
+
+import (
+	"bytes"
+	"fmt"
+	"html/template"
+	"slices"
+	"strings"
+
+	"steelyard/forest/layout"
+	"steelyard/meta/synthesis"
+)
+
+// figureView is a chart in its wide and narrow forms; the style sheet shows one.
+type figureView struct {
+	ID           string
+	Number       int
+	Title        string
+	Notes        []noteView
+	Wide, Narrow template.HTML // Wide is blank where the narrow form serves both
+	Problem      string        // why there is no chart
+}
+
+// narrowType is the type size of the narrow form in points: larger than in print, as
+// it is shown at up to twice its size.
+const narrowType = 8.3
+
+// chart is a kind of chart: its name and how it is laid out of an outcome; a small one
+// is shown in its narrow form at any width.
+type chart struct {
+	name  string
+	small bool
+	lay   func(*synthesis.Synthesis, *synthesis.Outcome, layout.Style) (layout.Document, error)
+}
+
+// kinds are the charts of a report, in the order of the page.
+var kinds = []chart{
+	{"forest", false, laidOut(layout.ForestOf, layout.Forest)},
+	{"cumulative", false, laidOut(layout.CumulativeOf, layout.Cumulative)},
+	{"leave-one-out", false, laidOut(layout.LeaveOneOutOf, layout.LeaveOneOut)},
+	{"prior-sensitivity", true, laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity)},
+}
+
+func kind(name string) chart {
+	for _, k := range kinds {
+		if k.name == name {
+			return k
+		}
+	}
+	panic("report: no chart of kind " + name) // a slip of this package
+}
+
+// laidOut joins what a chart shows of an outcome with its layout.
+func laidOut[Input any](
+	of func(*synthesis.Synthesis, *synthesis.Outcome) (Input, error),
+	lay func(Input, layout.Style) (layout.Document, error),
+) func(*synthesis.Synthesis, *synthesis.Outcome, layout.Style) (layout.Document, error) {
+	return func(s *synthesis.Synthesis, o *synthesis.Outcome, style layout.Style) (layout.Document, error) {
+		in, err := of(s, o)
+		if err != nil {
+			return layout.Document{}, err
+		}
+		return lay(in, style)
+	}
+}
+
+// figure draws a chart for the page. A chart that cannot be drawn says why in its
+// place.
+func (v *view) figure(s *synthesis.Synthesis, o *synthesis.Outcome, id string, k chart) (figureView, error) {
+	v.figures++
+	f := figureView{ID: id + "-" + k.name, Number: v.figures}
+	wide, err := k.lay(s, o, layout.Style{ID: f.ID + "-w", NoTitle: true})
+	if err != nil {
+		f.Problem = err.Error()
+		return f, nil
+	}
+	f.Title = wide.Pages[0].Title
+	narrow, err := k.lay(s, o, layout.Style{ID: f.ID + "-n", NoTitle: true, Width: layout.NarrowWidth, TypeSize: narrowType})
+	if err != nil {
+		narrow, err = k.lay(s, o, layout.Style{ID: f.ID + "-n", NoTitle: true, Width: layout.NarrowWidth})
+	}
+	if err != nil {
+		return f, fmt.Errorf("chart %s of %s in the narrow form: %w", k.name, outcomeName(s, o), err)
+	}
+	f.Notes = takeNotes(&wide)
+	takeNotes(&narrow)
+	if k.small {
+		f.Narrow, err = inline(narrow, "")
+		return f, err
+	}
+	if f.Wide, err = inline(wide, ""); err != nil {
+		return f, err
+	}
+	f.Narrow, err = inline(narrow, wide.Pages[0].ID)
+	return f, err
+}
+
+// noteView is a note under a chart: its head word and text.
+type noteView struct{ Head, Text string }
+
+// takeNotes takes the notes off the pages of a chart, where they would be set in the
+// small type of print, and returns them for the caption.
+func takeNotes(d *layout.Document) []noteView {
+	var notes []noteView
+	for i := range d.Pages {
+		page := &d.Pages[i]
+		for j, item := range page.Items {
+			if g, ok := item.(layout.Group); ok && g.ID == "notes" {
+				if i == len(d.Pages)-1 {
+					notes = notesOf(g)
+				}
+				if first, ok := firstText(g); ok {
+					page.Height = first.Y - first.Size - aboveNotes
+				}
+				page.Items = slices.Delete(slices.Clone(page.Items), j, j+1)
+				break
+			}
+		}
+	}
+	return notes
+}
+
+// aboveNotes is what stays free below a chart without its notes, in points less.
+const aboveNotes = 2
+
+func firstText(g layout.Group) (layout.Text, bool) {
+	for _, item := range g.Items {
+		if t, ok := item.(layout.Text); ok && len(t.Spans) > 0 {
+			return t, true
+		}
+	}
+	return layout.Text{}, false
+}
+
+// notesOf joins the lines of notes; a line that begins in bold begins a note.
+func notesOf(g layout.Group) []noteView {
+	var notes []noteView
+	for _, item := range g.Items {
+		t, ok := item.(layout.Text)
+		if !ok || len(t.Spans) == 0 {
+			continue
+		}
+		spans := t.Spans
+		if spans[0].Bold || len(notes) == 0 {
+			notes = append(notes, noteView{})
+		}
+		note := &notes[len(notes)-1]
+		if spans[0].Bold {
+			note.Head, spans = spans[0].Text, spans[1:]
+		}
+		for _, span := range spans {
+			note.Text = strings.TrimSpace(note.Text + " " + strings.TrimSpace(span.Text))
+		}
+	}
+	return notes
+}
+
+// inline writes the pages of a chart below each other.
+func inline(d layout.Document, described string) (template.HTML, error) {
+	var out bytes.Buffer
+	for i, page := range d.Pages {
+		page.ID = pageID(page.ID, i)
+		if err := layout.WriteInline(&out, page, "chart", described); err != nil {
+			return "", err
+		}
+	}
+	return template.HTML(out.String()), nil // layout escapes all text
+}
+
+// pageID keeps the ids of a chart's pages apart.
+func pageID(id string, page int) string {
+	if page == 0 {
+		return id
+	}
+	return fmt.Sprintf("%s-p%d", id, page+1)
+}

@@ -1,0 +1,72 @@
+package report
+
+import (
+	"slices"
+
+	"steelyard/meta"
+	"steelyard/meta/synthesis"
+)
+
+// Data is what the page's script reads: one JSON island, <script
+// type="application/json" id="data">. The texts are those of package words, so that the
+// script shows numbers and makes none.
+type Data struct {
+	Outcomes []OutcomeData `json:"outcomes"`
+}
+
+// OutcomeData is the data of one outcome. ID is the prefix of its elements' ids.
+type OutcomeData struct {
+	ID    string `json:"id"`
+	Title string `json:"title"`
+	// Span is the width of the beam's scale in steps, From its start.
+	Span float64 `json:"span"`
+	From float64 `json:"from"`
+	// Priors are the stops of the slider of beliefs; Prior is where it starts.
+	Priors []priorStop `json:"priors"`
+	Prior  int         `json:"prior"`
+	// Rows are the marks of the studies in the charts: the rows of the chart of that
+	// name, from the first, as "o1-3".
+	Rows map[string][]string `json:"rows"`
+	// Baselines are the stops of the slider of baseline risks; absent without one.
+	Baselines []BaselineStop `json:"baselines,omitempty"`
+	Baseline  int            `json:"baseline"`
+}
+
+// BaselineStop is a baseline risk and the texts and places that go with it, by the
+// names of the slots that they fill.
+type BaselineStop struct {
+	Texts map[string]string  `json:"texts"`
+	Bars  map[string]float64 `json:"bars"` // per cent of the widest, by the name of the bar
+}
+
+func (v *view) outcomeData(o *synthesis.Outcome, w *outcomeView) OutcomeData {
+	d := OutcomeData{ID: w.ID, Title: w.Name, Span: v.spans[w.ID], From: beamFrom, Priors: []priorStop{}, Rows: map[string][]string{}}
+	if w.Answer.Beliefs != nil {
+		d.Priors, d.Prior = w.Answer.Beliefs.Stops, w.Answer.Beliefs.Start
+	}
+	var sheet []string
+	for i := range o.Studies {
+		sheet = append(sheet, studyMark(w.ID, i))
+	}
+	d.Rows["forest"] = sheet
+	if o.Accrual != nil && len(o.Accrual.LeaveOneOut) > 0 {
+		for _, x := range drawnOrder(byCarried(o)) {
+			d.Rows["leave-one-out"] = append(d.Rows["leave-one-out"], studyMark(w.ID, x.Row))
+		}
+	}
+	return d
+}
+
+// drawnOrder puts analyses without a result last, as the chart does.
+func drawnOrder(all []meta.Omission) []meta.Omission {
+	slices.SortStableFunc(all, func(a, b meta.Omission) int {
+		switch {
+		case a.Problem == nil && b.Problem != nil:
+			return -1
+		case a.Problem != nil && b.Problem == nil:
+			return 1
+		}
+		return 0
+	})
+	return all
+}

@@ -1,0 +1,21 @@
+/**
+ * The page's data, as the program wrote it. The script picks texts and places from it
+ * and computes no statistic.
+ * @type {{outcomes: Outcome[]}}
+ * @typedef {{id: string, span: number, from: number, priors: {prior: string, posterior: string, shift: number}[], prior: number,
+ *   rows: Object<string, string[]>, baselines?: {texts: Object<string, string>, bars: Object<string, number>}[], baseline: number}} Outcome
+ */
+const data = JSON.parse(document.getElementById('data').textContent);
+
+/**
+ * Elements that match a selector within a root.
+ * @param {string} selector
+ * @param {ParentNode} [root]
+ * @returns {Element[]}
+ */
+const all = (selector, root = document) => Array.from(root.querySelectorAll(selector));
+
+/** Fills the slots of a name within a root with a text. */
+const put = (root, slot, text) => all(`[data-t="${slot}"]`, root).forEach((e) => { e.textContent = text; });
+
+all('.live').forEach((e) => { e.hidden = false; });

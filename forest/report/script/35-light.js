@@ -1,0 +1,50 @@
+/** Elements of each study, by its mark: its row in the table and its rows in charts. */
+const studies = new Map();
+
+const NS = 'http://www.w3.org/2000/svg';
+
+/** Adds or takes away a class of all elements of a study. */
+function markStudy(study, name, on) {
+  (studies.get(study) || []).forEach((e) => e.classList.toggle(name, on));
+}
+
+/** Binds an element to a study: to point at it lights all others. */
+function bindStudy(study, element) {
+  if (!studies.has(study)) studies.set(study, []);
+  studies.get(study).push(element);
+  element.addEventListener('pointerenter', () => markStudy(study, 'on', true));
+  element.addEventListener('pointerleave', () => markStudy(study, 'on', false));
+}
+
+/** Binds the row of a chart, under a strip across the chart that can be pointed at. */
+function bindRow(study, group) {
+  const svg = group.ownerSVGElement;
+  const box = group.getBBox();
+  const strip = document.createElementNS(NS, 'rect');
+  strip.setAttribute('class', 'hit');
+  strip.setAttribute('x', 0);
+  strip.setAttribute('y', box.y - 2);
+  strip.setAttribute('width', svg.viewBox.baseVal.width);
+  strip.setAttribute('height', box.height + 4);
+  strip.setAttribute('fill', 'none');
+  group.prepend(strip);
+  bindStudy(study, group);
+}
+
+/** Binds the rows of the charts that are shown; hidden ones have no box yet. */
+function bindCharts() {
+  data.outcomes.forEach((outcome) => Object.keys(outcome.rows).forEach((chart) => {
+    outcome.rows[chart].forEach((study, i) => ['w', 'n'].forEach((form) => {
+      const figure = document.getElementById(`${outcome.id}-${chart}`);
+      const group = figure && figure.querySelector(`[id^="${outcome.id}-${chart}-${form}"][id$="-row-${i + 1}"]`);
+      if (group && !group.dataset.bound && group.getBoundingClientRect().height > 0) {
+        group.dataset.bound = 'yes';
+        bindRow(study, group);
+      }
+    }));
+  }));
+}
+
+all('[data-study]').forEach((row) => bindStudy(row.dataset.study, row));
+bindCharts();
+addEventListener('resize', bindCharts);
