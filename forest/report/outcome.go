@@ -93,7 +93,7 @@ func (v *view) outcome(s *synthesis.Synthesis, i int) (*outcomeView, error) {
 func (v *view) answer(s *synthesis.Synthesis, o *synthesis.Outcome, id string) *answerView {
 	fit := o.Result.Fit
 	a := &answerView{
-		Pooled: words.Pooled(s, o), Measure: words.Measure(o.Analysis.Measure), Estimate: words.MeanEstimate(o),
+		Pooled: words.PooledPeople(s, o), Measure: words.Measure(o.Analysis.Measure), Estimate: words.MeanEstimate(o),
 		Interval: words.MeanInterval(o), Direction: words.Direction(o),
 		Reviewer: keep(words.ModelShort(o), words.SpreadSentence(s, o), words.LeaveOneOutSentence(s, o)),
 		Living:   keep(words.LatestArrival(o), words.BeforeLatest(o), words.CumulativeSentence(o)),

@@ -25,8 +25,8 @@ func NumberInSentence(n int) string {
 	return Count(n)
 }
 
-// Pooled returns what was pooled: "nine trials with 1,871 people".
-func Pooled(s *synthesis.Synthesis, o *synthesis.Outcome) string {
+// PooledPeople returns what was pooled: "nine trials with 1,871 people".
+func PooledPeople(s *synthesis.Synthesis, o *synthesis.Outcome) string {
 	k := len(o.Studies)
 	text := NumberInSentence(k) + " " + Noun(s, k)
 	if o.Counts.Participants > 0 {
