@@ -25,21 +25,25 @@ func (p *Pooler) wald() answer {
 }
 
 // hartungKnapp returns mean ± t·se·√q on k − 1 degrees of freedom, with evidence
-// in the matched or the Student-t form. q is Q(τ²)/(k − 1), or with the floor at
-// least 1.
+// in the matched or the Student-t form. q is Q(τ²)/(k − 1), but at least floor.
 //
 // Sources: Hartung & Knapp (2001), Statistics in Medicine 20:3875-3889; Sidik &
 // Jonkman (2002), Statistics in Medicine 21:3153-3159; floor: Röver, Knapp &
 // Friede (2015), BMC Medical Research Methodology 15:99.
-func (p *Pooler) hartungKnapp(q float64) answer {
-	m, df := p.final, p.data.df()
+func (p *Pooler) hartungKnapp(floor float64) answer {
+	if p.final.tau2 > 0 {
+		p.data.scatterAbout(&p.final)
+	}
+	m, df := &p.final, p.data.df()
+	q := max(floor, m.q/df)
 	a := answer{estimate: m.mean, se: m.se() * math.Sqrt(q), df: df}
 	a.statistic = (a.estimate - p.null) / a.se
-	a.lnP = math.Ln2 + numeric.LogStudentTail(math.Abs(a.statistic), df)
+	lnTail := numeric.LogStudentTail(math.Abs(a.statistic), df)
+	a.lnP = math.Ln2 + lnTail
 	if p.model.Evidence == evidence.StudentForm {
 		a.evidence = evidence.Student(a.statistic, df)
 	} else {
-		a.evidence = evidence.Matched(a.statistic, df)
+		a.evidence = evidence.MatchedTail(lnTail)
 	}
 	a.locationSE = a.se
 	return a.around(p.critical.of(p.model.Level, df))

@@ -62,6 +62,7 @@ type slopePoint struct {
 }
 
 func (l likelihood) point(tau2 float64) slopePoint {
+
 	d := l.data
 	if l.kind == fixedMeanLikelihood {
 		return l.pointOf(d.about(l.mean, tau2))
@@ -121,10 +122,9 @@ func (l likelihood) top() float64 {
 
 // modes appends all local maxima in τ² ≥ 0 to into[:0], in ascending order,
 // without their heights. Where a few points prove that there is one only, it is
-// found by Newton's steps; else all are looked for.
-func (l likelihood) modes(into []mode) ([]mode, error) {
+// found by Newton's steps; else all are looked for. zero is the point at 0.
+func (l likelihood) modes(into []mode, zero slopePoint) ([]mode, error) {
 	into = into[:0]
-	zero := l.point(0)
 	if tau2, ok := l.onlyMaximum(zero); ok {
 		return append(into, mode{tau2: tau2}), nil
 	}
@@ -150,16 +150,19 @@ func (l likelihood) scan(into []mode, zero slopePoint) ([]mode, error) {
 	return l.search(into, low, l.point(top))
 }
 
-// search appends the maxima between two points. Scatter and weight fall, so that
-// the slope keeps its sign where one stays above the other whatever they do in
-// between; other stretches are divided.
+// search appends the maxima between two points: none where the slope surely keeps
+// its sign, one where it surely falls; other stretches are divided.
 func (l likelihood) search(into []mode, left, right slopePoint) ([]mode, error) {
 	const margin = 1 + 1e-8 // over rounding
 	if margin*left.scatter < right.weight || right.scatter > margin*left.weight {
+		return into, nil // scatter and weight fall
+	}
+	crosses := left.slope > 0 && right.slope <= 0
+	if !crosses && (left.slope <= 0 && left.staysBelow(right.reachBack(left)) || right.slope > 0 && l.risesBetween(left, right, 0)) {
 		return into, nil
 	}
 	ratio := right.tau2 / left.tau2
-	if left.slope > 0 && right.slope <= 0 && ratio <= crossingRatio {
+	if crosses && (ratio <= crossingRatio || left.fallsTo(right)) {
 		return l.peak(into, left.slopeAt, right.slopeAt)
 	}
 	if ratio <= narrowRatio {
@@ -208,10 +211,10 @@ func (l likelihood) hidden(a, c slopeAt) (from, to slopeAt, found bool, err erro
 }
 
 // highestMode returns the τ² of the highest of all local maxima, which are left
-// in p.modes.
-func (p *Pooler) highestMode(l likelihood) (float64, error) {
+// in p.modes; zero is the point at 0.
+func (p *Pooler) highestMode(l likelihood, zero slopePoint) (float64, error) {
 	var err error
-	if p.modes, err = l.modes(p.modes); err != nil {
+	if p.modes, err = l.modes(p.modes, zero); err != nil {
 		return 0, err
 	}
 	switch len(p.modes) {

@@ -15,7 +15,7 @@ type Pooler struct {
 	model  Model   // as resolved, for the latest set
 	null   float64 // in working units
 	zero   moments // at τ² = 0
-	final  moments // at the τ² used
+	final  moments // at the τ² used; the sums of squares only if they are needed
 	modes  []mode  // of the latest likelihood searched
 	height float64 // of the highest of them, where they were compared
 	floor  bool    // the Hartung–Knapp floor stood in: all estimates are equal
@@ -47,7 +47,7 @@ func (p *Pooler) Pool(m Model, y, s []float64) (Mean, error) {
 	if p.answer, err = p.infer(); err != nil {
 		return Mean{}, err
 	}
-	mean := p.inGivenUnits(p.answer)
+	mean := p.inGivenUnits(&p.answer)
 	if !mean.finite() {
 		return Mean{}, errOutOfRange
 	}
@@ -72,24 +72,25 @@ func (p *Pooler) prepare(m Model, y, s []float64) error {
 	if math.Abs(p.null) > widest || math.Abs(m.Null) > largest {
 		return &ModelError{Problem: fmt.Sprintf("null %v lies too far from the estimates to be compared with them: correct it", m.Null)}
 	}
-	tau2 := 0.0
-	if p.model.Tau != DefaultTau {
-		if tau2, err = p.estimateTau2(p.model.Tau); err != nil {
-			return err
-		}
-	}
 	p.zero = d.at(0)
-	p.final = d.at(tau2)
-	return nil
+	p.final = p.zero
+	if p.model.Tau == DefaultTau {
+		return nil
+	}
+	tau2, err := p.estimateTau2(p.model.Tau)
+	if err == nil && tau2 > 0 {
+		p.final = d.weigh(tau2)
+	}
+	return err
 }
 
 // infer returns the estimate with its interval, statistic and evidence.
 func (p *Pooler) infer() (answer, error) {
 	switch p.model.Interval {
 	case HartungKnapp:
-		return p.hartungKnapp(p.final.q / p.data.df()), nil
+		return p.hartungKnapp(0), nil
 	case HartungKnappFloor:
-		return p.hartungKnapp(max(1, p.final.q/p.data.df())), nil
+		return p.hartungKnapp(1), nil
 	case ProfileLikelihood:
 		if p.model.Effects == RandomEffects {
 			return p.profile()
@@ -101,7 +102,7 @@ func (p *Pooler) infer() (answer, error) {
 }
 
 // inGivenUnits turns an answer into a Mean in the unit of the estimates.
-func (p *Pooler) inGivenUnits(a answer) Mean {
+func (p *Pooler) inGivenUnits(a *answer) Mean {
 	d := &p.data
 	mean := Mean{
 		K:         d.k(),
@@ -130,14 +131,14 @@ func (d *sample) place(x float64) float64 { return d.centre + x*d.unit }
 var errOutOfRange = &InputError{Index: -1, Problem: "the result exceeds the range of numbers: use another unit for the estimates"}
 
 // finite reports whether every number of the mean but DF is finite.
-func (m Mean) finite() bool {
+func (m *Mean) finite() bool {
 	return allFinite(m.Estimate, m.SE, m.Statistic, m.LnP, m.Low, m.High, m.Tau2, m.Q, m.Evidence.Ln(), m.location.SE)
 }
 
 // allFinite reports whether no number is NaN or infinite.
 func allFinite(numbers ...float64) bool {
 	for _, x := range numbers {
-		if math.IsNaN(x) || math.IsInf(x, 0) {
+		if x-x != 0 {
 			return false
 		}
 	}

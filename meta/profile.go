@@ -34,7 +34,7 @@ func (p *Pooler) profile() (answer, error) {
 	}
 	top := p.height
 	held := likelihood{data: &p.data, kind: fixedMeanLikelihood, mean: p.null}
-	if _, err = p.highestMode(held); err != nil {
+	if _, err = p.highestMode(held, held.point(0)); err != nil {
 		return a, err
 	}
 	p.compareModes(held)

@@ -60,18 +60,41 @@ func (d *sample) load(y, s []float64) error {
 	if len(y) == 0 {
 		return ErrNoStudies
 	}
+	s = s[:len(y)]
+	r := ranges{lowY: y[0], highY: y[0], lowS: s[0], highS: s[0]}
+	for i, y := range y {
+		r.lowY, r.highY = min(r.lowY, y), max(r.highY, y) // NaN wherever one is NaN
+		r.lowS, r.highS = min(r.lowS, s[i]), max(r.highS, s[i])
+	}
+	if !(r.lowY >= -largest && r.highY <= largest && r.lowS >= 1/largest && r.highS <= largest) {
+		return firstUnusable(y, s)
+	}
 	d.best = 0
+	for s[d.best] != r.lowS {
+		d.best++
+	}
+	d.centre, d.unit = y[d.best], powerAbove(r.lowS)
+	d.scale(y, s)
+	return d.measure(r, y, s)
+}
+
+// ranges are the smallest and largest estimate and standard error, as given.
+type ranges struct{ lowY, highY, lowS, highS float64 }
+
+// firstUnusable reports the first study that cannot be used.
+func firstUnusable(y, s []float64) error {
 	for i := range y {
 		if problem := unusable(y[i], s[i]); problem != "" {
 			return &InputError{Index: i, Problem: problem}
 		}
-		if s[i] < s[d.best] {
-			d.best = i
-		}
 	}
-	_, exponent := math.Frexp(s[d.best])
-	d.centre, d.unit = y[d.best], math.Ldexp(1, exponent)
-	return d.scale(y, s)
+	return nil
+}
+
+// powerAbove returns the least power of two above a normal number x > 0.
+func powerAbove(x float64) float64 {
+	const exponent = 0x7ff << 52
+	return 2 * math.Float64frombits(math.Float64bits(x)&exponent)
 }
 
 // unusable says what is wrong with an estimate or its standard error, or "".
@@ -94,23 +117,27 @@ func unusable(y, s float64) string {
 }
 
 // scale fills the sample in working units.
-func (d *sample) scale(y, s []float64) error {
+func (d *sample) scale(y, s []float64) {
 	k := len(y)
 	d.y, d.v, d.w, d.others = resize(d.y, k), resize(d.v, k), resize(d.w, k), resize(d.others, k)
-	perUnit := 1 / d.unit // exact, as the unit is a power of two
-	low, high, magnitude, largest := 0.0, 0.0, 0.0, 0.0
 	ys, vs, others, s := d.y[:k], d.v[:k], d.others[:k], s[:k]
+	centre, perUnit := d.centre, 1/d.unit // exact, as the unit is a power of two
 	for i, given := range y {
-		scaled, v := (given-d.centre)*perUnit, s[i]*perUnit
-		v *= v
-		ys[i], vs[i], others[i] = scaled, v, v
-		low, high = min(low, scaled), max(high, scaled)
-		magnitude, largest = max(magnitude, math.Abs(given)), max(largest, v)
+		scaled := s[i] * perUnit
+		v := scaled * scaled
+		ys[i], vs[i], others[i] = (given-centre)*perUnit, v, v
 	}
 	others[d.best] = infinite
-	d.spread, d.largest = high-low, largest
-	d.equal = d.spread <= equalWithin*max(1, magnitude*perUnit)
-	if d.spread > widest || largest > widest*widest {
+}
+
+// measure notes how far the studies lie from one another, and refuses those that
+// lie too far.
+func (d *sample) measure(r ranges, y, s []float64) error {
+	perUnit := 1 / d.unit
+	d.spread = (r.highY-d.centre)*perUnit - (r.lowY-d.centre)*perUnit
+	d.largest = r.highS * perUnit * (r.highS * perUnit)
+	d.equal = d.spread <= equalWithin*max(1, max(-r.lowY, r.highY)*perUnit)
+	if d.spread > widest || r.highS*perUnit > widest {
 		return d.tooWide(y, s)
 	}
 	return nil
@@ -153,54 +180,78 @@ func (d *sample) df() float64 { return float64(len(d.y) - 1) }
 const sumBlock = 128
 
 // at returns the moments at tau2 and leaves the weights in d.w. All pooling spends
-// its time here.
+// its time here and in what it calls.
 func (d *sample) at(tau2 float64) moments {
-	var rest, squares, wy numeric.Sum // without the most precise study, which has y = 0
-	for from := 0; from < len(d.w); from += sumBlock {
-		to := min(from+sumBlock, len(d.w))
-		v, y, weights := d.others[from:to], d.y[from:to], d.w[from:to]
-		var sumW, sumWW, sumWY float64
-		for i, v := range v {
-			w := 1 / (v + tau2)
-			weights[i] = w
-			sumW += w
-			sumWW += w * w
-			sumWY += w * y[i]
+	m := d.weigh(tau2)
+	d.scatterAbout(&m)
+	return m
+}
+
+// weigh is at without the sums of squares about the mean.
+func (d *sample) weigh(tau2 float64) moments {
+	// Without the most precise study, which has y = 0:
+	rest, squares, wy := d.weighBlock(tau2, 0, min(sumBlock, len(d.w)))
+	if len(d.w) > sumBlock {
+		all := [3]numeric.Sum{}
+		for from := 0; from < len(d.w); from += sumBlock {
+			rest, squares, wy = d.weighBlock(tau2, from, min(from+sumBlock, len(d.w)))
+			all[0], all[1], all[2] = all[0].Plus(rest), all[1].Plus(squares), all[2].Plus(wy)
 		}
-		rest, squares, wy = rest.Plus(sumW), squares.Plus(sumWW), wy.Plus(sumWY)
+		rest, squares, wy = all[0].Value(), all[1].Value(), all[2].Value()
 	}
 	best := 1 / (d.v[d.best] + tau2)
 	d.w[d.best] = best
-	m := moments{tau2: tau2, w: best + rest.Value(), rest: rest.Value()}
-	m.mean = wy.Value() / m.w
-	// No weight of the rest is above Σw/2, so that nothing cancels.
-	m.c = best*(rest.Value()/m.w) + (rest.Value() - squares.Value()/m.w)
-	d.scatterAbout(&m)
-	return m
+	w := best + rest
+	// No weight of the rest is above Σw/2, so that nothing cancels in c.
+	return moments{tau2: tau2, w: w, rest: rest, c: best*(rest/w) + (rest - squares/w), mean: wy / w}
+}
+
+// weighBlock fills in the weights of the studies from and up to to, and returns
+// Σw, Σw² and Σwy without the most precise study.
+func (d *sample) weighBlock(tau2 float64, from, to int) (w, ww, wy float64) {
+	weights := d.w[from:to]
+	v, y := d.others[from:to][:len(weights)], d.y[from:to][:len(weights)]
+	for i := range weights {
+		x := 1 / (v[i] + tau2)
+		weights[i] = x
+		w += x
+		ww += x * x
+		wy += x * y[i]
+	}
+	return w, ww, wy
 }
 
 // scatterAbout fills in the weighted squares about the mean, with the weights that
 // stand in d.w.
 func (d *sample) scatterAbout(m *moments) {
-	var q, s numeric.Sum
-	for from := 0; from < len(d.w); from += sumBlock {
-		to := min(from+sumBlock, len(d.w))
-		y, weights := d.y[from:to], d.w[from:to]
-		var sumQ, sumS float64
-		for i, w := range weights {
-			r := y[i] - m.mean
-			wr := w * r
-			sumQ += wr * r
-			sumS += wr * wr
+	m.q, m.s = d.scatterBlock(m.mean, 0, min(sumBlock, len(d.w)))
+	if len(d.w) > sumBlock {
+		var q, s numeric.Sum
+		for from := 0; from < len(d.w); from += sumBlock {
+			m.q, m.s = d.scatterBlock(m.mean, from, min(from+sumBlock, len(d.w)))
+			q, s = q.Plus(m.q), s.Plus(m.s)
 		}
-		q, s = q.Plus(sumQ), s.Plus(sumS)
+		m.q, m.s = q.Value(), s.Value()
 	}
-	m.q, m.s = q.Value(), s.Value()
+}
+
+// scatterBlock returns Σw(y − mean)² and Σw²(y − mean)² of the studies from and up
+// to to.
+func (d *sample) scatterBlock(mean float64, from, to int) (q, s float64) {
+	weights := d.w[from:to]
+	y := d.y[from:to][:len(weights)]
+	for i, w := range weights {
+		r := y[i] - mean
+		wr := w * r
+		q += wr * r
+		s += wr * wr
+	}
+	return q, s
 }
 
 // about returns Σw, Σw(y − mu)² and Σw²(y − mu)² at tau2 about a given mean.
 func (d *sample) about(mu, tau2 float64) moments {
-	m := d.at(tau2)
+	m := d.weigh(tau2)
 	m.mean = mu
 	d.scatterAbout(&m)
 	return m
@@ -216,24 +267,23 @@ type cubes struct {
 
 // cubes returns the sums that belong to m, whose weights stand in d.w.
 func (d *sample) cubes(m moments) cubes {
-	var squares, cubed, wwr, scatter numeric.Sum // without the most precise study
 	best := d.w[d.best]
-	d.w[d.best] = 0
-	for from := 0; from < len(d.w); from += sumBlock {
-		to := min(from+sumBlock, len(d.w))
-		y, weights := d.y[from:to], d.w[from:to]
-		var sumW2, sumW3, sumWR, sumS float64
-		for i, w := range weights {
-			wr := w * (y[i] - m.mean)
-			sumW2 += w * w
-			sumW3 += w * w * w
-			sumWR += w * wr
-			sumS += w * wr * wr
+	d.w[d.best] = 0 // for sums without the most precise study
+	all := d.cubeBlock(m.mean, 0, min(sumBlock, len(d.w)))
+	if len(d.w) > sumBlock {
+		var sums [4]numeric.Sum
+		for from := 0; from < len(d.w); from += sumBlock {
+			part := d.cubeBlock(m.mean, from, min(from+sumBlock, len(d.w)))
+			for i, x := range part {
+				sums[i] = sums[i].Plus(x)
+			}
 		}
-		squares, cubed, wwr, scatter = squares.Plus(sumW2), cubed.Plus(sumW3), wwr.Plus(sumWR), scatter.Plus(sumS)
+		for i, sum := range sums {
+			all[i] = sum.Value()
+		}
 	}
 	d.w[d.best] = best
-	w2, w3, s1, s2 := squares.Value(), cubed.Value(), wwr.Value(), scatter.Value()
+	w2, w3, s1, s2 := all[0], all[1], all[2], all[3]
 	share, rest := best/m.w, m.rest/m.w // rest is 1 − share to full precision
 	bestWR := -best * m.mean
 	return cubes{
@@ -242,6 +292,22 @@ func (d *sample) cubes(m moments) cubes {
 		scatter:   best*bestWR*bestWR + s2,
 		projected: best*bestWR*bestWR*rest + s2 - s1*s1/m.w - 2*s1*share*bestWR,
 	}
+}
+
+// cubeBlock returns Σw², Σw³, Σw²(y − mean) and Σw³(y − mean)² of the studies from
+// and up to to.
+func (d *sample) cubeBlock(mean float64, from, to int) [4]float64 {
+	weights := d.w[from:to]
+	y := d.y[from:to][:len(weights)]
+	var w2, w3, wwr, scatter float64
+	for i, w := range weights {
+		wr := w * (y[i] - mean)
+		w2 += w * w
+		w3 += w * w * w
+		wwr += w * wr
+		scatter += w * wr * wr
+	}
+	return [4]float64{w2, w3, wwr, scatter}
 }
 
 // scatter returns Σ(y − ȳ)², unweighted.

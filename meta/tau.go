@@ -15,7 +15,7 @@ const rootTolerance = 1e-12
 const rootSteps = 2000
 
 // estimateTau2 returns the estimate of τ² by a method, in squared working units;
-// 0 for a single study.
+// 0 for a single study. p.zero must have been worked out last.
 //
 // Sources, gathered by Veroniki et al. (2016), Research Synthesis Methods
 // 7:55-79: DerSimonian & Laird (1986); DerSimonian & Kacker (2007); Hedges &
@@ -27,38 +27,37 @@ func (p *Pooler) estimateTau2(method TauMethod) (float64, error) {
 	}
 	switch method {
 	case DerSimonianLaird:
-		return dersimonianLaird(d), nil
+		return dersimonianLaird(p.zero, d.df()), nil
 	case TwoStepDerSimonianLaird:
-		return twoStep(d), nil
+		return twoStep(d, p.zero), nil
 	case HedgesOlkin:
 		return max(0, d.scatter()/d.df()-d.meanVariance()), nil
 	case HunterSchmidt:
-		zero := d.at(0)
-		return max(0, (zero.q-float64(d.k()))/zero.w), nil
+		return max(0, (p.zero.q-float64(d.k()))/p.zero.w), nil
 	case SidikJonkman:
 		return sidikJonkman(d), nil
 	case PauleMandel:
-		return tau2WhereQ(d, d.df())
+		return tau2WhereQ(d, p.zero, d.df())
 	case MaximumLikelihood:
-		return p.highestMode(likelihood{data: d, kind: fullLikelihood})
+		l := likelihood{data: d, kind: fullLikelihood}
+		return p.highestMode(l, l.pointOf(p.zero))
 	case RestrictedML:
-		return p.highestMode(likelihood{data: d, kind: restrictedLikelihood})
+		l := likelihood{data: d, kind: restrictedLikelihood}
+		return p.highestMode(l, l.pointOf(p.zero))
 	}
 	return 0, &ModelError{Problem: fmt.Sprintf("%v cannot estimate τ²: choose one of its estimators", method)}
 }
 
-// dersimonianLaird returns max(0, (Q − (k−1))/(Σw − Σw²/Σw)) with w = 1/v.
-func dersimonianLaird(d *sample) float64 {
-	zero := d.at(0)
-	return max(0, (zero.q-d.df())/zero.c)
-}
+// dersimonianLaird returns max(0, (Q − (k−1))/(Σw − Σw²/Σw)) with w = 1/v, of
+// the moments at τ² = 0.
+func dersimonianLaird(zero moments, df float64) float64 { return max(0, (zero.q-df)/zero.c) }
 
 // twoStep returns DerSimonian and Kacker's two-step estimate: with weights
 // a = 1/(v + first step) and A = Σa,
 //
 //	max(0, (Σa(y − mean)² − Σav + Σa²v/A) / (A − Σa²/A)).
-func twoStep(d *sample) float64 {
-	m := d.at(dersimonianLaird(d))
+func twoStep(d *sample, zero moments) float64 {
+	m := d.at(dersimonianLaird(zero, d.df()))
 	var expected, rest numeric.Sum // Σav(1 − a/A): its mean if τ² were 0
 	for i, a := range d.w {
 		if i != d.best {
@@ -78,13 +77,13 @@ func sidikJonkman(d *sample) float64 {
 }
 
 // tau2WhereQ returns the τ² at which the generalised Q(τ²) = Σw(y − mean)²
-// equals target, or 0 where Q(0) is at or below it.
+// equals target, or 0 where Q(0) is at or below it; zero are the moments at 0.
 //
 // 1/Q rises with τ² and is concave, by the inequality of Cauchy and Schwarz, so
 // that Newton's steps from 0 close in on the root from below. dQ/dτ² is
 // −Σw²(y − mean)².
-func tau2WhereQ(d *sample, target float64) (float64, error) {
-	m := d.at(0)
+func tau2WhereQ(d *sample, zero moments, target float64) (float64, error) {
+	m := zero
 	if m.q <= target {
 		return 0, nil
 	}

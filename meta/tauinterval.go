@@ -25,17 +25,17 @@ func (p *Pooler) tau2Limits() (Limits, error) {
 		if p.model.Tau == RestrictedML {
 			l.kind = restrictedLikelihood
 		}
-		if _, err := p.highestMode(l); err != nil {
+		if _, err := p.highestMode(l, l.point(0)); err != nil {
 			return Limits{}, err
 		}
 		p.compareModes(l)
 		z := numeric.NormalCritical(alpha)
 		return p.tau2Above(l, p.height-0.5*z*z)
 	}
-	low, err := tau2WhereQ(&p.data, numeric.ChiSquareUpperQuantile(alpha/2, p.data.df()))
+	low, err := tau2WhereQ(&p.data, p.zero, numeric.ChiSquareUpperQuantile(alpha/2, p.data.df()))
 	if err != nil {
 		return Limits{}, err
 	}
-	high, err := tau2WhereQ(&p.data, numeric.ChiSquareQuantile(alpha/2, p.data.df()))
+	high, err := tau2WhereQ(&p.data, p.zero, numeric.ChiSquareQuantile(alpha/2, p.data.df()))
 	return Limits{Low: low, High: high}, err
 }

@@ -82,7 +82,7 @@ func (l likelihood) fallsFrom(a slopePoint) bool {
 			return true
 		}
 		b := l.point(a.tau2 + stride)
-		if a.staysBelow(1/b.scatterRate - stride) {
+		if a.staysBelow(b.reachBack(a)) {
 			a, stride = b, proofLonger*stride
 		} else {
 			stride *= proofShorter
@@ -106,6 +106,14 @@ func (a slopePoint) staysBelow(reach float64) bool {
 	return a.weightRate > 0 && ratio*reach*a.weightRate < (2-proofMargin)*(1+math.Sqrt(1-ratio))
 }
 
+// reachBack returns the reach for staysBelow from a on, as far as to b.
+func (b slopePoint) reachBack(a slopePoint) float64 { return 1/b.scatterRate - (b.tau2 - a.tau2) }
+
+// fallsTo reports whether f surely falls from a to b.
+func (a slopePoint) fallsTo(b slopePoint) bool {
+	return a.weightRate > 0 && b.reachBack(a)*a.weightRate < 2-proofMargin
+}
+
 // risesBetween reports whether f is surely above 0 from a on until b, a maximum to
 // rounding, dividing the way at most depth times. With H = b − a and h = b − τ²,
 //
@@ -117,7 +125,7 @@ func (a slopePoint) staysBelow(reach float64) bool {
 func (l likelihood) risesBetween(a, b slopePoint, depth int) bool {
 	width := b.tau2 - a.tau2
 	left := 1 - width*b.scatterRate
-	if left*left*(1+width*a.weightRate)+proofMargin*width*b.scatterRate < b.slope+1 || (1/b.scatterRate-width)*a.weightRate < 2-proofMargin {
+	if left*left*(1+width*a.weightRate)+proofMargin*width*b.scatterRate < b.slope+1 || a.fallsTo(b) {
 		return true
 	}
 	if depth == 0 {

@@ -38,6 +38,11 @@ func invalid() Ratio { return Ratio{ln: math.NaN()} }
 // frequencies whatever the degrees of freedom, at most 2.33 : 1 for no effect.
 func Matched(t, df float64) Ratio { return Normal(MatchedZ(t, df)) }
 
+// MatchedTail returns the evidence of any statistic as the normal form at the z
+// that has the same one-sided tail, given by its natural logarithm: Matched, where
+// the tail of |t| is known already.
+func MatchedTail(lnTail float64) Ratio { return Normal(numeric.NormalFromLogTail(lnTail)) }
+
 // MatchedZ returns the normal statistic that has the sign and the p-value of
 // Student's t with df degrees of freedom.
 func MatchedZ(t, df float64) float64 {
