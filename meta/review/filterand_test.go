@@ -11,8 +11,8 @@ import (
 // that both keep.
 func TestAnd(t *testing.T) {
 	filters := rapid.SampledFrom([]string{
-		"year >= 2010", "risk of bias is high or year < 2000", "row is not 7", "row != 7 and row != 9",
-		`study is not "Smith and Wesson" or row is 3`, "year = 2010 and row > 2 or year is blank or row is 1",
+		"year >= 2010", "risk of bias is high or year < 2000", "sheet row is not 7", "sheet row != 7 and sheet row != 9",
+		`study is not "Smith and Wesson" or sheet row is 3`, "year = 2010 and sheet row > 2 or year is blank or sheet row is 1",
 	})
 	rapid.Check(t, func(t *rapid.T) {
 		a, b := filters.Draw(t, "a"), filters.Draw(t, "b")
@@ -23,7 +23,7 @@ func TestAnd(t *testing.T) {
 			"year":         rapid.SampledFrom([]string{"", "1999", "2010", "2015"}).Draw(t, "year"),
 			"risk-of-bias": rapid.SampledFrom([]string{"", "low", "high"}).Draw(t, "risk"),
 			"study":        rapid.SampledFrom([]string{"Smith and Wesson", "Jones"}).Draw(t, "study"),
-			"row":          strconv.Itoa(rapid.IntRange(1, 10).Draw(t, "row")),
+			"sheet-row":    strconv.Itoa(rapid.IntRange(1, 10).Draw(t, "row")),
 		}
 		cell := func(column string) string { return row[column] }
 		want := f.Match(cell) && g.Match(cell)
@@ -48,12 +48,12 @@ func parsed(t interface{ Fatal(...any) }, text string) *Filter {
 // TestRowColumn wants a filter to know a row by its number in the sheet, unless the
 // sheet has a column of that name.
 func TestRowColumn(t *testing.T) {
-	f := parsed(t, "row is not 7")
+	f := parsed(t, "sheet row is not 7")
 	s := &Study{Row: Place{Row: 7}}
 	if f.Match(s.Cell) {
 		t.Error("row 7 is kept")
 	}
-	s.Remarks = []Remark{{Header: "Row", Text: "12"}}
+	s.Remarks = []Remark{{Header: "Sheet row", Text: "12"}}
 	if !f.Match(s.Cell) {
 		t.Error("the sheet's own column is not asked")
 	}

@@ -133,8 +133,8 @@ func (x *Extraction) Outcomes() []string {
 }
 
 // RowColumn is the name by which filters call the number of a row in the sheet, as in
-// "row is not 7", unless the sheet has a column of that name.
-const RowColumn = "row"
+// "sheet row is not 7", unless the sheet has a column of that name.
+const RowColumn = "sheet row"
 
 // Cell returns the text of a column by its folded name, for filters: identity
 // first, then numbers, then context and covariates. It is blank where the row has
@@ -156,7 +156,7 @@ func (s *Study) Cell(column string) string {
 		return s.Date.String()
 	case "outcome":
 		return s.Outcome
-	case RowColumn:
+	case "sheet-row": // RowColumn, folded
 		if own := s.remarkText(column); own != "" {
 			return own
 		}
