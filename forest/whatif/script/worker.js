@@ -1,0 +1,35 @@
+// @ts-check
+"use strict";
+
+/**
+ * The worker behind a report page: it unpacks and starts the engine, hands it the page's
+ * data, and answers one change after another. What it is sent and what it sends:
+ *   {open: {code, data}} → {ready: true} or {broken: why}
+ *   {ask: change, id}    → {id, reply} with the reply's JSON as text
+ * The two functions are set by the engine itself.
+ * @type {any}
+ */
+const scope = self;
+
+/** @param {{code: string, data: string}} page */
+async function start(page) {
+  const go = new scope.Go();
+  const { instance } = await WebAssembly.instantiate(unpack(fromText(page.code)), go.importObject);
+  go.run(instance); // runs on: it waits for questions
+  const problem = scope.steelyardOpen(page.data);
+  if (problem) throw new Error(problem);
+}
+
+scope.onmessage = async (/** @type {MessageEvent} */ message) => {
+  const { open, ask, id } = message.data;
+  if (open) {
+    try {
+      await start(open);
+      scope.postMessage({ ready: true });
+    } catch (error) {
+      scope.postMessage({ broken: error instanceof Error ? error.message : String(error) });
+    }
+    return;
+  }
+  scope.postMessage({ id, reply: scope.steelyardAnswer(JSON.stringify(ask)) });
+};
