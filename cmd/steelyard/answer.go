@@ -57,6 +57,7 @@ func (p *page) outcome(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	p.regions(o)
 	p.remarks(o)
 	p.sceptics(o)
+	p.posterior(s, o)
 	p.runs(o)
 	p.methods(s, o)
 }

@@ -15,11 +15,37 @@ type Quantiles struct {
 }
 
 // Posterior is the posterior distribution of the mean effect and of τ, with a flat
-// prior for the mean and the given one for τ.
+// prior for the mean and the given one for τ, each estimate being normal with its
+// standard error known.
 type Posterior struct {
 	Level       float64
+	Prior       TauPrior
 	Effect, Tau Quantiles
+	New         Quantiles // the true effect in a new setting: the predictive distribution
+	Studies     []Shrunk  // the true effect of each study, in their order
+
+	place     func(x float64) float64 // into working units
+	mean, new mixture
 }
+
+// Shrunk is the posterior of one study's true effect, which the others draw towards
+// the mean effect.
+type Shrunk struct {
+	Quantiles
+	Toward float64 // mean share of the way from the study's own estimate to the mean effect
+}
+
+// Chance is the probability of an effect below or above a threshold.
+type Chance struct{ Below, Above float64 }
+
+// Mean returns the probability that the mean effect lies below and above a threshold.
+func (p *Posterior) Mean(threshold float64) Chance { return p.mean.chance(p.place(threshold)) }
+
+// Setting returns the probability that the true effect in a new setting lies below
+// and above a threshold.
+func (p *Posterior) Setting(threshold float64) Chance { return p.new.chance(p.place(threshold)) }
+
+func (m mixture) chance(x float64) Chance { return Chance{Below: m.below(x), Above: m.above(x)} }
 
 // posteriorTolerance is the relative accuracy of a quantile, against the unit of
 // the smallest standard error where it is near 0.
@@ -47,10 +73,9 @@ func PosteriorOf(y, s []float64, prior TauPrior, level float64) (*Posterior, err
 		return nil, err
 	}
 	p.total = math.Exp(ln - m.height)
-	post := &Posterior{Level: level}
-	tails := [3]float64{0.5 * (1 - level), 0.5, 0.5 * (1 + level)}
+	post := &Posterior{Level: level, Prior: prior}
 	var tau, effect [3]float64
-	for i, tail := range tails {
+	for i, tail := range tails(level) {
 		if tau[i], err = p.tauQuantile(tail); err != nil {
 			return nil, err
 		}
@@ -60,7 +85,51 @@ func PosteriorOf(y, s []float64, prior TauPrior, level float64) (*Posterior, err
 	}
 	post.Tau = Quantiles{Low: tau[0] * d.unit, Median: tau[1] * d.unit, High: tau[2] * d.unit}
 	post.Effect = Quantiles{Low: d.place(effect[0]), Median: d.place(effect[1]), High: d.place(effect[2])}
-	return post, p.means(post)
+	if err := p.means(post); err != nil {
+		return nil, err
+	}
+	return post, p.mix(post)
+}
+
+// mix fills in what is normal given τ: the effect in a new setting, and each study's
+// own.
+func (p *marginal) mix(post *Posterior) error {
+	nodes, err := p.nodes()
+	if err != nil {
+		return err
+	}
+	d := p.d
+	post.place = func(x float64) float64 { return (x - d.centre) / d.unit }
+	post.mean = mixed(nodes, func(n node) (mean, variance float64) { return n.mean, n.variance })
+	post.new = mixed(nodes, func(n node) (mean, variance float64) { return n.mean, n.variance + n.tau*n.tau })
+	if post.New, err = post.new.quantiles(post.Level); err != nil {
+		return err
+	}
+	post.New = d.placed(post.New)
+	post.New.Mean = post.Effect.Mean
+	for i, v := range d.v {
+		own := mixed(nodes, func(n node) (mean, variance float64) {
+			toward := v / (v + n.tau*n.tau)
+			return d.y[i] + toward*(n.mean-d.y[i]), (1-toward)*v + toward*toward*n.variance
+		})
+		quantiles, err := own.quantiles(post.Level)
+		if err != nil {
+			return err
+		}
+		shrunk := Shrunk{Quantiles: d.placed(quantiles)}
+		average := d.place(own.average())
+		shrunk.Mean = &average
+		for _, n := range nodes {
+			shrunk.Toward += n.weight * v / (v + n.tau*n.tau)
+		}
+		post.Studies = append(post.Studies, shrunk)
+	}
+	return nil
+}
+
+// placed turns limits and median in working units into the unit of the estimates.
+func (d *studies) placed(q Quantiles) Quantiles {
+	return Quantiles{Low: d.place(q.Low), Median: d.place(q.Median), High: d.place(q.High)}
 }
 
 // firstOf returns a null that lies among the estimates; none enters a posterior.

@@ -42,7 +42,9 @@ func (k *TauPriorKind) UnmarshalText(text []byte) (err error) {
 // TauPrior is a prior distribution for τ. Scale, in the unit of the estimates,
 // belongs to the half-normal and the half-Cauchy; MeanLog and SDLog, of ln τ, to
 // the log-normal. A half-normal scale of 0.5 suits log ratios and standardised
-// differences.
+// differences. Published log-normal priors are for τ²: half their mean and standard
+// deviation are those of ln τ. The empirical priors of Turner et al. (2012) and of
+// Rhodes et al. (2015) have no names here, as their tables were not at hand to copy.
 //
 // Source: Röver et al. (2021), Research Synthesis Methods 12:448-474.
 type TauPrior struct {

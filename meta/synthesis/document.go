@@ -108,11 +108,12 @@ type ResultDocument struct {
 // PartsDocument holds the capabilities beyond the pooled result; what was not wanted
 // is absent.
 type PartsDocument struct {
-	Methods    *MethodsDocument    `json:"methods,omitempty"`
-	Beliefs    *BeliefsDocument    `json:"beliefs,omitempty"`
-	Runs       []RunDocument       `json:"runs,omitempty"`
-	SmallStudy *SmallStudyDocument `json:"small_study,omitempty"`
-	Panel      *PanelDocument      `json:"panel,omitempty"`
+	Methods      *MethodsDocument               `json:"methods,omitempty"`
+	Beliefs      *BeliefsDocument               `json:"beliefs,omitempty"`
+	Runs         []RunDocument                  `json:"runs,omitempty"`
+	SmallStudy   *SmallStudyDocument            `json:"small_study,omitempty"`
+	Panel        *PanelDocument                 `json:"panel,omitempty"`
+	Distribution *PosteriorDistributionDocument `json:"posterior_distribution,omitempty"`
 }
 
 // ExcludedDocument is a row that was not pooled.

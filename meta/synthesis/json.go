@@ -70,6 +70,7 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 		d.Excluded = append(d.Excluded, ExcludedDocument{Study: e.Study, Cell: firstCell(e.Place), Rule: e.Rule, Reason: e.Reason})
 	}
 	d.POnly, d.PartsDocument = o.PValues.document(), o.Parts.document(o)
+	d.Distribution = o.posteriorDocument()
 	if len(o.Silent) > 0 {
 		d.Silent = &SilentDocument{Studies: len(o.Silent), Participants: o.Counts.Silent}
 	}

@@ -39,6 +39,7 @@ type Further struct {
 	Below      *float64          // steps under which the tipping set brings the evidence
 	SmallStudy *SmallStudyWanted // whether small studies show other effects
 	Panel      *PanelWanted      // what a guideline panel reads
+	Posterior  bool              // the posterior distribution of mean effect and spread
 }
 
 // Synthesis is the result of an analysis. Every output prints its numbers.
@@ -76,6 +77,7 @@ type Parts struct {
 	Runs       []RunResult // the planned sensitivity runs; empty where none is planned
 	SmallStudy *SmallStudy // whether small studies show other effects
 	Panel      *Panel      // what a guideline panel reads
+	Posterior  *Posterior  // of mean effect and spread
 }
 
 // Analysis is what was settled before pooling, null and thresholds on the
@@ -193,6 +195,9 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 			}
 		}
 		o.weighDiffering()
+		if want.Posterior {
+			o.posteriorOf()
+		}
 		if want.Beliefs {
 			o.believe()
 		}
