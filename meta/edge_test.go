@@ -226,7 +226,7 @@ func TestInputErrors(t *testing.T) {
 // TestEveryCaveatSpeaks: each kind has a name that parses back and a sentence.
 func TestEveryCaveatSpeaks(t *testing.T) {
 	names := CaveatNames()
-	if len(names) != int(PredictionWidened)+1 {
+	if len(names) != int(FewDegrees)+1 {
 		t.Fatalf("%d names", len(names))
 	}
 	seen := map[string]bool{}

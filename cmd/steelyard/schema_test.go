@@ -90,6 +90,8 @@ func TestSchema(t *testing.T) {
 		{pool, "", "next-trial " + data + "checks/bcg_counts.csv --size 100 --control-risk 0.1 --important 0.8"},
 		{pool, "", "next-trial " + data + "checks/bcg_counts.csv --se 0.1"},
 		{pool, "", "small-study " + data + "checks/bcg_counts.csv"},
+		{pool, repeatedSheet, "pool - --dependence three-level"},
+		{pool, repeatedSheet, "pool - --dependence robust"},
 		{pool, "", "small-study " + data + "checks/aspirin_lor.csv"},
 		{pool, "", "small-study " + data + "checks/aspirin_lor.csv --allow-few --measure proportion"},
 		{weigh, "", "weigh --z 20000"},

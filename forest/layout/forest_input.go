@@ -54,6 +54,7 @@ type ForestPooled struct {
 	LnEvidence          float64
 	Unwanted            bool
 	K                   int       // studies pooled
+	Clusters            int       // studies, where some give several of the K estimates; else 0
 	Totals              [2]string // people per arm; empty if not known
 }
 

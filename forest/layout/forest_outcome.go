@@ -48,6 +48,9 @@ func ForestOf(s *synthesis.Synthesis, o *synthesis.Outcome) (ForestInput, error)
 			LnEvidence: fit.Mean.Evidence.Ln(), Unwanted: unwanted(o, fit.Mean.Estimate),
 			K: fit.Mean.K, Totals: armTotals(o),
 		}
+		if c := fit.Clustered; c != nil {
+			in.Pooled.Clusters = c.Clusters
+		}
 		in.Prediction, in.Spread = forestSpread(fit, words.Noun(s, 3))
 	}
 	in.dropIdleCounts()
@@ -96,7 +99,7 @@ func chartTitle(s *synthesis.Synthesis, o *synthesis.Outcome) string {
 
 func chartSubtitle(s *synthesis.Synthesis, o *synthesis.Outcome) string {
 	k := len(o.Studies)
-	parts := fmt.Sprintf("%s %s", words.Count(k), words.Noun(s, k))
+	parts := words.Rows(s, o)
 	if o.Counts.Participants > 0 {
 		parts += fmt.Sprintf(", %s participants", words.Count(o.Counts.Participants))
 	}

@@ -21,7 +21,11 @@ func (f *forest) texts() {
 	if p == nil {
 		return
 	}
-	t := rowText{fullName: "All " + words.Count(p.K) + " " + f.in.plural(p.K), weight: weightText(1), bold: true}
+	name := "All " + words.Count(p.K) + " " + f.in.plural(p.K)
+	if p.Clusters > 0 {
+		name = "All " + words.Number(p.K, "estimate", "estimates") + ", " + words.Count(p.Clusters) + " " + f.in.plural(p.Clusters)
+	}
+	t := rowText{fullName: name, weight: weightText(1), bold: true}
 	t.name = t.fullName
 	t.counts = [2]Count{{Total: p.Totals[0]}, {Total: p.Totals[1]}}
 	t.setNumbers(f.in.Scale, p.Estimate, p.Low, p.High, p.LnEvidence)

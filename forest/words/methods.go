@@ -4,6 +4,7 @@ import (
 	"fmt"
 
 	"steelyard/meta"
+	"steelyard/meta/dependence"
 	"steelyard/meta/evidence"
 	"steelyard/meta/review"
 	"steelyard/meta/sparse"
@@ -45,6 +46,9 @@ func Model(fit *meta.Fit) string {
 		}
 		return "its own result: there is nothing to pool"
 	}
+	if fit.Clustered != nil {
+		return clusteredModel(fit)
+	}
 	if text := tableModel(fit); text != "" {
 		return text
 	}
@@ -57,6 +61,23 @@ func Model(fit *meta.Fit) string {
 		return model + "; " + IntervalMethod(fit.Model.Interval) + ", evidence in the Student-t form"
 	}
 	return model + "; " + IntervalMethod(fit.Model.Interval) + ", evidence matched to it"
+}
+
+// clusteredModel is Model for a fit that allows for several estimates from one study.
+func clusteredModel(fit *meta.Fit) string {
+	c := fit.Clustered
+	text := fmt.Sprintf("random effects between and within studies (three levels), restricted maximum likelihood; t interval on %d df, one fewer than studies", c.Clusters-1)
+	if c.Way == dependence.Robust.String() {
+		model := "common effect"
+		if fit.Model.Effects == meta.RandomEffects {
+			model = "random effects, " + TauMethod(fit.Model.Tau)
+		}
+		text = model + "; bias-reduced robust variance for estimates from one study, t interval on Satterthwaite's df"
+	}
+	if fit.Model.Evidence == evidence.StudentForm {
+		return text + ", evidence in the Student-t form"
+	}
+	return text + ", evidence matched to it"
 }
 
 // tableModel is Model for a fit by a method for 2×2 tables; blank for another.

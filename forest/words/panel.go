@@ -62,11 +62,21 @@ func PanelCard(s *synthesis.Synthesis, o *synthesis.Outcome) Card {
 	return c
 }
 
+// Rows says how many rows were pooled: "9 trials"; "12 estimates from 6 trials" where
+// some give several.
+func Rows(s *synthesis.Synthesis, o *synthesis.Outcome) string {
+	k := len(o.Studies)
+	if o.Result != nil && o.Result.Fit.Clustered != nil {
+		c := o.Result.Fit.Clustered
+		return fmt.Sprintf("%s estimates from %s %s", Count(k), Count(c.Clusters), Noun(s, c.Clusters))
+	}
+	return fmt.Sprintf("%s %s", Count(k), Noun(s, k))
+}
+
 // Pooled says how much was pooled, and how: "9 trials, 1,871 participants;
 // random effects, …".
 func Pooled(s *synthesis.Synthesis, o *synthesis.Outcome) string {
-	k := len(o.Studies)
-	text := fmt.Sprintf("%s %s", Count(k), Noun(s, k))
+	text := Rows(s, o)
 	if o.Counts.Participants > 0 {
 		text += fmt.Sprintf(", %s participants", Count(o.Counts.Participants))
 	}

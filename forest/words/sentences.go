@@ -7,6 +7,7 @@ import (
 
 	"steelyard/meta"
 	"steelyard/meta/bayes"
+	"steelyard/meta/dependence"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
 	"steelyard/meta/numeric"
@@ -134,7 +135,7 @@ func degrees(df float64) string {
 	if df == math.Trunc(df) && df < 1e15 {
 		return Count(int(df))
 	}
-	return plain(df)
+	return strings.TrimRight(strings.TrimRight(Linear(df, 2), "0"), ".")
 }
 
 // Scatter words the chi-square form of a fit's heterogeneity as what it compares,
@@ -181,6 +182,9 @@ func Differing(r *bayes.Integrated) string {
 // Spread returns τ with its limits and the share of the scatter that it makes up:
 // "τ 0.13 (0 to 0.48); I² 25% (0% to 81%) of the scatter is beyond chance".
 func Spread(fit *meta.Fit) string {
+	if fit.Clustered != nil {
+		return clusteredSpread(fit)
+	}
 	if fit.Method != "" {
 		return tableSpread(fit)
 	}
@@ -188,6 +192,17 @@ func Spread(fit *meta.Fit) string {
 	return fmt.Sprintf("τ %s; I² %s (%s to %s) by τ, %s by Q",
 		WithInterval(Tau(math.Sqrt(fit.Mean.Tau2)), Tau(math.Sqrt(fit.Tau2.Low)), Tau(math.Sqrt(fit.Tau2.High))),
 		Percent(i2.Value), Percent(i2.Low), Percent(i2.High), Percent(fit.Heterogeneity.I2Q.Value))
+}
+
+// clusteredSpread is Spread where some studies give several estimates: τ is that of
+// one estimate, without limits.
+func clusteredSpread(fit *meta.Fit) string {
+	c := fit.Clustered
+	share := Percent(fit.Heterogeneity.I2Tau.Value)
+	if c.Way != dependence.ThreeLevel.String() {
+		return fmt.Sprintf("τ %s of the working model; I² %s by τ", Tau(math.Sqrt(fit.Mean.Tau2)), share)
+	}
+	return fmt.Sprintf("τ %s between studies, %s within; %s together, I² %s by τ", Tau(math.Sqrt(c.Between)), Tau(math.Sqrt(c.Within)), Tau(math.Sqrt(fit.Mean.Tau2)), share)
 }
 
 // tableSpread is Spread for counts, which have no sampling variances that τ² could

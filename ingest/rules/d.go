@@ -220,7 +220,11 @@ func (c *checker) oneStudy(group []*row) {
 			if differ(r, b, review.TimePoint) {
 				what = "another time point"
 			}
-			c.add(r, review.Error, "D5", review.StudyName, fmt.Sprintf("the study stands in row %d too, at %s, so its people would count twice; choose one of them by a rule stated beforehand, or give the other an outcome of its own", b.Row.Row, what))
+			if c.repeats[r.Outcome] {
+				c.add(r, review.Note, "D5", review.StudyName, fmt.Sprintf("the study stands in row %d too, at %s; both are pooled, as the plan allows for several estimates from one study", b.Row.Row, what))
+				continue
+			}
+			c.add(r, review.Error, "D5", review.StudyName, fmt.Sprintf("the study stands in row %d too, at %s, so its people would count twice; choose one of them by a rule stated beforehand, give the other an outcome of its own, or pool both by --dependence three-level or robust", b.Row.Row, what))
 		}
 	}
 }

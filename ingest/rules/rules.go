@@ -9,6 +9,7 @@ import (
 	"slices"
 
 	"steelyard/meta/choice"
+	"steelyard/meta/dependence"
 	"steelyard/meta/effect"
 	"steelyard/meta/review"
 )
@@ -39,17 +40,35 @@ func Check(x *review.Extraction, plan *review.Plan) []review.Finding {
 // each cause.
 func Apply(x *review.Extraction, plan *review.Plan) {
 	more := Check(x, plan)
-	if len(more) == 0 {
+	allowed := allowedRepeats(x, plan)
+	if len(more) == 0 && len(allowed) == 0 {
 		return
 	}
 	kept := make([]review.Finding, 0, len(x.Findings)+len(more))
 	better := explained(x, more)
 	for _, f := range x.Findings {
-		if !better[place{f.Place.Row, f.Rule}] {
+		if !better[place{f.Place.Row, f.Rule}] && !(f.Rule == "D5" && f.Severity == review.Warning && allowed[f.Place.Row]) {
 			kept = append(kept, f)
 		}
 	}
 	x.Findings = append(kept, more...)
+}
+
+// allowedRepeats returns the rows of outcomes whose plan allows for several estimates
+// from one study.
+func allowedRepeats(x *review.Extraction, plan *review.Plan) map[int]bool {
+	rows := map[int]bool{}
+	for i := range x.Studies {
+		if s := &x.Studies[i]; allowsRepeats(plan, s.Outcome) {
+			rows[s.Row.Row] = true
+		}
+	}
+	return rows
+}
+
+func allowsRepeats(plan *review.Plan, outcome string) bool {
+	way, err := dependence.ParseWay(plan.Value(review.SettingDependence, outcome).Text)
+	return err == nil && way != dependence.Independent
 }
 
 type place struct {
@@ -150,12 +169,13 @@ type checker struct {
 	outcomes [][]*row // rows by outcome, in the order of the sheet
 	columns  [review.FieldCount]int
 	planned  map[string]effect.Measure // by outcome
+	repeats  map[string]bool           // outcomes that allow for several estimates from one study
 	found    []found
 	fired    map[place]bool // by index of the row and rule
 }
 
 func newChecker(x *review.Extraction, plan *review.Plan) *checker {
-	c := &checker{x: x, rows: make([]row, len(x.Studies)), planned: map[string]effect.Measure{}, fired: map[place]bool{}}
+	c := &checker{x: x, rows: make([]row, len(x.Studies)), planned: map[string]effect.Measure{}, repeats: map[string]bool{}, fired: map[place]bool{}}
 	for _, column := range x.Columns {
 		c.columns[column.Field] = column.Place.Col
 	}
@@ -166,6 +186,7 @@ func newChecker(x *review.Extraction, plan *review.Plan) *checker {
 		}
 	}
 	for _, name := range x.Outcomes() {
+		c.repeats[name] = allowsRepeats(plan, name)
 		if a, err := plan.Analysis(name); err == nil && a.MeasureSet {
 			c.planned[name] = a.Measure
 		}

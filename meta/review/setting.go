@@ -10,6 +10,7 @@ import (
 	"steelyard/meta"
 	"steelyard/meta/bayes"
 	"steelyard/meta/choice"
+	"steelyard/meta/dependence"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
 	"steelyard/meta/sparse"
@@ -54,6 +55,7 @@ const (
 	SettingPrior      = "prior"
 	SettingOrder      = "order"
 	SettingTies       = "ties"
+	SettingDependence = "dependence"
 	SettingCorrection = "correction"
 	SettingWhere      = "where"
 	SettingSeed       = "seed"
@@ -73,6 +75,7 @@ var settings = []Setting{
 		unless("maximum-likelihood beside profile-likelihood, dersimonian-laird beside henmi-copas"),
 	choiceSetting(SettingInterval, meta.IntervalNames(), meta.HartungKnappFloor.String(), "interval and p-value of the mean effect; the evidence agrees with it").
 		unless("wald for a common effect or one study"),
+	choiceSetting(SettingDependence, dependence.WayNames(), dependence.Independent.String(), "how several estimates from one study (the same cluster, id or name) are treated"),
 	choiceSetting(SettingPrediction, meta.PredictionNames(), meta.PredictionTwoLess.String(), "interval for the true effect in a new setting"),
 	choiceSetting(SettingEvidence, evidence.FormNames(), evidence.Empirical.String(), "form of the evidence ratio; the last four rest on the priors below"),
 	choiceSetting(SettingTauPrior, bayes.TauPriorNames(), "", "prior distribution of the spread τ between studies, for integrated and averaged evidence and for the posterior").

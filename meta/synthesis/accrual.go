@@ -78,6 +78,10 @@ func (o *Outcome) accrue(ctx context.Context, columns []review.Column, plan *rev
 	if o.Result == nil || !want.accrual() {
 		return nil
 	}
+	if o.dependent() {
+		o.Result, o.Problem = nil, o.onlyIndependent("this analysis")
+		return nil
+	}
 	refit, err := o.weighedRefit()
 	if err != nil {
 		return fmt.Errorf("outcome %q: %w", o.Name, err)

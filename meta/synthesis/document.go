@@ -156,7 +156,8 @@ type PooledDocument struct {
 	Null     *float64 `json:"null,omitempty"`
 	MeanDocument
 	*EvidenceFormDocument
-	Display DisplayDocument `json:"display"`
+	Display    DisplayDocument     `json:"display"`
+	Dependence *DependenceDocument `json:"dependence,omitempty"`
 }
 
 // MeanDocument holds the numbers of a pooled mean. DF is absent for a normal

@@ -20,8 +20,13 @@ func (o *Outcome) examine(ctx context.Context) ([]review.Finding, error) {
 	}
 	e := &examination{o: o}
 	e.events()
+	e.repeats()
 	e.asymmetry()
 	if _, isTables := o.Analysis.Method.Tables(); isTables || len(o.Studies) < 2 {
+		return e.findings, nil
+	}
+	if o.dependent() { // the rest varies what dependence settles, or leaves out estimates one by one
+		e.effects()
 		return e.findings, nil
 	}
 	e.narrow()

@@ -26,7 +26,7 @@ const usualScale = 0.5
 func (o *Outcome) integrate() *bayes.Integrated {
 	k := len(o.Studies)
 	model := o.Analysis.Model
-	if k < 2 || k > mostFew || model.Effects != meta.RandomEffects || o.Analysis.Method != review.InverseVariance ||
+	if k < 2 || k > mostFew || o.dependent() || model.Effects != meta.RandomEffects || o.Analysis.Method != review.InverseVariance ||
 		o.Analysis.Weighing.Form == evidence.IntegratedForm {
 		return nil
 	}
@@ -47,7 +47,7 @@ const mostIntegrated = 1000
 // or where the prior needs more studies.
 func (o *Outcome) weighDiffering() {
 	k := len(o.Studies)
-	if o.Result == nil || o.Analysis.Method != review.InverseVariance || k < 2 || k > mostIntegrated {
+	if o.Result == nil || o.dependent() || o.Analysis.Method != review.InverseVariance || k < 2 || k > mostIntegrated {
 		return
 	}
 	y, s := estimates(o.Studies)

@@ -294,6 +294,7 @@ func (o *Outcome) pooledDocument(fit *meta.Fit) PooledDocument {
 	if fit.Model.Effects == meta.RandomEffects {
 		d.Tau = fit.Model.Tau.String()
 	}
+	d.Dependence = dependenceDocument(fit.Clustered)
 	if o.Analysis.NullMissing {
 		d.Null, d.TestDocument, d.EvidenceFormDocument = nil, nil, nil
 	}
@@ -302,6 +303,9 @@ func (o *Outcome) pooledDocument(fit *meta.Fit) PooledDocument {
 
 // intervalName names the interval of a fit.
 func intervalName(fit *meta.Fit) string {
+	if fit.Clustered != nil {
+		return "student-t"
+	}
 	if fit.Method == sparse.ConditionalExact.String() {
 		return "exact"
 	}

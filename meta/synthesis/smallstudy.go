@@ -87,6 +87,8 @@ func (o *Outcome) seekAsymmetry(want SmallStudyWanted) {
 	}
 	part.Tables = len(tables)
 	switch k := len(y); {
+	case o.dependent():
+		part.Refused = o.onlyIndependent("the test")
 	case k < 3:
 		part.Refused = fmt.Sprintf("there %s, and no line can be laid through fewer than 3 so that scatter is left", map[bool]string{true: "is 1 study", false: "are 2 studies"}[k == 1])
 	case k < leastForAsymmetry && !want.AllowFew:
@@ -251,7 +253,7 @@ func (a *asymmetry) selection() {
 // there are enough of both to tell.
 func (e *examination) asymmetry() {
 	y, s := estimates(e.o.Studies)
-	if len(y) < leastForAsymmetry || slices.Max(s)/slices.Min(s) < leastSpread {
+	if e.o.dependent() || len(y) < leastForAsymmetry || slices.Max(s)/slices.Min(s) < leastSpread {
 		return
 	}
 	model := e.o.pairModel()

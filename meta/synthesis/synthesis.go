@@ -12,6 +12,7 @@ import (
 	"steelyard/meta"
 	"steelyard/meta/bayes"
 	"steelyard/meta/choice"
+	"steelyard/meta/dependence"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
 	"steelyard/meta/review"
@@ -91,6 +92,7 @@ type Analysis struct {
 	Weighing   bayes.Weighing // which evidence the means carry; its Tau is the prior for τ of all that has one
 	Prior      []float64
 	Correction effect.Correction
+	Dependence dependence.Way // of several estimates from one study
 	// NullMissing: the measure has no value of no effect and none is given, so
 	// that nothing is weighed; Model.Null then means nothing.
 	NullMissing bool
@@ -309,6 +311,11 @@ func runOutcome(x *review.Extraction, plan *review.Plan, name string, blocked ma
 		return o, findings, nil
 	}
 	o.count()
+	if err := o.settleDependence(asked, plan); err != nil {
+		o.Problem = err.Error()
+		return o, findings, nil
+	}
+	o.noteIndependent()
 	if err := o.pool(asked); err != nil {
 		o.Problem = err.Error()
 		return o, findings, nil

@@ -112,6 +112,9 @@ func (o *Outcome) fitOwn(model meta.Model, studies []Study) (*meta.Fit, error) {
 		}
 		return r.Pooled(), nil
 	}
+	if o.dependent() {
+		return o.fitDependent(model, studies)
+	}
 	y, s := estimates(studies)
 	return model.Fit(y, s)
 }
