@@ -11,6 +11,7 @@ import (
 	"strings"
 
 	"steelyard/ingest/grid"
+	"steelyard/meta/choice"
 	"steelyard/meta/review"
 )
 
@@ -196,7 +197,7 @@ func parseField(text string) (review.Field, error) {
 	}
 	field, err := review.ParseField(text)
 	if err != nil {
-		return 0, &FieldError{Text: text, Nearest: nearestFields(text)}
+		return 0, &FieldError{Text: text, Nearest: choice.Nearest(text, review.FieldNames())}
 	}
 	return field, nil
 }

@@ -41,6 +41,7 @@ type Further struct {
 	SmallStudy *SmallStudyWanted // whether small studies show other effects
 	Panel      *PanelWanted      // what a guideline panel reads
 	Posterior  bool              // the posterior distribution of mean effect and spread
+	Explain    *ExplainWanted    // why the studies differ
 }
 
 // Synthesis is the result of an analysis. Every output prints its numbers.
@@ -79,6 +80,7 @@ type Parts struct {
 	SmallStudy *SmallStudy // whether small studies show other effects
 	Panel      *Panel      // what a guideline panel reads
 	Posterior  *Posterior  // of mean effect and spread
+	Explain    *Explained  // why the studies differ
 }
 
 // Analysis is what was settled before pooling, null and thresholds on the
@@ -215,6 +217,9 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 			if err := o.runPlanned(ctx, x, plan, blocked); err != nil {
 				return nil, err
 			}
+		}
+		if err := o.explainWhy(ctx, x.Columns, want.Explain, want.Work); err != nil {
+			return nil, err
 		}
 		more, err := o.examine(ctx)
 		if err != nil {
