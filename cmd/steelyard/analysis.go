@@ -68,7 +68,7 @@ func pooledSheet(c *cli.Context, x *review.Extraction, plan *review.Plan, want s
 	s, err := synthesis.Run(c.Context, x, plan, want)
 	var unknown *choice.UnknownError
 	var input *accrual.InputError
-	if errors.As(err, &unknown) || errors.As(err, &input) {
+	if errors.As(err, &unknown) || errors.As(err, &input) || isCovariateError(err) {
 		return nil, &callError{err.Error()}
 	}
 	return s, err

@@ -53,7 +53,7 @@ func newApp(s streams) *cli.App {
 		Commands: slices.Concat(
 			[]*cli.Command{checkCommand(), poolCommand()},
 			accrualCommands(),
-			[]*cli.Command{smallStudyCommand(), panelCommand(), weighCommand(), chartCommand(), reportCommand(), templateCommand()},
+			[]*cli.Command{explainCommand(), smallStudyCommand(), panelCommand(), weighCommand(), chartCommand(), reportCommand(), templateCommand()},
 		),
 		Action: func(c *cli.Context) error {
 			if c.NArg() > 0 {

@@ -125,34 +125,48 @@ func (d *Design) Columns() []Column {
 	return all
 }
 
+// names returns the names of the covariates.
+func (d *Design) names() []string {
+	var all []string
+	for _, c := range d.Covariates {
+		all = append(all, c.Name)
+	}
+	return all
+}
+
 // Point is a value of one covariate: a number, or a category.
 type Point struct {
 	Covariate string
-	Number    float64
-	Level     string // of a covariate of categories
+	Number    float64 // NaN where Level is no number
+	Level     string  // as written: the category
 }
 
+// PointError reports a point at which a design cannot be read.
+type PointError struct{ Problem string }
+
+func (e *PointError) Error() string { return e.Problem }
+
 // Row returns what a setting with these covariates puts into the columns; the
-// others are at their means and references. It returns a *DesignError for a
-// covariate or category that is not in the design, or a number that is not finite.
+// others are at their means and references. It returns a *PointError for a covariate
+// or category that is not in the design, or a number that is not finite.
 func (d *Design) Row(points []Point) ([]float64, error) {
 	centred := make([]float64, len(d.Covariates))
 	levels := make([]int, len(d.Covariates))
 	for _, p := range points {
 		i := slices.IndexFunc(d.Covariates, func(c *Covariate) bool { return choice.Fold(c.Name) == choice.Fold(p.Covariate) })
 		if i < 0 {
-			return nil, &DesignError{"", fmt.Sprintf("%q is no covariate of this regression", p.Covariate)}
+			return nil, &PointError{fmt.Sprintf("%q is no covariate of this regression; it has: %s", p.Covariate, listed(d.names()))}
 		}
 		c := d.Covariates[i]
 		if c.Levels == nil {
 			if math.IsNaN(p.Number) || math.IsInf(p.Number, 0) {
-				return nil, &DesignError{c.Name, fmt.Sprintf("%v is not a finite number", p.Number)}
+				return nil, &PointError{fmt.Sprintf("%s: %q is not a number", c.Name, p.Level)}
 			}
 			centred[i] = p.Number - c.Mean
 			continue
 		}
 		if levels[i] = slices.IndexFunc(c.Levels, func(l string) bool { return choice.Fold(l) == choice.Fold(p.Level) }); levels[i] < 0 {
-			return nil, &DesignError{c.Name, fmt.Sprintf("%q is none of its categories: %s", p.Level, listed(c.Levels))}
+			return nil, &PointError{fmt.Sprintf("%s: %q is none of its categories: %s", c.Name, p.Level, listed(c.Levels))}
 		}
 	}
 	var row []float64

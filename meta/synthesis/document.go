@@ -114,6 +114,7 @@ type PartsDocument struct {
 	SmallStudy   *SmallStudyDocument            `json:"small_study,omitempty"`
 	Panel        *PanelDocument                 `json:"panel,omitempty"`
 	Distribution *PosteriorDistributionDocument `json:"posterior_distribution,omitempty"`
+	Explain      *ExplainDocument               `json:"explain,omitempty"`
 }
 
 // ExcludedDocument is a row that was not pooled.

@@ -47,7 +47,8 @@ type RegressionResult struct {
 	Rows    []int // of the studies used, indices of Outcome.Studies
 	Omitted []Omitted
 	Design  *explain.Design
-	At      *explain.Fitted // at the covariates asked for; nil unless asked for
+	Points  []explain.Point // the covariates asked for
+	At      *explain.Fitted // at these; nil unless asked for
 	Problem string          // why there is no result; else blank
 	*explain.Regression
 }
@@ -58,15 +59,16 @@ type Omitted struct {
 	Cells []string
 }
 
-// ColumnError reports a column that the sheet does not have.
+// ColumnError reports a column that the sheet, or the regression, does not have.
 type ColumnError struct {
 	Text             string
+	Among            string // "sheet" or "regression"
 	Nearest, Columns []string
 }
 
 // Error suggests the nearest columns and lists all.
 func (e *ColumnError) Error() string {
-	text := fmt.Sprintf("%q is no column of this sheet", e.Text)
+	text := fmt.Sprintf("%q is no column of this %s", e.Text, e.Among)
 	if len(e.Nearest) > 0 {
 		text += fmt.Sprintf("; did you mean %s?", strings.Join(e.Nearest, ", "))
 	}
@@ -123,7 +125,7 @@ func findColumn(columns []review.Column, name string) (column, error) {
 		return column{name: convertedColumn, folded: want}, nil
 	}
 	names := append(columnNames(columns), convertedColumn)
-	return column{}, &ColumnError{Text: name, Nearest: choice.Nearest(name, names), Columns: names}
+	return column{}, &ColumnError{Text: name, Among: "sheet", Nearest: choice.Nearest(name, names), Columns: names}
 }
 
 // cell returns a study's entry in a column.
@@ -283,6 +285,10 @@ func (o *Outcome) regress(ctx context.Context, columns []review.Column, w *Expla
 	if cause := context.Cause(ctx); cause != nil {
 		return nil, cause
 	}
+	var point *explain.PointError
+	if errors.As(err, &point) {
+		return nil, err
+	}
 	if errors.As(err, &model) {
 		return nil, fmt.Errorf("outcome %q: %w", o.Name, err)
 	}
@@ -301,7 +307,7 @@ func knownReferences(references map[string]string, used []column) error {
 	}
 	for name := range references {
 		if !slices.ContainsFunc(used, func(c column) bool { return c.folded == name || choice.Fold(c.name) == name }) {
-			return &ColumnError{Text: name, Nearest: choice.Nearest(name, names), Columns: names}
+			return &ColumnError{Text: name, Among: "regression", Nearest: choice.Nearest(name, names), Columns: names}
 		}
 	}
 	return nil
@@ -348,7 +354,7 @@ func (r *RegressionResult) fit(ctx context.Context, o *Outcome, used []column, c
 			return err
 		}
 		at := r.Regression.At(row)
-		r.At = &at
+		r.Points, r.At = w.At, &at
 	}
 	o.noteRegressionModel("The regression")
 	if w.Permutations == 0 {

@@ -71,6 +71,7 @@ func (o *Outcome) document(plan *review.Plan) OutcomeDocument {
 	}
 	d.POnly, d.PartsDocument = o.PValues.document(), o.Parts.document(o)
 	d.Distribution = o.posteriorDocument()
+	d.Explain = o.explainDocument()
 	if len(o.Silent) > 0 {
 		d.Silent = &SilentDocument{Studies: len(o.Silent), Participants: o.Counts.Silent}
 	}

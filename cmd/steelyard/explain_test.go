@@ -1,0 +1,216 @@
+package main
+
+import (
+	"encoding/json"
+	"math"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+
+	"steelyard/meta/synthesis"
+)
+
+// bcgAllocated is the sheet of the BCG trials with how people were allotted (Colditz
+// et al., JAMA 1994;271:698-702, from memory) and some blank cells; change edits the
+// fields of a row.
+func bcgAllocated(t *testing.T, change func(row int, fields []string)) string {
+	t.Helper()
+	content, err := os.ReadFile(bcgCounts)
+	if err != nil {
+		t.Fatal(err)
+	}
+	allocation := strings.Fields("random random random random alternate alternate random random random systematic systematic systematic systematic")
+	lines := strings.Split(strings.TrimSpace(strings.ReplaceAll(string(content), "\r", "")), "\n")
+	for i := range lines {
+		fields := strings.Split(lines[i], ",")
+		if i == 0 {
+			lines[i] += ",allocation"
+			continue
+		}
+		fields = append(fields, allocation[i-1])
+		if change != nil {
+			change(i, fields)
+		}
+		lines[i] = strings.Join(fields, ",")
+	}
+	path := filepath.Join(t.TempDir(), "bcg.csv")
+	if err := os.WriteFile(path, []byte(strings.Join(lines, "\n")+"\n"), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	return path
+}
+
+// explained runs explain with JSON and returns its first outcome's part.
+func explained(t *testing.T, want int, args ...string) (*synthesis.ExplainDocument, synthesis.OutcomeDocument) {
+	t.Helper()
+	stdout, stderr, code := call(t, "", append([]string{"explain", "--format", "json"}, args...)...)
+	var d synthesis.Document
+	if code != want {
+		t.Fatalf("explain %v: exit %d, %s", args, code, stderr)
+	}
+	if err := json.Unmarshal([]byte(stdout), &d); err != nil {
+		t.Fatal(err)
+	}
+	return d.Outcomes[0].Explain, d.Outcomes[0]
+}
+
+func nearly(t *testing.T, what string, got, want, tolerance float64) {
+	t.Helper()
+	if !(math.Abs(got-want) <= tolerance*math.Abs(want)) {
+		t.Errorf("%s: %.12g, want %.12g", what, got, want)
+	}
+}
+
+// TestExplainBCG: the regression on latitude from the counts; the values are from
+// 40-digit dense matrix algebra (mpmath) at the root of the restricted score.
+func TestExplainBCG(t *testing.T) {
+	e, _ := explained(t, codeDone, bcgCounts, "--measure", "odds ratio", "--on", "Latitude", "--interval", "hartung-knapp", "--planned", "--at", "latitude=40")
+	r := e.Regression
+	nearly(t, "intercept", r.Coefficients[0].Estimate, -0.7541244653560953, 1e-8)
+	nearly(t, "slope", r.Coefficients[1].Estimate, -0.03153380345615264, 1e-8)
+	nearly(t, "its se", r.Coefficients[1].SE, 0.007517037192266669, 1e-8)
+	nearly(t, "F", r.Whole.F, 17.59783797551344, 1e-7)
+	nearly(t, "τ²", r.Residual.Tau.Tau2, 0.05043307403124557, 1e-8)
+	nearly(t, "centre", *r.Covariates[0].Centre, 435./13, 1e-12)
+	nearly(t, "at 40", r.At.Estimate, -0.7541244653560953-0.03153380345615264*(40-435./13), 1e-8)
+	if !e.Planned || r.Permutation.Count != 1000 || r.Permutation.Exact || *r.Terms[0].PermutedP > 0.02 || len(r.Fitted) != 13 {
+		t.Errorf("planned %v, permutation %+v, p %v, %d fitted", e.Planned, r.Permutation, *r.Terms[0].PermutedP, len(r.Fitted))
+	}
+}
+
+// TestExplainGroupsArePools: each group is what pool says of its rows alone, by any
+// method, and the text names the groups.
+func TestExplainGroupsArePools(t *testing.T) {
+	sheet := bcgAllocated(t, nil)
+	for _, settings := range [][]string{
+		{"--measure", "odds ratio"},
+		{"--measure", "risk ratio", "--effects", "common"},
+		{"--method", "mantel-haenszel", "--measure", "odds ratio"},
+		{"--measure", "odds ratio", "--interval", "profile-likelihood", "--where", "year > 1950"},
+	} {
+		e, _ := explained(t, codeDone, append([]string{sheet, "--subgroups", "Allocation"}, settings...)...)
+		if len(e.Subgroups.Groups) != 3 {
+			t.Fatalf("%d groups, want 3", len(e.Subgroups.Groups))
+		}
+		for _, g := range e.Subgroups.Groups {
+			where := "allocation is " + g.Group
+			alone := append([]string(nil), settings...)
+			if i := len(alone) - 2; alone[i] == "--where" {
+				where, alone = alone[i+1]+" and "+where, alone[:i]
+			}
+			own := pooled(t, append([]string{sheet, "--where", where}, alone...)...).Outcomes[0]
+			nearly(t, g.Group, g.Estimate, own.Pooled.Estimate, 1e-9)
+			nearly(t, g.Group+": limit", g.Low, own.Pooled.Low, 1e-9)
+			nearly(t, g.Group+": evidence", g.LnEvidence, own.Pooled.LnEvidence, 1e-9)
+		}
+	}
+}
+
+// TestExplainBlanks: studies without an entry are left out of that comparison alone,
+// and named with their cells.
+func TestExplainBlanks(t *testing.T) {
+	sheet := bcgAllocated(t, func(row int, fields []string) {
+		if row == 3 {
+			fields[6] = ""
+		}
+		if row == 8 {
+			fields[7] = " "
+		}
+	})
+	e, o := explained(t, codeDone, sheet, "--measure", "odds ratio", "--on", "latitude", "--subgroups", "allocation", "--shared-tau", "--permutations", "0")
+	if o.K != 13 || e.Regression.K != 12 || e.Regression.Permutation != nil {
+		t.Errorf("%d pooled, %d regressed", o.K, e.Regression.K)
+	}
+	if m := e.Regression.Omitted; len(m) != 1 || m[0].Study != "Trial 3" || m[0].Cells[0] != "latitude, bcg.csv!G4" {
+		t.Errorf("omitted %+v", m)
+	}
+	if m := e.Subgroups.Omitted; len(m) != 1 || m[0].Study != "Trial 8" || !e.Subgroups.SharedTau {
+		t.Errorf("omitted %+v", m)
+	}
+	studies := 0
+	for _, g := range e.Subgroups.Groups {
+		studies += g.K
+		for _, name := range g.Studies {
+			if name == "Trial 8" {
+				t.Error("a study without an entry is in a group")
+			}
+		}
+	}
+	if studies != 12 {
+		t.Errorf("%d studies in groups, want 12", studies)
+	}
+}
+
+// TestExplainRefusals: what the cells do not allow is told beside the pooled outcome,
+// with the column and the cells; what the call names wrongly, at once.
+func TestExplainRefusals(t *testing.T) {
+	sheet := bcgAllocated(t, func(row int, fields []string) {
+		fields[6] = strings.ReplaceAll(fields[6], "27", "c. 27")
+	})
+	for _, c := range []struct {
+		args string
+		code int
+		says []string
+	}{
+		{"--on latitude", codeData, []string{"number in 12 of 13 cells", "Trial 9", "G10", `"c. 27"`}},
+		{"--on study", codeData, []string{"13 different texts in 13 studies"}},
+		{"--subgroups study", codeData, []string{"13 different entries", "--on"}},
+		{"--on converted", codeData, []string{"in all 13 studies"}},
+		{"--on allocation --reference allocation=quasi", codeData, []string{"quasi", "systematic"}},
+		{"--on year,allocation --effects common --where", codeCall, []string{"--where"}},
+		{"--on latitud", codeCall, []string{"no column of this sheet", "did you mean latitude?"}},
+		{"--subgroups alocation", codeCall, []string{"did you mean allocation?"}},
+		{"--on year --reference allocation=random", codeCall, []string{"no column of this regression", "year"}},
+		{"--on year --at latitude=3", codeCall, []string{"no covariate of this regression"}},
+		{"--on year --at year=soon", codeCall, []string{"soon", "not a number"}},
+		{"--on year --at year", codeCall, []string{"COLUMN=VALUE"}},
+		{"--on year --reference year", codeCall, []string{"COLUMN=CATEGORY"}},
+		{"--on year*year", codeCall, []string{"itself"}},
+		{"--on year --permutations 3", codeCall, []string{"100 to"}},
+		{"--on year --shared-tau", codeCall, []string{"--subgroups"}},
+		{"--subgroups allocation --at year=3", codeCall, []string{"--on"}},
+		{"", codeCall, []string{"--subgroups", "--on"}},
+	} {
+		stdout, stderr, code := call(t, "", append([]string{"explain", sheet}, strings.Fields(c.args)...)...)
+		if code != c.code {
+			t.Errorf("%s: exit %d, want %d (%s)", c.args, code, c.code, stderr)
+		}
+		text := strings.Join(strings.Fields(stdout+stderr), " ")
+		for _, part := range c.says {
+			if !strings.Contains(text, part) {
+				t.Errorf("%s: %q lacks %q", c.args, text, part)
+			}
+		}
+	}
+}
+
+// TestExplainIsTheSameForAnyWorkers: and for a seed.
+func TestExplainIsTheSameForAnyWorkers(t *testing.T) {
+	sheet := bcgAllocated(t, nil)
+	run := func(more ...string) string {
+		stdout, stderr, code := call(t, "", append([]string{"explain", sheet, "--measure", "odds ratio", "--on", "latitude*allocation", "--permutations", "300"}, more...)...)
+		if code != codeDone {
+			t.Fatalf("exit %d: %s", code, stderr)
+		}
+		return stdout
+	}
+	if one := run("--workers", "1"); one != run("--workers", "3") || one == run("--seed", "2") {
+		t.Error("the permutations depend on the workers, or not on the seed")
+	}
+}
+
+// TestGoldenExplain pins the form of the answer; the numbers are tested in
+// meta/explain.
+func TestGoldenExplain(t *testing.T) {
+	stdout, stderr, code := call(t, "", "explain", bcgAllocated(t, nil), "--measure", "odds ratio", "--on", "latitude*year, allocation", "--subgroups", "allocation", "--at", "latitude=60", "--reference", "allocation=systematic")
+	if code != codeDone {
+		t.Fatalf("exit %d: %s", code, stderr)
+	}
+	golden(t, "explain-bcg.txt", stdout)
+	for _, line := range strings.Split(stdout, "\n") {
+		if width(line) > 100 {
+			t.Errorf("%d columns: %s", width(line), line)
+		}
+	}
+}
