@@ -61,6 +61,11 @@ var chartKinds = []chartKind{
 		draw: laidOut(layout.NextTrialOf, layout.NextTrial),
 	},
 	{
+		name: "panel", usage: "is the effect large enough to matter, at each baseline risk", setting: "panel",
+		flags: []cli.Flag{earlierFlag()}, want: wantPanel,
+		draw: laidOut(layout.BenefitOf, layout.Benefit),
+	},
+	{
 		name: "prior-sensitivity", usage: "evidence by the width of a prior", setting: "pool", want: wanting(synthesis.Want{Beliefs: true}),
 		draw: laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity),
 	},

@@ -45,7 +45,7 @@ func parseBaselines(text string) ([]Baseline, error) {
 }
 
 // mostBaselines bounds the rows of a card.
-const mostBaselines = 20
+const mostBaselines = 12
 
 // parsePer1000 reads the important difference per 1000: one value is mirrored, two lie
 // on both sides of none.
