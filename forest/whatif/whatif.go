@@ -8,7 +8,7 @@ import (
 	"fmt"
 )
 
-//go:embed built script
+//go:embed built script/*.js
 var files embed.FS
 
 // Engine is what a page needs to recompute.

@@ -40,27 +40,21 @@ function digitsOf85() {
 }
 
 /**
- * Unpacks a file of the format .lzma (LZMA specification, version of 2015), with or
- * without a stated size.
+ * Unpacks a file of the format .lzma that ends in an end mark, as xz writes them (LZMA
+ * specification, version of 2015).
  * @param {Uint8Array} packed
  * @returns {Uint8Array}
  */
 function unpack(packed) {
   if (packed.length < 18 || packed[0] >= 225) throw new Error("the engine is not packed as expected");
-  const view = new DataView(packed.buffer, packed.byteOffset);
-  let stated = view.getUint32(5, true) + view.getUint32(9, true) * 2 ** 32;
-  if (stated > 2 ** 62) stated = -1;
-  return new Unpacker(packed, packed[0], stated).run();
+  return new Unpacker(packed).run();
 }
 
 class Unpacker {
-  /**
-   * @param {Uint8Array} packed
-   * @param {number} properties (pb · 5 + lp) · 9 + lc
-   * @param {number} size of what comes out; −1 when an end mark tells
-   */
-  constructor(packed, properties, size) {
+  /** @param {Uint8Array} packed */
+  constructor(packed) {
     this.packed = packed;
+    const properties = packed[0]; // (pb · 5 + lp) · 9 + lc
     this.at = 14; // behind the header and the first byte of the range coder, which is 0
     this.code = 0;
     this.range = 0xffffffff;
@@ -69,8 +63,7 @@ class Unpacker {
     const rest = Math.floor(properties / 9);
     this.lpMask = (1 << rest % 5) - 1;
     this.pbMask = (1 << Math.floor(rest / 5)) - 1;
-    this.size = size;
-    this.out = new Uint8Array(size >= 0 ? size : packed.length * 6);
+    this.out = new Uint8Array(packed.length * 6);
     this.literals = evens(0x300 << (this.lc + (rest % 5)));
     this.isMatch = evens(12 << 4);
     this.isRepeat = evens(12);
@@ -144,7 +137,7 @@ class Unpacker {
   /** @param {number} n */
   room(n) {
     if (n <= this.out.length) return;
-    if (this.size >= 0 || n > 1 << 27) throw new Error("the engine is larger than it says");
+    if (n > 1 << 27) throw new Error("the engine is larger than any");
     const larger = new Uint8Array(Math.max(n, this.out.length * 2));
     larger.set(this.out);
     this.out = larger;
@@ -183,7 +176,7 @@ class Unpacker {
     let state = 0;
     let at = 0;
     const last = [0, 0, 0, 0]; // distances, the latest first
-    while (at !== this.size) {
+    for (;;) {
       const place = at & this.pbMask;
       if (!this.bit(this.isMatch, (state << 4) + place)) {
         this.room(at + 1);

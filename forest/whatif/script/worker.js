@@ -14,7 +14,8 @@ const scope = self;
 /** @param {{code: string, data: string}} page */
 async function start(page) {
   const go = new scope.Go();
-  const { instance } = await WebAssembly.instantiate(unpack(fromText(page.code)), go.importObject);
+  const code = /** @type {Uint8Array<ArrayBuffer>} */ (unpack(fromText(page.code)));
+  const instance = await WebAssembly.instantiate(await WebAssembly.compile(code), go.importObject);
   go.run(instance); // runs on: it waits for questions
   const problem = scope.steelyardOpen(page.data);
   if (problem) throw new Error(problem);
