@@ -274,7 +274,7 @@ func (p *page) fitted(o *synthesis.Outcome, r *synthesis.RegressionResult) {
 			at = append(at, point.Covariate+" "+point.Level)
 		}
 		text := fmt.Sprintf("%s expected; %s predicted for the true effect of one setting", cells[0], cells[1])
-		if beyond := words.Beyond(r.Design, r.Points); beyond != "" {
+		if beyond := words.OutsideStudied(r.Design, r.Points); beyond != "" {
 			text += "; beyond what was studied: " + beyond
 		}
 		p.row("At", strings.Join(at, ", ")+": "+text)

@@ -117,9 +117,9 @@ func covariateNumber(c *explain.Covariate, x float64, digits int) string {
 	return text
 }
 
-// Beyond names the points that lie outside the studies' own range: "latitude 80 (the
+// OutsideStudied names the points that lie outside the studies' own range: "latitude 80 (the
 // studies: 13 to 55)"; blank if none does.
-func Beyond(d *explain.Design, points []explain.Point) string {
+func OutsideStudied(d *explain.Design, points []explain.Point) string {
 	var out []string
 	for _, c := range d.Covariates {
 		for _, p := range points {
