@@ -22,7 +22,7 @@ func (p *page) posterior(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	p.value("Spread τ", words.SpreadQuantiles(post.Tau), "median and "+level)
 	label := "Probability"
 	for _, t := range post.Thresholds {
-		p.row(label, words.Beyond(o, t))
+		p.row(label, words.ProbablyBeyond(o, t))
 		label = ""
 	}
 	p.line("")

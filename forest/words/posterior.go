@@ -36,9 +36,9 @@ func SpreadQuantiles(q bayes.Quantiles) string {
 	return WithInterval(Tau(q.Median), Tau(q.Low), Tau(q.High))
 }
 
-// Beyond says how probable an effect below a threshold is, or above it: below where the
+// ProbablyBeyond says how probable an effect below a threshold is, or above it: below where the
 // threshold lies below no effect or no other is stated.
-func Beyond(o *synthesis.Outcome, t synthesis.Beyond) string {
+func ProbablyBeyond(o *synthesis.Outcome, t synthesis.Beyond) string {
 	side, mean, setting := "below", t.Mean.Below, t.Setting.Below
 	if t.Value > o.Analysis.Model.Null {
 		side, mean, setting = "above", t.Mean.Above, t.Setting.Above
