@@ -65,7 +65,9 @@ const (
 // explained.
 func Settings() []Setting { return slices.Clone(settings) }
 
-var settings = []Setting{
+var settings = slices.Concat(analysisSettings, triggerSettings)
+
+var analysisSettings = []Setting{
 	choiceSetting(SettingMeasure, effect.MeasureNames(), "", "what the estimates measure; ratios are pooled as logarithms").
 		unless("from the sheet; for counts risk ratio, or odds ratio by a method for them; for means mean difference"),
 	choiceSetting(SettingEffects, meta.EffectsNames(), meta.RandomEffects.String(), "whether the studies' true effects vary around a mean or are one common effect").

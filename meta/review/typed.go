@@ -34,3 +34,6 @@ func (n Number) Typed() string {
 	}
 	return strconv.FormatFloat(n.Value, 'g', 4, 64)
 }
+
+// Exact returns a number with all the digits that it has.
+func Exact(x float64) string { return strconv.FormatFloat(x, 'g', -1, 64) }

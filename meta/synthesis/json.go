@@ -40,7 +40,7 @@ func planDocument(plan *review.Plan, outcome string) map[string]PlanDocument {
 	all := map[string]PlanDocument{}
 	for _, setting := range review.Settings() {
 		v := plan.Value(setting.Name, outcome)
-		if v.Text != "" {
+		if v.Text != "" && !(setting.Needs == review.Living && v.From == review.FromDefault) {
 			all[setting.Name] = PlanDocument{Value: v.Text, From: v.From.String(), Cell: v.Place.String(), Reason: v.Reason, Date: v.Date.String()}
 		}
 	}

@@ -1,0 +1,385 @@
+package words
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"steelyard/meta"
+	"steelyard/meta/evidence"
+	"steelyard/meta/review"
+	"steelyard/meta/synthesis"
+)
+
+// ChangeText is what differs between two states of a review, in words: for the text
+// answer, Markdown, and the section of a page.
+type ChangeText struct {
+	Conclusion string
+	Settings   []string // of the plan that have changed
+	Outcomes   []OutcomeChangeText
+}
+
+// OutcomeChangeText is what differs in one outcome. The rows of its tables have one
+// cell for each column that its doc names.
+type OutcomeChangeText struct {
+	Name     string     // blank where the sheet has one outcome without a name
+	Rows     []string   // which rows are new, removed or renamed, and which may be a second report
+	Cells    [][]string // study, cell, before, now
+	Results  [][]string // what, before, now
+	Weights  [][]string // study, before, now, change; empty where no weight moves by a tenth of a per cent
+	Guides   [][]string // number, before, now, guide
+	Triggers [][]string // trigger, verdict, what was found
+	Looks    string     // repeated looks; blank where they were not worked out
+}
+
+// Change words a change.
+func Change(c *synthesis.Change) ChangeText {
+	t := ChangeText{Conclusion: ChangeConclusion(c)}
+	for _, s := range c.Settings {
+		t.Settings = append(t.Settings, settingChange(s))
+	}
+	for i := range c.Outcomes {
+		t.Outcomes = append(t.Outcomes, outcomeChange(c, &c.Outcomes[i]))
+	}
+	return t
+}
+
+func settingChange(s synthesis.SettingChange) string {
+	text := fmt.Sprintf("%s: %s, before %s", s.Setting, orNone(s.After.Text), orNone(s.Before.Text))
+	if s.Outcome != "" {
+		text += ", for " + s.Outcome
+	}
+	if s.After.Reason != "" {
+		text += " (" + s.After.Reason + ")"
+	}
+	return text
+}
+
+func orNone(text string) string {
+	if text == "" {
+		return "none"
+	}
+	return text
+}
+
+// ChangeConclusion is the one sentence that ends a change report: that nothing
+// material changed, or what did.
+func ChangeConclusion(c *synthesis.Change) string {
+	if c.Nothing() {
+		return "Nothing has changed: sheet, plan and results are as before."
+	}
+	if !c.Material() {
+		return "Nothing material has changed: no trigger is met."
+	}
+	var parts []string
+	for i := range c.Outcomes {
+		o := &c.Outcomes[i]
+		var met []string
+		switch {
+		case o.Gained():
+			met = append(met, "there is a result for the first time")
+		case o.Lost():
+			met = append(met, "there is no result any more")
+		}
+		for _, t := range o.Met() {
+			met = append(met, fmt.Sprintf("%s is met (%s)", t.ID, t.ID.Title()))
+		}
+		if len(met) == 0 {
+			continue
+		}
+		text := strings.Join(met, ", ")
+		if len(c.Outcomes) > 1 && o.Name != "" {
+			text = o.Name + ": " + text
+		}
+		parts = append(parts, text)
+	}
+	return "Something material has changed. " + capital(strings.Join(parts, "; ")) + "."
+}
+
+func capital(text string) string {
+	for i, r := range text {
+		return strings.ToUpper(string(r)) + text[i+len(string(r)):]
+	}
+	return text
+}
+
+func outcomeChange(c *synthesis.Change, o *synthesis.OutcomeChange) OutcomeChangeText {
+	t := OutcomeChangeText{Name: o.Name, Rows: rowSentences(c, o), Looks: RepeatedLooks(o.Looks)}
+	for _, row := range o.Rows.Changed {
+		for _, cell := range row.Cells {
+			name := cell.Header
+			if at := cell.Place.Cell(); at != "" && cell.Place.Col > 0 {
+				name += " (" + at + ")"
+			}
+			t.Cells = append(t.Cells, []string{row.Study.Name, name, orBlank(cell.Before), orBlank(cell.After)})
+		}
+	}
+	t.Results = resultRows(o)
+	t.Weights = weightRows(o)
+	for _, g := range o.Guides {
+		t.Guides = append(t.Guides, guideRow(g))
+	}
+	for _, trigger := range o.Triggers {
+		t.Triggers = append(t.Triggers, []string{trigger.ID.String(), trigger.Verdict.String(), TriggerText(o, trigger)})
+	}
+	return t
+}
+
+func orBlank(text string) string {
+	if text == "" {
+		return "(blank)"
+	}
+	return text
+}
+
+// mostListed is how many rows of one kind a sentence names.
+const mostListed = 12
+
+// rowSentences says which rows differ, each kind in one sentence.
+func rowSentences(c *synthesis.Change, o *synthesis.OutcomeChange) []string {
+	noun := func(n int) string { return Number(n, "row", "rows") }
+	names := func(rows []*review.Study) string {
+		var all []string
+		for _, s := range rows {
+			all = append(all, s.Name)
+		}
+		return list(all)
+	}
+	r := &o.Rows
+	var all []string
+	switch {
+	case o.Current == nil:
+		all = append(all, "The outcome is gone from the sheet.")
+	case o.Previous == nil:
+		all = append(all, "The outcome is new.")
+	case !r.Any():
+		all = append(all, "No row has changed.")
+	}
+	if len(r.New) > 0 {
+		all = append(all, fmt.Sprintf("New: %s: %s.", noun(len(r.New)), names(r.New)))
+	}
+	if len(r.Removed) > 0 {
+		all = append(all, fmt.Sprintf("Removed: %s: %s.", noun(len(r.Removed)), names(r.Removed)))
+	}
+	for _, row := range r.Renamed {
+		by := "the same numbers"
+		if row.ByID {
+			by = "the same id"
+		}
+		all = append(all, fmt.Sprintf("Renamed: %s, before %s (%s).", row.Study.Name, row.Before, by))
+	}
+	for _, f := range r.SecondReports {
+		all = append(all, fmt.Sprintf("A second report of a known %s? %s (%s, rule %s): %s.", Noun(c.Current.Synthesis, 1), f.Study, f.Place, f.Rule, f.Message))
+	}
+	if o.Current != nil && o.Current.Result == nil {
+		all = append(all, "No result: "+o.Current.Problem)
+	}
+	return all
+}
+
+// list names some and counts the others.
+func list(all []string) string {
+	if more := len(all) - mostListed; more > 0 {
+		return strings.Join(all[:mostListed], ", ") + fmt.Sprintf(" and %d more", more)
+	}
+	return strings.Join(all, ", ")
+}
+
+// resultRows sets the results before and now side by side.
+func resultRows(o *synthesis.OutcomeChange) [][]string {
+	var rows [][]string
+	add := func(what string, of func(*synthesis.Outcome) string) {
+		cells := []string{what, Missing, Missing}
+		for i, state := range []*synthesis.Outcome{o.Previous, o.Current} {
+			if state != nil && state.Result != nil {
+				cells[i+1] = of(state)
+			}
+		}
+		if cells[1] != Missing || cells[2] != Missing {
+			rows = append(rows, cells)
+		}
+	}
+	add("studies", func(s *synthesis.Outcome) string { return Count(len(s.Studies)) })
+	add("participants", func(s *synthesis.Outcome) string {
+		if s.Counts.Participants == 0 {
+			return Missing
+		}
+		return Count(s.Counts.Participants)
+	})
+	add("effect", func(s *synthesis.Outcome) string {
+		m := s.Result.Fit.Mean
+		return Measure(s.Analysis.Measure) + " " + Reader(s, m.Estimate, meta.Limits{Low: m.Low, High: m.High})
+	})
+	add("spread τ", func(s *synthesis.Outcome) string { return Tau(math.Sqrt(s.Result.Fit.Mean.Tau2)) })
+	add("next setting", func(s *synthesis.Outcome) string {
+		if p := s.Result.Fit.Prediction; p != nil {
+			return ReaderInterval(s, meta.Limits{Low: p.Low, High: p.High})
+		}
+		return Missing
+	})
+	add("evidence", func(s *synthesis.Outcome) string {
+		if s.Analysis.NullMissing {
+			return Missing
+		}
+		r := s.Result.Fit.Mean.Evidence
+		return Evidence(r) + ", " + Strength(r)
+	})
+	for _, a := range o.Absolute {
+		row := []string{"per 1000, " + baselineText(a.Baseline), Missing, Missing}
+		if a.Before != nil {
+			d := a.Before.Difference
+			row[1] = Absolute(1000*d.Value, 1000*d.Low, 1000*d.High)
+		}
+		if a.After != nil {
+			d := a.After.Difference
+			row[2] = Absolute(1000*d.Value, 1000*d.Low, 1000*d.High)
+		}
+		rows = append(rows, row)
+	}
+	return rows
+}
+
+func baselineText(b review.Baseline) string {
+	text := "of " + Linear(1000*b.Risk, 0)
+	if b.Name != "" {
+		return b.Name + ", " + text
+	}
+	return text
+}
+
+// weightRows lists the weights, if any moves as it is shown.
+func weightRows(o *synthesis.OutcomeChange) [][]string {
+	var rows [][]string
+	moved := false
+	for _, w := range o.Weights {
+		row := []string{w.Study, Missing, Missing, ""}
+		if w.Before >= 0 {
+			row[1] = Weight(w.Before) + "%"
+		}
+		if w.After >= 0 {
+			row[2] = Weight(w.After) + "%"
+		}
+		switch {
+		case w.Before < 0:
+			row[3] = "new in the pool"
+		case w.After < 0:
+			row[3] = "left the pool"
+		default:
+			row[3] = signed(100*(w.After-w.Before), 1, "+")
+		}
+		moved = moved || row[1] != row[2]
+		rows = append(rows, row)
+	}
+	if !moved {
+		return nil
+	}
+	return rows
+}
+
+func guideRow(g synthesis.Guide) []string {
+	show := func(x float64) string {
+		if g.Share {
+			return Percent(x)
+		}
+		return Count(int(x))
+	}
+	bound := "any change"
+	if g.Bound > 0 {
+		bound = show(g.Bound)
+	}
+	if g.Crossed {
+		bound += ", crossed"
+	}
+	return []string{g.Name, show(g.Before), show(g.After), bound}
+}
+
+// TriggerText says what a trigger found.
+func TriggerText(o *synthesis.OutcomeChange, t synthesis.Trigger) string {
+	if t.Verdict == synthesis.TriggerNotJudged {
+		return t.ID.Title() + ": " + t.Why
+	}
+	text := t.ID.Title()
+	switch t.ID {
+	case synthesis.SignificanceTrigger:
+		text += ": " + againstNull(o, func(s *synthesis.Outcome) meta.Limits {
+			return meta.Limits{Low: s.Result.Fit.Mean.Low, High: s.Result.Fit.Mean.High}
+		})
+	case synthesis.PredictionTrigger:
+		text += ": " + againstNull(o, func(s *synthesis.Outcome) meta.Limits {
+			return meta.Limits{Low: s.Result.Fit.Prediction.Low, High: s.Result.Fit.Prediction.High}
+		})
+	case synthesis.EffectTrigger:
+		text += fmt.Sprintf(": by %s of its distance from no effect; %s", Percent(*t.After), bar(t, true))
+	case synthesis.InformationTrigger:
+		text += fmt.Sprintf(": %s; %s", Percent(*t.After), bar(t, true))
+	case synthesis.AbsoluteTrigger:
+		if t.Threshold != nil {
+			text += "; " + bar(t, false) + " per 1000"
+		}
+		text += named(t)
+	default:
+		text += named(t)
+	}
+	return text
+}
+
+func named(t synthesis.Trigger) string {
+	if len(t.Named) == 0 {
+		return ""
+	}
+	return ": " + list(t.Named)
+}
+
+// bar names the threshold of a trigger and where it came from.
+func bar(t synthesis.Trigger, share bool) string {
+	text := t.Threshold.Text
+	if x, err := review.TriggerNumber(text); err == nil && share {
+		text = Percent(x)
+	}
+	return fmt.Sprintf("threshold %s (%s)", text, t.Threshold.From)
+}
+
+func againstNull(o *synthesis.OutcomeChange, of func(*synthesis.Outcome) meta.Limits) string {
+	side := func(s *synthesis.Outcome) string {
+		l, null := of(s), s.Analysis.Model.Null
+		if l.Low > null || l.High < null {
+			return "leaves no effect out"
+		}
+		return "holds no effect"
+	}
+	before, now := side(o.Previous), side(o.Current)
+	if before == now {
+		return "it " + now + ", as before"
+	}
+	return "it " + now + " now, and did not before"
+}
+
+// RepeatedLooks says how often a living review has looked, and what so many looks show
+// by chance; blank for nil.
+func RepeatedLooks(r *synthesis.RepeatedLooks) string {
+	if r == nil {
+		return ""
+	}
+	text := fmt.Sprintf("The review has looked %s, %s of them with new studies.", times(r.Times), Count(r.Looks))
+	if r.Times == 1 {
+		text = "The review has looked once."
+	}
+	if r.Why != "" {
+		return text + " What repeated looks show by chance is not simulated: " + r.Why + "."
+	}
+	var parts []string
+	worst := 0.0
+	for _, c := range r.Chances {
+		parts = append(parts, fmt.Sprintf("%s with τ %s (%s at the last look alone)", Probability(c.AnyLook.Value), Tau(math.Sqrt(c.Tau2)), Probability(c.LastLook.Value)))
+		worst = max(worst, c.AnyLook.Error, c.LastLook.Error)
+	}
+	return text + fmt.Sprintf(" Were there no effect, the chance that so many looks alone reach %s (%s), as the review has, at one of them: %s; %s simulated sequences, standard error at most %s percentage points.",
+		Odds(float64(r.Reached)*evidence.LnStep), Number(r.Reached, "step", "steps"), strings.Join(parts, ", "), Count(r.Sequences), Linear(100*worst, 1))
+}
+
+func times(n int) string {
+	if n == 1 {
+		return "once"
+	}
+	return Count(n) + " times"
+}
