@@ -4,7 +4,6 @@ import (
 	"context"
 	"errors"
 	"fmt"
-	"io/fs"
 	"maps"
 	"path/filepath"
 	"slices"
@@ -30,47 +29,11 @@ type Options struct {
 // NAME.judgement.csv beside a text file. The error is a *grid.FileError, a
 // *HeaderError, a *SheetError, a *ColumnError or wraps ErrNoStudies.
 func Open(ctx context.Context, path string, o Options) (*review.Extraction, *review.Plan, error) {
-	book, err := grid.Open(ctx, path)
+	files, err := Load(ctx, path)
 	if err != nil {
 		return nil, nil, err
 	}
-	var with beside
-	if book.Text {
-		if with, err = openBeside(ctx, path); err != nil {
-			return nil, nil, err
-		}
-	}
-	x, p, err := read(ctx, book, with, o)
-	var unknown *HeaderError
-	if errors.As(err, &unknown) {
-		unknown.Call = Call{Path: path, Sheet: o.Sheet}
-	}
-	return x, p, err
-}
-
-// beside holds the books of the files beside a text file, nil where there is none.
-type beside struct{ plan, judgement *grid.Book }
-
-// openBeside reads the plan and the judgements beside a text file.
-func openBeside(ctx context.Context, path string) (beside, error) {
-	var with beside
-	for _, one := range []struct {
-		to                  **grid.Book
-		path                string
-		what, head, without string
-	}{
-		{&with.plan, planPath(path), "the plan", "setting and value", "a plan"},
-		{&with.judgement, judgementPath(path), "the file of judgements", "outcome, domain, rating and reason", "judgements"},
-	} {
-		book, err := grid.Open(ctx, one.path)
-		if err != nil && !errors.Is(err, fs.ErrNotExist) {
-			return beside{}, besideError(err, one.what, one.head, one.without)
-		}
-		if err == nil {
-			*one.to = book
-		}
-	}
-	return with, nil
+	return files.Read(ctx, path, o)
 }
 
 // Read reads a file's bytes like Open; name serves for messages. A text file has
@@ -81,18 +44,6 @@ func Read(ctx context.Context, data []byte, name string, o Options) (*review.Ext
 		return nil, nil, err
 	}
 	return read(ctx, book, beside{}, o)
-}
-
-// besideError says of an empty file beside a sheet what belongs into it.
-func besideError(err error, what, head, without string) error {
-	var file *grid.FileError
-	if errors.As(err, &file) && file.Problem == "is empty" {
-		empty := *file
-		empty.Problem = what + " beside the sheet is empty"
-		empty.Remedy = "write " + head + " above its rows, or delete the file to go without " + without
-		return &empty
-	}
-	return err
 }
 
 // planPath returns the name of the plan beside a text file: "trials.plan.csv" for

@@ -17,6 +17,12 @@ const mostFindings = 10
 // answer returns the answer of a synthesis.
 func answer(s *synthesis.Synthesis) *page {
 	var p page
+	p.answer(s)
+	return &p
+}
+
+// answer writes the answer of a synthesis.
+func (p *page) answer(s *synthesis.Synthesis) {
 	for i := range s.Outcomes {
 		if i > 0 {
 			p.line("")
@@ -29,7 +35,6 @@ func answer(s *synthesis.Synthesis) *page {
 	for _, c := range s.Cautions {
 		p.item("·", c)
 	}
-	return &p
 }
 
 // outcome writes one outcome: what was pooled, how large, how sure, how strong.

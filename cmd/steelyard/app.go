@@ -33,7 +33,8 @@ func run(ctx context.Context, args []string, s streams) int {
 		return codeInterrupted
 	}
 	var partial *rowsLeftOut
-	if err != nil && !errors.As(err, &partial) {
+	var trigger *triggered
+	if err != nil && !errors.As(err, &partial) && !errors.As(err, &trigger) {
 		fmt.Fprintf(s.err, "steelyard: %s\n", err)
 	}
 	return exitCode(err)
@@ -53,7 +54,7 @@ func newApp(s streams) *cli.App {
 		Commands: slices.Concat(
 			[]*cli.Command{checkCommand(), poolCommand()},
 			accrualCommands(),
-			[]*cli.Command{explainCommand(), smallStudyCommand(), panelCommand(), weighCommand(), chartCommand(), reportCommand(), templateCommand()},
+			[]*cli.Command{explainCommand(), smallStudyCommand(), panelCommand(), weighCommand(), livingCommand(), chartCommand(), reportCommand(), templateCommand()},
 		),
 		Action: func(c *cli.Context) error {
 			if c.NArg() > 0 {

@@ -134,7 +134,7 @@ func drawChart(c *cli.Context, kind chartKind) error {
 	if err != nil {
 		return err
 	}
-	style, err := chartStyle(c)
+	style, err := chartStyle(c, out)
 	if err != nil {
 		return err
 	}
@@ -191,7 +191,7 @@ func inkFor(out string) (string, error) {
 }
 
 // chartStyle reads the flags on how a chart looks.
-func chartStyle(c *cli.Context) (layout.Style, error) {
+func chartStyle(c *cli.Context, out string) (layout.Style, error) {
 	style := layout.Style{NoTitle: c.Bool(flagNoTitle)}
 	switch width := c.Int(flagWidth); width {
 	case 180:
@@ -200,7 +200,7 @@ func chartStyle(c *cli.Context) (layout.Style, error) {
 	default:
 		return style, &callError{fmt.Sprintf("--width %d: charts are 180 mm wide, for a page, or 85 mm, for a column", width)}
 	}
-	if ending := strings.ToLower(filepath.Ext(c.String(flagOut))); c.IsSet(flagDPI) && ending != ".png" {
+	if ending := strings.ToLower(filepath.Ext(out)); c.IsSet(flagDPI) && ending != ".png" {
 		return style, &callError{fmt.Sprintf("--dpi is for .png; %s is sharp at any size", ending)}
 	}
 	if dpi := c.Int(flagDPI); dpi < 50 || dpi > 1200 {

@@ -17,6 +17,7 @@ const (
 	codeData        = 1
 	codeCall        = 2
 	codeFile        = 3
+	codeTrigger     = 4
 	codeInterrupted = 130
 )
 
@@ -43,6 +44,7 @@ func exitCode(err error) int {
 	var file *fileError
 	var path *fs.PathError
 	var unreadable *grid.FileError
+	var trigger *triggered
 	var large *forest.TooLargeError
 	var exit cli.ExitCoder
 	switch {
@@ -50,6 +52,8 @@ func exitCode(err error) int {
 		return codeDone
 	case errors.Is(err, context.Canceled):
 		return codeInterrupted
+	case errors.As(err, &trigger):
+		return codeTrigger
 	case errors.As(err, &call), errors.As(err, &large):
 		return codeCall
 	case errors.As(err, &file), errors.As(err, &path), errors.As(err, &unreadable):

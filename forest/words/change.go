@@ -221,8 +221,13 @@ func resultRows(o *synthesis.OutcomeChange) [][]string {
 		if s.Analysis.NullMissing {
 			return Missing
 		}
-		r := s.Result.Fit.Mean.Evidence
-		return Evidence(r) + ", " + Strength(r)
+		return Evidence(s.Result.Fit.Mean.Evidence)
+	})
+	add("strength", func(s *synthesis.Outcome) string {
+		if s.Analysis.NullMissing {
+			return Missing
+		}
+		return Strength(s.Result.Fit.Mean.Evidence)
 	})
 	for _, a := range o.Absolute {
 		row := []string{"per 1000, " + baselineText(a.Baseline), Missing, Missing}
@@ -343,15 +348,15 @@ func againstNull(o *synthesis.OutcomeChange, of func(*synthesis.Outcome) meta.Li
 	side := func(s *synthesis.Outcome) string {
 		l, null := of(s), s.Analysis.Model.Null
 		if l.Low > null || l.High < null {
-			return "leaves no effect out"
+			return "excludes no effect"
 		}
-		return "holds no effect"
+		return "includes no effect"
 	}
 	before, now := side(o.Previous), side(o.Current)
 	if before == now {
-		return "it " + now + ", as before"
+		return "the interval " + now + ", as before"
 	}
-	return "it " + now + " now, and did not before"
+	return "the interval " + now + " now, and did not before"
 }
 
 // RepeatedLooks says how often a living review has looked, and what so many looks show
@@ -360,9 +365,12 @@ func RepeatedLooks(r *synthesis.RepeatedLooks) string {
 	if r == nil {
 		return ""
 	}
-	text := fmt.Sprintf("The review has looked %s, %s of them with new studies.", times(r.Times), Count(r.Looks))
-	if r.Times == 1 {
+	text := fmt.Sprintf("The review has looked %s, at new studies each time.", times(r.Times))
+	switch {
+	case r.Times == 1:
 		text = "The review has looked once."
+	case r.Looks < r.Times:
+		text = fmt.Sprintf("The review has looked %s, of which %s brought new studies to two or more in all.", times(r.Times), Count(r.Looks))
 	}
 	if r.Why != "" {
 		return text + " What repeated looks show by chance is not simulated: " + r.Why + "."
@@ -370,16 +378,29 @@ func RepeatedLooks(r *synthesis.RepeatedLooks) string {
 	var parts []string
 	worst := 0.0
 	for _, c := range r.Chances {
-		parts = append(parts, fmt.Sprintf("%s with τ %s (%s at the last look alone)", Probability(c.AnyLook.Value), Tau(math.Sqrt(c.Tau2)), Probability(c.LastLook.Value)))
+		parts = append(parts, fmt.Sprintf("%s with τ %s (%s at the last look alone)", simulated(c.AnyLook.Value, r.Sequences), Tau(math.Sqrt(c.Tau2)), simulated(c.LastLook.Value, r.Sequences)))
 		worst = max(worst, c.AnyLook.Error, c.LastLook.Error)
 	}
 	return text + fmt.Sprintf(" Were there no effect, the chance that so many looks alone reach %s (%s), as the review has, at one of them: %s; %s simulated sequences, standard error at most %s percentage points.",
 		Odds(float64(r.Reached)*evidence.LnStep), Number(r.Reached, "step", "steps"), strings.Join(parts, ", "), Count(r.Sequences), Linear(100*worst, 1))
 }
 
+// simulated words a simulated chance. Of one that never happened in n sequences the
+// upper limit is given by the rule of three: Hanley & Lippman-Hand (1983), JAMA
+// 249:1743-1745.
+func simulated(p float64, n int) string {
+	if p == 0 {
+		return "under " + Probability(3/float64(n))
+	}
+	return Probability(p)
+}
+
 func times(n int) string {
-	if n == 1 {
+	switch n {
+	case 1:
 		return "once"
+	case 2:
+		return "twice"
 	}
 	return Count(n) + " times"
 }

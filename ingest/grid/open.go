@@ -15,6 +15,16 @@ import (
 
 // Open reads the file at path, see Read. "-" has no special meaning here.
 func Open(ctx context.Context, path string) (*Book, error) {
+	data, err := Load(ctx, path)
+	if err != nil {
+		return nil, err
+	}
+	return Read(ctx, data, filepath.Base(path))
+}
+
+// Load returns the bytes of the file at path, at most MaxFileBytes. The error is a
+// *FileError.
+func Load(ctx context.Context, path string) ([]byte, error) {
 	name := filepath.Base(path)
 	info, err := os.Stat(path)
 	if err != nil {
@@ -34,16 +44,20 @@ func Open(ctx context.Context, path string) (*Book, error) {
 		return nil, openError(name, err)
 	}
 	defer f.Close()
-	return readSized(ctx, f, name, info.Size())
+	return loadSized(ctx, f, name, info.Size())
 }
 
 // ReadFrom reads r to its end, see Read. It stops at MaxFileBytes.
 func ReadFrom(ctx context.Context, r io.Reader, name string) (*Book, error) {
-	return readSized(ctx, r, name, 0)
+	data, err := loadSized(ctx, r, name, 0)
+	if err != nil {
+		return nil, err
+	}
+	return Read(ctx, data, name)
 }
 
-// readSized reads r, of which size is the length if it is known.
-func readSized(ctx context.Context, r io.Reader, name string, size int64) (*Book, error) {
+// loadSized reads r, of which size is the length if it is known.
+func loadSized(ctx context.Context, r io.Reader, name string, size int64) ([]byte, error) {
 	var data bytes.Buffer
 	data.Grow(int(size) + bytes.MinRead)
 	_, err := data.ReadFrom(io.LimitReader(contextReader{ctx, r}, MaxFileBytes+1))
@@ -53,7 +67,7 @@ func readSized(ctx context.Context, r io.Reader, name string, size int64) (*Book
 	case err != nil:
 		return nil, &FileError{File: filepath.Base(name), Problem: "cannot be read: " + err.Error(), Remedy: "check the disk or the connection and try again", Err: err}
 	}
-	return Read(ctx, data.Bytes(), name)
+	return data.Bytes(), nil
 }
 
 func tooLarge(name string) *FileError {

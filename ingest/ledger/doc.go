@@ -26,7 +26,8 @@
 //     state it is 64 zeros.
 //   - RECORD is a JSON object without line ends; see [Record].
 //   - STUDIES is a JSON list with an entry for each result of the record: the list of
-//     its pooled studies, each as ["name", estimate, standard error, weight].
+//     its pooled studies, each as ["name", estimate, standard error, weight], with "id"
+//     as a fifth where the sheet has one.
 //   - CHECKSUM is the SHA-256, in lower-case hexadecimal digits, of all that follows
 //     the first tab, the line end apart.
 //

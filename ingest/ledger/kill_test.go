@@ -35,7 +35,7 @@ func updateForever(dir string) int {
 	for i := 1; ; i++ {
 		e := entry(i)
 		e.Record.Note = strings.Repeat("a long note ", 400)
-		e.Sheet.Data = append(e.Sheet.Data, strconv.Itoa(os.Getpid())...)
+		e.Files.Sheet.Data = append(e.Files.Sheet.Data, strconv.Itoa(os.Getpid())...)
 		var state *State
 		_, err := Open(dir)
 		if err != nil {

@@ -12,6 +12,7 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+	"syscall"
 )
 
 const fileName = "steelyard.ledger"
@@ -80,7 +81,7 @@ func Find(dir string) (string, error) {
 // ledger, or the system's error; whatever else is wrong is in Problems.
 func Open(dir string) (*Ledger, error) {
 	f, err := os.Open(filepath.Join(dir, fileName))
-	if errors.Is(err, fs.ErrNotExist) || errors.Is(err, fs.ErrInvalid) {
+	if errors.Is(err, fs.ErrNotExist) || errors.Is(err, syscall.ENOTDIR) {
 		return nil, &NoLedgerError{Dir: dir}
 	}
 	if err != nil {

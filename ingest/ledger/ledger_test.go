@@ -12,6 +12,8 @@ import (
 	"syscall"
 	"testing"
 	"time"
+
+	"steelyard/ingest"
 )
 
 // sheetText is an input sheet of one study; n tells sheets apart.
@@ -21,7 +23,7 @@ func entry(n int) Entry {
 	return Entry{
 		Record:  Record{At: fmt.Sprintf("2026-01-02T03:%02d:%02dZ", n/60%60, n%60), Program: "0.1", Note: fmt.Sprintf("note %d", n), Results: []OutcomeRecord{}},
 		Studies: [][]StudyShare{},
-		Sheet:   File{Name: "t.csv", Data: sheetText(n)},
+		Files:   &ingest.Files{Sheet: ingest.File{Name: "t.csv", Data: sheetText(n)}},
 	}
 }
 
@@ -93,7 +95,7 @@ func TestFormat(t *testing.T) {
 	_, err := Start(t.Context(), dir, "test", Entry{
 		Record:  Record{At: "2026-01-02T03:04:05Z", Program: "0.1", By: "Ada <a@b>", Note: "a\nb & c", Results: []OutcomeRecord{}},
 		Studies: [][]StudyShare{{{Study: "A", Estimate: 1, SE: 0.5, Weight: 1}}},
-		Sheet:   File{Name: "t.csv", Data: sheetText(1)},
+		Files:   &ingest.Files{Sheet: ingest.File{Name: "t.csv", Data: sheetText(1)}},
 	})
 	if err != nil {
 		t.Fatal(err)
@@ -448,7 +450,7 @@ func TestWriteFails(t *testing.T) {
 		if left, _ := filepath.Glob(filepath.Join(dir, "sheets", ".steelyard-*")); len(left) > 0 {
 			t.Errorf("left behind: %v", left)
 		}
-		if err := os.RemoveAll(filepath.Join(dir, entry(7).Sheet.stored().path())); err != nil {
+		if err := os.RemoveAll(filepath.Join(dir, stored(entry(7).Files.Sheet).path())); err != nil {
 			t.Fatal(err)
 		}
 	}

@@ -25,9 +25,21 @@ type Record struct {
 // Input is all that the results were computed from, so that they can be computed
 // again.
 type Input struct {
-	Sheet Stored  `json:"sheet"`
-	Plan  *Stored `json:"plan,omitempty"` // the plan beside a text file
-	Call  Call    `json:"call"`
+	Sheet     Stored  `json:"sheet"`
+	Plan      *Stored `json:"plan,omitempty"`      // the plan beside a text file
+	Judgement *Stored `json:"judgement,omitempty"` // a panel's judgements beside a text file
+	Call      Call    `json:"call"`
+}
+
+// files returns the stored files of the input.
+func (in *Input) files() []Stored {
+	all := []Stored{in.Sheet}
+	for _, s := range []*Stored{in.Plan, in.Judgement} {
+		if s != nil {
+			all = append(all, *s)
+		}
+	}
+	return all
 }
 
 // Stored names a file of the folder "sheets".
@@ -77,27 +89,33 @@ type PooledRow struct {
 	LnEvidence  *float64 `json:"ln_evidence,omitempty"`
 }
 
-// StudyShare is a pooled study: its own estimate on the analysis scale, and its
-// weight, a fraction.
+// StudyShare is a pooled study: its own estimate on the analysis scale, its weight, a
+// fraction, and its id where the sheet has one.
 type StudyShare struct {
 	Study                string
 	Estimate, SE, Weight float64
+	ID                   string
 }
 
 // MarshalJSON writes the study as a list.
 func (s StudyShare) MarshalJSON() ([]byte, error) {
-	return json.Marshal([]any{s.Study, s.Estimate, s.SE, s.Weight})
+	fields := []any{s.Study, s.Estimate, s.SE, s.Weight}
+	if s.ID != "" {
+		fields = append(fields, s.ID)
+	}
+	return json.Marshal(fields)
 }
 
 // UnmarshalJSON reads what MarshalJSON writes.
 func (s *StudyShare) UnmarshalJSON(text []byte) error {
-	fields := []any{&s.Study, &s.Estimate, &s.SE, &s.Weight}
-	want := len(fields)
+	*s = StudyShare{}
+	fields := []any{&s.Study, &s.Estimate, &s.SE, &s.Weight, &s.ID}
+	most := len(fields)
 	if err := json.Unmarshal(text, &fields); err != nil {
 		return err
 	}
-	if len(fields) != want {
-		return fmt.Errorf("a study has %d fields, not %d", want, len(fields))
+	if len(fields) < most-1 || len(fields) > most {
+		return fmt.Errorf("a study has %d or %d fields, not %d", most-1, most, len(fields))
 	}
 	return nil
 }
@@ -113,7 +131,7 @@ func ResultsOf(s *synthesis.Synthesis) (results []OutcomeRecord, studies [][]Stu
 		if o.Result != nil {
 			r.Measure, r.Pooled = o.Analysis.Measure.String(), pooledRow(o)
 			for _, study := range o.Studies {
-				shares = append(shares, StudyShare{Study: study.Source.Name, Estimate: study.Estimate.Y, SE: study.Estimate.SE, Weight: study.Weight})
+				shares = append(shares, StudyShare{Study: study.Source.Name, Estimate: study.Estimate.Y, SE: study.Estimate.SE, Weight: study.Weight, ID: study.Source.ID})
 			}
 		}
 		results, studies = append(results, r), append(studies, shares)

@@ -10,20 +10,15 @@ import (
 	"slices"
 	"strings"
 
+	"steelyard/ingest"
 	"steelyard/ingest/grid"
 )
 
 // sheetsName is the folder of the input sheets.
 const sheetsName = "sheets"
 
-// File is an input file: the base name under which it was read, and its bytes.
-type File struct {
-	Name string
-	Data []byte
-}
-
-// stored returns how a record names the file.
-func (f File) stored() Stored { return Stored{File: f.Name, SHA256: checksum(f.Data)} }
+// stored returns how a record names a file.
+func stored(f ingest.File) Stored { return Stored{File: f.Name, SHA256: checksum(f.Data)} }
 
 // path returns where the file stands below the ledger's folder, by its content.
 func (s Stored) path() string {
@@ -52,26 +47,26 @@ func (e *SheetError) Unwrap() error { return e.Err }
 // Sheet returns an input file as it was when it was stored. Line ends that version
 // control has changed in a text file are changed back. It returns a *SheetError if
 // the file is missing, or is another.
-func (l *Ledger) Sheet(s Stored) (File, error) {
+func (l *Ledger) Sheet(s Stored) (ingest.File, error) {
 	if len(s.SHA256) != len(root) || strings.Trim(s.SHA256, "0123456789abcdef") != "" {
-		return File{}, &SheetError{Stored: Stored{File: s.File}, Problem: "its record names no checksum"}
+		return ingest.File{}, &SheetError{Stored: Stored{File: s.File}, Problem: "its record names no checksum"}
 	}
 	path := filepath.Join(l.Dir, s.path())
 	info, err := os.Stat(path)
 	switch {
 	case errors.Is(err, fs.ErrNotExist):
-		return File{}, &SheetError{Stored: s, Problem: "the input sheet is missing", Err: err}
+		return ingest.File{}, &SheetError{Stored: s, Problem: "the input sheet is missing", Err: err}
 	case err == nil && (!info.Mode().IsRegular() || info.Size() > 2*grid.MaxFileBytes):
-		return File{}, &SheetError{Stored: s, Problem: "it is no file of an input sheet's size"}
+		return ingest.File{}, &SheetError{Stored: s, Problem: "it is no file of an input sheet's size"}
 	}
 	data, err := os.ReadFile(path)
 	if err != nil {
-		return File{}, &SheetError{Stored: s, Problem: "the input sheet cannot be read", Err: err}
+		return ingest.File{}, &SheetError{Stored: s, Problem: "the input sheet cannot be read", Err: err}
 	}
 	if data, ok := restored(data, s.SHA256); ok {
-		return File{Name: s.File, Data: data}, nil
+		return ingest.File{Name: s.File, Data: data}, nil
 	}
-	return File{}, &SheetError{Stored: s, Problem: "the input sheet has been changed since it was stored"}
+	return ingest.File{}, &SheetError{Stored: s, Problem: "the input sheet has been changed since it was stored"}
 }
 
 // restored returns the bytes that have the checksum: the data, or the data with
@@ -89,8 +84,8 @@ func restored(data []byte, sum string) ([]byte, bool) {
 }
 
 // store writes an input file by its content unless it stands there already.
-func (s *Store) store(f File) (Stored, error) {
-	name := f.stored()
+func (s *Store) store(f ingest.File) (Stored, error) {
+	name := stored(f)
 	path := filepath.Join(s.dir, name.path())
 	if have, err := os.ReadFile(path); err == nil && checksum(have) == name.SHA256 {
 		return name, nil

@@ -9,6 +9,8 @@ import (
 	"os"
 	"path/filepath"
 	"strings"
+
+	"steelyard/ingest"
 )
 
 // Store is a ledger held for writing; no other process writes until it is closed.
@@ -25,8 +27,7 @@ type Store struct {
 type Entry struct {
 	Record  Record
 	Studies [][]StudyShare // of each of the record's results
-	Sheet   File
-	Plan    *File // beside a text file; nil if there is none
+	Files   *ingest.Files
 }
 
 const (
@@ -146,15 +147,24 @@ func (s *Store) Append(e Entry) (state *State, setAside string, err error) {
 // fill stores the input files and names them in the record.
 func (s *Store) fill(e *Entry) error {
 	var err error
-	if e.Record.Input.Sheet, err = s.store(e.Sheet); err != nil {
+	in := &e.Record.Input
+	if in.Sheet, err = s.store(e.Files.Sheet); err != nil {
 		return err
 	}
-	if e.Plan == nil {
-		return nil
+	for _, one := range []struct {
+		file *ingest.File
+		to   **Stored
+	}{{e.Files.Plan, &in.Plan}, {e.Files.Judgement, &in.Judgement}} {
+		if one.file == nil {
+			continue
+		}
+		name, err := s.store(*one.file)
+		if err != nil {
+			return err
+		}
+		*one.to = &name
 	}
-	plan, err := s.store(*e.Plan)
-	e.Record.Input.Plan = &plan
-	return err
+	return nil
 }
 
 // putAside copies an unfinished last line into a file of its own, makes that

@@ -75,11 +75,7 @@ func (l *Ledger) Verify(ctx context.Context) ([]Problem, error) {
 	seen := map[Stored]bool{}
 	for i := range l.States {
 		s := &l.States[i]
-		files := []Stored{s.Record.Input.Sheet}
-		if s.Record.Input.Plan != nil {
-			files = append(files, *s.Record.Input.Plan)
-		}
-		for _, file := range files {
+		for _, file := range s.Record.Input.files() {
 			if err := ctx.Err(); err != nil {
 				return nil, err
 			}

@@ -6,7 +6,6 @@ import "fmt"
 // update.
 const (
 	SettingTriggerEffect      = "trigger-effect"
-	SettingTriggerAbsolute    = "trigger-absolute"
 	SettingTriggerInformation = "trigger-information"
 	SettingTriggerPeople      = "trigger-people"
 	SettingTriggerScatter     = "trigger-scatter"
@@ -22,7 +21,6 @@ const Living = "living"
 // 10.10.2; the others are this program's own.
 var triggerSettings = []Setting{
 	freeSetting(SettingTriggerEffect, "0.5", "T2: change of the effect, as a share of its distance from no effect on the analysis scale", "a number above 0", checkTrigger).of(Living),
-	freeSetting(SettingTriggerAbsolute, "", "T3: absolute difference that matters, fewer or more, at each baseline risk", "per 1000 people, such as 10", checkTrigger).of(Living),
 	freeSetting(SettingTriggerInformation, "0.2", "T6: share of the pooled weight that new studies carry", "a number above 0", checkTrigger).of(Living),
 	freeSetting(SettingTriggerPeople, "400", "T4: participants beyond which their number alone is no reason for imprecision", "people", checkTrigger).of(Living),
 	freeSetting(SettingTriggerScatter, "0.5", "T4: I² from which the studies are taken for inconsistent", "a fraction", checkTrigger).of(Living),

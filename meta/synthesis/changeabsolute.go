@@ -15,14 +15,28 @@ type AbsoluteChange struct {
 	Before, After *panel.Absolute
 }
 
-// absolute works out the absolute effects at the baselines of the plan.
+// absolute works out the absolute effects at the baselines of the plan, else at the
+// median risk of the control arms of today.
 func (o *OutcomeChange) absolute(plan *review.Plan) []AbsoluteChange {
 	asked, err := plan.Analysis(o.Name)
 	if err != nil { // the results say so
 		return nil
 	}
+	baselines := asked.Panel.Baselines
+	if len(baselines) == 0 {
+		latest := o.Current
+		if !o.hasResult() {
+			latest = o.Previous
+		}
+		if latest == nil || latest.Result == nil {
+			return nil
+		}
+		if m := latest.medianRisk(); m != nil {
+			baselines = []review.Baseline{{Name: MedianBaseline, Risk: m.Risk}}
+		}
+	}
 	var all []AbsoluteChange
-	for _, b := range asked.Baselines {
+	for _, b := range baselines {
 		change := AbsoluteChange{Baseline: b}
 		if o.hadResult() {
 			change.Before = o.Previous.absoluteAt(b.Risk)
@@ -53,17 +67,31 @@ func (a *AbsoluteChange) comparable() bool { return a.Before != nil && a.After !
 // per is the number of people in which differences are counted.
 const per = 1000
 
-// crossed names the side on which the absolute difference crossed a threshold per
-// 1000 people.
-func (a *AbsoluteChange) crossed(threshold float64) []string {
+// per1000Limits returns the important difference per 1000 of the plan on both sides of
+// none.
+func per1000Limits(plan *review.Plan, outcome string) []float64 {
+	asked, err := plan.Analysis(outcome)
+	switch limits := asked.Panel.Per1000; {
+	case err != nil || len(limits) == 0:
+		return nil
+	case len(limits) == 1:
+		return []float64{-math.Abs(limits[0]), math.Abs(limits[0])}
+	default:
+		return limits
+	}
+}
+
+// crossed names the limits per 1000 people that the absolute difference crossed.
+func (a *AbsoluteChange) crossed(limits []float64) []string {
 	var named []string
 	before, now := per*a.Before.Difference.Value, per*a.After.Difference.Value
-	for _, side := range []struct {
-		bound float64
-		word  string
-	}{{-threshold, "fewer"}, {threshold, "more"}} {
-		if (before < side.bound) != (now < side.bound) {
-			named = append(named, fmt.Sprintf("%g %s per 1000 at %s", threshold, side.word, a.Name()))
+	for _, limit := range limits {
+		word := "more"
+		if limit < 0 {
+			word = "fewer"
+		}
+		if (before < limit) != (now < limit) {
+			named = append(named, fmt.Sprintf("%g %s per 1000 at %s", math.Abs(limit), word, a.Name()))
 		}
 	}
 	return named
@@ -72,6 +100,9 @@ func (a *AbsoluteChange) crossed(threshold float64) []string {
 // Name calls the baseline by its name and its risk per 1000.
 func (a *AbsoluteChange) Name() string {
 	risk := fmt.Sprintf("%.3g per 1000", per*a.Baseline.Risk)
+	if a.Baseline.Name == MedianBaseline {
+		return "the " + MedianBaseline + ", " + risk
+	}
 	if a.Baseline.Name == "" {
 		return "a baseline risk of " + risk
 	}

@@ -1,7 +1,6 @@
 package synthesis
 
 import (
-	"steelyard/meta/panel"
 	"steelyard/meta/review"
 )
 
@@ -9,7 +8,7 @@ import (
 const ChangeFormat = "steelyard-change/1"
 
 // ChangeDocument is the JSON of a change report. Estimates are on the analysis scale,
-// weights and other shares are fractions, absolute effects are fractions of people;
+// weights and other shares are fractions, absolute differences are per 1000 people;
 // what does not apply is absent.
 type ChangeDocument struct {
 	Format     string                  `json:"format"`
@@ -126,19 +125,12 @@ type WeightChangeDocument struct {
 	After  *float64 `json:"after,omitempty"`
 }
 
-// AbsoluteChangeDocument is the difference from a baseline risk.
+// AbsoluteChangeDocument is what the effect means at a baseline risk.
 type AbsoluteChangeDocument struct {
-	Name     string         `json:"name,omitempty"`
-	Baseline float64        `json:"baseline"`
-	Before   *RangeDocument `json:"before,omitempty"`
-	After    *RangeDocument `json:"after,omitempty"`
-}
-
-// RangeDocument is a value with its limits.
-type RangeDocument struct {
-	Value float64 `json:"value"`
-	Low   float64 `json:"low"`
-	High  float64 `json:"high"`
+	Name     string            `json:"name,omitempty"`
+	Baseline float64           `json:"baseline"`
+	Before   *AbsoluteDocument `json:"before,omitempty"`
+	After    *AbsoluteDocument `json:"after,omitempty"`
 }
 
 // GuideDocument is an input to certainty with the bound that it may cross, absent
@@ -206,7 +198,7 @@ func (o *OutcomeChange) document() OutcomeChangeDocument {
 		d.Weights = append(d.Weights, WeightChangeDocument{Study: w.Study, Before: pooledShare(w.Before), After: pooledShare(w.After)})
 	}
 	for _, a := range o.Absolute {
-		d.Absolute = append(d.Absolute, AbsoluteChangeDocument{Name: a.Baseline.Name, Baseline: a.Baseline.Risk, Before: rangeDocument(a.Before), After: rangeDocument(a.After)})
+		d.Absolute = append(d.Absolute, AbsoluteChangeDocument{Name: a.Baseline.Name, Baseline: a.Baseline.Risk, Before: absoluteDocument(a.Before), After: absoluteDocument(a.After)})
 	}
 	for _, g := range o.Guides {
 		entry := GuideDocument{Name: g.Name, Before: g.Before, After: g.After, Crossed: g.Crossed}
@@ -230,13 +222,6 @@ func pooledShare(share float64) *float64 {
 		return nil
 	}
 	return &share
-}
-
-func rangeDocument(a *panel.Absolute) *RangeDocument {
-	if a == nil {
-		return nil
-	}
-	return &RangeDocument{Value: a.Difference.Value, Low: a.Difference.Low, High: a.Difference.High}
 }
 
 func (o *Outcome) stateDocument() *OutcomeStateDocument {

@@ -1,6 +1,7 @@
 package synthesis
 
 import (
+	"fmt"
 	"math"
 
 	"steelyard/meta/review"
@@ -45,6 +46,11 @@ func (o *OutcomeChange) guides(plan *review.Plan) []Guide {
 	if a.Counts.Participants > 0 && b.Counts.Participants > 0 {
 		add("participants (imprecision)", review.SettingTriggerPeople, float64(a.Counts.Participants), float64(b.Counts.Participants), false)
 	}
+	for _, size := range o.informationSizes(plan) {
+		add(size.name, "", size.before, size.now, true)
+		guides[len(guides)-1].Bound = 1
+		guides[len(guides)-1].Crossed = (size.before < 1) != (size.now < 1)
+	}
 	if len(a.Studies) > 1 && len(b.Studies) > 1 {
 		add("I² (inconsistency)", review.SettingTriggerScatter, a.scatterShare(), b.scatterShare(), true)
 	}
@@ -82,4 +88,52 @@ func (o *Outcome) thresholdsWithin() int {
 		}
 	}
 	return n
+}
+
+// informationSize is the share of the optimal information size that the people reach.
+type informationSize struct {
+	name        string
+	before, now float64
+}
+
+// informationSizes returns it at each baseline, of means without one; none where a
+// state has no such size, or states no people.
+func (o *OutcomeChange) informationSizes(plan *review.Plan) []informationSize {
+	asked, err := plan.Analysis(o.Name)
+	if err != nil {
+		return nil
+	}
+	at := func(state *Outcome, risk float64) *Adequacy {
+		zone, err := state.zoneAt(risk, asked.Panel.Per1000)
+		if err != nil || state.Analysis.NullMissing {
+			return nil
+		}
+		return state.adequacy(risk, zone, asked.Panel, state.panelSD(asked.Panel, plan))
+	}
+	places := []AbsoluteChange{{}}
+	if len(o.Absolute) > 0 {
+		places = o.Absolute
+	}
+	var all []informationSize
+	for i := range places {
+		risk := places[i].Baseline.Risk
+		before, now := at(o.Previous, risk), at(o.Current, risk)
+		if before == nil || now == nil || before.People == 0 || now.People == 0 {
+			continue
+		}
+		name := "optimal information size (imprecision)"
+		if len(places) > 1 {
+			name = fmt.Sprintf("optimal information size, baseline %s", places[i].short())
+		}
+		all = append(all, informationSize{name: name, before: before.Share(), now: now.Share()})
+	}
+	return all
+}
+
+// short calls the baseline by its name, else by its risk per 1000.
+func (a *AbsoluteChange) short() string {
+	if a.Baseline.Name != "" {
+		return a.Baseline.Name
+	}
+	return fmt.Sprintf("%.3g per 1000", per*a.Baseline.Risk)
 }

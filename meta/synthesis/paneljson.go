@@ -1,6 +1,9 @@
 package synthesis
 
-import "steelyard/meta/evidence"
+import (
+	"steelyard/meta/evidence"
+	"steelyard/meta/panel"
+)
 
 // PanelDocument is what a guideline panel reads of an outcome. Risks are fractions,
 // differences and distances per 1000 where there is a baseline, else in the reader's
@@ -209,15 +212,20 @@ func (t *Threshold) document() *ThresholdDocument {
 	return d
 }
 
+func absoluteDocument(a *panel.Absolute) *AbsoluteDocument {
+	if a == nil {
+		return nil
+	}
+	return &AbsoluteDocument{
+		Treated:    RangeDocument(a.Treated),
+		Difference: RangeDocument{Value: 1000 * a.Difference.Value, Low: 1000 * a.Difference.Low, High: 1000 * a.Difference.High},
+		Capped:     a.Capped,
+	}
+}
+
 func (r *PanelRow) document() PanelRowDocument {
 	d := PanelRowDocument{Name: r.Baseline.Name, Baseline: r.Baseline.Risk, Null: r.Null.document(), Zone: r.Zone.document(), Trouble: r.Trouble}
-	if a := r.Absolute; a != nil {
-		d.Absolute = &AbsoluteDocument{
-			Treated:    RangeDocument(a.Treated),
-			Difference: RangeDocument{Value: 1000 * a.Difference.Value, Low: 1000 * a.Difference.Low, High: 1000 * a.Difference.High},
-			Capped:     a.Capped,
-		}
-	}
+	d.Absolute = absoluteDocument(r.Absolute)
 	if n := r.Needed; n != nil {
 		d.Needed = &NeededDocument{Value: finite(n.Value), Fewer: n.Fewer, Through: n.Through}
 		if n.Through {

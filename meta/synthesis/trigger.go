@@ -28,14 +28,14 @@ const (
 )
 
 var triggerTitles = []string{
-	"the interval came to leave out no effect, or to reach it",
+	"significance changed",
 	"the effect changed by a set share",
 	"the effect crossed a threshold of importance",
 	"an input to certainty crossed its guide",
 	"a new outcome or subgroup",
 	"new studies carry a set share of the weight",
 	"a retraction or correction",
-	"the prediction interval came to leave out no effect, or to reach it",
+	"no effect entered or left the prediction interval",
 }
 
 // String returns "T1" to "T8".
@@ -162,16 +162,15 @@ func (o *OutcomeChange) importance(plan *review.Plan) Trigger {
 			}
 		}
 	}
-	bound := threshold(plan, review.SettingTriggerAbsolute, o.Name)
+	per1000 := plan.Value(review.SettingPer1000, o.Name)
 	for i := range o.Absolute {
-		if a := &o.Absolute[i]; bound.Text != "" && a.comparable() {
-			judged = true
-			t.Threshold = bound
-			t.Named = append(t.Named, a.crossed(triggerNumber(plan, review.SettingTriggerAbsolute, o.Name))...)
+		if a := &o.Absolute[i]; per1000.Text != "" && a.comparable() {
+			judged, t.Threshold = true, &per1000
+			t.Named = append(t.Named, a.crossed(per1000Limits(plan, o.Name))...)
 		}
 	}
 	if !judged {
-		t.Verdict, t.Why = TriggerNotJudged, "no threshold is set: give an important difference, or a difference per 1000 with a baseline risk"
+		t.Verdict, t.Why = TriggerNotJudged, "no threshold is set: give an important difference, or one per 1000"
 		return t
 	}
 	t.Verdict = verdict(len(t.Named) > 0)
