@@ -107,5 +107,6 @@ COMMANDS{{range .VisibleCommands}}
 
 EXIT CODES
   0 done    1 the data or plan is wrong, or rows with an error were left out    2 the call is wrong
-  3 a file could not be read or written    130 interrupted
+  3 a file could not be read or written    4 a trigger was met and --fail-on-trigger given
+  130 interrupted
 `

@@ -96,13 +96,6 @@ func ChangeConclusion(c *synthesis.Change) string {
 	return "Something material has changed. " + capital(strings.Join(parts, "; ")) + "."
 }
 
-func capital(text string) string {
-	for i, r := range text {
-		return strings.ToUpper(string(r)) + text[i+len(string(r)):]
-	}
-	return text
-}
-
 func outcomeChange(c *synthesis.Change, o *synthesis.OutcomeChange) OutcomeChangeText {
 	t := OutcomeChangeText{Name: o.Name, Rows: rowSentences(c, o), Looks: RepeatedLooks(o.Looks)}
 	for _, row := range o.Rows.Changed {
@@ -245,7 +238,7 @@ func resultRows(o *synthesis.OutcomeChange) [][]string {
 }
 
 func baselineText(b review.Baseline) string {
-	text := "of " + Linear(1000*b.Risk, 0)
+	text := "of " + per1000(b.Risk)
 	if b.Name != "" {
 		return b.Name + ", " + text
 	}
