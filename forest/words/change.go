@@ -276,6 +276,9 @@ func weightRows(o *synthesis.OutcomeChange) [][]string {
 
 func guideRow(g synthesis.Guide) []string {
 	show := func(x float64) string {
+		if g.Share && x > 10 {
+			return "over 1,000%"
+		}
 		if g.Share {
 			return Percent(x)
 		}
