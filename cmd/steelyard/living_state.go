@@ -35,10 +35,10 @@ func stateDocument(s *ledger.State) synthesis.StateDocument {
 	return d
 }
 
-func differenceDocuments(all []ledger.Difference) []synthesis.DifferenceDocument {
-	var list []synthesis.DifferenceDocument
+func differenceDocuments(all []ledger.Difference) []synthesis.RecomputedDocument {
+	var list []synthesis.RecomputedDocument
 	for _, d := range all {
-		list = append(list, synthesis.DifferenceDocument(d))
+		list = append(list, synthesis.RecomputedDocument(d))
 	}
 	return list
 }
@@ -364,7 +364,7 @@ func computeAll(c *cli.Context, l *ledger.Ledger, d *synthesis.VerifyDocument, w
 		}
 		d.Computed++
 		for _, difference := range s.Differences(now.Synthesis) {
-			d.Different = append(d.Different, synthesis.DifferentDocument{State: s.Number, DifferenceDocument: synthesis.DifferenceDocument(difference)})
+			d.Different = append(d.Different, synthesis.DifferentDocument{State: s.Number, RecomputedDocument: synthesis.RecomputedDocument(difference)})
 		}
 		if work.Progress != nil {
 			work.Progress(i+1, len(l.States))
@@ -394,7 +394,7 @@ func (p *page) verified(d *synthesis.VerifyDocument, problems []ledger.Problem) 
 		p.wrapped("", text)
 	}
 	for _, different := range d.Different {
-		p.item("·", fmt.Sprintf("state %d: %s", different.State, ledger.Difference(different.DifferenceDocument)))
+		p.item("·", fmt.Sprintf("state %d: %s", different.State, ledger.Difference(different.RecomputedDocument)))
 	}
 	p.line("")
 	p.item("·", d.Caution)

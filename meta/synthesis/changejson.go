@@ -34,7 +34,7 @@ type StateDocument struct {
 	Program  string               `json:"program,omitempty"`
 	Source   SourceDocument       `json:"source"`
 	Results  []StateResult        `json:"results,omitempty"`
-	Differs  []DifferenceDocument `json:"computed_differently,omitempty"`
+	Differs  []RecomputedDocument `json:"computed_differently,omitempty"`
 }
 
 // StateResult is the recorded result of an outcome.
@@ -50,9 +50,9 @@ type StateResult struct {
 	Ln       *float64 `json:"ln_evidence,omitempty"`
 }
 
-// DifferenceDocument is a number that this program computes otherwise than the one
+// RecomputedDocument is a number that this program computes otherwise than the one
 // that recorded it.
-type DifferenceDocument struct {
+type RecomputedDocument struct {
 	Outcome  string  `json:"outcome"`
 	What     string  `json:"what"`
 	Recorded float64 `json:"recorded"`

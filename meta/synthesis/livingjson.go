@@ -45,5 +45,5 @@ type ProblemDocument struct {
 // DifferentDocument is a number of a state that this program computes otherwise.
 type DifferentDocument struct {
 	State int `json:"state"`
-	DifferenceDocument
+	RecomputedDocument
 }
