@@ -54,7 +54,7 @@ func newApp(s streams) *cli.App {
 		Commands: slices.Concat(
 			[]*cli.Command{checkCommand(), poolCommand()},
 			accrualCommands(),
-			[]*cli.Command{explainCommand(), smallStudyCommand(), panelCommand(), weighCommand(), livingCommand(), chartCommand(), reportCommand(), templateCommand()},
+			[]*cli.Command{explainCommand(), smallStudyCommand(), panelCommand(), weighCommand(), livingCommand(), chartCommand(), reportCommand(), auditCommand(), templateCommand()},
 		),
 		Action: func(c *cli.Context) error {
 			if c.NArg() > 0 {
