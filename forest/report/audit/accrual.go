@@ -56,7 +56,7 @@ func (o *outcome) writeCumulative() {
 	o.refitHeads(s, "step", "entered", "at", "steps added")
 	for i, step := range o.o.Accrual.Cumulative {
 		row := refitFirst + i
-		number := s.number(refitNumber, row, look{computed, whole}, float64(i+1))
+		number := s.number(refitNumber, row, look{index, whole}, float64(i+1))
 		var who []string
 		for _, entered := range step.Entered {
 			who = append(who, o.o.Studies[entered].Source.Name)
@@ -84,7 +84,7 @@ func (o *outcome) writeLeaveOneOut() {
 	o.refitHeads(s, "n", "left out", "", "steps carried")
 	for i, omission := range o.o.Accrual.LeaveOneOut {
 		row := refitFirst + i
-		number := s.number(refitNumber, row, look{computed, whole}, float64(omission.Row+1))
+		number := s.number(refitNumber, row, look{index, whole}, float64(omission.Row+1))
 		s.text(refitWho, row, look{role: plain}, o.o.Studies[omission.Row].Source.Name)
 		if omission.Problem != nil {
 			s.text(refitTau2, row, look{role: soft}, "no result: "+omission.Problem.Error())
@@ -105,7 +105,7 @@ func (o *outcome) refitHeads(s *sheet, number, who, at, change string) {
 		if !ok {
 			h = refitHeads[col]
 		}
-		c := s.text(col, refitHead, look{role: head}, h[0])
+		c := s.text(col, refitHead, look{role: map[bool]role{true: headText, false: head}[col <= refitAt]}, h[0])
 		if h[1] != "" {
 			s.note(c, h[1])
 		}
@@ -155,7 +155,7 @@ func (o *outcome) refit(s *sheet, r refit) {
 		s.live(col, row, decimals4, effect.ToReader(m, of.want), toReader(m, of.c.local()))
 	}
 	if found.settled.sheet != nil {
-		s.formula(refitSettled, row, look{role: computed}, "%s", found.settled)
+		s.formula(refitSettled, row, look{role: index}, "%s", found.settled)
 	}
 	if !o.o.Analysis.NullMissing {
 		o.refitEvidence(s, t, r, estimate, se)

@@ -19,7 +19,8 @@ type book struct {
 	sheets []*sheet
 	named  map[string]formula.Range
 	styles map[look]int
-	fixed  int // values that stand entered because a formula would not agree
+	charts []bool // of each chart, whether its horizontal axis is logarithmic
+	fixed  int    // values that stand entered because a formula would not agree
 	err    error
 }
 
@@ -28,6 +29,7 @@ type sheet struct {
 	book *book
 	name string
 	rows [][]held
+	tall []cell // cells whose text is wrapped
 }
 
 // held is a cell's content.
@@ -133,6 +135,9 @@ func (s *sheet) text(col, row int, l look, text string) cell {
 	}
 	s.style(c, l)
 	s.hold(col, row, held{value: formula.Text(clean(text))})
+	if l.role == wrapped || l.role == head || l.role == headText {
+		s.tall = append(s.tall, c)
+	}
 	return c
 }
 

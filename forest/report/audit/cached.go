@@ -17,8 +17,8 @@ import (
 // style, then the formula, without a value.
 var formulaCell = regexp.MustCompile(`<c r="([A-Z]+)([0-9]+)"((?: s="[0-9]+")?) t="str"><f>([^<]*)</f>(?:<v></v>|<v/>)?</c>`)
 
-// withValues puts the values of the formulas into a saved workbook, with all their
-// digits, which the library itself cannot.
+// withValues puts into a saved workbook what the library itself cannot: the values of
+// the formulas with all their digits, and logarithmic horizontal axes.
 func (b *book) withValues(saved []byte) ([]byte, error) {
 	archive, err := zip.NewReader(bytes.NewReader(saved), int64(len(saved)))
 	if err != nil {
@@ -31,7 +31,10 @@ func (b *book) withValues(saved []byte) ([]byte, error) {
 		if err != nil {
 			return nil, err
 		}
-		if n, isSheet := sheetNumber(part.Name); isSheet {
+		if n, isChart := partNumber(part.Name, "xl/charts/chart"); isChart && n <= len(b.charts) && b.charts[n-1] {
+			content = bytes.Replace(content, []byte("<scaling>"), []byte(`<scaling><logBase val="2"></logBase>`), 1)
+		}
+		if n, isSheet := partNumber(part.Name, "xl/worksheets/sheet"); isSheet {
 			if n > len(b.sheets) {
 				return nil, fmt.Errorf("part %s belongs to no sheet", part.Name)
 			}
@@ -58,9 +61,9 @@ func contentOf(part *zip.File) ([]byte, error) {
 	return io.ReadAll(r)
 }
 
-// sheetNumber returns the number of the sheet that a part holds.
-func sheetNumber(part string) (int, bool) {
-	text, ok := strings.CutPrefix(part, "xl/worksheets/sheet")
+// partNumber returns the number of a part whose name begins so.
+func partNumber(part, begins string) (int, bool) {
+	text, ok := strings.CutPrefix(part, begins)
 	if !ok {
 		return 0, false
 	}

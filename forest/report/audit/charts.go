@@ -52,7 +52,7 @@ func (o *outcome) writeCharts() {
 	}
 	o.forestChart(s)
 	o.cumulativeCharts(s, second)
-	s.finish(page{rest: 9, repeated: 2, columns: dataColumn - 2, last: second + 50})
+	s.finish(page{rest: 9, columns: dataColumn - 2, last: second + 50, whole: true})
 }
 
 // picture draws a chart and puts its pages under each other; it returns the row below.
@@ -114,13 +114,15 @@ func (o *outcome) forestChart(s *sheet) {
 		points("mean", list(dataColumn+4, 3), list(dataColumn+5, 3), "1A1A1A", "diamond"),
 	})
 	chart.XAxis = axis(readerScale(m))
-	if m.Log() {
-		chart.XAxis.LogBase = 2
-	}
 	chart.YAxis = axis("number of the study on the sheet of pooling")
 	chart.YAxis.NumFmt = excelize.ChartNumFmt{CustomNumFmt: "0;0"}
 	chart.YAxis.Minimum, chart.YAxis.Maximum = &lowest, &highest
-	o.book.do(o.book.f.AddChart(s.name, s.at(chartColumn, chartsRow).local(), chart))
+	o.addChart(s, chartsRow, chart, m.Log())
+}
+
+func (o *outcome) addChart(s *sheet, row int, chart *excelize.Chart, logarithmic bool) {
+	o.book.do(o.book.f.AddChart(s.name, s.at(chartColumn, row).local(), chart))
+	o.book.charts = append(o.book.charts, logarithmic)
 }
 
 // cumulativeCharts draws evidence and estimate over the steps.
@@ -136,7 +138,7 @@ func (o *outcome) cumulativeCharts(s *sheet, row int) {
 	if !o.o.Analysis.NullMissing {
 		evidence := scatter("Evidence as the studies entered", []excelize.ChartSeries{joined("steps", steps, list(refitSteps), "D55E00")})
 		evidence.XAxis, evidence.YAxis = axis("step of the cumulative analysis"), axis("evidence for an effect, in steps")
-		o.book.do(o.book.f.AddChart(s.name, s.at(chartColumn, row).local(), evidence))
+		o.addChart(s, row, evidence, false)
 		row += 24
 	}
 	estimate := scatter("Mean effect as the studies entered", []excelize.ChartSeries{
@@ -146,7 +148,7 @@ func (o *outcome) cumulativeCharts(s *sheet, row int) {
 	if o.o.Analysis.Measure.Log() {
 		estimate.YAxis.LogBase = 2
 	}
-	o.book.do(o.book.f.AddChart(s.name, s.at(chartColumn, row).local(), estimate))
+	o.addChart(s, row, estimate, false)
 }
 
 // sheetOf returns the outcome's sheet of a part; nil if there is none.
@@ -187,7 +189,7 @@ func axis(title string) excelize.ChartAxis {
 
 // stroke is a series of lines without markers.
 func stroke(name, x, y, colour string) excelize.ChartSeries {
-	return excelize.ChartSeries{Name: name, Categories: x, Values: y,
+	return excelize.ChartSeries{Name: name, Categories: x, Values: y, Fill: solid(colour),
 		Line: excelize.LineOptions{Type: excelize.LineSolid, Width: 1.25, Fill: solid(colour)}, Marker: excelize.ChartMarker{Symbol: "none"}}
 }
 

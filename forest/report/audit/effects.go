@@ -40,7 +40,7 @@ func (o *outcome) complete(r recipe, study *synthesis.Study) bool {
 func (o *outcome) writeRecipe(s *sheet, row int, r recipe, rows []int) int {
 	s.text(1, row, look{role: section}, r.title)
 	row++
-	s.text(1, row, look{role: head}, "study")
+	s.text(1, row, look{role: headText}, "study")
 	for j, f := range r.inputs {
 		s.text(2+j, row, look{role: head}, f.String())
 	}

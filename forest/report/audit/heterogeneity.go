@@ -63,13 +63,15 @@ func (l *listing) shareByQ(q, df cell) {
 // profile writes the limits of τ² and of I².
 func (l *listing) profile(typical cell) {
 	o, h := l.o, l.o.fit().Heterogeneity
-	l.s.text(1, l.row, look{role: plain}, "τ², lower limit of the Q-profile")
-	l.s.text(1, l.row+1, look{role: plain}, "τ², upper limit of the Q-profile")
-	for i := range 2 {
-		l.s.text(4, l.row+i, look{role: soft}, "The τ² at which Q(τ²) is the quantile of chi-square (Viechtbauer 2007); beside it what Q misses by.")
+	const limitSource = "The τ² at which Q(τ²) is the quantile of chi-square (Viechtbauer 2007). Its steps stand to the right."
+	const missSource = "Q(τ²) less the quantile: 0 at a limit, below 0 where the limit is 0."
+	for i, text := range [][2]string{{"τ², lower limit of the Q-profile", limitSource}, {"τ², upper limit of the Q-profile", limitSource},
+		{"what Q misses its quantile by at the lower limit", missSource}, {"what Q misses its quantile by at the upper limit", missSource}} {
+		l.s.text(1, l.row+i, look{role: plain}, text[0])
+		l.s.text(4, l.row+i, look{role: soft}, text[1])
 	}
 	low, high := o.profile(l.s, l.row, o.fit().Tau2)
-	l.row += 2
+	l.row += 4
 	o.keep("tau2_low", low)
 	o.keep("tau2_high", high)
 	for _, limit := range []struct {

@@ -15,7 +15,7 @@ func (b *book) list(name, title, subtitleText string, heads []string, widths []f
 	s.text(1, 1, look{role: heading}, title)
 	s.text(1, 2, look{role: subtitle}, subtitleText)
 	for i, h := range heads {
-		s.text(i+1, 4, look{role: head}, h)
+		s.text(i+1, 4, look{role: headText}, h)
 	}
 	for i, row := range rows {
 		for j, text := range row {

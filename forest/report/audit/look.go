@@ -20,7 +20,9 @@ const (
 	heading
 	subtitle
 	section
-	head // of a column
+	head     // of a column of numbers
+	headText // of a column of texts
+	index    // a number that counts
 	wrapped
 	soft
 	link
@@ -76,13 +78,17 @@ func (l look) style() *excelize.Style {
 		s.Fill = solid(resultFill)
 	case heading:
 		s.Font.Bold, s.Font.Size = true, 14
-	case subtitle, soft:
+	case subtitle:
 		s.Font.Color = softColour
+	case soft:
+		s.Font.Color, s.Alignment.Indent = softColour, 1
+	case index:
+		s.Alignment.Horizontal = "center"
 	case section:
 		s.Font.Bold, s.Font.Size = true, 11
-	case head:
+	case head, headText:
 		s.Font.Bold = true
-		s.Alignment = &excelize.Alignment{Vertical: "bottom", WrapText: true}
+		s.Alignment = &excelize.Alignment{Vertical: "bottom", Horizontal: map[role]string{head: "right", headText: "left"}[l.role], WrapText: true}
 		s.Border = []excelize.Border{{Type: "bottom", Style: 2, Color: inkColour}}
 	case wrapped:
 		s.Alignment.WrapText = true

@@ -58,11 +58,11 @@ func (o *outcome) keep(name string, c cell) cell {
 // still says in words that something is entered and does not move.
 func (o *outcome) still(what string) { o.entered = append(o.entered, what) }
 
-// moves reports whether the pooled result has a live form: by inverse variances with
-// an interval that is a closed formula.
+// moves reports whether the pooled result has a live form: by inverse variances, which
+// Peto's method is with its own estimates, and with an interval that is a closed formula.
 func (o *outcome) moves() bool {
 	m := o.fit().Model
-	return o.fit().Method == "" && m.Interval != meta.ProfileLikelihood && m.Interval != meta.HenmiCopas
+	return (o.fit().Method == "" || o.o.Analysis.Method == review.Peto) && m.Interval != meta.ProfileLikelihood && m.Interval != meta.HenmiCopas
 }
 
 // student reports whether a mean of k studies has an interval of Student's t.

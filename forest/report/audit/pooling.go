@@ -65,10 +65,10 @@ func (o *outcome) startPooling() pooling {
 	}
 	for i := range o.o.Studies {
 		row, study := firstStudy+i, &o.o.Studies[i]
-		s.number(colNumber, row, look{computed, whole}, float64(i+1))
+		s.number(colNumber, row, look{index, whole}, float64(i+1))
 		s.text(colStudy, row, look{role: plain}, study.Source.Name)
 		if step := o.entersAt(i); step > 0 {
-			s.number(colEnters, row, look{entered, whole}, float64(step))
+			s.number(colEnters, row, look{index, whole}, float64(step))
 		}
 		y := s.formula(colY, row, look{computed, decimals6}, "%s", o.y[i])
 		se := s.formula(colSE, row, look{computed, decimals6}, "%s", o.se[i])
@@ -137,7 +137,7 @@ func (p pooling) finishPooling(tau2 cell) {
 		colSteps: {"steps", "ln evidence over ln(2 + √3)."},
 	}
 	for col := colNumber; col <= colSteps; col++ {
-		c := s.text(col, firstStudy-1, look{role: head}, notes[col][0])
+		c := s.text(col, firstStudy-1, look{role: map[bool]role{true: headText, false: head}[col <= colStudy]}, notes[col][0])
 		if text := notes[col][1]; text != "" {
 			s.note(c, text)
 		}
@@ -148,7 +148,7 @@ func (p pooling) finishPooling(tau2 cell) {
 		for i := range o.o.Studies {
 			s.entered(colShare, firstStudy+i, percent, o.o.Studies[i].Weight)
 		}
-		o.still("the weights, the pooled result and all that follows from it: " + words.Model(o.fit()) + " has no closed formulas, so that its numbers are the program's own")
+		o.still("the weights, the pooled result and all that follows from it: " + words.Model(o.fit()) + " is not written out in formulas here; the numbers are the program's own")
 		p.finishSheet()
 		return
 	}

@@ -28,7 +28,7 @@ type derived struct {
 
 // recipes returns the tables that an outcome of a measure may have.
 func (o *outcome) recipes() []recipe {
-	return []recipe{o.counts(), o.means(), o.reported(true), o.reported(false)}
+	return []recipe{o.counts(), o.means(), o.reported(true, true), o.reported(true, false), o.reported(false, true), o.reported(false, false)}
 }
 
 // counts is the table of studies with a 2×2 table of the people themselves.
@@ -130,8 +130,9 @@ const (
 )
 
 // reported is the table of studies that report an estimate with its limits, in the
-// reader's unit or on the analysis scale.
-func (o *outcome) reported(readers bool) recipe {
+// reader's unit or on the analysis scale; leveled is the one of limits with a stated
+// level.
+func (o *outcome) reported(readers, leveled bool) recipe {
 	m := o.o.Analysis.Measure
 	r := recipe{title: "From an estimate with its limits, as reported", inputs: []review.Field{review.Estimate, review.LimitLow, review.LimitHigh}}
 	estimate, low, high := toAnalysis(m, "{estimate reported}"), toAnalysis(m, "{ci low}"), toAnalysis(m, "{ci high}")
@@ -140,15 +141,20 @@ func (o *outcome) reported(readers bool) recipe {
 		r.inputs = []review.Field{review.AnalysisEstimate, review.AnalysisLow, review.AnalysisHigh}
 		estimate, low, high = "{analysis estimate}", "{analysis ci low}", "{analysis ci high}"
 	}
+	tail := "0.025"
+	if leveled {
+		r.inputs = append(r.inputs, review.LimitLevel)
+		tail = "(1-{ci level})/2"
+	}
 	r.fits = func(s *synthesis.Study) bool {
 		_, stated := s.Source.Number(review.LimitLevel)
 		_, has := s.Source.Number(r.inputs[0])
 		_, both := s.Source.Number(r.inputs[1])
-		return s.Basis == synthesis.FromEstimateLimits && !stated && has && both && !byStudent(s) &&
+		return s.Basis == synthesis.FromEstimateLimits && stated == leveled && has && both && !byStudent(s) &&
 			(s.Source.Measure == effect.Unspecified || s.Source.Measure == m)
 	}
-	r.steps = withEstimate(nil, estimate, "("+high+"-"+low+")/(-2*NORMSINV(0.025))",
-		"Cochrane Handbook 6.3: width of the 95% interval on the analysis scale over twice the normal quantile.")
+	r.steps = withEstimate(nil, estimate, "("+high+"-"+low+")/(-2*NORMSINV("+tail+"))",
+		"Cochrane Handbook 6.3: width of the interval (95% unless stated) on the analysis scale over twice the normal quantile.")
 	return r
 }
 

@@ -14,7 +14,7 @@ func (o *outcome) writeSpread() cell {
 	model := o.fit().Model
 	s := o.open("spread", "Spread between studies, τ²", "each estimator from the effects and their variances; the model's own is tinted. The steps are written out below.")
 	for i, h := range []string{"estimator", "τ²", "τ", "came to rest", "its equation misses by", "what that is"} {
-		s.text(i+1, 4, look{role: head}, h)
+		s.text(i+1, 4, look{role: map[bool]role{true: headText, false: head}[i == 0 || i == 5]}, h)
 	}
 	list := estimators
 	if own := model.Tau; own != meta.DefaultTau && own != meta.RestrictedML && own != meta.PauleMandel && own != meta.DerSimonianLaird {
@@ -51,7 +51,7 @@ func (o *outcome) writeSpread() cell {
 		s.entered(2, row, decimals6, o.fit().Mean.Tau2)
 	}
 	o.keep("tau2", used)
-	s.finish(page{widths: []float64{48, 13, 13, 13, 13, 46}, rest: 14, frozen: s.at(2, 5), repeated: 2, columns: 6, last: steps})
+	s.finish(page{widths: []float64{48, 13, 13, 13, 13, 46}, rest: 14, frozen: s.at(2, 5), repeated: 2, columns: 6, last: 5 + len(list) + 4})
 	return used
 }
 
@@ -72,7 +72,7 @@ func (o *outcome) solve(s *sheet, row *int, method meta.TauMethod) spread {
 	for i, start := range []string{"0", p.sum("("+o.yName()+"-SUM("+o.yName()+")/"+o.cells["k"].from(s)+")^2") + "/" + p.df()} {
 		t := &strip{s: s, col: 2, row: *row + 2 + i, heads: *row + 1, role: computed}
 		s.text(1, t.row, look{role: soft}, []string{"from no spread upwards", "from the whole scatter downwards"}[i])
-		found[i] = p.likelihood(t, restricted, start)
+		found[i] = p.likelihood(t, restricted, i == 1, start)
 		height[i] = p.height(t, restricted, found[i].tau2)
 	}
 	t := &strip{s: s, col: 2, row: *row + 4, role: computed}
@@ -96,10 +96,10 @@ func (p part) height(t *strip, restricted bool, tau2 cell) cell {
 // verify writes how far an estimator's value is from solving its equation.
 func (o *outcome) verify(s *sheet, row int, method meta.TauMethod, found spread) {
 	if found.settled.sheet == nil {
-		s.text(4, row, look{role: soft}, "closed formula")
+		s.text(4, row, look{role: index}, "closed")
 		return
 	}
-	s.formula(4, row, look{role: computed}, "%s", found.settled)
+	s.formula(4, row, look{role: index}, "%s", found.settled)
 	p, at := o.all(), s.at(2, row)
 	y, v := o.yName(), o.vName()
 	mean := p.sum("%[1]s/(%[2]s+%[3]s)") + "/" + p.sum("1/(%[2]s+%[3]s)")
@@ -117,7 +117,8 @@ func (o *outcome) verify(s *sheet, row int, method meta.TauMethod, found spread)
 	s.text(6, row, look{role: soft}, said)
 }
 
-// profile writes the limits of τ² that Q has at the quantiles of chi-square.
+// profile writes the limits of τ² that Q has at the quantiles of chi-square, and under
+// them what Q misses them by.
 func (o *outcome) profile(s *sheet, row int, want meta.Limits) (low, high cell) {
 	p := o.all()
 	level := o.cells["level"].from(s)
@@ -129,8 +130,7 @@ func (o *outcome) profile(s *sheet, row int, want meta.Limits) (low, high cell) 
 		limit, _ := s.key(2, row+i, decimals6, wanted, "%s", found.tau2)
 		y, v := o.yName(), o.vName()
 		mean := p.sum("%[1]s/(%[2]s+%[3]s)") + "/" + p.sum("1/(%[2]s+%[3]s)")
-		miss := s.formula(3, row+i, look{computed, small}, p.sum("(%[1]s-"+mean+")^2/(%[2]s+%[3]s)")+"-%[4]s", y, v, limit, target)
-		s.note(miss, "Q at this τ² less the quantile: 0 at a limit, below 0 where the limit is 0. The steps stand to the right.")
+		s.formula(2, row+2+i, look{computed, small}, p.sum("(%[1]s-"+mean+")^2/(%[2]s+%[3]s)")+"-%[4]s", y, v, limit, target)
 		if i == 0 {
 			low = limit
 		} else {

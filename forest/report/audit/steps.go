@@ -27,8 +27,8 @@ func (o *outcome) writeSteps(s *sheet, row int, done []bool) {
 		}
 		if !started {
 			s.text(1, row, look{role: section}, "From other numbers, step by step")
-			for j, h := range []string{"study", "number", "value", "", "what is done", "", "", "source"} {
-				s.text(j+1, row+1, look{role: head}, h)
+			for j, h := range []string{"study", "number", "value", "", "what is done", "", "", "", "", "source"} {
+				s.text(j+1, row+1, look{role: map[bool]role{true: head, false: headText}[h == "value"]}, h)
 			}
 			row, started = row+2, true
 		}
@@ -49,15 +49,15 @@ func (o *outcome) writeChain(s *sheet, row, i int) int {
 	for _, step := range study.Conversions {
 		c.step(step)
 	}
-	o.y[i] = c.last("estimate on the analysis scale", []string{"estimate", review.AnalysisEstimate.String()}, study.Estimate.Y)
-	o.se[i] = c.last("its standard error", []string{"se"}, study.Estimate.SE)
+	o.y[i] = c.last("estimate y", []string{"estimate", review.AnalysisEstimate.String()}, study.Estimate.Y)
+	o.se[i] = c.last("its se", []string{"se"}, study.Estimate.SE)
 	return c.row
 }
 
 // step writes one conversion.
 func (c *chain) step(step effect.Conversion) {
 	c.s.text(5, c.row, look{role: plain}, step.What)
-	c.s.text(8, c.row, look{role: soft}, step.Source)
+	c.s.text(10, c.row, look{role: soft}, step.Source)
 	refs := map[string]cell{}
 	for i, v := range step.From {
 		refs[fmt.Sprint(i+1)] = c.takes(v)

@@ -18,7 +18,7 @@ func (b *book) writeStudies(s *synthesis.Synthesis, x *review.Extraction) map[*r
 	sh.text(1, 2, look{role: subtitle}, "Every number as it stands in the sheet. Change one of the shaded cells, and what follows from it moves.")
 	heads := []string{"study", "date", "outcome", "row", "pooled"}
 	for i, h := range heads {
-		sh.text(i+1, firstRow-1, look{role: head}, h)
+		sh.text(i+1, firstRow-1, look{role: headText}, h)
 	}
 	fields := fieldsOf(x)
 	for i, f := range fields {

@@ -34,9 +34,9 @@ func tauFormulas(method meta.TauMethod) func(part, *strip) spread {
 	case meta.PauleMandel:
 		return func(p part, t *strip) spread { return p.whereQ(t, p.df()) }
 	case meta.MaximumLikelihood:
-		return func(p part, t *strip) spread { return p.likelihood(t, false, "") }
+		return func(p part, t *strip) spread { return p.climb(t, false) }
 	case meta.RestrictedML:
-		return func(p part, t *strip) spread { return p.likelihood(t, true, "") }
+		return func(p part, t *strip) spread { return p.climb(t, true) }
 	}
 	return nil
 }
@@ -108,11 +108,34 @@ func (p part) settled(t *strip, before, now cell) cell {
 	return t.put("came to rest", general, "IF(ABS(%s-%s)<=0.0000000001*(%s+1/%s),\"yes\",\"no\")", now, before, now, p.sum("1/"+p.o.vName()))
 }
 
+// mostFromBothSides is the largest number of studies for which the rows of refits climb
+// the likelihood from both sides: with few studies it has two maxima now and then.
+const mostFromBothSides = 25
+
+// climb writes the highest maximum of the (restricted) likelihood: of those reached
+// from no spread and from the whole scatter with few studies, else the one reached from
+// Hedges–Olkin's τ².
+func (p part) climb(t *strip, restricted bool) spread {
+	if p.k > mostFromBothSides {
+		return p.likelihood(t, restricted, false, "")
+	}
+	scatter := p.scatter(t)
+	below := p.likelihood(t, restricted, false, "0")
+	low := p.height(t, restricted, below.tau2)
+	above := p.likelihood(t, restricted, true, scatter.local()+"/"+p.df())
+	high := p.height(t, restricted, above.tau2)
+	best := t.put("τ² of the higher", general, "IF(%s>=%s,%s,%s)", low, high, below.tau2, above.tau2)
+	rest := t.put("came to rest", general, "IF(%s>=%s,%s,%s)", low, high, below.settled, above.settled)
+	return spread{best, rest}
+}
+
 // likelihood writes the maximum of the (restricted) likelihood of τ² by Newton's steps
 // on 1 − c/s, with s = Σw²(y−mean)² and c = Σw − Σw²/Σw (restricted; else c = Σw), which
 // is 0 at a maximum and straight where all studies are equally precise; by Fisher's
 // scoring where that does not fall. start is a formula; blank for Hedges–Olkin's τ².
-func (p part) likelihood(t *strip, restricted bool, start string) spread {
+// From above no step may take more than seven eighths of τ², so that it does not leap
+// over a maximum to 0, which the climb from 0 finds if it is the highest.
+func (p part) likelihood(t *strip, restricted, fromAbove bool, start string) spread {
 	var now cell
 	if start == "" {
 		now = p.hedgesOlkin(t).tau2
@@ -128,7 +151,11 @@ func (p part) likelihood(t *strip, restricted bool, start string) spread {
 			c = t.put("Σw − Σw²/Σw", general, "%s-%s/%s", u.w, u.w2, u.w)
 			slope = t.put("information × 2", general, "%s-2*%s/%s+(%s/%s)^2", u.w2, u.w3, u.w, u.w2, u.w)
 		}
-		next := "MAX(0,%[1]s+IF(%[2]s*%[3]s<2*%[4]s*%[5]s,-(%[3]s-%[4]s)*%[3]s/(%[2]s*%[3]s-2*%[4]s*%[5]s),(%[3]s-%[4]s)/%[2]s))"
+		least := "0"
+		if fromAbove {
+			least = "%[1]s/8"
+		}
+		next := "MAX(" + least + ",%[1]s+IF(%[2]s*%[3]s<2*%[4]s*%[5]s,-(%[3]s-%[4]s)*%[3]s/(%[2]s*%[3]s-2*%[4]s*%[5]s),(%[3]s-%[4]s)/%[2]s))"
 		before, now = now, t.put("next τ²", general, next, now, slope, u.s2, c, u.rest)
 	}
 	t.mentioned = ""

@@ -32,7 +32,6 @@ func (s *sheet) note(c cell, text string) {
 
 // page is how a finished sheet is shown and printed.
 type page struct {
-	title    string
 	widths   []float64 // of the columns from A on; 0 keeps the usual
 	rest     float64   // width of the columns after them; 0 keeps the usual
 	frozen   cell      // first cell that scrolls; the zero cell freezes nothing
@@ -40,6 +39,7 @@ type page struct {
 	columns  int       // printed columns; 0 prints all
 	last     int       // last printed row
 	upright  bool
+	whole    bool // on one printed page
 }
 
 // finish sets the sheet's widths, panes and print set-up.
@@ -68,6 +68,9 @@ func (s *sheet) finish(p page) {
 	if p.upright {
 		orientation = "portrait"
 	}
+	if p.whole {
+		down = 1
+	}
 	fit := true
 	b.do(f.SetSheetProps(s.name, &excelize.SheetPropsOptions{FitToPage: &fit}))
 	b.do(f.SetPageLayout(s.name, &excelize.PageLayoutOptions{Orientation: &orientation, Size: &paper, FitToWidth: &across, FitToHeight: &down}))
@@ -76,7 +79,52 @@ func (s *sheet) finish(p page) {
 	b.do(f.SetHeaderFooter(s.name, &excelize.HeaderFooterOptions{OddFooter: "&L&8" + strings.ReplaceAll(s.name, "&", "&&") + "&R&8page &P of &N"}))
 	grid := false
 	b.do(f.SetSheetView(s.name, 0, &excelize.ViewOptions{ShowGridLines: &grid}))
+	s.heighten(p)
 	s.printed(p, widest)
+}
+
+// lineHeight is the height of a line of text in points.
+const lineHeight = 13
+
+// heighten gives rows of wrapped texts the height that these need, which programs do
+// not find out by themselves when they open a workbook.
+func (s *sheet) heighten(p page) {
+	lines := map[int]int{}
+	var rows []int
+	for _, c := range s.tall {
+		width := p.rest
+		if c.col <= len(p.widths) && p.widths[c.col-1] > 0 {
+			width = p.widths[c.col-1]
+		}
+		if width == 0 {
+			width = 9
+		}
+		need := wrappedLines(s.get(c.col, c.row).Text, width)
+		if need > 1 && lines[c.row] == 0 {
+			rows = append(rows, c.row)
+		}
+		lines[c.row] = max(lines[c.row], need)
+	}
+	for _, row := range rows {
+		s.book.do(s.book.f.SetRowHeight(s.name, row, min(400, float64(lineHeight*lines[row]+2))))
+	}
+}
+
+// wrappedLines is about how many lines a text takes in a column of a width, broken
+// between words.
+func wrappedLines(text string, width float64) int {
+	lines, used := 1, 0.
+	for _, word := range strings.Fields(text) {
+		size := float64(len([]rune(word)))
+		if used > 0 && used+1+size > width {
+			lines, used = lines+1, 0
+		}
+		if used > 0 {
+			used++
+		}
+		used += size
+	}
+	return lines
 }
 
 // printed names the rows that repeat on each page and the columns that are printed.
