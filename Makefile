@@ -29,8 +29,8 @@ test: ## run every test
 race: ## run every test under the race detector
 	go test -race ./...
 
-office: ## what needs LibreOffice Calc: the template keeps its lists, comments and numbers in another program
-	go test -tags office -run Office ./ingest
+office: ## what needs LibreOffice Calc: the template keeps its numbers in another program, the audit workbook is computed anew by it
+	go test -tags office -run Office ./ingest ./cmd/steelyard
 
 soak: ## hostile files: worst cases of memory and time, 10,000 damaged workbooks
 	go test -tags soak -run 'WorstCases|TenThousand' -v ./ingest
@@ -39,7 +39,7 @@ check: ## formatting, vet, tidiness, static analysis, imports
 	@unformatted="$$(gofmt -l .)"; if [ -n "$$unformatted" ]; then echo "gofmt would change: $$unformatted"; exit 1; fi
 	go vet ./... ./testdata/demo
 	GOOS=windows go vet ./...
-	go vet -tags office,soak ./ingest
+	go vet -tags office,soak ./ingest ./cmd/steelyard
 	go mod tidy -diff
 	go tool staticcheck ./...
 	go test -count=1 -run TestRooms ./cmd/steelyard

@@ -89,6 +89,7 @@ func TestPublishedConversions(t *testing.T) {
 			if len(d.Outcomes[0].Conversions) == 0 && !strings.Contains(c.sheet, "mean difference,t") {
 				t.Error("no conversion is on record")
 			}
+			checkEffectFormulas(t, c.sheet, args, s.Estimate, s.SE)
 		})
 	}
 }

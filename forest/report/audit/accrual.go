@@ -148,11 +148,9 @@ func (o *outcome) refit(s *sheet, r refit) {
 	}
 	low, _ := s.live(refitLow, row, decimals6, r.mean.Low, "%s"+signs[0]+quantile+"*%s", estimate, o.cells["level"], se)
 	high, _ := s.live(refitHigh, row, decimals6, r.mean.High, "%s"+signs[1]+quantile+"*%s", estimate, o.cells["level"], se)
-	for col, of := range map[int]struct {
-		c    cell
-		want float64
-	}{refitReader: {estimate, r.mean.Estimate}, refitReaderLow: {low, r.mean.Low}, refitReaderHigh: {high, r.mean.High}} {
-		s.live(col, row, decimals4, effect.ToReader(m, of.want), toReader(m, of.c.local()))
+	for i, want := range []float64{r.mean.Estimate, r.mean.Low, r.mean.High} {
+		of := []cell{estimate, low, high}[i]
+		s.live(refitReader+i, row, decimals4, effect.ToReader(m, want), toReader(m, of.local()))
 	}
 	if found.settled.sheet != nil {
 		s.formula(refitSettled, row, look{role: index}, "%s", found.settled)
@@ -203,9 +201,11 @@ func (o *outcome) refitEvidence(s *sheet, t *strip, r refit, estimate, se cell) 
 // refitEntered writes the program's own numbers of a row.
 func (o *outcome) refitEntered(s *sheet, r refit) {
 	m := o.o.Analysis.Measure
-	for col, x := range map[int]float64{refitTau2: r.mean.Tau2, refitEstimate: r.mean.Estimate, refitSE: r.mean.SE, refitLow: r.mean.Low, refitHigh: r.mean.High,
-		refitReader: effect.ToReader(m, r.mean.Estimate), refitReaderLow: effect.ToReader(m, r.mean.Low), refitReaderHigh: effect.ToReader(m, r.mean.High)} {
-		s.entered(col, r.row, decimals6, x)
+	for i, x := range []float64{r.mean.Tau2, r.mean.Estimate, r.mean.SE, r.mean.Low, r.mean.High} {
+		s.entered(refitTau2+i, r.row, decimals6, x)
+	}
+	for i, y := range []float64{r.mean.Estimate, r.mean.Low, r.mean.High} {
+		s.entered(refitReader+i, r.row, decimals4, effect.ToReader(m, y))
 	}
 	if !o.o.Analysis.NullMissing {
 		ln := s.entered(refitLn, r.row, decimals4, r.mean.Evidence.Ln())

@@ -15,13 +15,14 @@ import (
 // book is a workbook being written, with the values of its cells, so that formulas can
 // be evaluated. It keeps the first error.
 type book struct {
-	f      *excelize.File
-	sheets []*sheet
-	named  map[string]formula.Range
-	styles map[look]int
-	charts []bool // of each chart, whether its horizontal axis is logarithmic
-	fixed  int    // values that stand entered because a formula would not agree
-	err    error
+	f        *excelize.File
+	sheets   []*sheet
+	named    map[string]formula.Range
+	styles   map[look]int
+	drawings bool   // the program's own drawings are put in
+	charts   []bool // of each chart, whether its horizontal axis is logarithmic
+	fixed    int    // values that stand entered because a formula would not agree
+	err      error
 }
 
 // sheet is a sheet of the book with what its cells hold.
@@ -96,6 +97,9 @@ func (r block) absolute() string {
 
 // number returns the number that a cell holds.
 func (c cell) number() float64 { return c.sheet.get(c.col, c.row).Number }
+
+// live reports whether a cell holds a formula.
+func (c cell) live() bool { return c.sheet.rows[c.row-1][c.col-1].live }
 
 func (s *sheet) get(col, row int) formula.Value {
 	if row > len(s.rows) || col > len(s.rows[row-1]) {

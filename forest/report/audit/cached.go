@@ -7,6 +7,7 @@ import (
 	"fmt"
 	"io"
 	"regexp"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -18,7 +19,7 @@ import (
 var formulaCell = regexp.MustCompile(`<c r="([A-Z]+)([0-9]+)"((?: s="[0-9]+")?) t="str"><f>([^<]*)</f>(?:<v></v>|<v/>)?</c>`)
 
 // withValues puts into a saved workbook what the library itself cannot: the values of
-// the formulas with all their digits, and logarithmic horizontal axes.
+// the formulas with all their digits, logarithmic horizontal axes, and one order for all.
 func (b *book) withValues(saved []byte) ([]byte, error) {
 	archive, err := zip.NewReader(bytes.NewReader(saved), int64(len(saved)))
 	if err != nil {
@@ -30,6 +31,9 @@ func (b *book) withValues(saved []byte) ([]byte, error) {
 		content, err := contentOf(part)
 		if err != nil {
 			return nil, err
+		}
+		if part.Name == "[Content_Types].xml" {
+			content = inOrder(content)
 		}
 		if n, isChart := partNumber(part.Name, "xl/charts/chart"); isChart && n <= len(b.charts) && b.charts[n-1] {
 			content = bytes.Replace(content, []byte("<scaling>"), []byte(`<scaling><logBase val="2"></logBase>`), 1)
@@ -50,6 +54,20 @@ func (b *book) withValues(saved []byte) ([]byte, error) {
 	}
 	err = w.Close()
 	return out.Bytes(), err
+}
+
+// defaultType says what files of an ending hold.
+var defaultType = regexp.MustCompile(`<Default [^>]*></Default>`)
+
+// inOrder sorts the kinds of files, which the library lists in any order.
+func inOrder(content []byte) []byte {
+	kinds := defaultType.FindAllString(string(content), -1)
+	slices.Sort(kinds)
+	next := 0
+	return defaultType.ReplaceAllFunc(content, func([]byte) []byte {
+		next++
+		return []byte(kinds[next-1])
+	})
 }
 
 func contentOf(part *zip.File) ([]byte, error) {

@@ -57,6 +57,9 @@ func (o *outcome) writeCharts() {
 
 // picture draws a chart and puts its pages under each other; it returns the row below.
 func (o *outcome) picture(s *sheet, row int, name string, draw func() (layout.Document, error)) int {
+	if !o.book.drawings {
+		return row
+	}
 	document, err := draw()
 	if err != nil {
 		s.text(pictureColumn, row, look{role: soft}, "no "+name+": "+err.Error())

@@ -25,7 +25,7 @@ type strip struct {
 
 // put writes a formula and its head.
 func (t *strip) put(title string, form format, text string, arguments ...any) cell {
-	if t.heads > 0 {
+	if t.heads > 0 && t.s.get(t.col, t.heads).Text == "" {
 		t.s.text(t.col, t.heads, look{role: head}, t.mentioned+title)
 	}
 	c := t.s.formula(t.col, t.row, look{t.role, form}, text, arguments...)

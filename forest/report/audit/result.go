@@ -67,9 +67,13 @@ func (l *listing) end(d line, c cell) {
 	l.row++
 }
 
-// reader writes the line just written as a reader sees it.
+// reader writes the line just written as a reader sees it: entered where that is.
 func (l *listing) reader(c cell, y float64) {
 	m := l.o.o.Analysis.Measure
+	if !c.live() {
+		l.s.entered(3, c.row, decimals4, effect.ToReader(m, y))
+		return
+	}
 	l.s.live(3, c.row, decimals4, effect.ToReader(m, y), toReader(m, c.local()))
 }
 

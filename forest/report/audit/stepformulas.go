@@ -22,6 +22,8 @@ var stepFormulas = []stepFormula{
 	{"correlation implied by three standard deviations", "", []string{"({1}^2+{2}^2-{3}^2)/(2*{1}*{2})"}},
 	{"standard deviation of the differences within people", "", []string{"SQRT({1}^2+{2}^2-2*{3}*{1}*{2})"}},
 	{"mean difference and its standard error from differences", "", []string{"{1}", "{2}/SQRT({3})"}},
+	{"standardised mean difference and its standard error from paired means", "", []string{
+		"({1}-{3})/SQRT(({2}^2+{4}^2)/2)", "SQRT(1/{5}+{=1}^2/(2*{5}))*SQRT(2*(1-{6}))", "SQRT(({2}^2+{4}^2)/2)"}},
 	{"design effect of cluster randomisation", "", []string{"1+({1}-1)*{2}"}},
 	{"effective counts of a cluster trial", "", []string{"{1}/{5}", "{2}/{5}", "{3}/{5}", "{4}/{5}"}},
 	{"effective number of people of a cluster trial", "", []string{"{1}/{2}"}},

@@ -25,7 +25,19 @@ const fixedDate = "2025-01-01T00:00:00Z"
 // from, the same bytes every time; version is the program's. Texts of the sheet stay
 // texts, and nothing in the workbook points outside it.
 func Write(w io.Writer, s *synthesis.Synthesis, x *review.Extraction, version string) error {
-	b := &book{f: excelize.NewFile(), named: map[string]formula.Range{}, styles: map[look]int{}}
+	content, err := compose(s, x, version, true)
+	if err == nil {
+		_, err = w.Write(content)
+	}
+	if err != nil {
+		return fmt.Errorf("writing the audit workbook: %w", err)
+	}
+	return nil
+}
+
+// compose returns the workbook, with or without the program's own drawings.
+func compose(s *synthesis.Synthesis, x *review.Extraction, version string, drawings bool) ([]byte, error) {
+	b := &book{f: excelize.NewFile(), named: map[string]formula.Range{}, styles: map[look]int{}, drawings: drawings}
 	defer b.f.Close()
 	b.do(b.f.SetDefaultFont("Arial"))
 	about := b.sheet("about")
@@ -53,18 +65,13 @@ func Write(w io.Writer, s *synthesis.Synthesis, x *review.Extraction, version st
 	whole := true
 	b.do(b.f.SetCalcProps(&excelize.CalcPropsOptions{FullCalcOnLoad: &whole}))
 	if b.err != nil {
-		return fmt.Errorf("writing the audit workbook: %w", b.err)
+		return nil, b.err
 	}
 	var saved bytes.Buffer
 	if err := b.f.Write(&saved); err != nil {
-		return fmt.Errorf("writing the audit workbook: %w", err)
+		return nil, err
 	}
-	content, err := b.withValues(saved.Bytes())
-	if err != nil {
-		return fmt.Errorf("writing the audit workbook: %w", err)
-	}
-	_, err = w.Write(content)
-	return err
+	return b.withValues(saved.Bytes())
 }
 
 // write writes the sheets of an outcome.
