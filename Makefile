@@ -6,7 +6,7 @@ VERSION := $(shell git describe --tags --always --dirty 2>/dev/null || echo unre
 FUZZCOUNT ?= 20000x
 
 .DEFAULT_GOAL := help
-.PHONY: help build demo test race office soak check fuzz bench golden dist clean
+.PHONY: help build demo test race office browser soak check fuzz bench golden dist clean
 
 help: ## list the targets
 	@awk -F ':.*## ' '/^[a-z]+:.*## / { printf "  make %-8s %s\n", $$1, $$2 }' $(MAKEFILE_LIST)
@@ -32,6 +32,12 @@ race: ## run every test under the race detector
 office: ## what needs LibreOffice Calc: the template keeps its numbers in another program, the audit workbook is computed anew by it
 	go test -tags office -run Office ./ingest ./cmd/steelyard
 
+browser: ## the report in a real browser: widths, sliders, filter, print, accessibility (needs Chromium; axe-core by npm where there is a network)
+	@folder="$$(mktemp -d)"; trap 'rm -rf "$$folder"' EXIT; \
+	if npm install --silent --no-audit --no-fund --prefix "$$folder" axe-core@4.10.3 >/dev/null 2>&1; then export STEELYARD_AXE="$$folder/node_modules/axe-core/axe.min.js"; \
+	else echo "axe-core could not be fetched: the tests' own checks of accessibility stand alone"; fi; \
+	go test -tags browser -count=1 -run Browser ./cmd/steelyard
+
 soak: ## hostile files: worst cases of memory and time, 10,000 damaged workbooks
 	go test -tags soak -run 'WorstCases|TenThousand' -v ./ingest
 
@@ -40,6 +46,7 @@ check: ## formatting, vet, tidiness, static analysis, imports
 	go vet ./... ./testdata/demo
 	GOOS=windows go vet ./...
 	go vet -tags office,soak ./ingest ./cmd/steelyard
+	go vet -tags browser ./cmd/steelyard
 	go mod tidy -diff
 	go tool staticcheck ./...
 	go test -count=1 -run TestRooms ./cmd/steelyard

@@ -75,6 +75,9 @@ func (v *view) figure(s *synthesis.Synthesis, o *synthesis.Outcome, id string, k
 		return f, nil
 	}
 	f.Title = wide.Pages[0].Title
+	if !strings.HasSuffix(f.Title, "?") {
+		f.Title += "."
+	}
 	narrow, err := k.lay(s, o, layout.Style{ID: f.ID + "-n", NoTitle: true, Width: layout.NarrowWidth, TypeSize: narrowType})
 	if err != nil {
 		narrow, err = k.lay(s, o, layout.Style{ID: f.ID + "-n", NoTitle: true, Width: layout.NarrowWidth})

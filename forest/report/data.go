@@ -54,6 +54,9 @@ func (v *view) outcomeData(o *synthesis.Outcome, w *outcomeView) OutcomeData {
 			d.Rows["leave-one-out"] = append(d.Rows["leave-one-out"], studyMark(w.ID, x.Row))
 		}
 	}
+	if b, ok := v.baselines[w.ID]; ok {
+		d.Baselines, d.Baseline = b.stops, b.start
+	}
 	return d
 }
 

@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"html/template"
+	"slices"
 
 	"steelyard/forest/words"
 	"steelyard/meta/synthesis"
@@ -18,6 +19,7 @@ type outcomeView struct {
 	Trials   *sectionView
 	Accrual  *sectionView
 	Rests    *sectionView
+	Panel    *panelView
 	Other    *sectionView
 	Data     *tableView
 	Extra    []extraView
@@ -31,6 +33,7 @@ type answerView struct {
 	Pooled, Measure, Estimate, Interval, Direction string
 	Evidence, Strength, Bias                       string // blank where nothing is weighed
 	Reviewer, Panel, Living                        []string
+	Baseline                                       *baselineView // what the panel reads first; nil without an absolute form
 	Keys                                           []keyView
 	Beliefs                                        *beliefsView
 	Remarks                                        []string
@@ -72,6 +75,10 @@ func (v *view) outcome(s *synthesis.Synthesis, i int) (*outcomeView, error) {
 	w.Problem = ""
 	w.Answer = v.answer(s, o, w.ID)
 	var err error
+	if w.Panel, err = v.panel(s, o, w.ID); err != nil {
+		return nil, err
+	}
+	w.Answer.withPanel(w.Panel)
 	if w.Trials, err = v.trials(s, o, w.ID); err != nil {
 		return nil, err
 	}
@@ -109,13 +116,28 @@ func (v *view) answer(s *synthesis.Synthesis, o *synthesis.Outcome, id string) *
 	}
 	a.Evidence, a.Strength, a.Bias = words.Evidence(fit.Mean.Evidence), words.Strength(fit.Mean.Evidence), words.BiasRemark(o)
 	a.Keys = append(a.Keys, keyView{Name: "Evidence, effect : none", Value: words.NoBreak(words.Odds(fit.Mean.Evidence.Ln())), About: keep(a.Strength, a.Bias)})
-	for _, r := range o.Result.Regions {
-		a.Panel = append(a.Panel, words.RegionsSentence(o, r))
+	if len(o.Result.Regions) > 0 {
+		a.Panel = append(a.Panel, words.RegionsSentence(o, o.Result.Regions[0]))
 	}
 	a.Beliefs = v.beliefs(o, id)
 	start := a.Beliefs.Stops[a.Beliefs.Start]
 	a.Keys = append(a.Keys, keyView{Name: start.Prior, Value: start.Posterior, About: []string{"that there is an effect"}, Slot: "posterior"})
 	return a
+}
+
+// withPanel adds what a panel's part says first: the absolute effect at the baseline of
+// the slider's start, else the card's sentences.
+func (a *answerView) withPanel(p *panelView) {
+	switch {
+	case p == nil:
+	case p.Control == nil:
+		a.Panel = append(p.Card.Sentences, a.Panel...)
+	default:
+		a.Baseline = p.Control
+		key := keyView{Name: p.Control.Stop.Texts["base"], Value: p.Control.Stop.Texts["difference"], Slot: "difference", About: []string{p.Control.Stop.Texts["interval"]}}
+		at := min(2, len(a.Keys))
+		a.Keys = slices.Insert(a.Keys, at, key)
+	}
 }
 
 // keep returns the texts that are not blank.

@@ -12,6 +12,7 @@ import (
 	"slices"
 	"strings"
 
+	"steelyard/forest/words"
 	"steelyard/meta/synthesis"
 )
 
@@ -47,14 +48,18 @@ func Page(s *synthesis.Synthesis, options Options) ([]byte, error) {
 
 // Wanted returns the parts of a synthesis that the page shows.
 func Wanted() synthesis.Want {
-	return synthesis.Want{Cumulative: true, LeaveOneOut: true, Beliefs: true, Runs: true}
+	return synthesis.Want{
+		Cumulative: true, LeaveOneOut: true, Beliefs: true, Runs: true,
+		Further: synthesis.Further{Panel: &synthesis.PanelWanted{}, SmallStudy: &synthesis.SmallStudyWanted{}},
+	}
 }
 
 // functions are what the templates call.
 var functions = template.FuncMap{
-	"named": func(id, name string, value any) named { return named{id, name, value} },
-	"pair":  func(id string, value any) named { return named{ID: id, Value: value} },
-	"last":  func(stops []priorStop) int { return len(stops) - 1 },
+	"named":   func(id, name string, value any) named { return named{id, name, value} },
+	"pair":    func(id string, value any) named { return named{ID: id, Value: value} },
+	"capital": words.Capital,
+	"last":    func(stops []priorStop) int { return len(stops) - 1 },
 }
 
 // named hands a value to a template together with the outcome's id and a name.

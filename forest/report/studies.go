@@ -44,7 +44,7 @@ func (v *view) studyTable(s *synthesis.Synthesis, o *synthesis.Outcome, id strin
 		src := study.Source
 		name := text(src.Name)
 		name.Dagger = strings.Join(study.Assumptions, "; ")
-		date := text(src.Date.String())
+		date := text(strings.ReplaceAll(src.Date.String(), "-", "\u2011")) // no line break within a date
 		row := rowView{Study: studyMark(id, i), Cells: []cellView{name, date}}
 		for _, arm := range arms {
 			row.Cells = append(row.Cells, arm.cell(src))

@@ -30,6 +30,7 @@ type view struct {
 	figures   int // numbered so far
 	tables    int
 	spans     map[string]float64 // of the beams, in steps, by outcome
+	baselines map[string]baselineStopsOf
 }
 
 // frame is what finish fills in.
@@ -46,6 +47,7 @@ func newView(s *synthesis.Synthesis, options Options) (*view, error) {
 		Findings: findingsOf(s), Cautions: pageCautions(s), Record: recordOf(s, options),
 	}
 	v.positions, v.spans = positions{}, map[string]float64{}
+	v.baselines = map[string]baselineStopsOf{}
 	for i := range s.Outcomes {
 		o, err := v.outcome(s, i)
 		if err != nil {

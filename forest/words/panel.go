@@ -149,7 +149,7 @@ func absoluteTable(s *synthesis.Synthesis, o *synthesis.Outcome) *Table {
 			continue
 		}
 		treated := r.Absolute.Treated
-		cells := []string{BaselineName(r.Baseline), WithInterval(per1000(treated.Value), per1000(treated.Low), per1000(treated.High)), absoluteOf(r), Missing}
+		cells := []string{BaselineName(r.Baseline), WithInterval(Per1000(treated.Value), Per1000(treated.Low), Per1000(treated.High)), absoluteOf(r), Missing}
 		if r.Needed != nil {
 			cells[3] = Needed(*r.Needed)
 		}
@@ -167,15 +167,15 @@ func absoluteOf(r *synthesis.PanelRow) string {
 	return Absolute(1000*d.Value, 1000*d.Low, 1000*d.High)
 }
 
-// per1000 writes a risk per 1000 people; a small one with decimals.
-func per1000(risk float64) string { return Linear(1000*risk, absoluteDecimals(1000*risk)) }
+// Per1000 writes a risk per 1000 people; a small one with decimals.
+func Per1000(risk float64) string { return Linear(1000*risk, absoluteDecimals(1000*risk)) }
 
 // BaselineName names a baseline: "low, 150 per 1000".
 func BaselineName(b review.Baseline) string {
 	if b.Name == "" {
-		return per1000(b.Risk) + " per 1000"
+		return Per1000(b.Risk) + " per 1000"
 	}
-	return b.Name + ", " + per1000(b.Risk) + " per 1000"
+	return b.Name + ", " + Per1000(b.Risk) + " per 1000"
 }
 
 // Treatment returns what the sheet calls the treated arm after "with", such as "with

@@ -266,7 +266,7 @@ func informationWords(s *synthesis.Synthesis, o *synthesis.Outcome, r *synthesis
 	if a == nil {
 		return ""
 	}
-	what := fmt.Sprintf("to tell %s from %s per 1000", per1000(a.To), per1000(a.From))
+	what := fmt.Sprintf("to tell %s from %s per 1000", Per1000(a.To), Per1000(a.From))
 	if a.Delta != 0 {
 		what = fmt.Sprintf("to tell %s standard deviations from none", Linear(math.Abs(a.Delta), 2))
 	}

@@ -55,7 +55,7 @@ func baselineSource(s *synthesis.Synthesis, o *synthesis.Outcome) string {
 	}
 	own := ""
 	if m := p.Median; m != nil {
-		own = fmt.Sprintf("the control arms of %s have a median of %s per 1000", Number(m.Studies, Noun(s, 1), Noun(s, 2)), per1000(m.Risk))
+		own = fmt.Sprintf("the control arms of %s have a median of %s per 1000", Number(m.Studies, Noun(s, 1), Noun(s, 2)), Per1000(m.Risk))
 		if m.Used {
 			return fmt.Sprintf("No baseline risk is given: %s, which is offered in its place. It is of these %s, not of your people; give your own with --baseline or in the plan.", own, Noun(s, 2))
 		}
