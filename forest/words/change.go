@@ -238,7 +238,7 @@ func resultRows(o *synthesis.OutcomeChange) [][]string {
 }
 
 func baselineText(b review.Baseline) string {
-	text := "of " + per1000(b.Risk)
+	text := "of " + Per1000(b.Risk)
 	if b.Name != "" {
 		return b.Name + ", " + text
 	}
