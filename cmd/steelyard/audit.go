@@ -2,6 +2,7 @@ package main
 
 import (
 	"bytes"
+	"context"
 	"fmt"
 	"path/filepath"
 	"slices"
@@ -9,6 +10,7 @@ import (
 
 	"github.com/urfave/cli/v2"
 
+	"steelyard/forest/report"
 	"steelyard/forest/report/audit"
 )
 
@@ -23,6 +25,13 @@ func auditCommand() *cli.Command {
 		Flags:  slices.Concat(outputFlags(), sheetFlags(), settingFlags("cumulative"), workFlags()),
 		Action: writeAudit,
 	}
+}
+
+// reportAudit makes the workbook that goes with a report.
+func reportAudit(_ context.Context, r reported) ([]report.File, error) {
+	var b bytes.Buffer
+	err := audit.Write(&b, r.Synthesis, r.sheet, version)
+	return []report.File{{Name: "audit.xlsx", Content: b.Bytes()}}, err
 }
 
 func writeAudit(c *cli.Context) error {

@@ -19,8 +19,8 @@ func reportCommand() *cli.Command {
 		Name:      "report",
 		Usage:     "write one page that a panel can read, print and question, with figures and data",
 		UsageText: "steelyard report FILE --out FOLDER [flags]",
-		Description: "Writes report.html, which needs no network, results.json and figures/ (SVG, PDF and PNG, 180 and\n" +
-			"85 mm wide) to the folder. It is built aside and put in place whole; with --overwrite only files that\n" +
+		Description: "Writes report.html, which needs no network, results.json, audit.xlsx and figures/ (SVG, PDF and\n" +
+			"PNG, 180 and 85 mm wide) to the folder. It is built aside and put in place whole; with --overwrite only files that\n" +
 			"an earlier report wrote there are replaced. The same input gives the same files.",
 		Flags: slices.Concat([]cli.Flag{
 			&cli.StringFlag{Name: flagOut, Usage: "folder to write"},
@@ -57,6 +57,7 @@ var reportParts = []func(context.Context, reported) ([]report.File, error){
 	reportPage,
 	reportResults,
 	reportFigures,
+	reportAudit,
 }
 
 func reportPage(_ context.Context, r reported) ([]report.File, error) {

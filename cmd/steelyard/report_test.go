@@ -146,7 +146,7 @@ func TestReportFolder(t *testing.T) {
 		t.Fatalf("exit %d, %s", code, stderr)
 	}
 	first := filesIn(t, folder)
-	for _, name := range []string{"report.html", "results.json", "manifest.json", "figures/1-forest-180mm.svg", "figures/1-forest-85mm.png", "figures/1-cumulative-180mm.pdf", "figures/1-leave-one-out-85mm.svg"} {
+	for _, name := range []string{"report.html", "results.json", "audit.xlsx", "manifest.json", "figures/1-forest-180mm.svg", "figures/1-forest-85mm.png", "figures/1-cumulative-180mm.pdf", "figures/1-leave-one-out-85mm.svg"} {
 		if first[name] == nil {
 			t.Errorf("no %s", name)
 		}

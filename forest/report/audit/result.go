@@ -231,7 +231,7 @@ func (l *listing) commonEffect() {
 // result without converted numbers.
 func (l *listing) others() {
 	o, r := l.o, l.o.o.Result
-	if r.Regions == nil && r.Integrated == nil && r.Without == nil {
+	if r.Regions == nil && r.Integrated == nil && r.Without == nil && o.o.PValues == nil {
 		return
 	}
 	l.section("By the program alone (entered; these do not move)")
@@ -247,5 +247,9 @@ func (l *listing) others() {
 		l.reader(l.fixed(line{label: "mean effect without converted numbers", source: source, form: decimals6}, r.Without.Mean.Estimate), r.Without.Mean.Estimate)
 		l.fixed(line{label: "ln evidence without converted numbers", source: source, form: decimals4}, r.Without.Mean.Evidence.Ln())
 	}
-	o.still("regions of the effect, evidence integrated over τ, and the result without converted numbers")
+	if p := o.o.PValues; p != nil {
+		l.fixed(line{label: "ln evidence of the studies known by p alone (Stouffer)", source: "Entered: they are no part of the pooled result.", form: decimals4}, p.Stouffer.Evidence.Ln())
+		l.fixed(line{label: "ln evidence of the same (Fisher)", source: "Entered: they are no part of the pooled result.", form: decimals4}, p.Fisher.Evidence.Ln())
+	}
+	o.still("regions of the effect, evidence integrated over τ, studies known by p alone, and the result without converted numbers")
 }
