@@ -16,10 +16,12 @@ func chart(tb testing.TB, k int) layout.Document {
 	tb.Helper()
 	in := layout.ForestInput{
 		Title: "Flare within 24 weeks, Vane syndrome (invented)", Study: "trial", Level: 0.95, BiasOpen: true,
-		Scale:      layout.EffectScale{Measure: "risk ratio", Ratio: true},
-		Pooled:     &layout.ForestPooled{Estimate: -0.35, Low: -0.54, High: -0.15, LnEvidence: 3.4, K: k},
-		Prediction: &layout.ForestPrediction{Low: -0.72, High: 0.03},
-		Spread:     &layout.ForestSpread{Tau: 0.13},
+		Scale: layout.EffectScale{Measure: "risk ratio", Ratio: true},
+		ForestSummary: layout.ForestSummary{
+			Pooled:     &layout.ForestPooled{Estimate: -0.35, Low: -0.54, High: -0.15, LnEvidence: 3.4, K: k},
+			Prediction: &layout.ForestPrediction{Low: -0.72, High: 0.03},
+			Spread:     &layout.ForestSpread{Tau: 0.13},
+		},
 	}
 	for i := range k {
 		y := 0.3 * math.Sin(float64(i))

@@ -66,6 +66,11 @@ var chartKinds = []chartKind{
 		draw: laidOut(layout.BenefitOf, layout.Benefit),
 	},
 	{
+		name: "subgroups", usage: "the forest chart by subgroups, each with its pooled effect", setting: "forest",
+		flags: slices.Concat(subgroupsFlags(), plannedFlags()), want: wantSubgroupsChart,
+		draw: laidOut(layout.SubgroupsOf, layout.Forest),
+	},
+	{
 		name: "prior-sensitivity", usage: "evidence by the width of a prior", setting: "pool", want: wanting(synthesis.Want{Beliefs: true}),
 		draw: laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity),
 	},

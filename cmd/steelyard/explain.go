@@ -36,6 +36,10 @@ func subgroupsFlags() []cli.Flag {
 	}
 }
 
+func plannedFlags() []cli.Flag {
+	return []cli.Flag{&cli.BoolFlag{Name: flagPlanned, Usage: "the comparison was planned before results were seen"}}
+}
+
 func regressionFlags() []cli.Flag {
 	return []cli.Flag{
 		&cli.StringFlag{Name: flagOn, Usage: "columns to regress the effects on, such as \"latitude, year\"; a*b adds an interaction"},
@@ -54,8 +58,7 @@ func explainCommand() *cli.Command {
 		Flags: slices.Concat(subgroupsFlags(), regressionFlags(), []cli.Flag{
 			&cli.StringSliceFlag{Name: flagAt, Usage: "covariates at which to predict the effect, such as \"latitude=40\" (default: means and references); may be given more than once"},
 			&cli.IntFlag{Name: flagPermutations, Usage: "permutations of the regression's test by dealing the covariates anew, 100 or more, or 0 for none; all of them for 7 studies or fewer", Value: usualPermutations},
-			&cli.BoolFlag{Name: flagPlanned, Usage: "the comparison was planned before results were seen"},
-		}, sheetFlags(), settingFlags("explain"), []cli.Flag{formatFlag()}, outputFlags(), workFlags()),
+		}, plannedFlags(), sheetFlags(), settingFlags("explain"), []cli.Flag{formatFlag()}, outputFlags(), workFlags()),
 		Action: explainStudies,
 	}
 }
@@ -111,6 +114,15 @@ func wantExplain(c *cli.Context) (synthesis.Want, error) {
 		return want, &callError{fmt.Sprintf("--permutations %d: give 100 to 10000000, or 0 for none", w.Permutations)}
 	}
 	return want, regressionWanted(c, on, w)
+}
+
+// wantSubgroupsChart reads the flags of the chart of subgroups.
+func wantSubgroupsChart(c *cli.Context) (synthesis.Want, error) {
+	w := &synthesis.ExplainWanted{Subgroups: strings.TrimSpace(c.String(flagSubgroups)), Shared: c.Bool(flagSharedTau), Planned: c.Bool(flagPlanned)}
+	if w.Subgroups == "" {
+		return synthesis.Want{}, &callError{"which subgroups? name their column with --subgroups COLUMN"}
+	}
+	return synthesis.Want{Further: synthesis.Further{Explain: w}}, nil
 }
 
 // regressionWanted reads what is regressed on, and where an effect is predicted.

@@ -214,3 +214,34 @@ func TestGoldenExplain(t *testing.T) {
 		}
 	}
 }
+
+// TestSubgroupsChart draws blocks at both widths, and refuses what has none.
+func TestSubgroupsChart(t *testing.T) {
+	sheet := bcgAllocated(t, func(row int, fields []string) {
+		if row == 8 {
+			fields[7] = ""
+		}
+	})
+	folder := t.TempDir()
+	for _, width := range []string{"180", "85"} {
+		path := filepath.Join(folder, width+".svg")
+		if _, stderr, code := call(t, "", "chart", "subgroups", sheet, "--subgroups", "allocation", "--measure", "odds ratio", "--width", width, "--out", path); code != codeDone {
+			t.Fatalf("exit %d: %s", code, stderr)
+		}
+		content, err := os.ReadFile(path)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, part := range []string{">systematic<", ">Pooled, 4 studies<", ">No entry in allocation<", ">All 13 studies<", "Between groups:"} {
+			if !strings.Contains(string(content), part) {
+				t.Errorf("%s mm: the chart lacks %q", width, part)
+			}
+		}
+	}
+	for args, says := range map[string]string{"--subgroups study": "13 different entries", "": "--subgroups COLUMN", "--subgroups where": "no column"} {
+		_, stderr, code := call(t, "", append([]string{"chart", "subgroups", sheet, "--out", filepath.Join(folder, "x.svg")}, strings.Fields(args)...)...)
+		if code == codeDone || !strings.Contains(stderr, says) {
+			t.Errorf("%s: exit %d, %s", args, code, stderr)
+		}
+	}
+}

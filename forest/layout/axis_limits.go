@@ -61,7 +61,7 @@ func axisLimits(in *ForestInput) (low, high float64) {
 		s.stretch(p.Low, p.High, widest)
 	}
 	most = math.Max(most, s.high-s.low)
-	for _, v := range nearestFirst(in.Rows, centre) {
+	for _, v := range nearestFirst(append(in.Rows[:len(in.Rows):len(in.Rows)], in.subtotalRows()...), centre) {
 		wider := s
 		if wider.hold(v); wider.high-wider.low <= most {
 			s = wider

@@ -16,6 +16,8 @@ type forest struct {
 	rail      rail
 	railSteps span
 	rows      []rowText
+	entries   []entry // what stands below one another: rows, and the heads and subtotals of blocks
+	subtotals []rowText
 	pooled    *rowText
 	heads     headings
 	titles    titleBlock
@@ -63,12 +65,14 @@ func (in *ForestInput) cleaned() ForestInput {
 		}
 		out.Rows[i] = r
 	}
+	out.Blocks = cleanBlocks(in.Blocks)
 	return out
 }
 
 // arrange chooses sizes, columns and axes.
 func (f *forest) arrange() error {
 	f.texts()
+	f.entries = f.in.entries()
 	f.railSteps = railSpan(railStart, f.allEvidence())
 	if !f.arrangeWide() {
 		if err := f.arrangeNarrow(); err != nil {
@@ -87,7 +91,8 @@ func (f *forest) arrange() error {
 // arrangeWide tries rows of one line, dropping the counts, then the weights. The
 // sizes are those of the whole chart on one page, or of pages.
 func (f *forest) arrangeWide() bool {
-	f.metrics = wideMetrics(len(f.in.Rows), f.style.TypeSize)
+	f.metrics = wideMetrics(len(f.entries), f.style.TypeSize)
+	f.metrics.blocks(f.in.Blocks)
 	counts := f.hasCounts()
 	for _, try := range []struct{ counts, weight bool }{{true, true}, {false, true}, {false, false}} {
 		if try.counts && !counts {
@@ -105,6 +110,7 @@ func (f *forest) arrangeWide() bool {
 // print if the width asks for it.
 func (f *forest) arrangeNarrow() error {
 	f.metrics = narrowMetrics(f.style.TypeSize)
+	f.metrics.blocks(f.in.Blocks)
 	for {
 		c, ok := narrowColumns(f, f.measured(), f.width)
 		if ok {
@@ -115,6 +121,7 @@ func (f *forest) arrangeNarrow() error {
 			break
 		}
 		f.metrics = narrowMetrics(max(minType, f.metrics.row-0.25))
+		f.metrics.blocks(f.in.Blocks)
 	}
 	least := f.width
 	for ok := false; !ok; least++ {
@@ -134,16 +141,22 @@ func (f *forest) hasCounts() bool {
 
 // measured returns the texts of all rows, the pooled one last.
 func (f *forest) measured() []rowText {
+	all := append(f.rows[:len(f.rows):len(f.rows)], f.subtotals...)
 	if f.pooled == nil {
-		return f.rows
+		return all
 	}
-	return append(f.rows[:len(f.rows):len(f.rows)], *f.pooled)
+	return append(all, *f.pooled)
 }
 
 func (f *forest) allEvidence() []float64 {
 	var all []float64
 	for _, r := range f.in.Rows {
 		all = append(all, r.LnEvidence)
+	}
+	for _, b := range f.in.Blocks {
+		if b.Pooled != nil {
+			all = append(all, b.Pooled.LnEvidence)
+		}
 	}
 	if f.in.Pooled != nil {
 		all = append(all, f.in.Pooled.LnEvidence)
@@ -154,7 +167,7 @@ func (f *forest) allEvidence() []float64 {
 // paginate draws the pages: all rows on one if they fit, or else pages of at
 // most 40 rows.
 func (f *forest) paginate() []Drawing {
-	k := len(f.in.Rows)
+	k := len(f.entries)
 	per := k
 	if k > 48 && !f.metrics.twoLine {
 		per = 40
@@ -169,16 +182,16 @@ func (f *forest) paginate() []Drawing {
 			break
 		}
 	}
-	f.pages = (k + per - 1) / per
+	ranges := f.pageRanges(per)
+	f.pages = len(ranges)
 	var pages []Drawing
-	for from := 0; from < k; from += per {
-		to := min(from+per, k)
-		pages = append(pages, f.page(pageRange{number: len(pages) + 1, from: from, to: to, last: to == k}))
+	for _, p := range ranges {
+		pages = append(pages, f.page(p))
 	}
 	return pages
 }
 
-// pageRange is the part of the rows that stands on a page.
+// pageRange is the part of the entries that stands on a page.
 type pageRange struct {
 	number   int // from 1
 	from, to int
@@ -225,11 +238,8 @@ type levels struct {
 // vertical returns the heights of a page's parts.
 func (f *forest) vertical(p pageRange) levels {
 	m := f.metrics
-	n := p.to - p.from
-	y := levels{rowsEnd: f.heads.rowsTop + float64(n)*m.pitch}
-	if m.grouped {
-		y.rowsEnd += groupGap * float64((n-1)/5)
-	}
+	_, rowsEnd := f.tops(p)
+	y := levels{rowsEnd: rowsEnd}
 	y.axis = y.rowsEnd + 6
 	if !p.last {
 		return y
@@ -255,20 +265,6 @@ func (f *forest) vertical(p pageRange) levels {
 		y.axis = at + toAxis
 	}
 	return y
-}
-
-// centre returns the middle of the i-th row of a page; for rows of two lines the
-// middle of the first line.
-func (f *forest) centre(i int) float64 {
-	m := f.metrics
-	y := f.heads.rowsTop + float64(i)*m.pitch
-	if m.grouped {
-		y += groupGap * float64(i/5)
-	}
-	if m.twoLine {
-		return y + 5.65*m.row/7.25
-	}
-	return y + m.pitch/2
 }
 
 // secondLine is the baseline of the second line of a row with this centre.

@@ -11,6 +11,7 @@ type rowText struct {
 	weight            string
 	odds              [2]string // left and right of the colon
 	bold              bool
+	indent            float64 // of the name, within a block
 }
 
 // columns are the places of the columns in points. A column that was dropped has
@@ -85,7 +86,7 @@ func wideColumns(f *forest, rows []rowText, counts, weight bool) columns {
 	}
 	c.estimateEnd = c.intervalEnd - between - 4
 	c.zone.high = c.estimateEnd - estimate - zoneAfter
-	c.nameWidth = min(widest(rows, size, func(r rowText) string { return r.fullName }), nameShare*f.width-zoneBefore)
+	c.nameWidth = min(f.widestName(rows, size), nameShare*f.width-zoneBefore)
 	c.zone.low = m.margin + c.nameWidth + zoneBefore + 1
 	if counts {
 		c.counts = placeCounts(f, rows, m.margin+c.nameWidth+countsBefore)
@@ -134,9 +135,9 @@ func narrowColumns(f *forest, rows []rowText, width float64) (columns, bool) {
 	c.rail.high = width - m.margin - lastLabel/2
 	numbers := f.labelWidth(width)
 	for _, r := range rows {
-		numbers = max(numbers, Width(r.estimate+" "+r.between, m.second, r.bold))
+		numbers = max(numbers, r.indent+Width(r.estimate+" "+r.between, m.second, r.bold))
 	}
-	c.nameWidth = max(numbers, min(widest(rows, m.row, func(r rowText) string { return r.fullName }), nameShare*width))
+	c.nameWidth = max(numbers, min(f.widestName(rows, m.row), nameShare*width))
 	c.zone.low = m.margin + c.nameWidth + 3
 	room := c.rail.high - c.zone.low - zoneBefore
 	zone := max(minZone, 0.53*room)

@@ -10,12 +10,18 @@ type ForestInput struct {
 	Scale           EffectScale
 	Sides           Sides
 	Rows            []ForestRow
-	Pooled          *ForestPooled     // nil: nothing was pooled, as with one study
-	Prediction      *ForestPrediction // nil: no row for it, as under common effects
-	Spread          *ForestSpread     // nil: no row for it
-	BiasOpen        bool              // "bias is not in this number" stands beside the evidence
-	Notes           []Note            // after the notes on key and rail, which the chart writes itself
-	Level           float64           // of all intervals, such as 0.95
+	Blocks          []ForestBlock // the rows by subgroup; nil: one list
+	ForestSummary
+	BiasOpen bool    // "bias is not in this number" stands beside the evidence
+	Notes    []Note  // after the notes on key and rail, which the chart writes itself
+	Level    float64 // of all intervals, such as 0.95
+}
+
+// ForestSummary is what stands under the rows.
+type ForestSummary struct {
+	Pooled     *ForestPooled     // nil: nothing was pooled, as with one study
+	Prediction *ForestPrediction // nil: no row for it, as under common effects
+	Spread     *ForestSpread     // nil: no row for it
 }
 
 // EffectScale says how effects are shown.
@@ -93,6 +99,9 @@ func (in *ForestInput) validate() error {
 		if !(0 <= r.Weight && r.Weight <= 1) {
 			return fmt.Errorf("forest chart: %s: weight %v must lie from 0 to 1", where, r.Weight)
 		}
+	}
+	if err := in.validateBlocks(); err != nil {
+		return err
 	}
 	return in.validateSummary()
 }

@@ -51,7 +51,7 @@ func (f *forest) keyNote() string {
 	}
 	parts = append(parts, interval)
 	if f.pooled != nil {
-		parts = append(parts, "diamond, pooled effect")
+		parts = append(parts, f.diamondKey())
 	}
 	if pi := f.in.Prediction; pi != nil && pi.Reason == "" && f.pooled != nil {
 		parts = append(parts, "pale bar, "+f.level()+" prediction for the next "+one+"’s true effect")
@@ -67,6 +67,11 @@ func (f *forest) keyNote() string {
 func (f *forest) clips() bool {
 	out := func(low, high float64) bool { return low < f.axis.low || high > f.axis.high }
 	for _, r := range f.in.Rows {
+		if out(r.Low, r.High) {
+			return true
+		}
+	}
+	for _, r := range f.in.subtotalRows() {
 		if out(r.Low, r.High) {
 			return true
 		}
@@ -100,6 +105,11 @@ func (f *forest) hollow() (wanted, unwanted string, ok bool) {
 		}
 	}
 	for _, r := range f.in.Rows {
+		if r.Unwanted && r.LnEvidence >= 0 {
+			check(r.Estimate)
+		}
+	}
+	for _, r := range f.in.subtotalRows() {
 		if r.Unwanted && r.LnEvidence >= 0 {
 			check(r.Estimate)
 		}
@@ -141,18 +151,11 @@ func (f *forest) description(p pageRange) string {
 		b.WriteString(". ")
 	}
 	b.WriteString(capital(f.in.plural(2)) + ": ")
-	for i := p.from; i < p.to; i++ {
-		r, t := f.in.Rows[i], f.rows[i]
-		if i > p.from {
+	for i, e := range f.entries[p.from:p.to] {
+		if i > 0 {
 			b.WriteString("; ")
 		}
-		b.WriteString(t.fullName)
-		for arm, c := range t.counts {
-			if c.Total != "" {
-				fmt.Fprintf(&b, ", %s %s of %s", f.armName(arm), c.Events, c.Total)
-			}
-		}
-		fmt.Fprintf(&b, ", %s, weight %s, %s", f.in.estimate(r.Estimate, r.Low, r.High), words.PercentFine(r.Weight), words.Odds(r.LnEvidence))
+		b.WriteString(f.describeEntry(e))
 	}
 	return b.String() + "."
 }

@@ -78,6 +78,11 @@ func (in *ForestInput) effects() []*float64 {
 		r := &in.Rows[i]
 		all = append(all, &r.Estimate, &r.Low, &r.High)
 	}
+	for i := range in.Blocks {
+		if p := in.Blocks[i].Pooled; p != nil {
+			all = append(all, &p.Estimate, &p.Low, &p.High)
+		}
+	}
 	if p := in.Pooled; p != nil {
 		all = append(all, &p.Estimate, &p.Low, &p.High)
 	}

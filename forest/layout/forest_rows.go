@@ -36,18 +36,20 @@ func (f *forest) gridItems(p pageRange, y levels) []Item {
 	return append(items, Line{X1: null, Y1: h.rule, X2: null, Y2: y.axis, Width: 0.75})
 }
 
-// hairlines stand under each row but the last, or every five rows.
+// hairlines stand between rows, or every five rows; those of blocks under each row of
+// a block but its last.
 func (f *forest) hairlines(p pageRange, right float64) []Item {
 	m := f.metrics
-	n := p.to - p.from
+	tops, _ := f.tops(p)
+	entries := f.entries[p.from:p.to]
 	var items []Item
-	for i := 1; i < n; i++ {
-		y := f.heads.rowsTop + float64(i)*m.pitch
-		if m.grouped {
-			if i%5 != 0 {
-				continue
-			}
-			y += groupGap*float64(i/5-1) + groupGap/2
+	for i := 1; i < len(entries); i++ {
+		y := tops[i]
+		switch {
+		case m.grouped && i%5 != 0, entries[i].kind == headEntry, entries[i-1].kind == headEntry:
+			continue
+		case m.grouped:
+			y -= groupGap / 2
 		}
 		items = append(items, Line{X1: m.margin, Y1: y, X2: right, Y2: y, Width: 0.35, Ink: Hairline})
 	}
@@ -61,8 +63,18 @@ func (f *forest) rowItems(p pageRange) []Item {
 	for _, r := range f.in.Rows {
 		heaviest = math.Max(heaviest, r.Weight)
 	}
-	for i := p.from; i < p.to; i++ {
-		y := f.centre(i - p.from)
+	tops, _ := f.tops(p)
+	for at, e := range f.entries[p.from:p.to] {
+		y := f.centre(e, tops[at])
+		switch e.kind {
+		case headEntry:
+			items = append(items, f.blockHead(e.index, y))
+			continue
+		case subtotalEntry:
+			items = append(items, f.subtotal(e.index, y))
+			continue
+		}
+		i := e.index
 		r, t := f.in.Rows[i], f.rows[i]
 		g := Group{ID: fmt.Sprintf("row-%d", i+1)}
 		if t.name != t.fullName {
@@ -88,7 +100,7 @@ func (f *forest) rowTexts(t rowText, y float64, under Ink) []Item {
 		return Span{X: x, Anchor: anchor, Text: text, Bold: t.bold}
 	}
 	row := func(spans ...Span) Text { return Text{Y: base, Size: size, Spans: spans} }
-	items := []Item{row(plain(f.metrics.margin, Start, t.name))}
+	items := []Item{row(plain(f.metrics.margin+t.indent, Start, t.name))}
 	if c.counts.show {
 		items = append(items, f.countTexts(t, base)...)
 	}
@@ -140,10 +152,10 @@ func (f *forest) twoLineTexts(t rowText, y float64, under Ink) []Item {
 	if t.bold {
 		ink = Ordinary
 	}
-	numbers := label(m.margin, second, m.second, Start, ink, t.estimate+" "+t.between)
+	numbers := label(m.margin+t.indent, second, m.second, Start, ink, t.estimate+" "+t.between)
 	numbers.Spans[0].Bold = t.bold
 	items := []Item{
-		Text{Y: y + baseline(m.row), Size: m.row, Spans: []Span{{X: m.margin, Text: t.name, Bold: t.bold}}},
+		Text{Y: y + baseline(m.row), Size: m.row, Spans: []Span{{X: m.margin + t.indent, Text: t.name, Bold: t.bold}}},
 		numbers,
 	}
 	odds := label(f.rail.zero()+2.5, second, m.second, Start, Ordinary, t.odds[0]+" : "+t.odds[1])

@@ -44,11 +44,13 @@ func nineTrials() ForestInput {
 		Study:    "trial", Level: 0.95,
 		Scale: EffectScale{Measure: "risk ratio", Ratio: true},
 		Sides: Sides{Lower: "fewer flares", Higher: "more", Arms: [2]string{"brindle", "without"}},
-		Pooled: &ForestPooled{Estimate: math.Log(0.707), Low: math.Log(0.581), High: math.Log(0.861),
-			LnEvidence: 2.5528 * lnStep, K: 9, Totals: [2]string{"935", "936"}},
-		Prediction: &ForestPrediction{Low: math.Log(0.486), High: math.Log(1.029)},
-		Spread:     &ForestSpread{Tau: 0.13, Low: 0, High: 0.48, HasLimits: true},
-		BiasOpen:   true,
+		ForestSummary: ForestSummary{
+			Pooled: &ForestPooled{Estimate: math.Log(0.707), Low: math.Log(0.581), High: math.Log(0.861),
+				LnEvidence: 2.5528 * lnStep, K: 9, Totals: [2]string{"935", "936"}},
+			Prediction: &ForestPrediction{Low: math.Log(0.486), High: math.Log(1.029)},
+			Spread:     &ForestSpread{Tau: 0.13, Low: 0, High: 0.48, HasLimits: true},
+		},
+		BiasOpen: true,
 		Notes: []Note{{"Model", "random effects, restricted maximum likelihood; Hartung–Knapp interval, evidence matched to it." +
 			" † Ratio as reported, events not given. Invented data."}},
 	}

@@ -15,8 +15,12 @@ func (f *forest) texts() {
 		t.name = t.fullName
 		t.counts = shownCounts(r.Counts)
 		t.setNumbers(f.in.Scale, r.Estimate, r.Low, r.High, r.LnEvidence)
+		if f.in.Blocks != nil {
+			t.indent = blockIndent
+		}
 		f.rows = append(f.rows, t)
 	}
+	f.subtotalTexts()
 	p := f.in.Pooled
 	if p == nil {
 		return
@@ -68,7 +72,10 @@ func shownCounts(c [2]Count) [2]Count {
 // cutNames shortens the names that are wider than their column.
 func (f *forest) cutNames() {
 	for i, r := range f.in.Rows {
-		f.rows[i].name, _ = cut(r.Name, r.tail(), f.columns.nameWidth+0.01, f.metrics.row)
+		f.rows[i].name, _ = cut(r.Name, r.tail(), f.columns.nameWidth-f.rows[i].indent+0.01, f.metrics.row)
+	}
+	for i, t := range f.subtotals {
+		f.subtotals[i].name, _ = cut(t.fullName, "", f.columns.nameWidth-t.indent+0.01, f.metrics.row)
 	}
 }
 
