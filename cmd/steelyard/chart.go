@@ -74,6 +74,19 @@ var chartKinds = []chartKind{
 		name: "prior-sensitivity", usage: "evidence by the width of a prior", setting: "pool", want: wanting(synthesis.Want{Beliefs: true}),
 		draw: laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity),
 	},
+	{
+		name: "funnel", usage: "whether small studies show other effects, over contours of evidence or p", setting: "small-study",
+		flags: contourFlags(), want: wanting(wantAsymmetry()),
+		draw: laidOut(layout.FunnelOf, layout.Funnel),
+	},
+	{
+		name: "radial", usage: "each study's distance from none against its precision", setting: "small-study", want: wanting(synthesis.Want{}),
+		draw: laidOut(layout.RadialOf, layout.Radial),
+	},
+	{
+		name: "contribution", usage: "which studies make the results differ, and which move the answer", setting: "influence", want: wanting(synthesis.Want{Influence: true}),
+		draw: laidOut(layout.ContributionOf, layout.Contribution),
+	},
 }
 
 // wanting asks for the same whatever the flags.
@@ -207,6 +220,10 @@ func chartStyle(c *cli.Context, out string) (layout.Style, error) {
 	}
 	if ending := strings.ToLower(filepath.Ext(out)); c.IsSet(flagDPI) && ending != ".png" {
 		return style, &callError{fmt.Sprintf("--dpi is for .png; %s is sharp at any size", ending)}
+	}
+	var err error
+	if style.Contours, err = contours(c); err != nil {
+		return style, err
 	}
 	if dpi := c.Int(flagDPI); dpi < 50 || dpi > 1200 {
 		return style, &callError{fmt.Sprintf("--dpi %d: give 50 to 1200", dpi)}

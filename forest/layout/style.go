@@ -17,10 +17,11 @@ const minType = 6.5
 
 // Style says how a chart is to look.
 type Style struct {
-	ID       string  // prefix of the ids in the SVG; empty is the chart's name, such as "forest"
-	Width    float64 // points; 0 is WideWidth
-	NoTitle  bool    // leave title and subtitle to the caption
-	TypeSize float64 // points, of the rows; 0 chooses by width and number of rows
+	ID       string   // prefix of the ids in the SVG; empty is the chart's name, such as "forest"
+	Width    float64  // points; 0 is WideWidth
+	NoTitle  bool     // leave title and subtitle to the caption
+	TypeSize float64  // points, of the rows; 0 chooses by width and number of rows
+	Contours Contours // of a funnel chart
 }
 
 // ForestStyle is the style of a forest chart.
