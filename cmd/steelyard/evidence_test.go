@@ -3,6 +3,7 @@ package main
 import (
 	"encoding/csv"
 	"encoding/json"
+	"fmt"
 	"math"
 	"os"
 	"strconv"
@@ -160,6 +161,10 @@ func TestEvidenceCalls(t *testing.T) {
 	for i := range 20 {
 		many += strconv.Itoa(i) + "," + strconv.Itoa(i%5) + ",1\n"
 	}
+	crowd := "study,estimate,se\n"
+	for i := range 51 {
+		crowd += fmt.Sprintf("study %d,%d.%d,1.%d\n", i, i%7, i%9, i)
+	}
 	two := "study,estimate,se\nA,1,0.2\nB,1,0.3\n"
 	for _, c := range []struct {
 		stdin, args string
@@ -193,7 +198,8 @@ func TestEvidenceCalls(t *testing.T) {
 		{many, "subsets - --evidence integrated", codeCall, "subsets: evidence integrated is too slow for 1048575 subsets"},
 		{"", "subsets SCHOOLS --evidence integrated", codeDone, "evidence integrated over τ"},
 		{"", "cumulative BCG --evidence integrated --looks 1000", codeCall, "looks: repeated looks are simulated in the forms of evidence empirical and student-t"},
-		{"", "next-trial BCG --evidence integrated --size 400", codeCall, "next-trial: evidence integrated is too slow"},
+		{crowd, "next-trial - --evidence integrated --arms 200,200 --sd 2 --measure mean-difference --tau-prior uniform", codeCall, "next-trial: evidence integrated is too slow"},
+		{two, "next-trial - --evidence integrated --arms 20,20 --sd 2 --measure mean-difference --tau-prior half-normal --tau-scale 1", codeDone, "10,000"},
 		{"", "next-trial BCG --evidence integrated --se 0.2", codeDone, "Evidence: posterior Bayes factor"},
 		{"", "next-trial BCG --evidence student-t --se 0.2", codeDone, "For none the evidence can reach 1 : 2.5 at most"}, // 13 df by the closed form of METHODS' Student-t evidence: 2.52
 		{"", "weigh --z 2 --evidence integrated", codeCall, "numbers alone have no studies"},

@@ -57,6 +57,9 @@ func (p *page) methods(s *synthesis.Synthesis, o *synthesis.Outcome) {
 	if c.Others > 0 {
 		p.item("·", fmt.Sprintf("%s without events and totals of both arms as counted: in no row of this table.", words.Number(c.Others, words.Noun(s, 1), words.Noun(s, 2))))
 	}
+	if !o.Analysis.Weighing.Own() {
+		p.item("·", fmt.Sprintf("Evidence in this table is in the empirical form for all methods, not %s.", o.Analysis.Weighing.Form))
+	}
 	p.item("·", "scatter: p-value of the heterogeneity about one common effect.")
 	for _, text := range problems {
 		p.item("·", text)

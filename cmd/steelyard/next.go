@@ -173,7 +173,7 @@ func (p *page) sizes(n *synthesis.Next) {
 	columns = append(columns, column{head: "excludes none", right: true}, column{head: "steps", right: true})
 	var rows [][]string
 	for _, point := range n.Curve {
-		if !slices.Contains([]string{"1", "2", "5"}, strings.TrimRight(words.Linear(point.Size, 0), "0")) {
+		if !slices.Contains([]string{"1", "2", "5"}, strings.TrimRight(strconv.FormatFloat(point.Size, 'f', 0, 64), "0")) {
 			continue // the chart has finer steps
 		}
 		row := append([]string{words.People(point.Size), words.Linear(point.Outlook.SE, 3)}, chanceCells(point.Outlook.Passing)...)

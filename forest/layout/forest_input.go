@@ -60,6 +60,7 @@ type ForestPooled struct {
 	LnEvidence          float64
 	Unwanted            bool
 	K                   int       // studies pooled
+	OfPriors            bool      // its evidence rests on priors: it may favour none by more than a study alone can
 	Clusters            int       // studies, where some give several of the K estimates; else 0
 	Totals              [2]string // people per arm; empty if not known
 }

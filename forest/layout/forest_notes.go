@@ -88,7 +88,11 @@ func (f *forest) railNote() string {
 	if wanted, unwanted, ok := f.hollow(); ok {
 		text += " (solid: " + wanted + "; hollow: " + unwanted + ")"
 	}
-	text += "; to the left, for none (dotted: the most there can be, " + words.Odds(mostForNone) + "). A step is 3.73-fold."
+	most := "the most there can be"
+	if f.in.Pooled != nil && f.in.Pooled.OfPriors {
+		most = "the most that a study alone can have"
+	}
+	text += "; to the left, for none (dotted: " + most + ", " + words.Odds(mostForNone) + "). A step is 3.73-fold."
 	if f.pooled != nil && len(f.in.Rows) > 1 {
 		text += " Single bars do not add up to the pooled one."
 	}

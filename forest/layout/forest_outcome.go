@@ -46,7 +46,7 @@ func ForestOf(s *synthesis.Synthesis, o *synthesis.Outcome) (ForestInput, error)
 		in.Pooled = &ForestPooled{
 			Estimate: fit.Mean.Estimate, Low: fit.Mean.Low, High: fit.Mean.High,
 			LnEvidence: fit.Mean.Evidence.Ln(), Unwanted: unwanted(o, fit.Mean.Estimate),
-			K: fit.Mean.K, Totals: armTotals(o),
+			K: fit.Mean.K, Totals: armTotals(o), OfPriors: !o.Analysis.Weighing.Own(),
 		}
 		if c := fit.Clustered; c != nil {
 			in.Pooled.Clusters = c.Clusters

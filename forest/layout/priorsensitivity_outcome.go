@@ -49,6 +49,8 @@ func priorNote(o *synthesis.Outcome) string {
 		" centred on no effect, normal (solid) and Cauchy (dashed); as they widen, any data drift towards none. "
 	location := o.Result.Fit.Mean.Location()
 	switch {
+	case o.Analysis.Weighing.Form.OverTau():
+		return text + "Curves and bound are of the pooled mean at the z matched to its interval, the level line of the studies themselves: it may pass the bound. Grey ranges are a normal prior’s."
 	case math.IsInf(location.DF, 1):
 		return text + "Grey ranges are a normal prior’s."
 	case location.Form == evidence.StudentForm:

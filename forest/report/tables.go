@@ -232,7 +232,8 @@ func (v *view) heterogeneity(o *synthesis.Outcome) tableView {
 			t.Rows = append(t.Rows, rowView{Cells: []cellView{text(name), text(value)}})
 		}
 	}
-	add("Model", words.Model(fit))
+	add("Model", words.ModelOf(o))
+	add("Evidence", words.Rests(o))
 	if fit.Model.Effects == meta.RandomEffects {
 		add("Spread", words.Spread(fit))
 	}

@@ -80,6 +80,8 @@ func PriorDrift(o *synthesis.Outcome, b *synthesis.Beliefs) string {
 		PriorUnit(o), OddsInSentence(mean.Evidence.Ln()), strings.TrimPrefix(NeedsScale(o), "which "))
 	location := mean.Location()
 	switch {
+	case o.Analysis.Weighing.Form.OverTau():
+		return text + fmt.Sprintf(" The priors and the bound are weighed at z = %s, matched to the interval, that evidence from the studies themselves: it may pass the bound.", Linear(b.At.Z(), 2))
 	case math.IsInf(location.DF, 1):
 		return text
 	case location.Form == evidence.StudentForm:

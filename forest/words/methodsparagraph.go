@@ -90,8 +90,12 @@ func predictionSource(m meta.PredictionMethod) string {
 func evidenceMethod(o *synthesis.Outcome) string {
 	fit := o.Result.Fit
 	text := "The evidence ratio is the empirical Bayes factor for an effect against none (Dudbridge 2024)"
+	if !o.Analysis.Weighing.Own() {
+		text = fmt.Sprintf("The evidence ratio for an effect against none is %s: %s", strings.TrimPrefix(EvidenceName(o.Analysis.Weighing.Form), "evidence "), Rests(o))
+	}
 	student := fit.Model.Interval == meta.HartungKnapp || fit.Model.Interval == meta.HartungKnappFloor
 	switch {
+	case !o.Analysis.Weighing.Own():
 	case student && fit.Model.Evidence == evidence.StudentForm && fit.Method == "" && fit.Mean.K > 1:
 		text += ", in its form for Student’s t"
 	case fit.Method == "" && fit.Mean.K > 1 && student:
@@ -102,6 +106,9 @@ func evidenceMethod(o *synthesis.Outcome) string {
 	text += ". It is stated as n : 1 and in steps; one step is a factor of 2 + √3 = 3.73. Words: faint below 1 step, fair from 1, firm from 2, heavy from 3, massive from 4."
 	if len(o.Result.Regions) > 0 {
 		text += " Evidence on a range of effects weighs the range against all other values of the mean effect; the share of settings comes from the prediction distribution."
+		if other := RegionForm(o); other != "" {
+			text += " " + other
+		}
 	}
 	return text + " Odds after the data are odds before, times the ratio."
 }

@@ -279,15 +279,22 @@ const (
 	// trialPoints is the number of values of y_new at which the review is pooled
 	// anew, over that range.
 	trialPoints = 320
+	// weighedPoints is that number where the evidence is weighed by Trial.Weigh, which
+	// may take a millisecond.
+	weighedPoints = 96
 )
 
 // foresee is Foresee for a question that was checked.
 func (f *foreseen) foresee(ctx context.Context, se float64) (*Outlook, error) {
-	const step = 2 * trialReach / trialPoints
+	points := trialPoints
+	if f.Weigh != nil {
+		points = weighedPoints
+	}
+	step := 2 * trialReach / float64(points)
 	sd := f.predictive(se)
 	at := func(u float64) (updated, error) { return f.with(f.mean+sd*u, se) }
-	nodes := make([]float64, trialPoints+1)
-	results := make([]updated, trialPoints+1)
+	nodes := make([]float64, points+1)
+	results := make([]updated, points+1)
 	expected := 0.0
 	for i := range nodes {
 		if ctx.Err() != nil {

@@ -28,8 +28,8 @@ func (o *Outcome) settleDependence(asked review.Analysis, plan *review.Plan) err
 	switch {
 	case isTables:
 		return fmt.Errorf("%s: %s allows for several estimates from one study by their standard errors, and %s pools counts without them; choose --method inverse-variance", review.SettingDependence, way, asked.Method)
-	case o.Analysis.Weighing.Form.OverTau():
-		return fmt.Errorf("evidence: %s integrates τ over independent studies; beside %s choose empirical or student-t", o.Analysis.Weighing.Form, way)
+	case asked.Weighing.Form.OverTau():
+		return fmt.Errorf("evidence: %s integrates τ over independent studies; beside %s choose empirical, student-t, normal-prior or cauchy-prior", asked.Weighing.Form, way)
 	case interval == meta.ProfileLikelihood || interval == meta.HenmiCopas || interval == meta.Wald:
 		return fmt.Errorf("interval: %s is for independent studies; beside %s the interval is Student's t with its own degrees of freedom: leave the setting interval away", interval, way)
 	case way == dependence.ThreeLevel && asked.Model.Effects == meta.CommonEffect:

@@ -153,11 +153,15 @@ func (o *Outcome) pooledByPairs(y, s []float64) (meta.Mean, error) {
 	return mean, nil
 }
 
-// checkSlowNext refuses sizes of the next study in a form of evidence that would
-// take minutes over them.
+// mostSlowNext is up to how many studies a form that integrates τ is weighed over the
+// sizes of the next study: half a minute on one processor.
+const mostSlowNext = 50
+
+// checkSlowNext refuses sizes of the next study to many studies in a form of evidence
+// that would take minutes over them.
 func (o *Outcome) checkSlowNext(w NextWanted) error {
-	if form := o.Analysis.Weighing.Form; form.OverTau() && w.SE == 0 {
-		return &accrual.InputError{Problem: fmt.Sprintf("next-trial: evidence %s is too slow to weigh over the sizes of a study; give the next study's standard error with --se in place of its size, or choose another form with --%s", form, review.SettingEvidence)}
+	if form := o.Analysis.Weighing.Form; form.OverTau() && w.SE == 0 && len(o.Studies) > mostSlowNext {
+		return &accrual.InputError{Problem: fmt.Sprintf("next-trial: evidence %s is too slow to weigh over the sizes of a study beside more than %d; give the next study's standard error with --se in place of its size, or choose another form with --%s", form, mostSlowNext, review.SettingEvidence)}
 	}
 	return nil
 }

@@ -34,6 +34,10 @@ func (o *Outcome) posteriorOf() {
 		o.note("No posterior is computed: it is of a mean effect and a spread, and a common effect has no spread; choose random effects.")
 		return
 	}
+	if o.dependent() {
+		o.note(fmt.Sprintf("No posterior is computed: it is of independent estimates, and beside %s several come from one study.", o.Analysis.Dependence))
+		return
+	}
 	y, s := estimates(o.Studies)
 	p, err := bayes.PosteriorOf(y, s, o.Analysis.Weighing.Tau, o.Result.Fit.Model.Level)
 	if err != nil {
