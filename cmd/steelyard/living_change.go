@@ -85,7 +85,7 @@ func livingUpdate(c *cli.Context) error {
 		report.messages = append(report.messages, fmt.Sprintf("the last line of the ledger was never finished; it is set aside in %s", setAside))
 	}
 	if len(recorded.Record.Joins) > 0 {
-		report.messages = append(report.messages, fmt.Sprintf("state %d follows state %d and joins the other %s of a fork", recorded.Number, report.before.Number, words.Number(len(recorded.Record.Joins), "end", "ends")))
+		report.messages = append(report.messages, fmt.Sprintf("state %d follows state %d and joins %s of the fork", recorded.Number, report.before.Number, words.Number(len(recorded.Record.Joins), "other end", "other ends")))
 	}
 	if recorded.Record.At < report.before.Record.At {
 		report.messages = append(report.messages, fmt.Sprintf("this computer's clock (%s) stands before the time of state %d (%s); the order of the record is that of its lines", recorded.Record.At, report.before.Number, report.before.Record.At))
@@ -122,11 +122,15 @@ func newState(c *cli.Context, l *ledger.Ledger, path string) (*changeReport, led
 	return report, entry, report.compute(c, l, now, updates)
 }
 
-// updatesTo returns the updates that led to a state, itself included.
+// updatesTo returns the updates up to a state, itself included, in the order of the
+// lines: both sides of a fork have looked.
 func updatesTo(l *ledger.Ledger, s *ledger.State) ([]synthesis.Update, error) {
 	var updates []synthesis.Update
-	for _, state := range l.Way(s) {
-		u, err := state.Update()
+	for i := range l.States {
+		if l.States[i].Number > s.Number {
+			break
+		}
+		u, err := l.States[i].Update()
 		if err != nil {
 			return nil, err
 		}
@@ -243,7 +247,10 @@ func comparedStates(l *ledger.Ledger, names []string) (before, now *ledger.State
 		before, err = l.State(names[0])
 		return before, now, livingError(err)
 	}
-	if before = l.Before(now); before == nil {
+	if before = l.Before(now); before == nil && now.Number > 1 {
+		return nil, nil, fmt.Errorf("the line that state %d follows cannot be read; name two states, or see: steelyard living verify", now.Number)
+	}
+	if before == nil {
 		return nil, nil, &callError{"there is one state only: nothing to compare it with"}
 	}
 	return before, now, nil

@@ -17,6 +17,11 @@ var schemaFiles = map[string]any{
 	"../../meta/synthesis/steelyard-1.schema.json":       synthesis.Document{},
 	"../../meta/synthesis/steelyard-check-1.schema.json": synthesis.CheckDocument{},
 	"../../meta/synthesis/steelyard-weigh-1.schema.json": synthesis.WeighingDocument{},
+
+	"../../meta/synthesis/steelyard-change-1.schema.json":  synthesis.ChangeDocument{},
+	"../../meta/synthesis/steelyard-history-1.schema.json": synthesis.HistoryDocument{},
+	"../../meta/synthesis/steelyard-state-1.schema.json":   synthesis.StateReport{},
+	"../../meta/synthesis/steelyard-verify-1.schema.json":  synthesis.VerifyDocument{},
 }
 
 // TestGoldenSchemas: the schema files are those of the types; -update rewrites

@@ -9,7 +9,6 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
-	"slices"
 	"strconv"
 	"strings"
 	"syscall"
@@ -227,17 +226,6 @@ func (l *Ledger) Before(s *State) *State {
 		return &l.States[at]
 	}
 	return nil
-}
-
-// Way returns the states that led to one, itself included, oldest first: its
-// parents, not those of joined ends.
-func (l *Ledger) Way(s *State) []*State {
-	var way []*State
-	for ; s != nil; s = l.Before(s) {
-		way = append(way, s)
-	}
-	slices.Reverse(way)
-	return way
 }
 
 // State returns a state by its number or the first digits, four or more, of its

@@ -198,5 +198,6 @@ var analysisRules = []Rule{
 	{"A5", "small studies differ", "warning", "Egger's test has p below 0.1, or Harbord's score test where an odds ratio is above 2 or below 0.5 and there are counts; from 10 studies on, if the largest standard error is 1.5 times the smallest", "Sterne 2011; Egger 1997", nil},
 	{"A6", "prediction interval imprecise", "remark beside the result", "none below 3 studies; degrees of freedom are stated", "Higgins 2009; Cochrane Handbook 10.10.4.3" + confirmed, nil},
 	{"A7", "studies of one date", "remark beside the cumulative result", "two studies or more of one date; the rule for ties is printed", practice, one(review.DateField)},
+	{"A8", "repeated looks", "warning", "a living review has looked more than once at new studies, with an interval of 95% or less", "Simmonds 2017; Cochrane Handbook 22", nil},
 	{"A9", "two extractions differ", "warning", "rows of one study differ by more than rounding; first those whose effects differ by 0.1 SD or 10%, or their standard errors by 10%", "Buscemi 2006; Gøtzsche 2007", nil},
 }

@@ -113,6 +113,12 @@ func verdict(met bool) Verdict {
 	return TriggerNotMet
 }
 
+// reaches reports whether a share is at least a threshold, rounding errors apart.
+func reaches(share, threshold float64) bool {
+	const rounding = 1e-12
+	return share >= threshold*(1-rounding)
+}
+
 // significance is T1.
 func (o *OutcomeChange) significance() Trigger {
 	t := Trigger{ID: SignificanceTrigger, Why: o.againstNull()}
@@ -140,7 +146,7 @@ func (o *OutcomeChange) effectSize(plan *review.Plan) Trigger {
 	before, now := o.Previous.Result.Fit.Mean.Estimate, o.Current.Result.Fit.Mean.Estimate
 	share := math.Abs(now-before) / math.Abs(before-o.Previous.Analysis.Model.Null)
 	t.After = finite(share)
-	t.Verdict = verdict(share >= triggerNumber(plan, review.SettingTriggerEffect, o.Name))
+	t.Verdict = verdict(reaches(share, triggerNumber(plan, review.SettingTriggerEffect, o.Name)))
 	return t
 }
 
@@ -215,6 +221,7 @@ func (o *OutcomeChange) scope() Trigger {
 	for i := range o.Rows.Changed {
 		now = append(now, o.Rows.Changed[i].Study)
 	}
+	slices.SortFunc(now, func(a, b *review.Study) int { return a.Row.Row - b.Row.Row })
 	for _, s := range now {
 		if name := subgroup(s); name != "" && !known[choice.Fold(name)] {
 			known[choice.Fold(name)] = true
@@ -246,7 +253,7 @@ func (o *OutcomeChange) information(plan *review.Plan) Trigger {
 	for _, s := range o.Rows.New {
 		t.Named = append(t.Named, s.Name)
 	}
-	t.Verdict = verdict(share >= triggerNumber(plan, review.SettingTriggerInformation, o.Name))
+	t.Verdict = verdict(reaches(share, triggerNumber(plan, review.SettingTriggerInformation, o.Name)))
 	return t
 }
 
