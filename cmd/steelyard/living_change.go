@@ -324,7 +324,7 @@ func (p *page) outcomeChange(t *words.OutcomeChangeText) {
 	p.line("")
 	p.line("Triggers for a full update")
 	for _, trigger := range t.Triggers {
-		p.wrapped(pad(trigger[0]+" "+trigger[1], 16), trigger[2])
+		p.wrapped(pad(trigger[0], 23)+pad(trigger[1], 12), trigger[2])
 	}
 	if t.Looks != "" {
 		p.line("")

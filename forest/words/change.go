@@ -82,14 +82,14 @@ func ChangeConclusion(c *synthesis.Change) string {
 			met = append(met, "there is no result any more")
 		}
 		for _, t := range o.Met() {
-			met = append(met, fmt.Sprintf("%s is met (%s)", t.ID, t.ID.Title()))
+			met = append(met, fmt.Sprintf("%s: %s", t.ID, TriggerText(o, t)))
 		}
 		if len(met) == 0 {
 			continue
 		}
-		text := strings.Join(met, ", ")
+		text := strings.Join(met, "; ")
 		if len(c.Outcomes) > 1 && o.Name != "" {
-			text = o.Name + ": " + text
+			text = o.Name + ", " + text
 		}
 		parts = append(parts, text)
 	}
@@ -113,7 +113,7 @@ func outcomeChange(c *synthesis.Change, o *synthesis.OutcomeChange) OutcomeChang
 		t.Guides = append(t.Guides, guideRow(g))
 	}
 	for _, trigger := range o.Triggers {
-		t.Triggers = append(t.Triggers, []string{trigger.ID.String(), trigger.Verdict.String(), TriggerText(o, trigger)})
+		t.Triggers = append(t.Triggers, []string{trigger.ID.String() + " " + trigger.ID.Title(), trigger.Verdict.String(), TriggerText(o, trigger)})
 	}
 	return t
 }
@@ -276,11 +276,8 @@ func weightRows(o *synthesis.OutcomeChange) [][]string {
 
 func guideRow(g synthesis.Guide) []string {
 	show := func(x float64) string {
-		if g.Share && x > 10 {
-			return "over 1,000%"
-		}
 		if g.Share {
-			return Percent(x)
+			return share(x)
 		}
 		return Count(int(x))
 	}
@@ -294,65 +291,76 @@ func guideRow(g synthesis.Guide) []string {
 	return []string{g.Name, show(g.Before), show(g.After), bound}
 }
 
-// TriggerText says what a trigger found.
+// TriggerText says what a trigger found: "the interval now excludes no effect".
 func TriggerText(o *synthesis.OutcomeChange, t synthesis.Trigger) string {
 	if t.Verdict == synthesis.TriggerNotJudged {
-		return t.ID.Title() + ": " + t.Why
+		return t.Why
 	}
-	text := t.ID.Title()
+	met := t.Verdict == synthesis.TriggerMet
 	switch t.ID {
 	case synthesis.SignificanceTrigger:
-		text += ": " + againstNull(o, func(s *synthesis.Outcome) meta.Limits {
-			return meta.Limits{Low: s.Result.Fit.Mean.Low, High: s.Result.Fit.Mean.High}
-		})
+		return "the interval " + againstNull(o, met, o.Current.Result.Fit.Mean.Low, o.Current.Result.Fit.Mean.High)
 	case synthesis.PredictionTrigger:
-		text += ": " + againstNull(o, func(s *synthesis.Outcome) meta.Limits {
-			return meta.Limits{Low: s.Result.Fit.Prediction.Low, High: s.Result.Fit.Prediction.High}
-		})
+		p := o.Current.Result.Fit.Prediction
+		return "the prediction interval " + againstNull(o, met, p.Low, p.High)
 	case synthesis.EffectTrigger:
-		text += fmt.Sprintf(": by %s of its distance from no effect; %s", Percent(*t.After), bar(t, true))
+		return fmt.Sprintf("the effect changed by %s of its distance from no effect (%s)", share(*t.After), bar(t, true))
 	case synthesis.InformationTrigger:
-		text += fmt.Sprintf(": %s; %s", Percent(*t.After), bar(t, true))
+		return fmt.Sprintf("new studies carry %s of the weight (%s)", share(*t.After), bar(t, true))
 	case synthesis.AbsoluteTrigger:
-		if t.Threshold != nil {
-			text += "; " + bar(t, false) + " per 1000"
+		text := "the effect crossed no threshold"
+		if met {
+			text = "the effect crossed " + list(t.Named)
 		}
-		text += named(t)
-	default:
-		text += named(t)
+		if t.Threshold != nil {
+			text += fmt.Sprintf(" (%s per 1000)", bar(t, false))
+		}
+		return text
+	case synthesis.CertaintyTrigger:
+		return named(t, "crossed its guide: ", "no input crossed its guide")
+	case synthesis.ScopeTrigger:
+		return named(t, "new: ", "no new outcome or subgroup")
 	}
-	return text
+	return named(t, "changed: ", "no earlier number was changed, no row removed, no retraction noted")
 }
 
-func named(t synthesis.Trigger) string {
+func named(t synthesis.Trigger, met, not string) string {
 	if len(t.Named) == 0 {
-		return ""
+		return not
 	}
-	return ": " + list(t.Named)
+	return met + list(t.Named)
+}
+
+// share writes a share that may be large.
+func share(x float64) string {
+	if x > 10 {
+		return "over 1,000%"
+	}
+	return Percent(x)
 }
 
 // bar names the threshold of a trigger and where it came from.
-func bar(t synthesis.Trigger, share bool) string {
+func bar(t synthesis.Trigger, percent bool) string {
 	text := t.Threshold.Text
-	if x, err := review.TriggerNumber(text); err == nil && share {
+	if x, err := review.TriggerNumber(text); err == nil && percent {
 		text = Percent(x)
 	}
-	return fmt.Sprintf("threshold %s (%s)", text, t.Threshold.From)
+	return fmt.Sprintf("threshold %s, %s", text, t.Threshold.From)
 }
 
-func againstNull(o *synthesis.OutcomeChange, of func(*synthesis.Outcome) meta.Limits) string {
-	side := func(s *synthesis.Outcome) string {
-		l, null := of(s), s.Analysis.Model.Null
-		if l.Low > null || l.High < null {
-			return "excludes no effect"
-		}
-		return "includes no effect"
+// againstNull says on which side of no effect limits are, and whether that is new.
+func againstNull(o *synthesis.OutcomeChange, changed bool, low, high float64) string {
+	null := o.Current.Analysis.Model.Null
+	excludes := low > null || high < null
+	switch {
+	case changed && excludes:
+		return "now excludes no effect"
+	case changed:
+		return "no longer excludes no effect"
+	case excludes:
+		return "excludes no effect, as before"
 	}
-	before, now := side(o.Previous), side(o.Current)
-	if before == now {
-		return "the interval " + now + ", as before"
-	}
-	return "the interval " + now + " now, and did not before"
+	return "includes no effect, as before"
 }
 
 // RepeatedLooks says how often a living review has looked, and what so many looks show
@@ -366,7 +374,7 @@ func RepeatedLooks(r *synthesis.RepeatedLooks) string {
 	case r.Times == 1:
 		text = "The review has looked once."
 	case r.Looks < r.Times:
-		text = fmt.Sprintf("The review has looked %s, of which %s brought new studies to two or more in all.", times(r.Times), Count(r.Looks))
+		text = fmt.Sprintf("The review has looked %s, and %s of the looks brought new studies.", times(r.Times), Count(r.Looks))
 	}
 	if r.Why != "" {
 		return text + " What repeated looks show by chance is not simulated: " + r.Why + "."

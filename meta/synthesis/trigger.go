@@ -28,20 +28,13 @@ const (
 )
 
 var triggerTitles = []string{
-	"significance changed",
-	"the effect changed by a set share",
-	"the effect crossed a threshold of importance",
-	"an input to certainty crossed its guide",
-	"a new outcome or subgroup",
-	"new studies carry a set share of the weight",
-	"a retraction or correction",
-	"no effect entered or left the prediction interval",
+	"significance", "size of the effect", "importance", "certainty", "scope", "information", "corrections", "prediction",
 }
 
 // String returns "T1" to "T8".
 func (t TriggerID) String() string { return fmt.Sprintf("T%d", int(t)) }
 
-// Title says what the trigger waits for.
+// Title names what the trigger watches: "significance".
 func (t TriggerID) Title() string { return triggerTitles[t-1] }
 
 // Verdict says whether a trigger is met.
