@@ -28,8 +28,9 @@ func AbsoluteValue(difference float64) string {
 // absoluteDecimals is how many decimals differences per 1000 need of which the largest
 // has a size.
 func absoluteDecimals(size float64) int {
+	const rounding = 1e-9 // of what went through the analysis scale
 	decimals := 0
-	for size > 0 && size < 2 && decimals < 3 {
+	for size > 0 && size < 2*(1-rounding) && decimals < 3 {
 		size *= 10
 		decimals++
 	}

@@ -7,6 +7,7 @@ import (
 
 	"steelyard/meta"
 	"steelyard/meta/effect"
+	"steelyard/meta/panel"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
 )
@@ -149,7 +150,7 @@ func absoluteTable(s *synthesis.Synthesis, o *synthesis.Outcome) *Table {
 			continue
 		}
 		treated := r.Absolute.Treated
-		cells := []string{BaselineName(r.Baseline), WithInterval(Per1000(treated.Value), Per1000(treated.Low), Per1000(treated.High)), absoluteOf(r), Missing}
+		cells := []string{BaselineName(r.Baseline), treatedRisk(treated), absoluteOf(r), Missing}
 		if r.Needed != nil {
 			cells[3] = Needed(*r.Needed)
 		}
@@ -165,6 +166,12 @@ func absoluteTable(s *synthesis.Synthesis, o *synthesis.Outcome) *Table {
 func absoluteOf(r *synthesis.PanelRow) string {
 	d := r.Absolute.Difference
 	return Absolute(1000*d.Value, 1000*d.Low, 1000*d.High)
+}
+
+// treatedRisk writes a risk per 1000 with its limits, all with the same decimals.
+func treatedRisk(r panel.Range) string {
+	decimals := absoluteDecimals(1000 * r.High)
+	return WithInterval(Linear(1000*r.Value, decimals), Linear(1000*r.Low, decimals), Linear(1000*r.High, decimals))
 }
 
 // Per1000 writes a risk per 1000 people; a small one with decimals.

@@ -128,6 +128,9 @@ func sdRemark(o *synthesis.Outcome) []string {
 
 func nullTrialRemark(o *synthesis.Outcome) string {
 	text := "A trial that found no effect: two equal arms, the baseline risk in both, its estimate exactly none; pooled with the others anew, τ too. The smallest one is searched in steps of a fifth, then narrowed to two people."
+	if len(o.Studies) == 1 {
+		text += " Beside one study it makes two, whose interval on one degree of freedom is wide whatever its size."
+	}
 	if o.Analysis.Method != review.InverseVariance {
 		text += fmt.Sprintf(" It is pooled by %s, not by %s.", review.InverseVariance, o.Analysis.Method)
 	}

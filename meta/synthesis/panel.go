@@ -154,7 +154,7 @@ func (o *Outcome) panelRow(ctx context.Context, b review.Baseline, settings revi
 		return row, err
 	}
 	if zone != nil {
-		if row.Zone, err = o.panelZone(ctx, *zone, b.Risk, trial); err != nil {
+		if row.Zone, err = o.panelZone(ctx, *zone, b.Risk, settings.Per1000, trial); err != nil {
 			return row, err
 		}
 	}

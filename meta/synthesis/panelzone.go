@@ -50,10 +50,7 @@ func (o *Outcome) zoneAt(baseline float64, per1000 []float64) (*zoneLimits, erro
 	if len(per1000) == 0 || baseline == 0 {
 		return o.Analysis.Important, nil
 	}
-	low, high := -math.Abs(per1000[0]), math.Abs(per1000[0])
-	if len(per1000) == 2 {
-		low, high = min(per1000[0], per1000[1]), max(per1000[0], per1000[1])
-	}
+	low, high := per1000Ends(per1000)
 	m := o.Analysis.Measure
 	var z zoneLimits
 	var err error
@@ -69,8 +66,16 @@ func (o *Outcome) zoneAt(baseline float64, per1000 []float64) (*zoneLimits, erro
 	return &z, nil
 }
 
+// per1000Ends returns both differences per 1000; one alone is mirrored.
+func per1000Ends(values []float64) (low, high float64) {
+	if len(values) == 2 {
+		return min(values[0], values[1]), max(values[0], values[1])
+	}
+	return -math.Abs(values[0]), math.Abs(values[0])
+}
+
 // panelZone weighs the regions that the zone leaves.
-func (o *Outcome) panelZone(ctx context.Context, z zoneLimits, baseline float64, trial *panel.NullTrial) (*PanelZone, error) {
+func (o *Outcome) panelZone(ctx context.Context, z zoneLimits, baseline float64, per1000 []float64, trial *panel.NullTrial) (*PanelZone, error) {
 	p := &PanelZone{Limits: z}
 	location := o.Result.Fit.Mean.Location()
 	below, above := "lower", "higher"
@@ -123,6 +128,9 @@ func (o *Outcome) panelZone(ctx context.Context, z zoneLimits, baseline float64,
 	}
 	if baseline > 0 {
 		p.Per1000 = &meta.Limits{Low: o.difference(baseline, z.Low), High: o.difference(baseline, z.High)}
+		if len(per1000) > 0 {
+			p.Per1000.Low, p.Per1000.High = per1000Ends(per1000)
+		}
 	}
 	var err error
 	if lower != nil {
