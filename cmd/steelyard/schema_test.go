@@ -95,6 +95,8 @@ func TestSchema(t *testing.T) {
 		{pool, "", "next-trial " + data + "checks/bcg_counts.csv --size 100 --control-risk 0.1 --important 0.8"},
 		{pool, "", "next-trial " + data + "checks/bcg_counts.csv --se 0.1"},
 		{pool, "", "small-study " + data + "checks/bcg_counts.csv"},
+		{pool, "", "panel " + data + "demo.xlsx"},
+		{pool, "", "panel " + bcgCounts + " --baseline 0.001 --important-per-1000 40"},
 		{pool, repeatedSheet, "pool - --dependence three-level"},
 		{pool, repeatedSheet, "pool - --dependence robust"},
 		{pool, "", "small-study " + data + "checks/aspirin_lor.csv"},

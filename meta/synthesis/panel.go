@@ -66,8 +66,8 @@ type Adequacy struct {
 // Share is the share of the information size that the people reach.
 func (a Adequacy) Share() float64 { return float64(a.People) / a.Total() }
 
-// examinePanel adds the card of an outcome that has a result. The error is the cause
-// if ctx ends.
+// examinePanel adds the card of an outcome that has a result. It returns an error for
+// differences per 1000 on one side of the null, and the cause if ctx ends.
 func (o *Outcome) examinePanel(ctx context.Context, x *review.Extraction, plan *review.Plan, w PanelWanted) error {
 	if o.Result == nil {
 		return nil
@@ -146,8 +146,7 @@ func (o *Outcome) panelRow(ctx context.Context, b review.Baseline, settings revi
 	}
 	zone, err := o.zoneAt(b.Risk, settings.Per1000)
 	if err != nil {
-		row.Trouble = err.Error()
-		zone = nil
+		return row, fmt.Errorf("outcome %q: %w", o.Name, err)
 	}
 	trial := o.nullTrial(b.Risk, sd)
 	if row.Null, err = o.boundary(ctx, o.Analysis.Model.Null, b.Risk, trial); err != nil {

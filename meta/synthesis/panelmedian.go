@@ -30,7 +30,7 @@ func (o *Outcome) medianRisk() *MedianRisk {
 	if len(risks) == 0 {
 		return nil
 	}
-	return &MedianRisk{Risk: median(risks), Studies: len(risks)}
+	return &MedianRisk{Risk: medianOf(risks), Studies: len(risks)}
 }
 
 // panelSD returns the stated standard deviation; for a mean difference without one the
@@ -52,15 +52,5 @@ func (o *Outcome) panelSD(settings review.PanelSettings, plan *review.Plan) *Pan
 	if len(sds) == 0 {
 		return nil
 	}
-	return &PanelSD{Value: median(sds)}
-}
-
-// median returns the middle of values, the mean of the middle two; it sorts them.
-func median(values []float64) float64 {
-	slices.Sort(values)
-	n := len(values)
-	if n%2 == 1 {
-		return values[n/2]
-	}
-	return (values[n/2-1] + values[n/2]) / 2
+	return &PanelSD{Value: medianOf(sds)}
 }
