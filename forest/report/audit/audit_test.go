@@ -19,6 +19,7 @@ import (
 
 	"github.com/xuri/excelize/v2"
 
+	"steelyard/forest/report/audit/formula"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
 )
@@ -240,6 +241,33 @@ func TestFormulasStand(t *testing.T) {
 		if _, formula := namedValue(t, opened(t, data), "estimate_1"); formula == "" {
 			t.Errorf("%v: the mean effect is no formula", settings)
 		}
+	}
+}
+
+// TestTwoMaxima: as the trials entered, the likelihood of τ² has a maximum at 0 and a
+// higher one above it at one step at least; the formulas take the higher one.
+func TestTwoMaxima(t *testing.T) {
+	checkStands(t, sheetFrom(t, checks+"/bcg_counts.csv"), map[string]string{"tau": "maximum-likelihood"})
+}
+
+// TestDisagreement: where a formula does not give the program's number, that number is
+// entered, with a note beside what else is said of the cell.
+func TestDisagreement(t *testing.T) {
+	b := &book{f: excelize.NewFile(), named: map[string]formula.Range{}, styles: map[look]int{}}
+	s := b.sheet("result")
+	for row, text := range []string{"1+1", "1/0", "LN("} {
+		c, stands := s.key(1, row+1, general, 2.5, text)
+		s.note(c, "its source")
+		if stands || c.live() || c.number() != 2.5 || s.notes[c] != "Entered by the program: a formula would not give its value to nine digits here.\nits source" {
+			t.Errorf("%s: stands %v, %v, note %q", text, stands, c.number(), s.notes[c])
+		}
+	}
+	if c, stands := s.key(1, 4, general, 2, "1+1"); !stands || !c.live() {
+		t.Error("a formula that agrees is not written")
+	}
+	s.finish(page{})
+	if b.err != nil || b.fixed != 3 {
+		t.Errorf("%d entered, %v", b.fixed, b.err)
 	}
 }
 

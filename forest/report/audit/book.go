@@ -31,6 +31,9 @@ type sheet struct {
 	name string
 	rows [][]held
 	tall []cell // cells whose text is wrapped
+
+	noted []cell // cells with a note, in order
+	notes map[cell]string
 }
 
 // held is a cell's content.

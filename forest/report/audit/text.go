@@ -21,13 +21,30 @@ func clean(text string) string {
 	}, text)
 }
 
-// note hangs a note on a cell.
+// note hangs a note on a cell, under what its note says already.
 func (s *sheet) note(c cell, text string) {
-	lines := len(text)/38 + 2 + strings.Count(text, "\n")
-	s.book.do(s.book.f.AddComment(s.name, excelize.Comment{
-		Author: "steelyard", Cell: c.local(), Width: 260, Height: uint(18 * lines),
-		Paragraph: []excelize.RichTextRun{{Text: clean(text), Font: &excelize.Font{Family: "Arial", Size: 9}}},
-	}))
+	if s.notes == nil {
+		s.notes = map[cell]string{}
+	}
+	before, have := s.notes[c]
+	if !have {
+		s.noted = append(s.noted, c)
+		s.notes[c] = clean(text)
+		return
+	}
+	s.notes[c] = before + "\n" + clean(text)
+}
+
+// hangNotes writes the notes.
+func (s *sheet) hangNotes() {
+	for _, c := range s.noted {
+		text := s.notes[c]
+		lines := len(text)/38 + 2 + strings.Count(text, "\n")
+		s.book.do(s.book.f.AddComment(s.name, excelize.Comment{
+			Author: "steelyard", Cell: c.local(), Width: 260, Height: uint(18 * lines),
+			Paragraph: []excelize.RichTextRun{{Text: text, Font: &excelize.Font{Family: "Arial", Size: 9}}},
+		}))
+	}
 }
 
 // page is how a finished sheet is shown and printed.
@@ -79,6 +96,7 @@ func (s *sheet) finish(p page) {
 	b.do(f.SetHeaderFooter(s.name, &excelize.HeaderFooterOptions{OddFooter: "&L&8" + strings.ReplaceAll(s.name, "&", "&&") + "&R&8page &P of &N"}))
 	grid := false
 	b.do(f.SetSheetView(s.name, 0, &excelize.ViewOptions{ShowGridLines: &grid}))
+	s.hangNotes()
 	s.heighten(p)
 	s.printed(p, widest)
 }
