@@ -86,7 +86,7 @@ var helpOfField = map[review.Field]fieldHelp{
 	review.ObservedMinusExpected: {text: "Observed minus expected events of the treated arm, by the log-rank test.", example: "-5.2", limit: anyNumber},
 	review.Variance:              {text: "Variance of observed minus expected events.", example: "7.9", limit: positive},
 
-	review.Cluster:           {text: "Whether clusters of people were randomised and the numbers are not yet corrected for that.", example: "no", choices: []string{"yes", "no"}},
+	review.Cluster:           {text: "Whether clusters of people were randomised and the numbers are not yet corrected for that; or the name of the study that several estimates are from.", example: "no", choices: []string{"yes", "no"}, open: true},
 	review.ClusterSize:       {text: "Mean number of people in a cluster.", example: "18.5", limit: positive},
 	review.ICC:               {text: "Correlation within clusters.", example: "0.02", limit: correlation},
 	review.DesignEffect:      {text: "The design effect, if it is reported instead of cluster size and correlation.", example: "1.35", limit: positive},

@@ -79,6 +79,13 @@ func (p *page) asymmetryTests(s *synthesis.Synthesis, o *synthesis.Outcome) {
 		p.item("·", fmt.Sprintf("Without counts as they stand, so in neither Peters' nor Harbord's test: %s.", words.Number(n, words.Noun(s, 1), words.Noun(s, 2))))
 	}
 	p.item("·", "t above 0: small "+words.Noun(s, 2)+" have higher effects on the analysis scale; below 0: lower ones.")
+	if o.SmallStudy.FarOdds {
+		text := "The odds ratio is so far from 1 that Egger's and the rank test find asymmetry too often"
+		if o.SmallStudy.Tables > 0 {
+			text += ": read Harbord's"
+		}
+		p.item("·", text+".")
+	}
 	p.problems(problems)
 }
 

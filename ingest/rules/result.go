@@ -144,7 +144,7 @@ func (r *row) crossover() bool {
 
 // cluster reports whether the row is of a trial that randomised clusters.
 func (r *row) cluster() bool {
-	return strings.Contains(r.remark(review.Design), "cluster") || said(r.remark(review.Cluster)) || r.has(review.DesignEffect) || r.has(review.ClusterSize)
+	return strings.Contains(r.remark(review.Design), "cluster") || (!r.named && said(r.remark(review.Cluster))) || r.has(review.DesignEffect) || r.has(review.ClusterSize)
 }
 
 // adjusted reports whether the row's result is said to be adjusted.

@@ -113,6 +113,7 @@ type row struct {
 	index   int            // in the extraction
 	measure effect.Measure // of its reported result: its own, else the plan's
 	bad     []int          // columns with a number that the reader refuses
+	named   bool           // the column of clusters names the group an estimate belongs to
 }
 
 // number returns the row's number of a field unless the reader refuses it.
@@ -191,10 +192,14 @@ func newChecker(x *review.Extraction, plan *review.Plan) *checker {
 			c.planned[name] = a.Measure
 		}
 	}
+	named := slices.ContainsFunc(x.Studies, func(s review.Study) bool {
+		r, ok := s.Remark(review.Cluster.String())
+		return ok && review.NamesCluster(r.Text)
+	})
 	byName := map[string]int{}
 	for i := range x.Studies {
 		s := &x.Studies[i]
-		c.rows[i] = row{Study: s, index: i, measure: s.Measure, bad: bad[s.Row.Row]}
+		c.rows[i] = row{Study: s, index: i, measure: s.Measure, bad: bad[s.Row.Row], named: named}
 		if s.Measure == effect.Unspecified {
 			c.rows[i].measure = c.planned[s.Outcome]
 		}

@@ -91,10 +91,9 @@ func clusterKey(row *review.Study, named bool) string {
 // namesClusters reports whether the column of clusters says which estimates belong
 // together, and not whether clusters of people were randomised.
 func namesClusters(rows []Study) bool {
-	answers := []string{"", "yes", "no", "y", "n", "true", "false", "0", "1"}
 	return slices.ContainsFunc(rows, func(s Study) bool {
 		r, ok := s.Source.Remark(review.Cluster.String())
-		return ok && !slices.Contains(answers, choice.Fold(r.Text))
+		return ok && review.NamesCluster(r.Text)
 	})
 }
 

@@ -43,6 +43,7 @@ type SmallStudy struct {
 	Above    int     // studies above it; 0 where the model was not fitted
 	Model    meta.Model
 	Pooled   meta.Mean // without adjustment, by inverse variances
+	FarOdds  bool      // an odds ratio so far from 1 that Egger's tests find asymmetry too often
 	Tests    []AsymmetryTest
 	Adjusted []AdjustedResult
 }
@@ -100,6 +101,7 @@ func (o *Outcome) seekAsymmetry(want SmallStudyWanted) {
 		return
 	}
 	part.Few = len(y) < leastForAsymmetry
+	part.FarOdds = o.farOdds()
 	a := &asymmetry{SmallStudy: part, o: o, y: y, s: s, model: o.pairModel()}
 	if part.Step = want.Step; part.Step == 0 {
 		part.Step = 0.025
@@ -249,6 +251,11 @@ func (a *asymmetry) selection() {
 	a.Tests, a.Adjusted = append(a.Tests, test), append(a.Adjusted, row)
 }
 
+// farOdds reports an odds ratio so far from 1 that its standard error goes with it.
+func (o *Outcome) farOdds() bool {
+	return o.Analysis.Measure == effect.OddsRatio && math.Abs(o.Result.Fit.Mean.Estimate) > math.Log(largeOddsRatio)
+}
+
 // asymmetry reports small studies with other effects than large ones (A5), where
 // there are enough of both to tell.
 func (e *examination) asymmetry() {
@@ -259,9 +266,8 @@ func (e *examination) asymmetry() {
 	model := e.o.pairModel()
 	model.Evidence = evidence.Empirical
 	test, err := missing.Egger(model, y, s)
-	estimate := e.o.Result.Fit.Mean.Estimate
 	about := ""
-	if e.o.Analysis.Measure == effect.OddsRatio && math.Abs(estimate) > math.Log(largeOddsRatio) {
+	if e.o.farOdds() {
 		var tables []effect.Table
 		for i := range e.o.Studies {
 			if t := e.o.Studies[i].Table; t != nil {

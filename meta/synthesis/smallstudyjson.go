@@ -12,7 +12,8 @@ import (
 type SmallStudyDocument struct {
 	Refused  string              `json:"problem,omitempty"`
 	Few      bool                `json:"fewer_than_ten,omitempty"`
-	Spread   float64             `json:"se_ratio"` // largest over smallest standard error
+	FarOdds  bool                `json:"odds_ratio_far_from_1,omitempty"` // Egger's tests find asymmetry too often
+	Spread   float64             `json:"se_ratio"`                        // largest over smallest standard error
 	Tables   int                 `json:"studies_with_counts"`
 	Step     *float64            `json:"step,omitempty"`
 	Above    *int                `json:"studies_above_step,omitempty"`
@@ -76,7 +77,7 @@ func (a *SmallStudy) document(nullMissing bool) *SmallStudyDocument {
 	if a == nil {
 		return nil
 	}
-	d := &SmallStudyDocument{Refused: a.Refused, Few: a.Few, Spread: a.Spread, Tables: a.Tables}
+	d := &SmallStudyDocument{Refused: a.Refused, Few: a.Few, FarOdds: a.FarOdds, Spread: a.Spread, Tables: a.Tables}
 	if a.Refused != "" {
 		return d
 	}
