@@ -121,6 +121,16 @@ func TestNextIsSimulation(t *testing.T) {
 	}
 }
 
+// TestNextToOneStudy: one study of z = 10 and one more as large are pooled with t on 1
+// degree of freedom, as two studies are, where the first step needs |t| > 17 (the matched form):
+// an updated mean over 17/√2, which the next study brings in fewer than 1 of 100 cases.
+func TestNextToOneStudy(t *testing.T) {
+	_, n := nextDocument(t, "study,estimate,se\nA,10,1\n", "--measure", "mean difference", "--se", "1")
+	if c := n.Outlook.Passing[0]; c.Chance > 0.01 {
+		t.Errorf("chance of the first step: %v", c.Chance)
+	}
+}
+
 // TestNextCalls: what is said, and what is refused.
 func TestNextCalls(t *testing.T) {
 	bcg := data + "checks/bcg_counts.csv"

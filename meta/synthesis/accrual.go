@@ -130,7 +130,7 @@ func (o *Outcome) accrue(ctx context.Context, columns []review.Column, plan *rev
 		}
 	}
 	if want.Next != nil {
-		if a.Next, err = o.next(ctx, *want.Next); err != nil {
+		if a.Next, err = o.next(ctx, *want.Next, plan); err != nil {
 			return err
 		}
 	}

@@ -48,11 +48,12 @@ const towardNone = -0.5
 // that rests on priors.
 func (o *Outcome) mostForNone() *float64 {
 	most := evidence.Normal(0).Steps()
-	switch model := o.Analysis.Model; {
+	model := o.Analysis.Model
+	student := len(o.Studies) == 1 || model.Interval == meta.HartungKnapp || model.Interval == meta.HartungKnappFloor
+	switch {
 	case !o.Analysis.Weighing.Own():
 		return nil
-	case o.Analysis.Weighing.Form == evidence.StudentForm && model.Effects == meta.RandomEffects &&
-		(model.Interval == meta.HartungKnapp || model.Interval == meta.HartungKnappFloor):
+	case o.Analysis.Weighing.Form == evidence.StudentForm && model.Effects == meta.RandomEffects && student:
 		most = evidence.Student(0, float64(len(o.Studies))).Steps()
 	}
 	return &most
@@ -74,7 +75,7 @@ func curveSizes() []float64 {
 // next foresees the next study. An outcome without evidence says so in a note. It
 // returns an *accrual.InputError if its size gives no standard error, and the cause
 // if ctx ends.
-func (o *Outcome) next(ctx context.Context, w NextWanted) (*Next, error) {
+func (o *Outcome) next(ctx context.Context, w NextWanted, plan *review.Plan) (*Next, error) {
 	if o.Analysis.NullMissing {
 		o.note("The measure has no value of no effect and none is given, so that there is no evidence that another study could change: state one with --null.")
 		return nil, nil
@@ -94,7 +95,11 @@ func (o *Outcome) next(ctx context.Context, w NextWanted) (*Next, error) {
 	if w.Toward == 0 {
 		n.Wanted.Toward = max(1, math.Floor(n.Now)+1)
 	}
-	trial := accrual.Trial{Y: y, SE: s, Model: o.Analysis.Model, Important: o.Analysis.Important, Steps: []float64{1, 2, 3, 4, towardNone}}
+	model, err := o.modelWithNext(plan)
+	if err != nil {
+		return nil, err
+	}
+	trial := accrual.Trial{Y: y, SE: s, Model: model, Important: o.Analysis.Important, Steps: []float64{1, 2, 3, 4, towardNone}}
 	if !slices.Contains(trial.Steps, n.Wanted.Toward) {
 		trial.Steps = append(trial.Steps, n.Wanted.Toward)
 	}
@@ -130,6 +135,21 @@ func (o *Outcome) next(ctx context.Context, w NextWanted) (*Next, error) {
 	}
 	n.Smallest, err = trial.SmallestSize(ctx, design.SizeToSE, n.Reaches, w.Chance)
 	return n, err
+}
+
+// modelWithNext returns the model by which the studies and the next are pooled: that of
+// the studies, or, as a single study resolves to methods of its own, the one asked for.
+func (o *Outcome) modelWithNext(plan *review.Plan) (meta.Model, error) {
+	if len(o.Studies) > 1 {
+		return o.Analysis.Model, nil
+	}
+	asked, err := plan.Analysis(o.Name)
+	if err != nil {
+		return meta.Model{}, fmt.Errorf("outcome %q: %w", o.Name, err)
+	}
+	model := asked.Model
+	model.Effects, model.Null = o.Analysis.Model.Effects, o.Analysis.Model.Null
+	return model, nil
 }
 
 // pooledByPairs returns the present result as the next study will be pooled with it:
