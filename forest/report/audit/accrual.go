@@ -185,7 +185,7 @@ func (o *outcome) refitEvidence(s *sheet, t *strip, r refit, estimate, se cell) 
 	z := t.put("statistic", general, "(%s-%s)/%s", estimate, o.cells["null"], se)
 	text := "(%s^2-1-LN(2))/2"
 	switch {
-	case o.student(r.p.k) && math.Exp(r.mean.LnP) < negligible:
+	case !o.o.Analysis.Weighing.Own(), o.student(r.p.k) && math.Exp(r.mean.LnP) < negligible:
 		s.entered(refitLn, r.row, decimals4, want)
 		s.formula(refitSteps, r.row, look{result, decimals2}, stepsFormula, s.at(refitLn, r.row))
 		return

@@ -218,7 +218,8 @@ func TestFormulasStand(t *testing.T) {
 	for _, measure := range []string{"odds ratio", "risk difference", "arcsine difference"} {
 		models = append(models, map[string]string{"measure": measure})
 	}
-	models = append(models, map[string]string{"effects": "common"}, map[string]string{"evidence": "student-t"}, map[string]string{"prediction": "k-minus-1", "level": "0.9"},
+	models = append(models, map[string]string{"effects": "common"}, map[string]string{"evidence": "student-t"}, map[string]string{"evidence": "averaged"},
+		map[string]string{"evidence": "normal-prior", "effect-scale": "0.5"}, map[string]string{"prediction": "k-minus-1", "level": "0.9"},
 		map[string]string{"method": "peto"}, map[string]string{"null": "0.8"})
 	for _, settings := range models {
 		x := sheetFrom(t, checks+"/bcg_counts.csv")
@@ -282,6 +283,21 @@ func TestEntered(t *testing.T) {
 		}
 		if !strings.Contains(parts(t, data)["xl/sharedStrings.xml"], "Does not move: the weights") {
 			t.Errorf("%v: nothing says that the result does not move", settings)
+		}
+	}
+}
+
+// TestEvidenceOfPriors: evidence that rests on priors is entered, as the program has it,
+// in the result and where studies enter.
+func TestEvidenceOfPriors(t *testing.T) {
+	for _, settings := range []map[string]string{{"evidence": "integrated"}, {"evidence": "cauchy-prior", "effect-scale": "0.5"}} {
+		data, s := written(t, sheetFrom(t, checks+"/bcg_counts.csv"), settings)
+		value, formula := namedValue(t, opened(t, data), "ln_evidence_1")
+		if want := s.Outcomes[0].Result.Fit.Mean.Evidence.Ln(); formula != "" || math.Abs(value-want) > 1e-12 {
+			t.Errorf("%v: ln evidence %v by %q, want %v entered", settings, value, formula, want)
+		}
+		if !strings.Contains(parts(t, data)["xl/sharedStrings.xml"], "in its form "+settings["evidence"]) {
+			t.Errorf("%v: nothing says that the evidence does not move", settings)
 		}
 	}
 }

@@ -1,6 +1,7 @@
 package audit
 
 import (
+	"fmt"
 	"math"
 
 	"steelyard/meta/evidence"
@@ -43,6 +44,11 @@ func (l *listing) lnEvidence() cell {
 	statistic, have := o.cells["statistic"]
 	if !o.moves() || !have {
 		d.source = "Entered: the program's own number."
+		return l.fixed(d, want)
+	}
+	if form := o.o.Analysis.Weighing.Form; !o.o.Analysis.Weighing.Own() {
+		d.source = fmt.Sprintf("Entered: evidence %s rests on priors and needs an integral of its own.", form)
+		o.still(fmt.Sprintf("the evidence, in its form %s", form))
 		return l.fixed(d, want)
 	}
 	switch {

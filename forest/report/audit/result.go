@@ -1,6 +1,7 @@
 package audit
 
 import (
+	"fmt"
 	"math"
 
 	"steelyard/forest/words"
@@ -221,7 +222,9 @@ func (l *listing) commonEffect() {
 	l.reader(low, mean.Low)
 	high := l.put(line{label: "upper limit", form: decimals6, want: &mean.High}, "%s-NORMSINV((1-%s)/2)*%s", estimate, o.cells["level"], se)
 	l.reader(high, mean.High)
-	if !o.o.Analysis.NullMissing {
+	if form := o.o.Analysis.Weighing.Form; !o.o.Analysis.NullMissing && form.UnderPrior() {
+		l.fixed(line{label: fmt.Sprintf("ln evidence, %s", form), source: "Entered: it rests on the prior for the effect.", form: decimals4}, mean.Evidence.Ln())
+	} else if !o.o.Analysis.NullMissing {
 		ln := mean.Evidence.Ln()
 		l.put(line{label: "ln evidence, normal form", source: "Dudbridge 2024: (z² − 1 − ln 2)/2.", form: decimals4, want: &ln}, "(((%s-%s)/%s)^2-1-LN(2))/2", estimate, o.cells["null"], se)
 	}
