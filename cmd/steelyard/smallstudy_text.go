@@ -67,7 +67,7 @@ func (p *page) asymmetryTests(s *synthesis.Synthesis, o *synthesis.Outcome) {
 			continue
 		}
 		onOdds = onOdds || t.Method == missing.PetersTest || t.Method == missing.HarbordTest
-		rows = append(rows, []string{name, words.Count(t.K), shown(t), bareP(t.LnP), words.Odds(t.Evidence.Ln()), words.Steps(t.Evidence.Steps())})
+		rows = append(rows, []string{name, words.Count(t.K), words.AsymmetryStatistic(t), bareP(t.LnP), words.Odds(t.Evidence.Ln()), words.Steps(t.Evidence.Steps())})
 	}
 	p.tableNamed(columns, rows, 32, 40)
 	if onOdds && o.Analysis.Measure != effect.OddsRatio {
@@ -95,17 +95,6 @@ func (p *page) problems(problems []string) {
 	}
 }
 
-// shown is the statistic of a test.
-func shown(t synthesis.AsymmetryTest) string {
-	switch {
-	case t.Slope != nil:
-		return fmt.Sprintf("t = %s on %s df", words.Linear(t.Slope.Statistic, 2), words.Count(int(t.Slope.DF)))
-	case t.Tau != nil:
-		return "Kendall's tau " + words.Linear(*t.Tau, 2)
-	}
-	return "χ² = " + words.Linear(*t.Chi2, 2) + " on 1 df"
-}
-
 // bareP is a p-value without its letter.
 func bareP(lnP float64) string {
 	return strings.TrimPrefix(strings.TrimPrefix(words.PValue(lnP), "p = "), "p ")
@@ -121,7 +110,7 @@ func (p *page) adjustedResults(o *synthesis.Outcome) {
 	var problems []string
 	open := false
 	for _, r := range o.SmallStudy.Adjusted {
-		name := adjustedName(o, r)
+		name := words.AdjustedName(r)
 		if r.Problem != "" {
 			problems = append(problems, name+": "+r.Problem)
 			rows = append(rows, []string{name, words.Missing, "", "", ""})
@@ -157,49 +146,10 @@ func (p *page) selectionNote(o *synthesis.Outcome) {
 func plainNumber(x float64) string { return strconv.FormatFloat(x, 'g', -1, 64) }
 
 func adjustedCells(o *synthesis.Outcome, name string, m, pooled meta.Mean) []string {
-	row := []string{name, adjustedInterval(o, m), words.Missing, words.Missing, words.Missing}
+	row := []string{name, words.AdjustedInterval(o, m), words.Missing, words.Missing, words.Missing}
 	if !o.Analysis.NullMissing {
 		row[2], row[3] = words.Odds(m.Evidence.Ln()), words.Steps(m.Evidence.Steps())
 		row[4] = words.StepsChange(m.Evidence.Steps() - pooled.Evidence.Steps())
 	}
 	return row
-}
-
-// adjustedInterval is an estimate with its interval, of which a side may be open.
-func adjustedInterval(o *synthesis.Outcome, m meta.Mean) string {
-	value := func(y float64) string { return words.ReaderValue(o, y) }
-	low, high := math.IsInf(m.Low, -1), math.IsInf(m.High, 1)
-	switch {
-	case low && high:
-		return value(m.Estimate) + " (no limits)"
-	case low:
-		return fmt.Sprintf("%s (no limit to %s)", value(m.Estimate), value(m.High))
-	case high:
-		return fmt.Sprintf("%s (%s to no limit)", value(m.Estimate), value(m.Low))
-	}
-	return words.Reader(o, m.Estimate, meta.Limits{Low: m.Low, High: m.High})
-}
-
-// adjustedName says by what a result is adjusted, and what that found.
-func adjustedName(o *synthesis.Outcome, r synthesis.AdjustedResult) string {
-	name := r.Method.Title()
-	switch {
-	case r.Missing != nil && *r.Missing == 0:
-		return name + ": none missing"
-	case r.Missing != nil:
-		return fmt.Sprintf("%s: %d missing %s", name, *r.Missing, r.Side)
-	case r.Square != nil && *r.Square:
-		return name + ": PEESE"
-	case r.Square != nil:
-		return name + ": PET"
-	case r.Rate != nil:
-		return fmt.Sprintf("%s: rate %s", name, words.Ratio(*r.Rate))
-	case r.Method == missing.EggerMixedEffects:
-		return "Egger's line, mixed effects"
-	case r.Method == missing.EggerClassical:
-		return "Egger's line"
-	case r.Method == missing.PetersTest:
-		return "Peters' line"
-	}
-	return name
 }

@@ -38,6 +38,7 @@ var kinds = []chart{
 	{"forest", false, laidOut(layout.ForestOf, layout.Forest)},
 	{"cumulative", false, laidOut(layout.CumulativeOf, layout.Cumulative)},
 	{"leave-one-out", false, laidOut(layout.LeaveOneOutOf, layout.LeaveOneOut)},
+	{"benefit", false, laidOut(layout.BenefitOf, layout.Benefit)},
 	{"prior-sensitivity", true, laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity)},
 }
 

@@ -12,17 +12,19 @@ import (
 // outcomeView is one outcome on the page. Parts that the synthesis does not have are
 // nil, and their sections stay away.
 type outcomeView struct {
-	ID, Name string
-	Problem  string
-	LeftOut  []leftOutView
-	Answer   *answerView
-	Trials   *sectionView
-	Accrual  *sectionView
-	Rests    *sectionView
-	Panel    *panelView
-	Other    *sectionView
-	Data     *tableView
-	Extra    []extraView
+	ID, Name  string
+	Problem   string
+	LeftOut   []leftOutView
+	Answer    *answerView
+	Trials    *sectionView
+	Accrual   *sectionView
+	Rests     *sectionView
+	Panel     *panelView
+	Other     *sectionView
+	Posterior *sectionView
+	Small     *sectionView
+	Data      *tableView
+	Extra     []extraView
 }
 
 // leftOutView is a row that was not pooled.
@@ -91,6 +93,7 @@ func (v *view) outcome(s *synthesis.Synthesis, i int) (*outcomeView, error) {
 	if w.Other, err = v.other(s, o, w.ID); err != nil {
 		return nil, err
 	}
+	w.Posterior, w.Small = v.posterior(s, o), v.smallStudy(s, o)
 	table := v.studyTable(s, o, w.ID)
 	w.Data = &table
 	v.data.Outcomes = append(v.data.Outcomes, v.outcomeData(o, w))

@@ -50,7 +50,7 @@ func Page(s *synthesis.Synthesis, options Options) ([]byte, error) {
 func Wanted() synthesis.Want {
 	return synthesis.Want{
 		Cumulative: true, LeaveOneOut: true, Beliefs: true, Runs: true,
-		Further: synthesis.Further{Panel: &synthesis.PanelWanted{}, SmallStudy: &synthesis.SmallStudyWanted{}},
+		Further: synthesis.Further{Panel: &synthesis.PanelWanted{}, SmallStudy: &synthesis.SmallStudyWanted{}, Posterior: true},
 	}
 }
 

@@ -18,7 +18,8 @@ type panelView struct {
 	Control  *baselineView // nil without an absolute form
 	Absolute *tableView
 	Card     words.Card
-	Treated  string // "with Brindle"
+	Figure   *figureView // nil without an important difference
+	Treated  string      // "with Brindle"
 	Unit     string
 }
 
@@ -58,6 +59,13 @@ func (v *view) panel(s *synthesis.Synthesis, o *synthesis.Outcome, id string) (*
 			t.Rows = append(t.Rows, row)
 		}
 		w.Absolute = &t
+	}
+	if o.Panel.Threshold != nil {
+		f, err := v.figure(s, o, id, kind("benefit"))
+		if err != nil {
+			return nil, err
+		}
+		w.Figure = &f
 	}
 	stops, start, err := baselineStops(o)
 	if err != nil || len(stops) == 0 {
