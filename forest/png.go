@@ -8,6 +8,7 @@ import (
 	"image/png"
 	"io"
 	"math"
+	"sync"
 
 	xfont "golang.org/x/image/font"
 	"gonum.org/v1/plot/font"
@@ -56,12 +57,27 @@ func WritePNG(w io.Writer, page layout.Drawing, theme layout.Theme, dpi int) err
 	ink := pngInk{canvas: canvas, faces: font.NewCache(liberation.Collection()), theme: theme, height: page.Height}
 	page.Each(ink.draw)
 	var image bytes.Buffer
-	if err := png.Encode(&image, canvas.Image()); err != nil {
+	if err := pngEncoder.Encode(&image, canvas.Image()); err != nil {
 		return fmt.Errorf("writing the PNG: %w", err)
 	}
 	_, err := w.Write(withResolution(image.Bytes(), dpi))
 	return err
 }
+
+// pngEncoder is fast at the cost of files some tenths larger; its scratch space is kept.
+var pngEncoder = png.Encoder{CompressionLevel: png.BestSpeed, BufferPool: &pngBuffers{}}
+
+// pngBuffers keeps the encoder's scratch space from image to image.
+type pngBuffers struct{ sync.Pool }
+
+// Get returns scratch space, or nil where none is kept.
+func (p *pngBuffers) Get() *png.EncoderBuffer {
+	b, _ := p.Pool.Get().(*png.EncoderBuffer)
+	return b
+}
+
+// Put keeps scratch space.
+func (p *pngBuffers) Put(b *png.EncoderBuffer) { p.Pool.Put(b) }
 
 // pngInk draws items on a canvas whose y runs upwards.
 type pngInk struct {

@@ -2,8 +2,10 @@ package main
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"slices"
+	"sync"
 
 	"github.com/urfave/cli/v2"
 
@@ -97,19 +99,28 @@ func writeReport(c *cli.Context) error {
 	if missing := missingGlyphs(s); missing != "" {
 		fmt.Fprintln(c.App.ErrWriter, "steelyard: "+missing)
 	}
-	var files []report.File
-	for _, part := range reportParts {
-		more, err := part(c.Context, r)
-		if err != nil {
-			return err
-		}
-		files = append(files, more...)
+	files, err := makeParts(c.Context, r)
+	if err != nil {
+		return err
 	}
 	if err := writeFolder(c.Context, folder, files, c.Bool(flagOverwrite)); err != nil {
 		return err
 	}
 	fmt.Fprintf(c.App.Writer, "%s: %s\n", folder, reportContents(files))
 	return incomplete(s)
+}
+
+// makeParts makes the parts of a report side by side; the files come in the order of the
+// parts.
+func makeParts(ctx context.Context, r reported) ([]report.File, error) {
+	parts := make([][]report.File, len(reportParts))
+	errs := make([]error, len(reportParts))
+	var group sync.WaitGroup
+	for i, part := range reportParts {
+		group.Go(func() { parts[i], errs[i] = part(ctx, r) })
+	}
+	group.Wait()
+	return slices.Concat(parts...), errors.Join(errs...)
 }
 
 // reportContents says what a report's folder holds.

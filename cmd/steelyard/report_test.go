@@ -5,7 +5,9 @@ import (
 	"crypto/sha256"
 	"encoding/base64"
 	"encoding/json"
+	"fmt"
 	"io/fs"
+	"math/rand/v2"
 	"os"
 	"path/filepath"
 	"regexp"
@@ -204,6 +206,29 @@ func TestReportLeavesOthersAlone(t *testing.T) {
 	}
 	if content, err := os.ReadFile(beside); err != nil || string(content) != "mine" {
 		t.Errorf("a file outside the folder was touched: %q, %v", content, err)
+	}
+}
+
+// TestReportSize: the page of three outcomes of fifty studies each stays below a
+// megabyte.
+func TestReportSize(t *testing.T) {
+	withoutFigures(t)
+	draw := rand.New(rand.NewPCG(1, 2))
+	var sheet strings.Builder
+	sheet.WriteString("study,date,outcome,events treated,total treated,events control,total control,risk of bias\n")
+	for _, outcome := range []string{"death", "stroke", "stay in hospital for more than a week"} {
+		for i := range 50 {
+			n := 60 + draw.IntN(340)
+			fmt.Fprintf(&sheet, "Trialist-%d %d,%d-%02d,%s,%d,%d,%d,%d,low\n", i, 1970+i, 1970+i, 1+i%12, outcome, n/9+draw.IntN(n/9), n, n/7+draw.IntN(n/7), n)
+		}
+	}
+	path := filepath.Join(t.TempDir(), "fifty.csv")
+	if err := os.WriteFile(path, []byte(sheet.String()), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	page, _ := reportOf(t, path)
+	if len(page) >= 1e6 {
+		t.Errorf("the page has %d bytes", len(page))
 	}
 }
 

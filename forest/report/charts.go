@@ -17,7 +17,7 @@ type figureView struct {
 	Number       int
 	Title        string
 	Notes        []noteView
-	Wide, Narrow template.HTML // Wide is blank where the narrow form serves both
+	Wide, Narrow template.HTML // Wide is blank where the narrow form serves both, and Narrow where the wide one scrolls
 	Problem      string        // why there is no chart
 }
 
@@ -25,21 +25,26 @@ type figureView struct {
 // it is shown at up to twice its size.
 const narrowType = 8.3
 
-// chart is a kind of chart: its name and how it is laid out of an outcome; a small one
-// is shown in its narrow form at any width.
+// chart is a kind of chart: its name and how it is laid out of an outcome. A small one
+// is shown in its narrow form at any width; a long one of many studies only in its wide
+// form, which scrolls in a narrow window, so that the page stays small.
 type chart struct {
 	name  string
 	small bool
+	long  bool
 	lay   func(*synthesis.Synthesis, *synthesis.Outcome, layout.Style) (layout.Document, error)
 }
 
+// mostTwice is the number of studies up to which a long chart has both forms.
+const mostTwice = 40
+
 // kinds are the charts of a report, in the order of the page.
 var kinds = []chart{
-	{"forest", false, laidOut(layout.ForestOf, layout.Forest)},
-	{"cumulative", false, laidOut(layout.CumulativeOf, layout.Cumulative)},
-	{"leave-one-out", false, laidOut(layout.LeaveOneOutOf, layout.LeaveOneOut)},
-	{"benefit", false, laidOut(layout.BenefitOf, layout.Benefit)},
-	{"prior-sensitivity", true, laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity)},
+	{"forest", false, false, laidOut(layout.ForestOf, layout.Forest)},
+	{"cumulative", false, true, laidOut(layout.CumulativeOf, layout.Cumulative)},
+	{"leave-one-out", false, true, laidOut(layout.LeaveOneOutOf, layout.LeaveOneOut)},
+	{"benefit", false, false, laidOut(layout.BenefitOf, layout.Benefit)},
+	{"prior-sensitivity", true, false, laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity)},
 }
 
 func kind(name string) chart {
@@ -92,7 +97,7 @@ func (v *view) figure(s *synthesis.Synthesis, o *synthesis.Outcome, id string, k
 		f.Narrow, err = inline(narrow, "")
 		return f, err
 	}
-	if f.Wide, err = inline(wide, ""); err != nil {
+	if f.Wide, err = inline(wide, ""); err != nil || k.long && len(o.Studies) > mostTwice {
 		return f, err
 	}
 	f.Narrow, err = inline(narrow, wide.Pages[0].ID)

@@ -37,7 +37,7 @@ type baselineView struct {
 const (
 	belowLeast    = 0.4
 	aboveGreatest = 1.35
-	mostStops     = 60
+	mostStops     = 36
 )
 
 // panel builds the view of a panel's part; nil without one.
