@@ -11,7 +11,6 @@ import (
 
 	"steelyard/forest/layout"
 	"steelyard/forest/report"
-	"steelyard/forest/report/audit"
 	"steelyard/meta"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
