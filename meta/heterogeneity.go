@@ -26,7 +26,7 @@ func (p *Pooler) heterogeneity(limits Limits) Heterogeneity {
 		return Heterogeneity{H2: 1, H2Tau: 1, Typical: d.v[0] * square}
 	}
 	typical := d.df() / p.zero.c
-	share := func(tau2 float64) float64 { return tau2 / (tau2 + typical) }
+	share := func(tau2 float64) float64 { return shareByTau2(tau2, typical) }
 	return Heterogeneity{
 		Q:        q,
 		DF:       d.k() - 1,
@@ -38,6 +38,18 @@ func (p *Pooler) heterogeneity(limits Limits) Heterogeneity {
 		Typical:  typical * square,
 		Evidence: evidence.ChiSquare(q, d.df()),
 	}
+}
+
+// shareByTau2 returns I² by τ².
+func shareByTau2(tau2, typical float64) float64 { return tau2 / (tau2 + typical) }
+
+// I2 returns the I² by τ² of the set that Pool pooled last: that of Fit, without its
+// limits; 0 for a single study.
+func (p *Pooler) I2() float64 {
+	if p.data.k() < 2 {
+		return 0
+	}
+	return shareByTau2(p.tau2(), p.data.df()/p.zero.c)
 }
 
 // HeterogeneityOf returns what a statistic q on df degrees of freedom says of

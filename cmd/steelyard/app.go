@@ -29,7 +29,12 @@ func run(ctx context.Context, args []string, s streams) int {
 		err = app.RunContext(ctx, arranged)
 	}
 	if ctx.Err() != nil {
-		fmt.Fprintln(s.err, "steelyard: interrupted; nothing was written")
+		written := "nothing was written"
+		var part *partWritten
+		if errors.As(err, &part) {
+			written = part.text
+		}
+		fmt.Fprintf(s.err, "steelyard: interrupted; %s\n", written)
 		return codeInterrupted
 	}
 	var partial *rowsLeftOut
@@ -54,7 +59,7 @@ func newApp(s streams) *cli.App {
 		Commands: slices.Concat(
 			[]*cli.Command{checkCommand(), poolCommand()},
 			accrualCommands(),
-			[]*cli.Command{explainCommand(), smallStudyCommand(), panelCommand(), weighCommand(), livingCommand(), chartCommand(), reportCommand(), auditCommand(), templateCommand()},
+			[]*cli.Command{explainCommand(), smallStudyCommand(), panelCommand(), weighCommand(), bulkCommand(), livingCommand(), chartCommand(), reportCommand(), auditCommand(), templateCommand()},
 		),
 		Action: func(c *cli.Context) error {
 			if c.NArg() > 0 {

@@ -38,6 +38,15 @@ type rowsLeftOut struct{}
 
 func (*rowsLeftOut) Error() string { return "rows were left out" }
 
+// partWritten says of an interrupted call that part of its output stands.
+type partWritten struct {
+	text string
+	err  error
+}
+
+func (e *partWritten) Error() string { return e.err.Error() }
+func (e *partWritten) Unwrap() error { return e.err }
+
 // exitCode maps an error to the program's exit code.
 func exitCode(err error) int {
 	var call *callError
