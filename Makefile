@@ -38,8 +38,9 @@ browser: ## the report in a real browser: widths, sliders, filter, print, access
 	else echo "axe-core could not be fetched: the tests' own checks of accessibility stand alone"; fi; \
 	go test -tags browser -count=1 -run Browser ./cmd/steelyard
 
-soak: ## hostile files: worst cases of memory and time, 10,000 damaged workbooks
+soak: ## hostile files, 10,000 damaged workbooks; a living review killed throughout 500 updates
 	go test -tags soak -run 'WorstCases|TenThousand' -v ./ingest
+	STEELYARD_LEDGER_UPDATES=500 go test -count=1 -run Killed -v ./ingest/ledger
 
 check: ## formatting, vet, tidiness, static analysis, imports
 	@unformatted="$$(gofmt -l .)"; if [ -n "$$unformatted" ]; then echo "gofmt would change: $$unformatted"; exit 1; fi

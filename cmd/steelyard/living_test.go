@@ -441,29 +441,32 @@ func BenchmarkLiving(b *testing.B) {
 		}
 		return text.Bytes()
 	}
+	var last ledger.Entry
+	entry := func(i int) ledger.Entry {
+		files := &ingest.Files{Sheet: ingest.File{Name: "trials.csv", Data: grown(10 + min(40, i/5))}}
+		state, err := ledger.Compute(context.Background(), files, "trials.csv", ledger.Call{})
+		if err != nil {
+			b.Fatal(err)
+		}
+		e := ledger.Entry{Files: files, Record: ledger.Record{At: fmt.Sprintf("2026-01-01T00:%02d:%02dZ", i/60, i%60), Program: "0.1"}}
+		e.Record.Results, e.Studies = ledger.ResultsOf(state.Synthesis)
+		return e
+	}
 	fill := func(f *livingFolder, states int) {
 		b.Helper()
-		for i := range states {
-			files := &ingest.Files{Sheet: ingest.File{Name: "trials.csv", Data: grown(10 + min(40, i/5))}}
-			state, err := ledger.Compute(context.Background(), files, "trials.csv", ledger.Call{})
-			if err != nil {
-				b.Fatal(err)
+		if _, err := ledger.Start(context.Background(), f.review, "bench", entry(0)); err != nil {
+			b.Fatal(err)
+		}
+		store, err := ledger.Hold(context.Background(), f.review, "bench")
+		if err != nil {
+			b.Fatal(err)
+		}
+		defer store.Close()
+		for i := 1; i < states; i++ {
+			if i <= 200 {
+				last = entry(i)
 			}
-			e := ledger.Entry{Files: files, Record: ledger.Record{At: fmt.Sprintf("2026-01-01T00:%02d:%02dZ", i/60, i%60), Program: "0.1"}}
-			e.Record.Results, e.Studies = ledger.ResultsOf(state.Synthesis)
-			if i == 0 {
-				if _, err := ledger.Start(context.Background(), f.review, "bench", e); err != nil {
-					b.Fatal(err)
-				}
-				continue
-			}
-			store, err := ledger.Hold(context.Background(), f.review, "bench")
-			if err != nil {
-				b.Fatal(err)
-			}
-			_, _, err = store.Append(e)
-			store.Close()
-			if err != nil {
+			if _, _, err := store.Append(last); err != nil {
 				b.Fatal(err)
 			}
 		}

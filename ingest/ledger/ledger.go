@@ -55,6 +55,7 @@ type Ledger struct {
 	byHash map[string]int
 	good   int64 // bytes before the torn line
 	ended  bool  // the last line has a line end
+	count  int   // lines, a torn one left out
 }
 
 // Find returns the nearest folder, dir or one above, that holds a ledger. It
@@ -117,7 +118,7 @@ func read(dir string, data []byte) (*Ledger, error) {
 			break
 		}
 		l.good += size
-		l.ended = ended
+		l.ended, l.count = ended, number
 	}
 	if l.good == 0 {
 		return nil, &DamageError{Line: 1, Text: fmt.Sprintf("the ledger is empty; it begins with %q. Restore the file", header())}

@@ -137,8 +137,8 @@ func (s *Store) Append(e Entry) (state *State, setAside string, err error) {
 	if err := s.appendLine(line); err != nil {
 		return nil, setAside, err
 	}
-	number := bytes.Count(s.lines(), []byte("\n")) - 1
-	added := State{Number: number, Hash: sum, Parent: parent, Record: e.Record}
+	s.count++
+	added := State{Number: s.count - 1, Hash: sum, Parent: parent, Record: e.Record}
 	s.byHash[sum] = len(s.States)
 	s.States = append(s.States, added)
 	return &added, setAside, nil

@@ -69,8 +69,7 @@ func (l *Ledger) TornText() string {
 func (l *Ledger) Verify(ctx context.Context) ([]Problem, error) {
 	all := slices.Clone(l.Problems)
 	if l.Torn != nil {
-		last := bytes.Count(l.lines(), []byte("\n")) + 1
-		all = append(all, Problem{Line: last, Gravity: Note, Text: l.TornText()})
+		all = append(all, Problem{Line: l.count + 1, Gravity: Note, Text: l.TornText()})
 	}
 	seen := map[Stored]bool{}
 	for i := range l.States {
@@ -91,15 +90,6 @@ func (l *Ledger) Verify(ctx context.Context) ([]Problem, error) {
 	all = append(all, l.strangers()...)
 	slices.SortStableFunc(all, func(a, b Problem) int { return cmp.Compare(a.Line-1, b.Line-1) })
 	return all, nil
-}
-
-// lines returns the ledger's bytes, nil if they cannot be read any more.
-func (l *Ledger) lines() []byte {
-	data, err := os.ReadFile(filepath.Join(l.Dir, fileName))
-	if err != nil {
-		return nil
-	}
-	return data
 }
 
 // strangers reports what a shared drive has put beside the ledger, and what keeps
