@@ -1,12 +1,16 @@
 package ingest
 
 import (
+	"bytes"
 	"context"
 	"os"
 	"path/filepath"
 	"strings"
 	"testing"
 
+	"github.com/xuri/excelize/v2"
+
+	"steelyard/meta/effect"
 	"steelyard/meta/review"
 )
 
@@ -147,5 +151,40 @@ func TestPlanDates(t *testing.T) {
 	}
 	if len(x.Findings) != 1 || x.Findings[0].Place.Cell() != "D3" || !strings.Contains(x.Findings[0].Message, "not read as the date on which null was agreed") {
 		t.Errorf("%+v", x.Findings)
+	}
+}
+
+// TestTemplateJudgements: the template's sheet is read as it is filled in, each of its
+// domains and every rating that it offers.
+func TestTemplateJudgements(t *testing.T) {
+	empty, err := Template(effect.RiskRatio)
+	if err != nil {
+		t.Fatal(err)
+	}
+	f, err := excelize.OpenReader(bytes.NewReader(empty))
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer f.Close()
+	for i, cells := range [][]any{{"study", "events treated", "total treated", "events control", "total control"}, {"A", 3, 50, 6, 50}} {
+		row := i + 1
+		if err := f.SetSheetRow(studiesSheet, cellAt(1, row), &cells); err != nil {
+			t.Fatal(err)
+		}
+	}
+	ratings := review.RatingNames()
+	for i, domain := range review.DomainNames() {
+		if err := f.SetSheetRow(judgementSheet, cellAt(1, i+2), &[]any{"", domain, ratings[i%len(ratings)], "why", "A. Lee", "2024-05-02"}); err != nil {
+			t.Fatal(err)
+		}
+	}
+	x := mustRead(t, saved(t, f), "filled.xlsx", Options{})
+	if len(x.Judgements) != len(review.DomainNames()) || len(x.Judgements) != 10 {
+		t.Fatalf("%d judgements, findings %+v", len(x.Judgements), x.Findings)
+	}
+	for i, j := range x.Judgements {
+		if j.Domain != review.Domain(i) || j.Rating != ratings[i] || j.By != "A. Lee" || j.Date.String() != "2024-05-02" {
+			t.Errorf("row %d: %+v", i+2, j)
+		}
 	}
 }

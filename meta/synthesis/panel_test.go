@@ -381,3 +381,31 @@ func TestPanelEnds(t *testing.T) {
 		t.Errorf("error %v", err)
 	}
 }
+
+// TestPanelMedianWithSilent: a study without events in either arm carries nothing about
+// a ratio and counts for the median control risk: of 0, 0.1 and 0.2 that is 0.1.
+func TestPanelMedianWithSilent(t *testing.T) {
+	var s sheet
+	s.row("A", "", counts(5, 50, 5, 50))
+	s.row("B", "", counts(8, 50, 10, 50))
+	s.row("C", "", counts(0, 50, 0, 50))
+	o := carded(t, &s.Extraction, planOf(t, "measure", "risk ratio"))
+	if m := o.Panel.Median; m == nil || m.Studies != 3 || math.Abs(m.Risk-0.1) > 1e-15 {
+		t.Errorf("%+v", m)
+	}
+}
+
+// TestPanelReduction: without an important difference the information size is for a
+// relative change in the wanted direction, unless that leaves 0 to 1.
+func TestPanelReduction(t *testing.T) {
+	s := oneEstimate(0.1, 0.02)
+	for _, c := range []struct {
+		better, baseline string
+		to               float64
+	}{{"lower", "0.2", 0.15}, {"higher", "0.2", 0.25}, {"higher", "0.9", 0.675}} {
+		o := carded(t, &s.Extraction, planOf(t, "measure", "risk difference", "better", c.better, "baseline", c.baseline))
+		if a := o.Panel.Rows[0].Information; a == nil || a.Important || math.Abs(a.To-c.to) > 1e-12 {
+			t.Errorf("%s from %s: %+v, want %v", c.better, c.baseline, a, c.to)
+		}
+	}
+}
