@@ -71,6 +71,11 @@ var chartKinds = []chartKind{
 		draw: laidOut(layout.SubgroupsOf, layout.Forest),
 	},
 	{
+		name: "regression", usage: "effects along a covariate, with the line of the regression", setting: "explain",
+		flags: slices.Concat(regressionFlags(), plannedFlags()), want: wantRegressionChart,
+		draw: laidOut(layout.RegressionOf, layout.Regression),
+	},
+	{
 		name: "prior-sensitivity", usage: "evidence by the width of a prior", setting: "pool", want: wanting(synthesis.Want{Beliefs: true}),
 		draw: laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity),
 	},

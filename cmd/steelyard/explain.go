@@ -125,6 +125,16 @@ func wantSubgroupsChart(c *cli.Context) (synthesis.Want, error) {
 	return synthesis.Want{Further: synthesis.Further{Explain: w}}, nil
 }
 
+// wantRegressionChart reads the flags of the chart of a regression.
+func wantRegressionChart(c *cli.Context) (synthesis.Want, error) {
+	w := &synthesis.ExplainWanted{Planned: c.Bool(flagPlanned)}
+	on := strings.TrimSpace(c.String(flagOn))
+	if on == "" {
+		return synthesis.Want{}, &callError{"along what? name a column of numbers with --on COLUMN; the first named is drawn"}
+	}
+	return synthesis.Want{Further: synthesis.Further{Explain: w}}, regressionWanted(c, on, w)
+}
+
 // regressionWanted reads what is regressed on, and where an effect is predicted.
 func regressionWanted(c *cli.Context, on string, w *synthesis.ExplainWanted) error {
 	var err error

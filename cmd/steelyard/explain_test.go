@@ -245,3 +245,58 @@ func TestSubgroupsChart(t *testing.T) {
 		}
 	}
 }
+
+// TestRegressionChart draws the line at both widths, and refuses categories alone.
+func TestRegressionChart(t *testing.T) {
+	sheet, folder := bcgAllocated(t, nil), t.TempDir()
+	for _, width := range []string{"180", "85"} {
+		path := filepath.Join(folder, width+".svg")
+		if _, stderr, code := call(t, "", "chart", "regression", sheet, "--on", "allocation, latitude", "--measure", "odds ratio", "--width", width, "--out", path); code != codeDone {
+			t.Fatalf("exit %d: %s", code, stderr)
+		}
+		content, err := os.ReadFile(path)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, part := range []string{">latitude<", "Trial 12", "not adjusted", "Odds ratio"} {
+			if !strings.Contains(strings.Join(strings.Fields(string(content)), " "), part) {
+				t.Errorf("%s mm: the chart lacks %q", width, part)
+			}
+		}
+	}
+	for args, says := range map[string]string{"--on allocation": "chart subgroups", "": "--on COLUMN", "--on latitudes": "did you mean latitude", "--on study": "13 different texts"} {
+		_, stderr, code := call(t, "", append([]string{"chart", "regression", sheet, "--out", filepath.Join(folder, "x.svg")}, strings.Fields(args)...)...)
+		if code == codeDone || !strings.Contains(stderr, says) {
+			t.Errorf("%s: exit %d, %s", args, code, stderr)
+		}
+	}
+}
+
+// TestExplainDependence: estimates of one study in two groups are told, and what needs
+// independent ones is refused beside a model of dependence.
+func TestExplainDependence(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "dependent.csv")
+	sheet := "study,estimate,se,dose,arm\nA,0.5,0.2,1,x\nA,0.6,0.25,2,y\nB,0.1,0.2,1,x\nB,0.3,0.2,2,y\nC,0.2,0.3,1,x\nD,0.9,0.3,3,y\nE,0.8,0.3,3,y\n"
+	if err := os.WriteFile(path, []byte(sheet), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	for _, c := range []struct {
+		args string
+		code int
+		says []string
+	}{
+		{"--subgroups arm", codeDone, []string{"A has estimates in several groups"}},
+		{"--subgroups arm --dependence three-level", codeDone, []string{"A has estimates in several groups", "Between groups"}},
+		{"--subgroups arm --shared-tau --dependence robust", codeData, []string{"No comparison by arm", "a study of its own"}},
+		{"--on dose --dependence three-level", codeData, []string{"No regression", "a study of its own"}},
+		{"--on dose", codeDone, []string{"all 5,040 permutations"}},
+	} {
+		stdout, stderr, code := call(t, "", append([]string{"explain", path, "--measure", "mean difference"}, strings.Fields(c.args)...)...)
+		text := strings.Join(strings.Fields(stdout), " ")
+		for _, part := range c.says {
+			if code != c.code || !strings.Contains(text, part) {
+				t.Errorf("%s: exit %d, %q lacks %q (%s)", c.args, code, text, part, stderr)
+			}
+		}
+	}
+}

@@ -78,8 +78,8 @@ type state struct {
 
 // Resolve returns the model that a regression can use: the interval is Wald's or
 // one of Hartung and Knapp's, by default that with the floor (Wald's for a common
-// effect), and the prediction interval that of Student's t. Others have no form for
-// regressions.
+// effect), the prediction interval that of Student's t, and the evidence in the
+// empirical or the Student-t form. Others have no form for regressions.
 func Resolve(model meta.Model) (meta.Model, error) {
 	if model.Interval == meta.ProfileLikelihood || model.Interval == meta.HenmiCopas {
 		if model.Tau == meta.DefaultTau && model.Interval == meta.ProfileLikelihood {
@@ -89,6 +89,9 @@ func Resolve(model meta.Model) (meta.Model, error) {
 	}
 	if model.Prediction == meta.PredictionBootstrap {
 		model.Prediction = meta.PredictionTwoLess
+	}
+	if model.Evidence != evidence.StudentForm {
+		model.Evidence = evidence.Empirical
 	}
 	return model.Resolve(2)
 }

@@ -63,10 +63,10 @@ func Check(column string, groups []Group, k int) error {
 	return nil
 }
 
-// Separate compares groups of which each has a τ² of its own. y and s are the
-// estimates of all studies, which the model's own standard errors come from; where
-// fits are not of inverse variances (Fit.Method is not blank) their own stand in.
-func Separate(groups []Group, y, s []float64, fit Fitter, model meta.Model) (*Subgroups, error) {
+// Separate compares groups of which each has a τ² of its own. s are the standard
+// errors of all studies, from which the model's own come; nil where the fits are not of
+// inverse variances, so that theirs stand in.
+func Separate(groups []Group, s []float64, fit Fitter, model meta.Model) (*Subgroups, error) {
 	result := &Subgroups{}
 	own := make([]float64, len(groups)) // the model's standard errors
 	for i, g := range groups {
@@ -75,7 +75,7 @@ func Separate(groups []Group, y, s []float64, fit Fitter, model meta.Model) (*Su
 			return nil, fmt.Errorf("group %q: %w", g.Name, err)
 		}
 		own[i] = f.Mean.SE
-		if f.Method == "" {
+		if s != nil {
 			own[i] = modelSE(s, g.Rows, f.Mean.Tau2)
 		}
 		result.Groups = append(result.Groups, Subgroup{Group: g, Fit: f, Mean: f.Mean, Weights: f.Weights})

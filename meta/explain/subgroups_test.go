@@ -33,7 +33,7 @@ func TestBetweenIsTotalLessWithin(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	separate, err := Separate(groups, y, s, pooled(model, y, s), model)
+	separate, err := Separate(groups, s, pooled(model, y, s), model)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -70,7 +70,7 @@ func TestWelchOfTwoGroups(t *testing.T) {
 		groups[b2i(x >= 40)].Rows = append(groups[b2i(x >= 40)].Rows, i)
 	}
 	model := meta.Model{Level: 0.95}
-	g, err := Separate(groups, y, s, pooled(model, y, s), model)
+	g, err := Separate(groups, s, pooled(model, y, s), model)
 	if err != nil {
 		t.Fatal(err)
 	}

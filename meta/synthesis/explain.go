@@ -199,6 +199,7 @@ func (o *Outcome) subgroups(c column, shared bool) *SubgroupsResult {
 
 // compareGroups compares groups of studies, each with its own τ² or with a shared one.
 func (o *Outcome) compareGroups(groups []explain.Group, shared bool) (*explain.Subgroups, error) {
+	o.noteSplitClusters(groups)
 	y, s := estimates(o.Studies)
 	if !shared {
 		fit := func(rows []int) (*meta.Fit, error) {
@@ -208,7 +209,13 @@ func (o *Outcome) compareGroups(groups []explain.Group, shared bool) (*explain.S
 			}
 			return o.fit(o.Analysis.Model, studies)
 		}
-		return explain.Separate(groups, y, s, fit, o.Analysis.Model)
+		if o.Analysis.Method != review.InverseVariance || o.dependent() {
+			s = nil
+		}
+		return explain.Separate(groups, s, fit, o.Analysis.Model)
+	}
+	if o.dependent() {
+		return nil, errors.New(o.onlyIndependent("a shared τ²"))
 	}
 	o.noteRegressionModel("The comparison with a shared τ²")
 	// Studies without an entry take no part: the groups' rows alone are fitted.
@@ -236,6 +243,21 @@ func (o *Outcome) compareGroups(groups []explain.Group, shared bool) (*explain.S
 	return result, nil
 }
 
+// noteSplitClusters notes studies with estimates in several groups.
+func (o *Outcome) noteSplitClusters(groups []explain.Group) {
+	clusters := clustersOf(o.Studies)
+	in := map[int]int{} // the group of each study, from 1
+	for i, g := range groups {
+		for _, row := range g.Rows {
+			if have := in[clusters[row]]; have != 0 && have != i+1 {
+				o.note(fmt.Sprintf("%s has estimates in several groups, and the test between them takes groups for independent.", o.Studies[row].Source.Name))
+				return
+			}
+			in[clusters[row]] = i + 1
+		}
+	}
+}
+
 // chosen returns the elements at some indices.
 func chosen(all []float64, rows []int) []float64 {
 	part := make([]float64, len(rows))
@@ -254,6 +276,9 @@ func (o *Outcome) noteRegressionModel(what string) {
 	}
 	if settled, err := explain.Resolve(m); err == nil && settled.Interval != m.Interval && len(o.Studies) > 1 {
 		o.note(fmt.Sprintf("%s has no %s interval; %s stands in.", what, m.Interval, settled.Interval))
+	}
+	if w := o.Analysis.Weighing; !w.Own() {
+		o.note(fmt.Sprintf("%s weighs evidence in the form that is matched to its interval, not in the %s one.", what, w.Form))
 	}
 	if m.Prediction == meta.PredictionBootstrap && m.Effects == meta.RandomEffects {
 		o.note(fmt.Sprintf("%s has no bootstrap prediction; that of Student's t stands in.", what))
@@ -278,6 +303,10 @@ func (o *Outcome) regress(ctx context.Context, columns []review.Column, w *Expla
 		return nil, err
 	}
 	r := &RegressionResult{}
+	if o.dependent() {
+		r.Problem = o.onlyIndependent("a regression")
+		return r, nil
+	}
 	var cells [][]explain.Cell
 	r.Rows, cells, r.Omitted = o.filledRows(used)
 	err := r.fit(ctx, o, used, cells, w, work)
