@@ -20,6 +20,16 @@ type change struct {
 	value                  float64 // the new number
 }
 
+// otherKinds is an invented sheet of means, medians, a standard error and a p-value.
+const otherKinds = `study,mean treated,sd treated,n treated,mean control,sd control,n control,median treated,q1 treated,q3 treated,median control,q1 control,q3 control,estimate,se,p
+A,10,2,25,8,3,36,,,,,,,,,
+B,11,2.5,40,9,3.1,42,,,,,,,,,
+C,,,30,,,31,10,8,13,9,7,11,,,
+D,,,50,,,52,,,,,,,1.5,0.6,
+E,,,50,,,52,,,,,,,1.1,,0.03
+F,3,4,12,2,5,12,,,,,,,,,
+`
+
 // TestOfficeAuditMoves: numbers changed in the workbook and computed anew by another
 // spreadsheet program give what the program gives for the sheet so changed.
 func TestOfficeAuditMoves(t *testing.T) {
@@ -43,9 +53,21 @@ func TestOfficeAuditMoves(t *testing.T) {
 			{study: "Obradović 2024", outcome: "symptom score at 24 weeks", column: "sd control", cell: "K21", value: 8.1},
 			{study: "Obradović 2024", outcome: "serious harm", column: "events control", cell: "H30", value: 0},
 		}},
+		{"medians, a standard error and a p-value", "", []change{
+			{study: "C", column: "q3 treated", from: "10,8,13", to: "10,8,14", value: 14},
+			{study: "D", column: "se", from: "1.5,0.6", to: "1.5,0.75", value: 0.75},
+			{study: "E", column: "p", from: "1.1,,0.03", to: "1.1,,0.012", value: 0.012},
+			{study: "F", column: "total treated", from: "F,3,4,12,", to: "F,3,4,21,", value: 21},
+		}},
 	} {
 		t.Run(test.name, func(t *testing.T) {
 			path := filepath.Join("../../testdata", test.path)
+			if test.path == "" {
+				path = filepath.Join(t.TempDir(), "kinds.csv")
+				if err := os.WriteFile(path, []byte(otherKinds), 0o600); err != nil {
+					t.Fatal(err)
+				}
+			}
 			before, changed := auditOf(t, path), auditOf(t, changedSheet(t, path, test.changes))
 			edited := changedWorkbook(t, before.data, test.changes)
 			want := readWorkbook(t, changed.data)

@@ -51,6 +51,9 @@ func auditOf(t *testing.T, path string) audited {
 	if err := audit.Write(&b, s, x, "test"); err != nil {
 		t.Fatal(err)
 	}
+	if about := textsOf(t, readWorkbook(t, b.Bytes()), "about"); strings.Contains(about, "nine digits") {
+		t.Fatalf("formulas do not give the program's numbers:\n%s", about)
+	}
 	return audited{s, b.Bytes()}
 }
 
@@ -281,24 +284,26 @@ func checkNumber(t *testing.T, what, got string, want float64) {
 	}
 }
 
-// place is a reference such as 'pooling 1'!$D$12, and its range's first cell.
-type place struct {
+// cellPlace is a reference such as 'pooling 1'!$D$12, and its range's first cell.
+type cellPlace struct {
 	sheet, column string
 	row           int
 }
 
 var cellReference = regexp.MustCompile(`^'?(.*?)'?!\$?([A-Z]+)\$?([0-9]+)`)
 
-func startOf(refers string) place {
+func startOf(refers string) cellPlace {
 	m := cellReference.FindStringSubmatch(refers)
 	if m == nil {
-		return place{}
+		return cellPlace{}
 	}
 	row, _ := strconv.Atoi(m[3])
-	return place{m[1], m[2], row}
+	return cellPlace{m[1], m[2], row}
 }
 
-func (p place) down(rows int) string { return fmt.Sprintf("'%s'!%s%d", p.sheet, p.column, p.row+rows) }
+func (p cellPlace) down(rows int) string {
+	return fmt.Sprintf("'%s'!%s%d", p.sheet, p.column, p.row+rows)
+}
 
 func valueAt(t *testing.T, f *excelize.File, refers string) string {
 	t.Helper()

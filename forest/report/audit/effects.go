@@ -55,9 +55,7 @@ func (o *outcome) writeRecipe(s *sheet, row int, r recipe, rows []int) int {
 		for j, f := range r.inputs {
 			c := s.formula(2+j, row, look{role: computed}, "%s", o.numbers[study.Source][f])
 			have[f.String()] = c
-			if f.String() == "estimate" {
-				have["estimate reported"] = c
-			}
+			have[f.String()+" reported"] = c
 		}
 		first := 2 + len(r.inputs)
 		for j, d := range r.steps[:len(r.steps)-2] {

@@ -28,7 +28,8 @@ type derived struct {
 
 // recipes returns the tables that an outcome of a measure may have.
 func (o *outcome) recipes() []recipe {
-	return []recipe{o.counts(), o.means(), o.reported(true, true), o.reported(true, false), o.reported(false, true), o.reported(false, false)}
+	return []recipe{o.counts(), o.rates(), o.oneArm(), o.oneArmRate(), o.means(),
+		o.withSE(true), o.withSE(false), o.reported(true, true), o.reported(true, false), o.reported(false, true), o.reported(false, false)}
 }
 
 // counts is the table of studies with a 2×2 table of the people themselves.

@@ -3,6 +3,7 @@ package audit
 import (
 	"fmt"
 	"math"
+	"strings"
 
 	"steelyard/meta/effect"
 	"steelyard/meta/review"
@@ -63,6 +64,10 @@ func (c *chain) step(step effect.Conversion) {
 		refs[fmt.Sprint(i+1)] = c.takes(v)
 	}
 	formulas := formulasOf(c.o.o.Analysis.Measure, step)
+	arm := ""
+	if len(step.From) > 0 {
+		arm = armOf(step.From[0].Name)
+	}
 	for i, v := range step.To {
 		c.s.text(2, c.row, look{role: plain}, v.Name)
 		at, stands := cell{}, false
@@ -74,13 +79,21 @@ func (c *chain) step(step effect.Conversion) {
 		if at.sheet == nil {
 			at = c.s.entered(3, c.row, general, v.Value)
 		}
-		if !stands && !step.Added {
+		if !stands {
 			c.o.still(c.name + ": " + step.What)
 		}
 		refs[fmt.Sprintf("=%d", i+1)] = at
-		c.have[v.Name] = at
+		c.call(v.Name, arm, at)
 		c.row++
 	}
+}
+
+// call gives a number its name; that of a change takes the place of its arm's.
+func (c *chain) call(name, arm string, at cell) {
+	if ofChange, ok := strings.CutSuffix(name, " of change"); ok {
+		name = ofChange + arm
+	}
+	c.have[name] = at
 }
 
 // takes writes a number that goes into a step: a reference to where it stands, or
@@ -103,7 +116,37 @@ func (c *chain) takes(v effect.Value) cell {
 	if math.IsInf(v.Value, 0) {
 		return c.s.text(3, c.row, look{role: plain}, "infinite: the normal law")
 	}
+	if at, ok := c.follows(v); ok {
+		return at
+	}
+	if v.Name != "ci level" {
+		c.o.still(c.name + ": " + v.Name + " as the program took it")
+	}
 	return c.s.entered(3, c.row, general, v.Value)
+}
+
+// otherwise are the formulas of numbers that a step takes under a name which the sheet
+// does not have.
+var otherwise = map[string][]string{
+	"degrees of freedom": {"{total treated}+{total control}-2", "{total}-2", "{total}-1", "{total treated}-1", "{total control}-1"},
+	"mean difference":    {"{mean treated}-{mean control}", "{estimate}"},
+	"z":                  {"{t}", "-{t}"},
+	"t":                  {"-{t}"},
+	"total":              {"{total treated}", "{total control}"},
+}
+
+// follows writes a number as what it follows from, if that is known.
+func (c *chain) follows(v effect.Value) (cell, bool) {
+	for _, text := range otherwise[v.Name] {
+		filled, err := fill(c.s, text, c.have)
+		if err != nil {
+			continue
+		}
+		if _, value, err := c.s.evaluate(filled, nil); err == nil && same(value.Number, v.Value) {
+			return c.s.formula(3, c.row, look{role: computed}, filled), true
+		}
+	}
+	return cell{}, false
 }
 
 // armOf is the ending by which a number's name says its arm, with a blank before it.
