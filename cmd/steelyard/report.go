@@ -11,6 +11,7 @@ import (
 
 	"steelyard/forest/layout"
 	"steelyard/forest/report"
+	"steelyard/forest/webpage"
 	"steelyard/meta"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
@@ -63,7 +64,7 @@ var reportParts = []func(context.Context, reported) ([]report.File, error){
 }
 
 func reportPage(_ context.Context, r reported) ([]report.File, error) {
-	content, err := report.Page(r.Synthesis, report.Options{Version: version})
+	content, err := webpage.Page(r.Synthesis, webpage.Options{Version: version})
 	return []report.File{{Name: "report.html", Content: content}}, err
 }
 
@@ -84,7 +85,7 @@ func writeReport(c *cli.Context) error {
 	if err := checkFolder(folder, c.Bool(flagOverwrite)); err != nil {
 		return err
 	}
-	s, x, err := analyseSheet(c, report.Wanted())
+	s, x, err := analyseSheet(c, webpage.Wanted())
 	if err != nil {
 		return err
 	}

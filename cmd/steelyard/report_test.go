@@ -14,7 +14,7 @@ import (
 	"strings"
 	"testing"
 
-	"steelyard/forest/report"
+	"steelyard/forest/webpage"
 	"steelyard/forest/words"
 	"steelyard/ingest"
 	"steelyard/meta/synthesis"
@@ -289,7 +289,7 @@ func BenchmarkReportPage(b *testing.B) {
 	s := demoSynthesis(b)
 	b.ResetTimer()
 	for b.Loop() {
-		if _, err := report.Page(s, report.Options{}); err != nil {
+		if _, err := webpage.Page(s, webpage.Options{}); err != nil {
 			b.Fatal(err)
 		}
 	}
@@ -301,7 +301,7 @@ func demoSynthesis(t testing.TB) *synthesis.Synthesis {
 	if err != nil {
 		t.Fatal(err)
 	}
-	s, err := synthesis.Run(t.Context(), x, plan, report.Wanted())
+	s, err := synthesis.Run(t.Context(), x, plan, webpage.Wanted())
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -10,6 +10,7 @@ import (
 
 	"steelyard/forest"
 	"steelyard/forest/layout"
+	"steelyard/forest/webpage"
 	"steelyard/meta"
 	"steelyard/meta/synthesis"
 )
@@ -81,16 +82,16 @@ func figureTasks(s *synthesis.Synthesis, theme layout.Theme) []figureTask {
 		if o.Result == nil {
 			continue
 		}
-		for _, k := range kinds {
+		for _, k := range webpage.Charts() {
 			for _, width := range []struct {
 				name   string
 				points float64
 			}{{"180mm", layout.WideWidth}, {"85mm", layout.NarrowWidth}} {
-				d, err := k.lay(s, o, layout.Style{Width: width.points})
+				d, err := k.Lay(s, o, layout.Style{Width: width.points})
 				if err != nil {
 					continue // the page says why
 				}
-				name := fmt.Sprintf("figures/%d-%s-%s", i+1, k.name, width.name)
+				name := fmt.Sprintf("figures/%d-%s-%s", i+1, k.Name, width.name)
 				tasks = append(tasks, drawings(name, d, theme)...)
 			}
 		}
@@ -101,14 +102,14 @@ func figureTasks(s *synthesis.Synthesis, theme layout.Theme) []figureTask {
 // drawings are the files of one chart: a PDF of all its pages, and images of each.
 func drawings(name string, d layout.Document, theme layout.Theme) []figureTask {
 	tasks := []figureTask{{name + ".pdf", func(out *bytes.Buffer) error { return forest.WritePDF(out, d, theme) }}}
-	for i, page := range d.Pages {
+	for i, sheet := range d.Pages {
 		file := name
 		if len(d.Pages) > 1 {
 			file = fmt.Sprintf("%s-page%d", name, i+1)
 		}
 		tasks = append(tasks,
-			figureTask{file + ".svg", func(out *bytes.Buffer) error { return forest.WriteSVG(out, page, theme) }},
-			figureTask{file + ".png", func(out *bytes.Buffer) error { return forest.WritePNG(out, page, theme, figureDPI) }})
+			figureTask{file + ".svg", func(out *bytes.Buffer) error { return forest.WriteSVG(out, sheet, theme) }},
+			figureTask{file + ".png", func(out *bytes.Buffer) error { return forest.WritePNG(out, sheet, theme, figureDPI) }})
 	}
 	return tasks
 }

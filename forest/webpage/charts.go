@@ -1,9 +1,8 @@
-package report
+package webpage
 
 import (
 	"bytes"
 	"fmt"
-	"html/template"
 	"slices"
 	"strings"
 
@@ -17,22 +16,26 @@ type figureView struct {
 	Number       int
 	Title        string
 	Notes        []noteView
-	Wide, Narrow template.HTML // Wide is blank where the narrow form serves both, and Narrow where the wide one scrolls
-	Problem      string        // why there is no chart
+	Wide, Narrow string // Wide is blank where the narrow form serves both, and Narrow where the wide one scrolls
+	Problem      string // why there is no chart
 }
 
 // narrowType is the type size of the narrow form in points: larger than in print, as
 // it is shown at up to twice its size.
 const narrowType = 8.3
 
-// chart is a kind of chart: its name and how it is laid out of an outcome. A small one
-// is shown in its narrow form at any width; a long one of many studies only in its wide
+// Chart is a kind of chart: its name, and how it is laid out of an outcome.
+type Chart struct {
+	Name string
+	Lay  func(*synthesis.Synthesis, *synthesis.Outcome, layout.Style) (layout.Document, error)
+}
+
+// chart is a chart as the page shows it. A small one is shown in its narrow form at any width; a long one of many studies only in its wide
 // form, which scrolls in a narrow window, so that the page stays small.
 type chart struct {
-	name  string
+	Chart
 	small bool
 	long  bool
-	lay   func(*synthesis.Synthesis, *synthesis.Outcome, layout.Style) (layout.Document, error)
 }
 
 // mostTwice is the number of studies up to which a long chart has both forms.
@@ -40,20 +43,29 @@ const mostTwice = 40
 
 // kinds are the charts of a report, in the order of the page.
 var kinds = []chart{
-	{"forest", false, false, laidOut(layout.ForestOf, layout.Forest)},
-	{"cumulative", false, true, laidOut(layout.CumulativeOf, layout.Cumulative)},
-	{"leave-one-out", false, true, laidOut(layout.LeaveOneOutOf, layout.LeaveOneOut)},
-	{"benefit", false, false, laidOut(layout.BenefitOf, layout.Benefit)},
-	{"prior-sensitivity", true, false, laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity)},
+	{Chart{"forest", laidOut(layout.ForestOf, layout.Forest)}, false, false},
+	{Chart{"cumulative", laidOut(layout.CumulativeOf, layout.Cumulative)}, false, true},
+	{Chart{"leave-one-out", laidOut(layout.LeaveOneOutOf, layout.LeaveOneOut)}, false, true},
+	{Chart{"benefit", laidOut(layout.BenefitOf, layout.Benefit)}, false, false},
+	{Chart{"prior-sensitivity", laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity)}, true, false},
+}
+
+// Charts returns the charts that the page shows of each outcome, in its order.
+func Charts() []Chart {
+	all := make([]Chart, len(kinds))
+	for i, k := range kinds {
+		all[i] = k.Chart
+	}
+	return all
 }
 
 func kind(name string) chart {
 	for _, k := range kinds {
-		if k.name == name {
+		if k.Name == name {
 			return k
 		}
 	}
-	panic("report: no chart of kind " + name) // a slip of this package
+	panic("webpage: no chart of kind " + name) // a slip of this package
 }
 
 // laidOut joins what a chart shows of an outcome with its layout.
@@ -74,8 +86,8 @@ func laidOut[Input any](
 // place.
 func (v *view) figure(s *synthesis.Synthesis, o *synthesis.Outcome, id string, k chart) (figureView, error) {
 	v.figures++
-	f := figureView{ID: id + "-" + k.name, Number: v.figures}
-	wide, err := k.lay(s, o, layout.Style{ID: f.ID + "-w", NoTitle: true})
+	f := figureView{ID: id + "-" + k.Name, Number: v.figures}
+	wide, err := k.Lay(s, o, layout.Style{ID: f.ID + "-w", NoTitle: true})
 	if err != nil {
 		f.Problem = err.Error()
 		return f, nil
@@ -84,12 +96,12 @@ func (v *view) figure(s *synthesis.Synthesis, o *synthesis.Outcome, id string, k
 	if !strings.HasSuffix(f.Title, "?") {
 		f.Title += "."
 	}
-	narrow, err := k.lay(s, o, layout.Style{ID: f.ID + "-n", NoTitle: true, Width: layout.NarrowWidth, TypeSize: narrowType})
+	narrow, err := k.Lay(s, o, layout.Style{ID: f.ID + "-n", NoTitle: true, Width: layout.NarrowWidth, TypeSize: narrowType})
 	if err != nil {
-		narrow, err = k.lay(s, o, layout.Style{ID: f.ID + "-n", NoTitle: true, Width: layout.NarrowWidth})
+		narrow, err = k.Lay(s, o, layout.Style{ID: f.ID + "-n", NoTitle: true, Width: layout.NarrowWidth})
 	}
 	if err != nil {
-		return f, fmt.Errorf("chart %s of %s in the narrow form: %w", k.name, outcomeName(s, o), err)
+		return f, fmt.Errorf("chart %s of %s in the narrow form: %w", k.Name, outcomeName(s, o), err)
 	}
 	f.Notes = takeNotes(&wide)
 	takeNotes(&narrow)
@@ -165,7 +177,7 @@ func notesOf(g layout.Group) []noteView {
 }
 
 // inline writes the pages of a chart below each other.
-func inline(d layout.Document, described string) (template.HTML, error) {
+func inline(d layout.Document, described string) (string, error) {
 	var out bytes.Buffer
 	for i, page := range d.Pages {
 		page.ID = pageID(page.ID, i)
@@ -173,7 +185,7 @@ func inline(d layout.Document, described string) (template.HTML, error) {
 			return "", err
 		}
 	}
-	return template.HTML(out.String()), nil // layout escapes all text
+	return out.String(), nil // layout escapes all text
 }
 
 // pageID keeps the ids of a chart's pages apart.

@@ -1,8 +1,7 @@
-package report
+package webpage
 
 import (
 	"fmt"
-	"html/template"
 	"slices"
 
 	"steelyard/forest/words"
@@ -24,7 +23,6 @@ type outcomeView struct {
 	Posterior *sectionView
 	Small     *sectionView
 	Data      *tableView
-	Extra     []extraView
 }
 
 // leftOutView is a row that was not pooled.
@@ -56,12 +54,6 @@ type sectionView struct {
 	Figures []figureView
 	Tables  []tableView
 	After   []string
-}
-
-// extraView is a part of the synthesis with its own fragment of a page.
-type extraView struct {
-	ID, Heading, Short, Items string
-	HTML                      template.HTML
 }
 
 // outcome builds the view of an outcome.

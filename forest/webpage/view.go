@@ -1,8 +1,7 @@
-package report
+package webpage
 
 import (
 	"fmt"
-	"html/template"
 	"maps"
 	"path"
 	"slices"
@@ -12,8 +11,8 @@ import (
 	"steelyard/meta/synthesis"
 )
 
-// view is what the template of the page shows; all its texts are plain, and escaped by
-// the template.
+// view is what the page shows; all its texts are plain, and escaped where they are
+// written.
 type view struct {
 	frame
 	Title    string
@@ -36,9 +35,9 @@ type view struct {
 // frame is what finish fills in.
 type frame struct {
 	Policy string
-	Style  template.CSS
-	Script template.JS
-	Data   template.JS
+	Style  string
+	Script string
+	Data   string // JSON
 }
 
 func newView(s *synthesis.Synthesis, options Options) (*view, error) {

@@ -1,4 +1,4 @@
-package report
+package webpage
 
 import (
 	"math"

@@ -1,22 +1,19 @@
-package report
+package webpage
 
 import (
-	"bytes"
 	"crypto/sha256"
 	"embed"
 	"encoding/base64"
 	"encoding/json"
 	"fmt"
-	"html/template"
 	"io/fs"
 	"slices"
 	"strings"
 
-	"steelyard/forest/words"
 	"steelyard/meta/synthesis"
 )
 
-//go:embed page/*.html page/style.css script/*.js
+//go:embed style.css script/*.js
 var files embed.FS
 
 // Options say how the page is written.
@@ -32,18 +29,12 @@ func Page(s *synthesis.Synthesis, options Options) ([]byte, error) {
 	if err != nil {
 		return nil, err
 	}
-	t, err := template.New("page").Funcs(functions).ParseFS(files, "page/*.html")
-	if err != nil {
-		return nil, err
-	}
 	if err := v.finish(); err != nil {
 		return nil, err
 	}
-	var out bytes.Buffer
-	if err := t.ExecuteTemplate(&out, "page.html", v); err != nil {
-		return nil, fmt.Errorf("writing the page: %w", err)
-	}
-	return out.Bytes(), nil
+	var m markup
+	m.page(v)
+	return []byte(m.String()), nil
 }
 
 // Wanted returns the parts of a synthesis that the page shows.
@@ -54,24 +45,10 @@ func Wanted() synthesis.Want {
 	}
 }
 
-// functions are what the templates call.
-var functions = template.FuncMap{
-	"named":   func(id, name string, value any) named { return named{id, name, value} },
-	"pair":    func(id string, value any) named { return named{ID: id, Value: value} },
-	"capital": words.Capital,
-	"last":    func(stops []priorStop) int { return len(stops) - 1 },
-}
-
-// named hands a value to a template together with the outcome's id and a name.
-type named struct {
-	ID, Name string
-	Value    any
-}
-
 // finish fills what depends on the rest of the page: style, script, data and the
 // policy that allows these and nothing else.
 func (v *view) finish() error {
-	style, err := files.ReadFile("page/style.css")
+	style, err := files.ReadFile("style.css")
 	if err != nil {
 		return err
 	}
@@ -84,8 +61,8 @@ func (v *view) finish() error {
 		return err
 	}
 	css := string(style) + v.positions.css()
-	v.Style, v.Script = template.CSS(css), template.JS(script)
-	v.Data = template.JS(bytes.ReplaceAll(data, []byte("</"), []byte(`<\/`)))
+	v.Style, v.Script = css, script
+	v.Data = strings.ReplaceAll(string(data), "</", `<\/`)
 	v.Policy = fmt.Sprintf("default-src 'none'; style-src '%s'; script-src '%s'; img-src data:; base-uri 'none'; form-action 'none'", hash(css), hash(script))
 	return nil
 }
