@@ -147,6 +147,8 @@ func TestPanelCalls(t *testing.T) {
 		{"study,estimate,se\nA,-0.9,0.2\nB,-0.8,0.2\n", "panel - --measure risk-difference --baseline 0.2", codeDone, "beyond 0 or 1; the table stops there"},
 		{"study,estimate,se\nA,700,0.5\nB,-700,1\n", "panel - --measure rate-ratio --baseline 0.2", codeData, ""},
 		{"study,estimate,se\nA,1,0.5\n", "panel -", codeDone, "one study"},
+		{"study,estimate,se\nA,1,0.5\nB,1.1,0.4\n", "panel - --measure mean-difference --important 0.2", codeDone, "neither side is called benefit or harm"},
+		{repeatedSheet, "panel - --dependence robust --measure mean-difference --standard-deviation 1 --important 0.1", codeDone, "not by the dependence of the plan (robust)"},
 	} {
 		args := strings.Fields(strings.ReplaceAll(c.args, "BCG", bcg))
 		stdout, stderr, code := call(t, c.stdin, args...)

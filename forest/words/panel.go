@@ -109,7 +109,11 @@ func panelFacts(o *synthesis.Outcome) []Fact {
 	if remark := BiasRemark(o); remark != "" {
 		text += "; " + remark
 	}
-	return append(facts, Fact{"Evidence", text})
+	facts = append(facts, Fact{"Evidence", text})
+	if r := o.Result.Integrated; r != nil {
+		facts = append(facts, Fact{"", Evidence(r.Effect()) + ": " + Strength(r.Effect()) + "; " + TauPrior(r.Prior)})
+	}
+	return facts
 }
 
 // backTranslated reads a standardised difference in the outcome's unit by a stated

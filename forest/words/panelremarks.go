@@ -5,6 +5,7 @@ import (
 	"slices"
 	"strings"
 
+	"steelyard/meta/dependence"
 	"steelyard/meta/effect"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
@@ -18,6 +19,9 @@ func panelRemarks(s *synthesis.Synthesis, o *synthesis.Outcome) []string {
 		all = append(all, text)
 	}
 	all = append(all, thresholdRemarks(o)...)
+	if hasZone(p) && o.Analysis.Better == review.BetterUnknown {
+		all = append(all, "No direction is called better, so that neither side is called benefit or harm: state it with --better or in the sheet.")
+	}
 	for i := range p.Rows {
 		r := &p.Rows[i]
 		if r.Trouble != "" {
@@ -130,6 +134,9 @@ func nullTrialRemark(o *synthesis.Outcome) string {
 	text := "A trial that found no effect: two equal arms, the baseline risk in both, its estimate exactly none; pooled with the others anew, τ too. The smallest one is searched in steps of a fifth, then narrowed to two people."
 	if len(o.Studies) == 1 {
 		text += " Beside one study it makes two, whose interval on one degree of freedom is wide whatever its size."
+	}
+	if way := o.Analysis.Dependence; way != dependence.Independent {
+		text += fmt.Sprintf(" It is pooled with the estimates as if independent, not by the dependence of the plan (%s).", way)
 	}
 	if o.Analysis.Method != review.InverseVariance {
 		text += fmt.Sprintf(" It is pooled by %s, not by %s.", review.InverseVariance, o.Analysis.Method)
