@@ -6,10 +6,10 @@ VERSION := $(shell git describe --tags --always --dirty 2>/dev/null || echo unre
 FUZZCOUNT ?= 20000x
 
 .DEFAULT_GOAL := help
-.PHONY: help build demo test race office browser soak check fuzz bench golden dist clean
+.PHONY: help build demo test race office browser soak check fuzz bench bench-peers golden dist clean
 
 help: ## list the targets
-	@awk -F ':.*## ' '/^[a-z]+:.*## / { printf "  make %-8s %s\n", $$1, $$2 }' $(MAKEFILE_LIST)
+	@awk -F ':.*## ' '/^[a-z-]+:.*## / { printf "  make %-11s %s\n", $$1, $$2 }' $(MAKEFILE_LIST)
 
 build: ## build ./steelyard
 	@go build -trimpath -ldflags "-s -w -X main.version=$(VERSION)" -o steelyard ./cmd/steelyard
@@ -62,6 +62,9 @@ fuzz: ## every fuzz target for FUZZCOUNT inputs each (default 20000x)
 
 bench: ## every benchmark, in the form that benchstat reads
 	go test -run '^$$' -bench . -benchmem ./...
+
+bench-peers: ## the same work here and in general-purpose peers (numpy, scipy, awk), in one run: a table of ratios
+	go run ./testdata/peers
 
 golden: ## rewrite the golden files and the README's transcript and figures, to be looked at before they are committed
 	go test ./... -run 'Golden|Readme' -update

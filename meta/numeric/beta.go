@@ -1,6 +1,9 @@
 package numeric
 
-import "math"
+import (
+	"math"
+	"sync"
+)
 
 // betaSteps caps the continued fraction of the incomplete beta function, which
 // needs about √max(a, b) steps near the mean and few in the tails.
@@ -75,6 +78,24 @@ func lnBeta(a, b float64) float64 {
 	return LogGamma(b) - LogGammaRise(a, b)
 }
 
+// halfBetas holds ln B(df/2, ½) by df: the constant of Student's t, which fits of few
+// studies need again and again.
+var halfBetas = sync.OnceValue(func() *[512]float64 {
+	var table [512]float64
+	for df := 1; df < len(table); df++ {
+		table[df] = lnBeta(float64(df)/2, 0.5)
+	}
+	return &table
+})
+
+// lnHalfBeta returns ln B(a, ½).
+func lnHalfBeta(a float64) float64 {
+	if df := int(2 * a); float64(df) == 2*a && 0 < df && df < len(halfBetas()) {
+		return halfBetas()[df]
+	}
+	return lnBeta(a, 0.5)
+}
+
 // LogFTail returns ln P(F > f) for Fisher's F with d1 and d2 degrees of freedom,
 // either of which may be infinite; NaN unless d1, d2 > 0 and f ≥ 0, and where
 // both are finite and beyond about 1e10.
@@ -132,6 +153,9 @@ func logBetaTails(a, b, q float64) float64 {
 // probabilities.
 func logBetaFront(a, b, x, y, lnX, lnY float64) float64 {
 	if min(a, b) < stirlingFrom {
+		if b == 0.5 {
+			return a*lnX + b*lnY - lnHalfBeta(a)
+		}
 		return a*lnX + b*lnY - lnBeta(a, b)
 	}
 	n := a + b
