@@ -81,7 +81,8 @@ func (l look) style() *excelize.Style {
 	case subtitle:
 		s.Font.Color = softColour
 	case soft:
-		s.Font.Color, s.Alignment.Indent = softColour, 1
+		s.Font.Color = softColour
+		s.Alignment = &excelize.Alignment{Vertical: "top", Horizontal: "left", Indent: 1}
 	case index:
 		s.Alignment.Horizontal = "center"
 	case section:

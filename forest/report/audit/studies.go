@@ -49,7 +49,7 @@ func (b *book) writeStudies(s *synthesis.Synthesis, x *review.Extraction) map[*r
 			}
 		}
 	}
-	sh.finish(page{widths: []float64{24, 10, 22, 16, 30}, rest: 11, frozen: sh.at(2, firstRow), repeated: firstRow - 1})
+	sh.finish(page{widths: []float64{24, 10, 24, 26, 30}, rest: 11, frozen: sh.at(2, firstRow), repeated: firstRow - 1})
 	return cells
 }
 
