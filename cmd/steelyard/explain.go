@@ -53,7 +53,8 @@ func explainCommand() *cli.Command {
 		Usage:     "why the studies differ: subgroups and regression on covariates",
 		UsageText: "steelyard explain FILE --subgroups COLUMN | --on COLUMNS [flags]",
 		Description: "Any column of the sheet can explain: one of numbers is centred at its mean, any other makes\n" +
-			"categories. Studies with a blank cell are left out and named. Both questions may be asked at once.\n" +
+			"categories. Studies with a blank cell are left out and named. Both questions may be asked at once;\n" +
+			"--format csv then holds the groups, and the coefficients without --subgroups.\n" +
 			"Example: steelyard explain FILE --on \"latitude, year\" --subgroups allocation",
 		Flags: slices.Concat(subgroupsFlags(), regressionFlags(), []cli.Flag{
 			&cli.StringSliceFlag{Name: flagAt, Usage: "covariates at which to predict the effect, such as \"latitude=40\" (default: means and references); may be given more than once"},
