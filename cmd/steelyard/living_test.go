@@ -166,7 +166,7 @@ func TestLivingQuiet(t *testing.T) {
 		t.Errorf("with a threshold of 90%%:\n%s", text)
 	}
 	text, stderr := f.living(codeDone, "update", f.sheet)
-	if !strings.Contains(text, "taken over from state 3: --trigger-information 0.9, --trigger-people 10") || stderr != "" {
+	if !strings.Contains(text, "taken over from state 3: --trigger-information 0.9, --trigger-people 10") || !strings.Contains(text, "threshold 90%, flag") || stderr != "" {
 		t.Errorf("settings are not taken over:\n%s%s", text, stderr)
 	}
 	if text, _ = f.living(codeDone, "update", f.sheet, "--anew"); strings.Contains(text, "taken over") || !strings.Contains(text, "threshold 20%, default") {
@@ -378,7 +378,7 @@ func (s *safeBuffer) String() string {
 // out, nothing is recorded, and ctrl-C ends with 130.
 func TestLivingWatch(t *testing.T) {
 	pause, rest := watchPause, watchRest
-	watchPause, watchRest = 5*time.Millisecond, 60*time.Millisecond
+	watchPause, watchRest = 5*time.Millisecond, 800*time.Millisecond
 	defer func() { watchPause, watchRest = pause, rest }()
 	f := newLiving(t)
 	f.save(trials(t, 9))
@@ -410,7 +410,7 @@ func TestLivingWatch(t *testing.T) {
 	wait("Nothing has changed")
 	for n := 10; n <= 13; n++ { // saved piece by piece, each a whole sheet of its own
 		f.save(trials(t, n)[:len(trials(t, n))-9])
-		time.Sleep(10 * time.Millisecond)
+		time.Sleep(60 * time.Millisecond)
 	}
 	if err := os.Remove(f.sheet); err != nil { // as programs do that write a file anew
 		t.Fatal(err)

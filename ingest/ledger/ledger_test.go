@@ -505,3 +505,22 @@ func TestAttributes(t *testing.T) {
 		t.Errorf("verify says %v", all)
 	}
 }
+
+// TestTwoAppends records two states while the store is held.
+func TestTwoAppends(t *testing.T) {
+	dir := started(t, 1)
+	s, err := Hold(t.Context(), dir, "test")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer s.Close()
+	for n := 2; n <= 3; n++ {
+		state, _, err := s.Append(entry(n))
+		if err != nil || state.Number != n {
+			t.Fatalf("state %v, %v", state, err)
+		}
+	}
+	if l := opened(t, dir); len(l.States) != 3 || l.Damaged() != nil || len(l.Ends()) != 1 {
+		t.Errorf("%d states, %v", len(l.States), l.Problems)
+	}
+}
