@@ -192,37 +192,21 @@ func (o *Outcome) riskOfSheet(w NextWanted, n *Next) (NextWanted, error) {
 	if !comparesRisks(o.Analysis.Measure) || w.ControlRisk != 0 {
 		return w, nil
 	}
-	risk, arms := o.medianControlRisk()
-	if arms == 0 {
+	median := o.medianRisk()
+	if median == nil {
 		return w, nil
 	}
-	if !(risk > 0 && risk < 1) {
-		return w, &accrual.InputError{Problem: fmt.Sprintf("the median risk of the studies' %d control arms is %v, which gives no standard error: state the risk in the control arm with --control-risk, such as 0.2", arms, risk)}
+	if risk := median.Risk; !(risk > 0 && risk < 1) {
+		return w, &accrual.InputError{Problem: fmt.Sprintf("the median risk of the studies' %d control arms is %v, which gives no standard error: state the risk in the control arm with --control-risk, such as 0.2", median.Studies, risk)}
 	}
-	w.ControlRisk = risk
-	n.Wanted.ControlRisk, n.RiskFrom = risk, arms
+	w.ControlRisk = median.Risk
+	n.Wanted.ControlRisk, n.RiskFrom = median.Risk, median.Studies
 	return w, nil
 }
 
 // comparesRisks reports whether a measure compares the risks of two arms.
 func comparesRisks(m effect.Measure) bool {
 	return m == effect.OddsRatio || m == effect.RiskRatio || m == effect.RiskDifference
-}
-
-// medianControlRisk returns the median risk of the control arms of the pooled studies
-// that give one, and how many these are.
-func (o *Outcome) medianControlRisk() (risk float64, arms int) {
-	var all []float64
-	for i := range o.Studies {
-		d := derivation{row: o.Studies[i].Source}
-		if total := d.value(review.TotalControl); d.has(review.EventsControl) && total > 0 {
-			all = append(all, d.value(review.EventsControl)/total)
-		}
-	}
-	if len(all) == 0 {
-		return 0, 0
-	}
-	return medianOf(all), len(all)
 }
 
 // Reaches is the chance in an outlook that the wanted step is passed.
