@@ -64,9 +64,13 @@ func startBrowser(t *testing.T) *browser {
 	if err != nil {
 		t.Fatal(err)
 	}
+	profile, err := os.MkdirTemp("", "steelyard-browser-")
+	if err != nil {
+		t.Fatal(err)
+	}
 	command := exec.Command(path, "--headless=new", "--hide-scrollbars", "--no-sandbox", "--disable-gpu", "--no-first-run", "--disable-extensions",
 		"--disable-background-networking", "--disable-component-update", "--disable-dev-shm-usage", "--host-resolver-rules=MAP * ~NOTFOUND",
-		"--user-data-dir="+t.TempDir(), "--remote-debugging-pipe", "about:blank")
+		"--user-data-dir="+profile, "--remote-debugging-pipe", "about:blank")
 	command.ExtraFiles = []*os.File{theirs, ours}
 	if err := command.Start(); err != nil {
 		t.Fatal(err)
@@ -75,10 +79,22 @@ func startBrowser(t *testing.T) *browser {
 	_ = ours.Close()
 	b := &browser{t: t, to: to, from: bufio.NewReaderSize(from, 1<<20)}
 	t.Cleanup(func() {
-		_ = to.Close()
+		_ = to.Close() // Chromium ends when its pipe does
 		_ = from.Close()
-		_ = command.Process.Kill()
-		_ = command.Wait()
+		ended := make(chan error, 1)
+		go func() { ended <- command.Wait() }()
+		select {
+		case <-ended:
+		case <-time.After(patienceForChromium / 6):
+			_ = command.Process.Kill()
+			<-ended
+		}
+		for range 20 { // its helpers may still write for a moment
+			if os.RemoveAll(profile) == nil {
+				break
+			}
+			time.Sleep(100 * time.Millisecond)
+		}
 	})
 	if err := from.SetReadDeadline(time.Now().Add(10 * patienceForChromium)); err != nil {
 		t.Fatal(err)

@@ -12,10 +12,14 @@ import (
 	"steelyard/forest/layout"
 	"steelyard/forest/report"
 	"steelyard/forest/webpage"
+	"steelyard/forest/words"
 	"steelyard/meta"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
 )
+
+// flagSince names an earlier sheet of the review.
+const flagSince = "since"
 
 func reportCommand() *cli.Command {
 	return &cli.Command{
@@ -28,6 +32,7 @@ func reportCommand() *cli.Command {
 		Flags: slices.Concat([]cli.Flag{
 			&cli.StringFlag{Name: flagOut, Usage: "folder to write"},
 			&cli.BoolFlag{Name: flagOverwrite, Usage: "replace an earlier report in that folder"},
+			&cli.StringFlag{Name: flagSince, Usage: "an earlier sheet of the same review, with its own plan: what changed since stands on the page"},
 			&cli.BoolFlag{Name: flagMono, Usage: "figures in shades of grey only"},
 		}, sheetFlags(), reportSettings(), workFlags()),
 		Action: writeReport,
@@ -51,8 +56,9 @@ func reportSettings() []cli.Flag {
 type reported struct {
 	sheet *review.Extraction
 	*synthesis.Synthesis
-	theme layout.Theme
-	work  meta.Work
+	theme  layout.Theme
+	work   meta.Work
+	change *synthesis.Change // since an earlier sheet; nil: not wanted
 }
 
 // reportParts make the files of a report, each its own.
@@ -61,10 +67,20 @@ var reportParts = []func(context.Context, reported) ([]report.File, error){
 	reportResults,
 	reportFigures,
 	reportAudit,
+	reportChange,
+}
+
+// reportChange writes what changed since an earlier sheet, if one is named.
+func reportChange(_ context.Context, r reported) ([]report.File, error) {
+	if r.change == nil {
+		return nil, nil
+	}
+	content, err := indented(r.change.Document(version, words.ChangeConclusion(r.change)))
+	return []report.File{{Name: "change.json", Content: content}}, err
 }
 
 func reportPage(_ context.Context, r reported) ([]report.File, error) {
-	content, err := webpage.Page(r.Synthesis, webpage.Options{Version: version})
+	content, err := webpage.Page(r.Synthesis, webpage.Options{Version: version, Change: r.change})
 	return []report.File{{Name: "report.html", Content: content}}, err
 }
 
@@ -96,6 +112,9 @@ func writeReport(c *cli.Context) error {
 	if r.work, err = work(c); err != nil {
 		return err
 	}
+	if r.change, err = changeSince(c, x, s); err != nil {
+		return err
+	}
 	if missing := missingGlyphs(s); missing != "" {
 		fmt.Fprintln(c.App.ErrWriter, "steelyard: "+missing)
 	}
@@ -108,6 +127,23 @@ func writeReport(c *cli.Context) error {
 	}
 	fmt.Fprintf(c.App.Writer, "%s: %s\n", folder, reportContents(files))
 	return incomplete(s)
+}
+
+// changeSince compares the sheet with the earlier one that the call names, if it does.
+func changeSince(c *cli.Context, x *review.Extraction, s *synthesis.Synthesis) (*synthesis.Change, error) {
+	path := c.String(flagSince)
+	if path == "" {
+		return nil, nil
+	}
+	before, plan, err := checkedSheet(c, path)
+	if err != nil {
+		return nil, err
+	}
+	earlier, err := pooledSheet(c, before, plan, webpage.Wanted())
+	if err != nil {
+		return nil, err
+	}
+	return synthesis.Compare(synthesis.State{Extraction: before, Synthesis: earlier}, synthesis.State{Extraction: x, Synthesis: s}), nil
 }
 
 // makeParts makes the parts of a report side by side; the files come in the order of the

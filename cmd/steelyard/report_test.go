@@ -115,6 +115,39 @@ func TestReportNumbers(t *testing.T) {
 	}
 }
 
+// olderBCG writes the BCG trials but for the last two.
+func olderBCG(t *testing.T) string {
+	t.Helper()
+	content, err := os.ReadFile(data + "checks/bcg_counts.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	lines := strings.SplitAfter(strings.TrimSpace(string(content)), "\n")
+	path := filepath.Join(t.TempDir(), "older.csv")
+	if err := os.WriteFile(path, []byte(strings.Join(lines[:len(lines)-2], "")), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	return path
+}
+
+// TestReportSince: what changed since an earlier sheet is what pool says of the two.
+func TestReportSince(t *testing.T) {
+	withoutFigures(t)
+	page, _ := reportOf(t, data+"checks/bcg_counts.csv", "--since", olderBCG(t))
+	before, now := pooled(t, olderBCG(t)).Outcomes[0], pooled(t, data+"checks/bcg_counts.csv").Outcomes[0]
+	ratio := words.Notation{Ratio: true}
+	changed := page[strings.Index(page, `id="changed"`):]
+	for _, o := range []synthesis.OutcomeDocument{before, now} {
+		d := o.Pooled.Display
+		if want := ratio.Estimate(*d.Estimate, *d.Low, *d.High); !strings.Contains(changed, want) {
+			t.Errorf("the section on changes lacks %s", want)
+		}
+	}
+	if without, _ := reportOf(t, data+"checks/bcg_counts.csv"); strings.Contains(without, `id="changed"`) {
+		t.Error("a section on changes without an earlier sheet")
+	}
+}
+
 // TestReportHostileNames: names stay text on the page.
 func TestReportHostileNames(t *testing.T) {
 	withoutFigures(t)

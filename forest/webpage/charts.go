@@ -48,6 +48,7 @@ var kinds = []chart{
 	{Chart{"leave-one-out", laidOut(layout.LeaveOneOutOf, layout.LeaveOneOut)}, false, true},
 	{Chart{"benefit", laidOut(layout.BenefitOf, layout.Benefit)}, false, false},
 	{Chart{"prior-sensitivity", laidOut(layout.PriorSensitivityOf, layout.PriorSensitivity)}, true, false},
+	{Chart{"funnel", laidOut(layout.FunnelOf, layout.Funnel)}, true, false},
 }
 
 // Charts returns the charts that the page shows of each outcome, in its order.

@@ -69,10 +69,6 @@ func (v *view) outcome(s *synthesis.Synthesis, i int) (*outcomeView, error) {
 	w.Problem = ""
 	w.Answer = v.answer(s, o, w.ID)
 	var err error
-	if w.Panel, err = v.panel(s, o, w.ID); err != nil {
-		return nil, err
-	}
-	w.Answer.withPanel(w.Panel)
 	if w.Trials, err = v.trials(s, o, w.ID); err != nil {
 		return nil, err
 	}
@@ -82,10 +78,17 @@ func (v *view) outcome(s *synthesis.Synthesis, i int) (*outcomeView, error) {
 	if w.Rests, err = v.rests(s, o, w.ID); err != nil {
 		return nil, err
 	}
+	if w.Panel, err = v.panel(s, o, w.ID); err != nil {
+		return nil, err
+	}
+	w.Answer.withPanel(w.Panel)
 	if w.Other, err = v.other(s, o, w.ID); err != nil {
 		return nil, err
 	}
-	w.Posterior, w.Small = v.posterior(s, o), v.smallStudy(s, o)
+	w.Posterior = v.posterior(s, o)
+	if w.Small, err = v.smallStudy(s, o, w.ID); err != nil {
+		return nil, err
+	}
 	table := v.studyTable(s, o, w.ID)
 	w.Data = &table
 	v.data.Outcomes = append(v.data.Outcomes, v.outcomeData(o, w))
@@ -103,7 +106,7 @@ func (v *view) answer(s *synthesis.Synthesis, o *synthesis.Outcome, id string) *
 	}
 	a.Keys = append(a.Keys, keyView{Name: words.Capital(a.Measure), Value: a.Estimate, About: []string{a.Interval}})
 	if fit.Prediction != nil {
-		a.Keys = append(a.Keys, keyView{Name: "In a new setting", Value: words.NoBreak(predictionText(o)), About: []string{words.Level(fit.Model.Level) + " prediction interval"}})
+		a.Keys = append(a.Keys, keyView{Name: "In a new setting", Value: predictionText(o), About: []string{words.Level(fit.Model.Level) + " prediction interval"}})
 	}
 	if o.Analysis.NullMissing {
 		a.Panel = keep(words.NotWeighed(o))

@@ -18,7 +18,8 @@ var files embed.FS
 
 // Options say how the page is written.
 type Options struct {
-	Version string // of the program
+	Version string            // of the program
+	Change  *synthesis.Change // what differs from an earlier state; nil: not wanted
 }
 
 // Page writes the page of a synthesis. The same synthesis gives the same bytes. It

@@ -51,6 +51,12 @@ func (m *markup) contents(v *view) {
 		}
 		m.raw("</li>\n")
 	}
+	if v.Changes != nil {
+		m.raw("<li><a href=\"#changed\">What changed</a></li>")
+	}
+	if v.Eligible != nil {
+		m.raw("<li><a href=\"#eligible\">Which synthesis</a></li>")
+	}
 	m.raw("<li><a href=\"#findings\">Findings in the sheet</a></li><li><a href=\"#methods\">Methods</a></li><li><a href=\"#cautions\">Cautions</a></li><li><a href=\"#record\">Record</a></li>\n</ol></details></nav>")
 }
 
@@ -138,6 +144,8 @@ func (m *markup) leftOut(rows []leftOutView) {
 
 // back writes what stands once for all outcomes.
 func (m *markup) back(v *view) {
+	m.changes(v.Changes)
+	m.eligible(v.Eligible)
 	m.findings(&v.Findings)
 	m.raw("<section id=\"methods\" aria-labelledby=\"h-methods\">\n<span class=\"items\">PRISMA 12, 13d, 13e, 13f</span>\n<h2 id=\"h-methods\">Methods</h2>\n<p class=\"under\">Written from what was run; edit before you publish.</p>\n")
 	for i := range v.Methods {

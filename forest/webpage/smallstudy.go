@@ -9,23 +9,30 @@ import (
 )
 
 // smallStudy is the section on small studies; nil where it was not looked at.
-func (v *view) smallStudy(s *synthesis.Synthesis, o *synthesis.Outcome) *sectionView {
+func (v *view) smallStudy(s *synthesis.Synthesis, o *synthesis.Outcome, id string) (*sectionView, error) {
 	a := o.SmallStudy
 	if a == nil {
-		return nil
+		return nil, nil
 	}
 	w := &sectionView{Items: "14, 21", Heading: "Do small " + words.Noun(s, 2) + " show other effects?"}
+	if len(o.Studies) > 1 {
+		f, err := v.figure(s, o, id, kind("funnel"))
+		if err != nil {
+			return nil, err
+		}
+		w.Figures = []figureView{f}
+	}
 	if a.Refused != "" {
 		w.Under = []string{"Not tested: " + a.Refused + "."}
 		w.After = []string{synthesis.SmallStudyCaution}
-		return w
+		return w, nil
 	}
 	if a.Few {
 		w.Under = []string{fmt.Sprintf("Run on request with %d %s: below 10 such tests find little and mislead easily.", len(o.Studies), words.Noun(s, 2))}
 	}
 	w.Tables = []tableView{v.asymmetryTable(a), v.adjustedTable(o, a)}
 	w.After = []string{synthesis.SmallStudyCaution, synthesis.NoProofCaution}
-	return w
+	return w, nil
 }
 
 // asymmetryTable lists the tests; one that could not be run says why.

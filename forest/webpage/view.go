@@ -19,6 +19,8 @@ type view struct {
 	Kicker   string
 	One      bool // one outcome only
 	Outcomes []*outcomeView
+	Eligible *tableView
+	Changes  *changesView
 	Findings findingsView
 	Methods  []methodsView
 	Cautions []string
@@ -55,6 +57,7 @@ func newView(s *synthesis.Synthesis, options Options) (*view, error) {
 		v.Outcomes = append(v.Outcomes, o)
 		v.Methods = append(v.Methods, methodsOf(s, &s.Outcomes[i]))
 	}
+	v.Eligible, v.Changes = v.eligible(s), v.changes(options.Change)
 	if v.One {
 		v.Title = v.Outcomes[0].Name
 	}

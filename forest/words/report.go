@@ -185,9 +185,21 @@ func namesOf(o *synthesis.Outcome, rows []int) string {
 			names = append(names, fmt.Sprintf("%d more", len(rows)-i))
 			break
 		}
-		names = append(names, o.Studies[row].Source.Name)
+		names = append(names, nameInSentence(o.Studies[row].Source.Name))
 	}
 	return strings.Join(names, ", ")
+}
+
+// longestName is how many characters of a name stand in a sentence.
+const longestName = 60
+
+// nameInSentence cuts a name that would burst a sentence.
+func nameInSentence(name string) string {
+	runes := []rune(name)
+	if len(runes) <= longestName {
+		return name
+	}
+	return strings.TrimSpace(string(runes[:longestName-1])) + "…"
 }
 
 // CumulativeSentence says when the evidence first passed the step below where it
@@ -243,7 +255,7 @@ func LeaveOneOutSentence(s *synthesis.Synthesis, o *synthesis.Outcome) string {
 	if least < 0 || least == most {
 		return ""
 	}
-	name := func(i int) string { return o.Studies[all[i].Row].Source.Name }
+	name := func(i int) string { return nameInSentence(o.Studies[all[i].Row].Source.Name) }
 	return fmt.Sprintf("Without any one %s the evidence lies between %s (without %s) and %s (without %s).", Noun(s, 1),
 		OddsInSentence(all[least].Mean.Evidence.Ln()), name(least), OddsInSentence(all[most].Mean.Evidence.Ln()), name(most))
 }
