@@ -44,7 +44,7 @@ soak: ## hostile files, 10,000 damaged workbooks; a living review killed through
 
 check: ## formatting, vet, tidiness, static analysis, imports
 	@unformatted="$$(gofmt -l .)"; if [ -n "$$unformatted" ]; then echo "gofmt would change: $$unformatted"; exit 1; fi
-	go vet ./... ./testdata/demo
+	go vet ./... ./testdata/demo ./testdata/peers
 	GOOS=windows go vet ./...
 	go vet -tags office,soak ./ingest ./cmd/steelyard
 	go vet -tags browser ./cmd/steelyard
