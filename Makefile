@@ -14,14 +14,13 @@ help: ## list the targets
 build: ## build ./steelyard
 	@go build -trimpath -ldflags "-s -w -X main.version=$(VERSION)" -o steelyard ./cmd/steelyard
 
-demo: build ## pool the published BCG trials and an invented workbook; charts go to out/
+demo: build ## pool the published BCG trials and an invented workbook; charts and a report page go to out/
 	@mkdir -p out
 	./steelyard pool testdata/checks/bcg_counts.csv
 	./steelyard pool testdata/demo.xlsx
 	./steelyard chart forest testdata/checks/bcg_counts.csv --out out/bcg.svg --overwrite
-	./steelyard chart forest testdata/demo.xlsx --outcome "flare within 24 weeks" --out out/demo.svg --overwrite
-	./steelyard chart forest testdata/demo.xlsx --outcome "flare within 24 weeks" --out out/demo.pdf --overwrite
-	./steelyard chart forest testdata/demo.xlsx --outcome "flare within 24 weeks" --out out/demo.png --overwrite
+	./steelyard chart forest testdata/demo.xlsx --outcome "flare within 24 weeks" --out out/flare.png --overwrite
+	./steelyard report testdata/demo.xlsx --out out/demo --overwrite
 
 test: ## run every test
 	go test ./...

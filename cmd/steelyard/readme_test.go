@@ -129,11 +129,11 @@ func splitCommand(line string) []string {
 func TestReadmeFigures(t *testing.T) {
 	const folder = "../../testdata/figures"
 	for name, args := range map[string][]string{
-		"flare.svg": {data + "demo.xlsx", "--outcome", "flare within 24 weeks"},
-		"bcg.svg":   {data + "checks/bcg_counts.csv"},
+		"flare.svg":   {"forest", data + "demo.xlsx", "--outcome", "flare within 24 weeks"},
+		"arrival.svg": {"cumulative", data + "checks/bcg_counts.csv"},
 	} {
 		path := filepath.Join(t.TempDir(), name)
-		if _, stderr, code := call(t, "", append([]string{"chart", "forest", "--out", path}, args...)...); code != codeDone {
+		if _, stderr, code := call(t, "", append([]string{"chart", args[0], "--out", path}, args[1:]...)...); code != codeDone {
 			t.Fatalf("%s: exit %d, %s", name, code, stderr)
 		}
 		got, err := os.ReadFile(path)
