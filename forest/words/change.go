@@ -239,6 +239,9 @@ func resultRows(o *synthesis.OutcomeChange) [][]string {
 
 func baselineText(b review.Baseline) string {
 	text := "of " + Per1000(b.Risk)
+	if b.Name == synthesis.MedianBaseline {
+		return "median control, " + text
+	}
 	if b.Name != "" {
 		return b.Name + ", " + text
 	}

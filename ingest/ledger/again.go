@@ -162,7 +162,7 @@ func (s *State) Update() (synthesis.Update, error) {
 			break
 		}
 		for _, study := range studies[i] {
-			u.Knows(r.Outcome, study.Study, study.ID)
+			u.Knows(r.Outcome, study.Study, study.ID, study.Estimate, study.SE)
 		}
 	}
 	return u, nil

@@ -250,7 +250,7 @@ func updatesOf(known ...int) []Update {
 	for i, n := range known {
 		u := NewUpdate(i+1, fmt.Sprintf("2026-0%d-01", i+1))
 		for j := range n {
-			u.Knows("", string(rune('a'+j)), "")
+			u.Knows("", string(rune('a'+j)), "", 0, 0)
 		}
 		all = append(all, u)
 	}
@@ -327,6 +327,24 @@ func TestRuleOfLooks(t *testing.T) {
 		if n != tt.want {
 			t.Errorf("%s: %d findings, want %d", tt.name, n, tt.want)
 		}
+	}
+}
+
+// TestRenamedIsNoLook: a study of another name with the numbers of one that is gone was
+// looked at before; one with the numbers of a study that is still there is new.
+func TestRenamedIsNoLook(t *testing.T) {
+	_, o := runOne(t, grown(1, 1, 2, 2), plain...) // A, B, C
+	u := NewUpdate(1, "2026-01-01")
+	u.Knows("", "A", "", 1, 1)
+	u.Knows("", "Old", "", 2, 1)
+	if groups, _ := o.entering([]Update{u, NewUpdate(2, "2026-02-01")}); len(groups) != 1 {
+		t.Errorf("renamed: %v enter apart", groups)
+	}
+	u = NewUpdate(1, "2026-01-01")
+	u.Knows("", "A", "", 1, 1)
+	u.Knows("", "B", "", 2, 1)
+	if groups, _ := o.entering([]Update{u, NewUpdate(2, "2026-02-01")}); len(groups) != 2 || len(groups[1]) != 1 {
+		t.Errorf("a new study with the numbers of another: %v enter", groups)
 	}
 }
 

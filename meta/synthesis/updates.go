@@ -17,24 +17,31 @@ type Update struct {
 	Number int
 	At     string // date of the search, else of the record: ISO 8601
 
-	known map[string]map[string]bool // by outcome: keys of the studies pooled then
+	known map[string]map[string]bool     // by outcome: keys of the studies pooled then
+	by    map[string]map[string][]string // by outcome and numbers: keys of a study that had them
 }
 
 // NewUpdate returns an update at which nothing is known yet.
 func NewUpdate(number int, at string) Update {
-	return Update{Number: number, At: at, known: map[string]map[string]bool{}}
+	return Update{Number: number, At: at, known: map[string]map[string]bool{}, by: map[string]map[string][]string{}}
 }
 
-// Knows says that a study of an outcome was pooled at the update; id may be blank.
-func (u *Update) Knows(outcome, name, id string) {
+// Knows says that a study of an outcome was pooled at the update, with this estimate
+// and standard error; id may be blank.
+func (u *Update) Knows(outcome, name, id string, estimate, se float64) {
 	outcome = choice.Fold(outcome)
 	if u.known[outcome] == nil {
-		u.known[outcome] = map[string]bool{}
+		u.known[outcome], u.by[outcome] = map[string]bool{}, map[string][]string{}
 	}
-	for _, key := range studyKeys(name, id) {
+	keys := studyKeys(name, id)
+	for _, key := range keys {
 		u.known[outcome][key] = true
 	}
+	u.by[outcome][numbersOf(estimate, se)] = keys
 }
+
+// numbersOf tells results apart by more digits than two studies share by chance.
+func numbersOf(estimate, se float64) string { return fmt.Sprintf("%.10g %.10g", estimate, se) }
 
 func studyKeys(name, id string) []string {
 	keys := []string{"name " + review.FoldName(name)}
@@ -44,18 +51,30 @@ func studyKeys(name, id string) []string {
 	return keys
 }
 
-// knew reports whether the update pooled a study.
-func (u *Update) knew(outcome string, s *review.Study) bool {
-	return slices.ContainsFunc(studyKeys(s.Name, s.ID), func(key string) bool { return u.known[choice.Fold(outcome)][key] })
+// knew reports whether the update pooled a study: under its name or id, or with the
+// same numbers under a name that no study has any more.
+func (u *Update) knew(outcome string, s *Study, today map[string]bool) bool {
+	outcome = choice.Fold(outcome)
+	if slices.ContainsFunc(studyKeys(s.Source.Name, s.Source.ID), func(key string) bool { return u.known[outcome][key] }) {
+		return true
+	}
+	keys := u.by[outcome][numbersOf(s.Estimate.Y, s.Estimate.SE)]
+	return len(keys) > 0 && !slices.ContainsFunc(keys, func(key string) bool { return today[key] })
 }
 
 // entering parts the outcome's pooled studies by the update at which each was pooled
 // for the first time; those that no update knows entered with the last. Updates that
 // brought no study make no part.
 func (o *Outcome) entering(updates []Update) (groups [][]int, at []*Update) {
+	today := map[string]bool{}
+	for i := range o.Studies {
+		for _, key := range studyKeys(o.Studies[i].Source.Name, o.Studies[i].Source.ID) {
+			today[key] = true
+		}
+	}
 	byUpdate := make([][]int, len(updates))
 	for i := range o.Studies {
-		first := slices.IndexFunc(updates, func(u Update) bool { return u.knew(o.Name, o.Studies[i].Source) })
+		first := slices.IndexFunc(updates, func(u Update) bool { return u.knew(o.Name, &o.Studies[i], today) })
 		if first < 0 {
 			first = len(updates) - 1
 		}
