@@ -1,17 +1,13 @@
 package main
 
 import (
-	"errors"
 	"fmt"
 	"strings"
 
 	"github.com/urfave/cli/v2"
 
-	"steelyard/forest/layout"
 	"steelyard/forest/words"
 	"steelyard/ingest/ledger"
-	"steelyard/meta"
-	"steelyard/meta/accrual"
 	"steelyard/meta/choice"
 	"steelyard/meta/effect"
 	"steelyard/meta/evidence"
@@ -298,169 +294,4 @@ func (p *page) state(l *ledger.Ledger, s *ledger.State, differences []ledger.Dif
 	for _, d := range differences {
 		p.row("Computed again", d.String())
 	}
-}
-
-func livingVerify(c *cli.Context) error {
-	format, err := outputWanted(c)
-	if err != nil {
-		return err
-	}
-	if c.NArg() > 0 {
-		return &callError{fmt.Sprintf("verify looks through the whole record and takes no operand; leave out %q", c.Args().First())}
-	}
-	l, err := openLedger(c)
-	if err != nil {
-		return err
-	}
-	problems, err := l.Verify(c.Context)
-	if err != nil {
-		return err
-	}
-	d := synthesis.VerifyDocument{
-		Format: synthesis.VerifyFormat, Program: synthesis.ProgramDocument{Version: version}, States: len(l.States), Intact: true,
-		Problems: []synthesis.ProblemDocument{}, Different: []synthesis.DifferentDocument{}, Caution: ledger.AccidentsOnly,
-	}
-	for _, problem := range problems {
-		d.Intact = d.Intact && problem.Gravity != ledger.Damage
-		d.Problems = append(d.Problems, synthesis.ProblemDocument{Line: problem.Line, Gravity: problem.Gravity.String(), Text: problem.Text})
-	}
-	if !c.Bool(flagQuick) {
-		work, err := work(c)
-		if err != nil {
-			return err
-		}
-		if err := computeAll(c, l, &d, work); err != nil {
-			return err
-		}
-	}
-	var p page
-	p.verified(&d, problems)
-	if err := reply(c, format, &p, d, "problems"); err != nil {
-		return err
-	}
-	if !d.Intact || len(d.Different) > 0 {
-		return &rowsLeftOut{}
-	}
-	return nil
-}
-
-// computeAll computes every state again; a sheet that Verify has found missing is not
-// reported twice.
-func computeAll(c *cli.Context, l *ledger.Ledger, d *synthesis.VerifyDocument, work meta.Work) error {
-	for i := range l.States {
-		s := &l.States[i]
-		if err := c.Context.Err(); err != nil {
-			return err
-		}
-		var missing *ledger.SheetError
-		now, err := l.Again(c.Context, s)
-		switch {
-		case errors.As(err, &missing):
-			continue
-		case err != nil:
-			d.Intact = false
-			d.Problems = append(d.Problems, synthesis.ProblemDocument{Line: s.Line(), Gravity: ledger.Damage.String(), Text: "cannot be computed again: " + err.Error()})
-			continue
-		}
-		d.Computed++
-		for _, difference := range s.Differences(now.Synthesis) {
-			d.Different = append(d.Different, synthesis.DifferentDocument{State: s.Number, RecomputedDocument: synthesis.RecomputedDocument(difference)})
-		}
-		if work.Progress != nil {
-			work.Progress(i+1, len(l.States))
-		}
-	}
-	return nil
-}
-
-// verified writes what a look through the ledger found.
-func (p *page) verified(d *synthesis.VerifyDocument, problems []ledger.Problem) {
-	verdict := "every line, the chain and the input sheets are as they were written"
-	if !d.Intact {
-		verdict = "not everything is as it was written"
-	}
-	p.wrapped("", fmt.Sprintf("%s: %s.", words.Number(d.States, "state", "states"), verdict))
-	for _, problem := range problems {
-		p.item("·", problem.Gravity.String()+": "+problem.String())
-	}
-	for _, problem := range d.Problems[len(problems):] {
-		p.item("·", fmt.Sprintf("%s: line %d: %s", problem.Gravity, problem.Line, problem.Text))
-	}
-	if d.Computed > 0 {
-		text := fmt.Sprintf("%s computed again: the same numbers.", words.Number(d.Computed, "state", "states"))
-		if len(d.Different) > 0 {
-			text = fmt.Sprintf("%s computed again; these numbers are other than recorded:", words.Number(d.Computed, "state", "states"))
-		}
-		p.wrapped("", text)
-	}
-	for _, different := range d.Different {
-		p.item("·", fmt.Sprintf("state %d: %s", different.State, ledger.Difference(different.RecomputedDocument)))
-	}
-	p.line("")
-	p.item("·", d.Caution)
-}
-
-// drawUpdates draws the cumulative evidence with a point for each update that brought
-// studies.
-func drawUpdates(c *cli.Context, l *ledger.Ledger, outcomes []string) error {
-	out := c.String(flagChart)
-	ink, err := inkFor(out)
-	if err != nil {
-		return err
-	}
-	style, err := chartStyle(c, out)
-	if err != nil {
-		return err
-	}
-	last := l.Last()
-	if last == nil {
-		return fmt.Errorf("the ledger has no state that can be read; see: steelyard living verify")
-	}
-	now, err := l.Again(c.Context, last)
-	if err != nil {
-		return err
-	}
-	updates, err := updatesTo(l, last)
-	if err != nil {
-		return err
-	}
-	s := now.Synthesis
-	if len(outcomes) > 0 {
-		kept := s.Outcomes[:0:0]
-		for _, o := range s.Outcomes {
-			for _, name := range outcomes {
-				if choice.Fold(name) == choice.Fold(o.Name) {
-					kept = append(kept, o)
-				}
-			}
-		}
-		s.Outcomes = kept
-	}
-	complain(c, ledgerMessages(l))
-	for i := range s.Outcomes {
-		o := &s.Outcomes[i]
-		if err := o.AccrueByUpdate(c.Context, updates, meta.Work{}); err != nil {
-			return err
-		}
-		looks, err := o.LookAgain(c.Context, updates, accrual.Draws{N: usualLooks, Seed: o.Analysis.Model.Seed})
-		if err != nil {
-			return err
-		}
-		in, err := layout.UpdatesOf(s, o, looks)
-		if err != nil && len(s.Outcomes) > 1 {
-			fmt.Fprintf(c.App.ErrWriter, "steelyard: no chart of %s: %s\n", heading(s, o), err)
-			continue
-		}
-		if err != nil {
-			return err
-		}
-		document, err := layout.Cumulative(in, style)
-		if err != nil {
-			return err
-		}
-		if err := draw(c, ink, outcomePath(out, s, i), document); err != nil {
-			return err
-		}
-	}
-	return nil
 }
