@@ -148,6 +148,19 @@ func TestReportSince(t *testing.T) {
 	}
 }
 
+// TestReportUnstatedBelief: without a stated prior the key numbers hold no probability.
+func TestReportUnstatedBelief(t *testing.T) {
+	withoutFigures(t)
+	unstated, _ := reportOf(t, data+"checks/bcg_counts.csv")
+	stated, _ := reportOf(t, data+"checks/bcg_counts.csv", "--prior", "0.2")
+	for page, want := range map[string]bool{unstated: false, stated: true} {
+		keys := page[strings.Index(page, `<dl class="keys">`):]
+		if keys = keys[:strings.Index(keys, "</dl>")]; strings.Contains(keys, "Probability") != want {
+			t.Errorf("a probability among the key numbers: %v, want %v", !want, want)
+		}
+	}
+}
+
 // TestReportHostileNames: names stay text on the page.
 func TestReportHostileNames(t *testing.T) {
 	withoutFigures(t)

@@ -118,8 +118,9 @@ func (v *view) answer(s *synthesis.Synthesis, o *synthesis.Outcome, id string) *
 		a.Panel = append(a.Panel, words.RegionsSentence(o, o.Result.Regions[0]))
 	}
 	a.Beliefs = v.beliefs(o, id)
-	start := a.Beliefs.Stops[a.Beliefs.Start]
-	a.Keys = append(a.Keys, keyView{Name: start.Prior, Value: start.Posterior, About: []string{"that there is an effect"}, Slot: "posterior"})
+	if start := a.Beliefs.Stops[a.Beliefs.Start]; a.Beliefs.Stated { // no one number for a belief that nobody stated
+		a.Keys = append(a.Keys, keyView{Name: start.Prior, Value: start.Posterior, About: []string{"that there is an effect"}, Slot: "posterior"})
+	}
 	return a
 }
 
