@@ -32,6 +32,18 @@ type extractionJSON struct {
 	Columns  []columnJSON  `json:"columns"`
 	Studies  []studyJSON   `json:"studies"`
 	Findings []findingJSON `json:"findings,omitempty"`
+
+	Judgements []judgementJSON `json:"judgements,omitempty"`
+}
+
+type judgementJSON struct {
+	Outcome string     `json:"outcome,omitempty"`
+	Domain  string     `json:"domain"`
+	Rating  string     `json:"rating"`
+	Reason  string     `json:"reason,omitempty"`
+	By      string     `json:"by,omitempty"`
+	Date    [3]int     `json:"date,omitzero"` // year, month, day; 0 where unknown
+	Place   *placeJSON `json:"place,omitempty"`
 }
 
 type columnJSON struct {
@@ -106,6 +118,9 @@ func (x *Extraction) MarshalJSON() ([]byte, error) {
 		}
 		d.Findings = append(d.Findings, entry)
 	}
+	for _, j := range x.Judgements {
+		d.Judgements = append(d.Judgements, judgementJSON{j.Outcome, j.Domain.String(), j.Rating, j.Reason, j.By, dateParts(j.Date), placeDocument(j.Place)})
+	}
 	return json.Marshal(d)
 }
 
@@ -133,8 +148,19 @@ func (x *Extraction) UnmarshalJSON(data []byte) error {
 		}
 		x.Findings = append(x.Findings, finding)
 	}
+	for _, j := range d.Judgements {
+		domain, err := ParseDomain(j.Domain)
+		if err != nil {
+			return err
+		}
+		x.Judgements = append(x.Judgements, Judgement{j.Outcome, domain, j.Rating, j.Reason, j.By, dateOf(j.Date), j.Place.place()})
+	}
 	return nil
 }
+
+func dateParts(d Date) [3]int { return [3]int{d.Year, d.Month, d.Day} }
+
+func dateOf(parts [3]int) Date { return Date{parts[0], parts[1], parts[2]} }
 
 func placeDocument(p Place) *placeJSON {
 	if p == (Place{}) {
@@ -153,7 +179,7 @@ func (d *placeJSON) place() Place {
 
 func studyDocument(s *Study) studyJSON {
 	d := studyJSON{
-		Name: s.Name, ID: s.ID, Date: [3]int{s.Date.Year, s.Date.Month, s.Date.Day}, Outcome: s.Outcome,
+		Name: s.Name, ID: s.ID, Date: dateParts(s.Date), Outcome: s.Outcome,
 		Better: s.Better.String(), Row: placeDocument(s.Row), Numbers: numberDocuments(s.Numbers),
 	}
 	if s.Measure != effect.Unspecified {
@@ -167,7 +193,7 @@ func studyDocument(s *Study) studyJSON {
 
 func (d *studyJSON) study() (s Study, err error) {
 	s = Study{
-		Name: d.Name, ID: d.ID, Date: Date{d.Date[0], d.Date[1], d.Date[2]}, Outcome: d.Outcome,
+		Name: d.Name, ID: d.ID, Date: dateOf(d.Date), Outcome: d.Outcome,
 		Row: d.Row.place(), Numbers: numbersOf(d.Numbers),
 	}
 	for _, r := range d.Remarks {
@@ -212,6 +238,7 @@ type givenJSON struct {
 	From    From       `json:"from"`
 	Place   *placeJSON `json:"place,omitempty"`
 	Reason  string     `json:"reason,omitempty"`
+	Date    [3]int     `json:"date,omitzero"` // year, month, day; 0 where unknown
 }
 
 type runJSON struct {
@@ -226,7 +253,7 @@ func (p *Plan) MarshalJSON() ([]byte, error) {
 	var d planJSON
 	for from := FromSheet; from <= FromFlag; from++ {
 		for _, g := range p.Given(from) {
-			d.Given = append(d.Given, givenJSON{g.Setting, g.Outcome, g.Value.Text, from, placeDocument(g.Value.Place), g.Value.Reason})
+			d.Given = append(d.Given, givenJSON{g.Setting, g.Outcome, g.Value.Text, from, placeDocument(g.Value.Place), g.Value.Reason, dateParts(g.Value.Date)})
 		}
 	}
 	for _, r := range p.Runs {
@@ -243,7 +270,7 @@ func (p *Plan) UnmarshalJSON(data []byte) error {
 	}
 	*p = Plan{}
 	for _, g := range d.Given {
-		if err := p.Set(g.Setting, g.Outcome, Value{Text: g.Value, From: g.From, Place: g.Place.place(), Reason: g.Reason}); err != nil {
+		if err := p.Set(g.Setting, g.Outcome, Value{Text: g.Value, From: g.From, Place: g.Place.place(), Reason: g.Reason, Date: dateOf(g.Date)}); err != nil {
 			return err
 		}
 	}
