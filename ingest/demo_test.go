@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"context"
 	"os"
+	"strings"
 	"testing"
 
 	"steelyard/meta/review"
@@ -70,5 +71,30 @@ func TestDemo(t *testing.T) {
 	}
 	if len(plan.Runs) != 3 {
 		t.Errorf("%d planned runs, want 3", len(plan.Runs))
+	}
+}
+
+// TestDemoJudgements: the invented panel rated start, five domains and certainty of each
+// outcome, with reasons, under invented names, after its thresholds were agreed. The
+// dates are those of the program's table.
+func TestDemoJudgements(t *testing.T) {
+	x, plan, err := Open(context.Background(), demoFile, Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	rated := map[string]int{}
+	for _, j := range x.Judgements {
+		rated[j.Outcome]++
+		if j.Reason == "" || !strings.Contains(j.By, "invented") || j.Date.Year != 2024 || j.Date.Month != 10 {
+			t.Errorf("%+v", j)
+		}
+	}
+	for _, outcome := range x.Outcomes() {
+		if rated[outcome] != 7 {
+			t.Errorf("%s: %d ratings, want 7", outcome, rated[outcome])
+		}
+		if v := plan.Value(review.SettingImportant, outcome); v.Text != "" && v.Date.String() != "2024-09-16" {
+			t.Errorf("%s: threshold of %s", outcome, v.Date)
+		}
 	}
 }

@@ -52,22 +52,60 @@ var trials = []trial{
 		flare: counts{50, 206, 74, 207}, harm: counts{5, 206, 3, 207}, symptom: means{195, 13.7, 6.3, 197, 15.2, 6.6}},
 }
 
-// planRows are the settings of the invented review.
+// agreed is when the invented panel agreed on its thresholds: after the last trial was
+// published, before the first judgement.
+const agreed = "2024-09-16"
+
+// planRows are the settings of the invented review: setting, value, outcome, reason and
+// date.
 var planRows = [][]any{
 	{"measure", "risk ratio", flare, "agreed before the first look at the data"},
 	{"better", "lower", flare, "a flare is unwanted"},
-	{"important", 0.87, flare, "40 fewer flares per 1000 people where 300 per 1000 would have one"},
+	{"important", 0.87, flare, "40 fewer flares per 1000 people where 300 per 1000 would have one", agreed},
 	{"baseline", "low 0.15, medium 0.3, high 0.45", flare, "risks of a flare in three invented registers of Vane syndrome"},
 	{"prior", 0.2, flare, "one in five treatments tried in Vane syndrome before turned out to help"},
 	{"run", "low risk of bias: risk of bias is low", flare, "the panel trusts these trials most"},
 	{"run", "no high risk of bias: risk of bias is not high", flare, ""},
 	{"measure", "mean difference", symptom, "all trials used the same scale, 0 to 40"},
 	{"better", "lower", symptom, "fewer symptoms"},
-	{"important", 1.5, symptom, "the smallest change that people with Vane syndrome notice"},
+	{"important", 1.5, symptom, "the smallest change that people with Vane syndrome notice", agreed},
 	{"prior", 0.2, symptom, "as for flares"},
 	{"measure", "odds ratio", harm, "harm is rare, so odds and risks nearly agree"},
 	{"better", "lower", harm, "harm is unwanted"},
 	{"run", "common effect: effects = common", "", "to show what the model adds"},
+}
+
+// Persons of the invented panel.
+const (
+	rater  = "I. Thornquist (invented)"
+	second = "P. Okonjo-Vance (invented)"
+	panel  = "the invented panel"
+)
+
+// judgementRows are what the invented panel judged: outcome, domain, rating, reason, by
+// and date.
+var judgementRows = [][]any{
+	{flare, "start", "high", "all nine are randomised trials", rater, "2024-10-07"},
+	{flare, "risk of bias", "no change", "the answer holds without the one trial at high risk", rater, "2024-10-07"},
+	{flare, "inconsistency", "no change", "eight of nine point the same way; the odd one used the mask", second, "2024-10-07"},
+	{flare, "indirectness", "no change", "people, dose and follow-up are those of the question", second, "2024-10-07"},
+	{flare, "imprecision", "down one", "the interval ends close to the threshold, and too few people were studied at low and medium risk", panel, "2024-10-21"},
+	{flare, "publication bias", "no change", "every registered trial has reported", rater, "2024-10-07"},
+	{flare, "certainty", "moderate", "one step down for imprecision", panel, "2024-10-21"},
+	{symptom, "start", "high", "all seven are randomised trials", rater, "2024-10-07"},
+	{symptom, "risk of bias", "no change", "the trial at high risk has little weight", rater, "2024-10-07"},
+	{symptom, "inconsistency", "no change", "every trial points the same way", second, "2024-10-07"},
+	{symptom, "indirectness", "no change", "one scale, and the one that people with the condition chose", second, "2024-10-07"},
+	{symptom, "imprecision", "down one", "the interval holds the threshold", panel, "2024-10-21"},
+	{symptom, "publication bias", "no change", "two trials did not measure the score, and said so beforehand", rater, "2024-10-07"},
+	{symptom, "certainty", "moderate", "one step down for imprecision", panel, "2024-10-21"},
+	{harm, "start", "high", "all nine are randomised trials", rater, "2024-10-07"},
+	{harm, "risk of bias", "no change", "harms were asked for in the same way in both arms", rater, "2024-10-07"},
+	{harm, "inconsistency", "no change", "the intervals overlap throughout", second, "2024-10-07"},
+	{harm, "indirectness", "no change", "people, dose and follow-up are those of the question", second, "2024-10-07"},
+	{harm, "imprecision", "down two", "33 events in all: the interval holds fewer harms and three times as many", panel, "2024-10-21"},
+	{harm, "publication bias", "no change", "every registered trial has reported", rater, "2024-10-07"},
+	{harm, "certainty", "low", "two steps down for imprecision", panel, "2024-10-21"},
 }
 
 // guideRows explain the workbook.
@@ -87,5 +125,7 @@ var guideRows = [][]any{
 	{"Setting", "how the extract was given: by tube or by mask"},
 	{"Source, Note", "where the numbers stand in the invented report, and remarks"},
 	{"plan", "the settings of the analysis with their reasons; a blank outcome means all outcomes"},
+	{"date (in plan)", "when a threshold was agreed; it should stand before the results were seen"},
+	{"judgement", "what the invented panel judged of each outcome: its own ratings and reasons, by whom and when"},
 	{"run (in plan)", "a planned sensitivity analysis: a name, then a filter or changed settings"},
 }

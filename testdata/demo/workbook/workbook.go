@@ -8,16 +8,17 @@ import (
 )
 
 // notice is what every reader of the workbook must see.
-const notice = "Everything here is invented for trying out steelyard: brindle extract, Vane syndrome, the trials and all numbers do not exist."
+const notice = "Everything here is invented for trying out steelyard: brindle extract, Vane syndrome, the trials, the people named and all numbers do not exist."
 
 // fixedDate keeps the bytes the same in every run.
 const fixedDate = "2025-01-01T00:00:00Z"
 
 // Names of the sheets.
 const (
-	trialsSheet = "trials"
-	planSheet   = "plan"
-	guideSheet  = "guide"
+	trialsSheet    = "trials"
+	planSheet      = "plan"
+	judgementSheet = "judgement"
+	guideSheet     = "guide"
 )
 
 // Bytes returns the workbook, the same bytes every time.
@@ -27,10 +28,12 @@ func Bytes() ([]byte, error) {
 	b := &builder{f: f}
 	b.do(f.SetSheetName("Sheet1", trialsSheet))
 	b.newSheet(planSheet)
+	b.newSheet(judgementSheet)
 	b.newSheet(guideSheet)
 	b.styles()
 	b.writeTrials()
 	b.writePlan()
+	b.writeJudgements()
 	b.writeGuide()
 	b.do(f.SetDocProps(&excelize.DocProperties{
 		Title: "Brindle extract in Vane syndrome (invented)", Subject: "invented demonstration data", Description: notice,
@@ -159,14 +162,27 @@ func (c counts) cells() []any {
 
 func (b *builder) writePlan() {
 	b.row(planSheet, 1, "Plan of the invented review")
-	b.row(planSheet, 3, "setting", "value", "outcome", "reason")
+	b.row(planSheet, 3, "setting", "value", "outcome", "reason", "date")
 	for i, values := range planRows {
 		b.row(planSheet, 4+i, values...)
 	}
 	b.do(b.f.SetCellStyle(planSheet, "A1", "A1", b.title))
-	b.do(b.f.SetCellStyle(planSheet, "A3", "D3", b.header))
-	b.widths(planSheet, "A", 12, "B", 46, "C", 27, "D", 70)
+	b.do(b.f.SetCellStyle(planSheet, "A3", "E3", b.header))
+	b.widths(planSheet, "A", 12, "B", 46, "C", 27, "D", 70, "E", 12)
 	b.freeze(planSheet, 3, 0)
+}
+
+func (b *builder) writeJudgements() {
+	b.row(judgementSheet, 1, "Judgements of the invented panel")
+	b.row(judgementSheet, 2, notice)
+	b.row(judgementSheet, 4, "outcome", "domain", "rating", "reason", "by", "date")
+	for i, values := range judgementRows {
+		b.row(judgementSheet, 5+i, values...)
+	}
+	b.do(b.f.SetCellStyle(judgementSheet, "A1", "A1", b.title))
+	b.do(b.f.SetCellStyle(judgementSheet, "A4", "F4", b.header))
+	b.widths(judgementSheet, "A", 27, "B", 17, "C", 11, "D", 88, "E", 26, "F", 12)
+	b.freeze(judgementSheet, 4, 0)
 }
 
 func (b *builder) writeGuide() {
