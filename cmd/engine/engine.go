@@ -10,6 +10,7 @@ import (
 	"strconv"
 	"strings"
 
+	"steelyard/forest/webpage"
 	"steelyard/ingest/rules"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
@@ -21,6 +22,7 @@ type opened struct {
 	Version    string             `json:"version"`
 	Extraction *review.Extraction `json:"extraction"`
 	Plan       *review.Plan       `json:"plan"`
+	Outcomes   []webpage.Place    `json:"outcomes"` // where each stands on the page; absent where there is none
 }
 
 // variant is a changed analysis of one outcome.
@@ -43,6 +45,15 @@ type reply struct {
 	Document *synthesis.Document `json:"document,omitempty"`
 	Command  string              `json:"command,omitempty"` // that gives the same on a command line; blank with an added study
 	Problem  string              `json:"problem,omitempty"`
+	*shown
+}
+
+// shown is what the page shows of the outcome; nil where it is on no page.
+type shown struct {
+	Lead     string              `json:"lead"`     // HTML of the opening sentence
+	Sections []webpage.Section   `json:"sections"` // of the outcome, in the page's order, and its methods
+	CSS      string              `json:"css"`      // rules for the places in them
+	Data     webpage.OutcomeData `json:"data"`
 }
 
 // open reads what the page hands over.
@@ -73,7 +84,28 @@ func (o *opened) answer(request []byte) (r reply) {
 		return reply{Problem: err.Error()}
 	}
 	d := s.Document(o.Version)
-	return reply{Document: &d, Command: command}
+	r = reply{Document: &d, Command: command}
+	if r.shown, err = o.show(s); err != nil {
+		return reply{Problem: err.Error()}
+	}
+	return r
+}
+
+// show writes the outcome for its place on the page.
+func (o *opened) show(s *synthesis.Synthesis) (*shown, error) {
+	for _, at := range o.Outcomes {
+		for i := range s.Outcomes {
+			if s.Outcomes[i].Name != at.Outcome {
+				continue
+			}
+			part, err := webpage.PartOf(s, i, at)
+			if err != nil {
+				return nil, err
+			}
+			return &shown{part.Lead, part.Sections, part.CSS, part.Data}, nil
+		}
+	}
+	return nil, nil
 }
 
 // run analyses the outcome as changed, the same way as the command line does.
@@ -108,7 +140,7 @@ func (o *opened) run(v variant) (*synthesis.Synthesis, string, error) {
 
 // want asks for what the page shows of an outcome.
 func (v variant) want() synthesis.Want {
-	want := synthesis.Want{Cumulative: true, LeaveOneOut: true}
+	want := webpage.Wanted()
 	if v.Outcome != "" {
 		want.Outcomes = []string{v.Outcome}
 	}

@@ -29,12 +29,9 @@ func analyse(c *cli.Context, want synthesis.Want) (*synthesis.Synthesis, error) 
 // analyseSheet is analyse that hands on the sheet too, as it was read and checked by
 // the catalogue of rules.
 func analyseSheet(c *cli.Context, want synthesis.Want) (*synthesis.Synthesis, *review.Extraction, error) {
-	path, err := oneFile(c)
+	path, err := inputFile(c)
 	if err != nil {
 		return nil, nil, err
-	}
-	if sameFile(path, c.String(flagOut)) {
-		return nil, nil, &callError{"the input is never overwritten; choose another name for --out"}
 	}
 	x, plan, err := checkedSheet(c, path)
 	if err != nil {
@@ -44,18 +41,32 @@ func analyseSheet(c *cli.Context, want synthesis.Want) (*synthesis.Synthesis, *r
 	return s, x, err
 }
 
+// inputFile returns the file that a call names, which no output may replace.
+func inputFile(c *cli.Context) (string, error) {
+	path, err := oneFile(c)
+	if err == nil && sameFile(path, c.String(flagOut)) {
+		return "", &callError{"the input is never overwritten; choose another name for --out"}
+	}
+	return path, err
+}
+
 // checkedSheet reads a file with its plan and the call's settings, and adds what the
 // catalogue of rules finds.
 func checkedSheet(c *cli.Context, path string) (*review.Extraction, *review.Plan, error) {
+	x, plan, err := plannedSheet(c, path)
+	if err == nil {
+		rules.Apply(x, plan)
+	}
+	return x, plan, err
+}
+
+// plannedSheet reads a file with its plan and the call's settings.
+func plannedSheet(c *cli.Context, path string) (*review.Extraction, *review.Plan, error) {
 	x, plan, err := readSheet(c, path)
 	if err != nil {
 		return nil, nil, err
 	}
-	if err := applySettings(c, plan); err != nil {
-		return nil, nil, err
-	}
-	rules.Apply(x, plan)
-	return x, plan, nil
+	return x, plan, applySettings(c, plan)
 }
 
 // pooledSheet runs the plan over a sheet; want says which parts.

@@ -18,6 +18,7 @@ import (
 const (
 	flagWidth   = "width"
 	flagMono    = "mono"
+	flagStatic  = "static"
 	flagNoTitle = "no-title"
 	flagDPI     = "dpi"
 )

@@ -225,7 +225,7 @@ func (b *browser) text(selector string) string {
 }
 
 // complaints are errors of the console, of scripts and of the policy, and requests for
-// anything but the file itself.
+// anything but the file itself and what it holds.
 func (b *browser) complaints() []string {
 	var all []string
 	for _, m := range b.events {
@@ -237,7 +237,7 @@ func (b *browser) complaints() []string {
 			all = append(all, "console: "+text)
 		case "Network.requestWillBeSent":
 			var p struct{ Request struct{ URL string } }
-			if err := json.Unmarshal(m.Params, &p); err != nil || !strings.HasPrefix(p.Request.URL, "file://") && !strings.HasPrefix(p.Request.URL, "data:") {
+			if err := json.Unmarshal(m.Params, &p); err != nil || !strings.HasPrefix(p.Request.URL, "file://") && !strings.HasPrefix(p.Request.URL, "data:") && !strings.HasPrefix(p.Request.URL, "blob:") {
 				all = append(all, "request: "+p.Request.URL)
 			}
 		}

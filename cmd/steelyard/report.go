@@ -2,6 +2,7 @@ package main
 
 import (
 	"context"
+	"encoding/json"
 	"errors"
 	"fmt"
 	"slices"
@@ -12,7 +13,9 @@ import (
 	"steelyard/forest/layout"
 	"steelyard/forest/report"
 	"steelyard/forest/webpage"
+	"steelyard/forest/whatif"
 	"steelyard/forest/words"
+	"steelyard/ingest/rules"
 	"steelyard/meta"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
@@ -34,6 +37,7 @@ func reportCommand() *cli.Command {
 			&cli.BoolFlag{Name: flagOverwrite, Usage: "replace an earlier report in that folder"},
 			&cli.StringFlag{Name: flagSince, Usage: "an earlier sheet of the same review, with its own plan: what changed since stands on the page"},
 			&cli.BoolFlag{Name: flagMono, Usage: "figures in shades of grey only"},
+			&cli.BoolFlag{Name: flagStatic, Usage: "leave out of the page what computes changed analyses: a smaller page that only shows"},
 		}, sheetFlags(), reportSettings(), workFlags()),
 		Action: writeReport,
 	}
@@ -59,6 +63,7 @@ type reported struct {
 	theme  layout.Theme
 	work   meta.Work
 	change *synthesis.Change // since an earlier sheet; nil: not wanted
+	live   *webpage.Live     // nil for a page that only shows
 }
 
 // reportParts make the files of a report, each its own.
@@ -80,7 +85,7 @@ func reportChange(_ context.Context, r reported) ([]report.File, error) {
 }
 
 func reportPage(_ context.Context, r reported) ([]report.File, error) {
-	content, err := webpage.Page(r.Synthesis, webpage.Options{Version: version, Change: r.change})
+	content, err := webpage.Page(r.Synthesis, webpage.Options{Version: version, Change: r.change, Live: r.live})
 	return []report.File{{Name: "report.html", Content: content}}, err
 }
 
@@ -101,11 +106,24 @@ func writeReport(c *cli.Context) error {
 	if err := checkFolder(folder, c.Bool(flagOverwrite)); err != nil {
 		return err
 	}
-	s, x, err := analyseSheet(c, webpage.Wanted())
+	path, err := inputFile(c)
 	if err != nil {
 		return err
 	}
-	r := reported{sheet: x, Synthesis: s, theme: layout.Light}
+	x, plan, err := plannedSheet(c, path)
+	if err != nil {
+		return err
+	}
+	live, static, err := livePage(c, x, plan)
+	if err != nil {
+		return err
+	}
+	rules.Apply(x, plan)
+	s, err := pooledSheet(c, x, plan, webpage.Wanted())
+	if err != nil {
+		return err
+	}
+	r := reported{sheet: x, Synthesis: s, theme: layout.Light, live: live}
 	if c.Bool(flagMono) {
 		r.theme = layout.Mono
 	}
@@ -126,6 +144,9 @@ func writeReport(c *cli.Context) error {
 		return err
 	}
 	fmt.Fprintf(c.App.Writer, "%s: %s\n", folder, reportContents(files))
+	if static != "" {
+		fmt.Fprintln(c.App.Writer, "report.html shows the analysis as planned and computes no other: "+static)
+	}
 	return incomplete(s)
 }
 
@@ -144,6 +165,27 @@ func changeSince(c *cli.Context, x *review.Extraction, s *synthesis.Synthesis) (
 		return nil, err
 	}
 	return synthesis.Compare(synthesis.State{Extraction: before, Synthesis: earlier}, synthesis.State{Extraction: x, Synthesis: s}), nil
+}
+
+// livePage returns what lets the page compute changed analyses of the sheet, which is as
+// it was read, before the rules are applied; or why the page will only show.
+func livePage(c *cli.Context, x *review.Extraction, plan *review.Plan) (live *webpage.Live, static string, err error) {
+	if c.Bool(flagStatic) {
+		return nil, "as --static asks", nil
+	}
+	engine, ok := whatif.Packed()
+	if !ok {
+		return nil, "this program was built without the engine for that; \"make build\" in the source tree builds one with it", nil
+	}
+	sheet, err := json.Marshal(struct {
+		Version    string             `json:"version"`
+		Extraction *review.Extraction `json:"extraction"`
+		Plan       *review.Plan       `json:"plan"`
+	}{version, x, plan})
+	if err != nil {
+		return nil, "", fmt.Errorf("the sheet for the page: %w", err)
+	}
+	return &webpage.Live{Code: engine.Code, Worker: engine.Worker, Script: engine.Script, Sheet: sheet}, "", nil
 }
 
 // makeParts makes the parts of a report side by side; the files come in the order of the

@@ -2,7 +2,6 @@ package layout
 
 import (
 	"io"
-	"regexp"
 	"slices"
 )
 
@@ -31,13 +30,25 @@ func WriteInline(w io.Writer, d Drawing, class, described string) error {
 	}
 	s.items(d.Items)
 	s.raw("</svg>")
-	_, err := w.Write(betweenElements.ReplaceAll(s.out.Bytes(), []byte("><")))
+	_, err := w.Write(joined(s.out.Bytes()))
 	return err
 }
 
-// betweenElements matches the line ends between elements; text holds none, since it is
-// escaped.
-var betweenElements = regexp.MustCompile(`>\n\s*<`)
+// joined takes the line ends between elements out, with the blanks behind them; text
+// holds none, since it is escaped.
+func joined(image []byte) []byte {
+	kept := image[:0]
+	for i := 0; i < len(image); i++ {
+		if image[i] != '\n' {
+			kept = append(kept, image[i])
+			continue
+		}
+		for i+1 < len(image) && image[i+1] == ' ' {
+			i++
+		}
+	}
+	return kept
+}
 
 // commonSize returns the size of most texts of a drawing.
 func commonSize(d Drawing) float64 {

@@ -60,7 +60,7 @@ func done(f review.Finding) string {
 // methodsView is the methods of an outcome: paragraphs, and its settings where they
 // are its own.
 type methodsView struct {
-	Name       string
+	ID, Name   string // ID begins the ids of its elements
 	Paragraphs []string
 	Settings   []settingView
 }
@@ -68,8 +68,8 @@ type methodsView struct {
 // settingView is a setting with its value and origin.
 type settingView struct{ Name, Value, Origin, Reason string }
 
-func methodsOf(s *synthesis.Synthesis, o *synthesis.Outcome) methodsView {
-	m := methodsView{Name: outcomeName(s, o), Paragraphs: words.MethodsParagraphs(s, o)}
+func methodsOf(s *synthesis.Synthesis, o *synthesis.Outcome, id string) methodsView {
+	m := methodsView{ID: id, Name: outcomeName(s, o), Paragraphs: words.MethodsParagraphs(s, o)}
 	for _, setting := range review.Settings() {
 		v := s.Plan.Value(setting.Name, o.Name)
 		if v.Text == "" {

@@ -27,9 +27,19 @@ type OutcomeData struct {
 	// Rows are the marks of the studies in the charts: the rows of the chart of that
 	// name, from the first, as "o1-3".
 	Rows map[string][]string `json:"rows"`
+	// Studies are the pooled rows by their marks, Left those that are not pooled.
+	Studies []StudyRow `json:"studies"`
+	Left    []StudyRow `json:"left"`
 	// Baselines are the stops of the slider of baseline risks; absent without one.
 	Baselines []BaselineStop `json:"baselines,omitempty"`
 	Baseline  int            `json:"baseline"`
+}
+
+// StudyRow is a study with its row in the sheet and its mark; blank if it is not pooled.
+type StudyRow struct {
+	Mark string `json:"mark,omitempty"`
+	Row  int    `json:"row"`
+	Name string `json:"name"`
 }
 
 // BaselineStop is a baseline risk and the texts and places that go with it, by the
@@ -39,8 +49,18 @@ type BaselineStop struct {
 	Bars  map[string]float64 `json:"bars"` // per cent of the widest, by the name of the bar
 }
 
+// outcomeData returns the data of an outcome; one without a result has none but its rows.
 func (v *view) outcomeData(o *synthesis.Outcome, w *outcomeView) OutcomeData {
-	d := OutcomeData{ID: w.ID, Title: w.Name, Span: v.spans[w.ID], From: beamFrom, Priors: []priorStop{}, Rows: map[string][]string{}}
+	d := OutcomeData{ID: w.ID, Title: w.Name, Span: v.spans[w.ID], From: beamFrom, Priors: []priorStop{}, Rows: map[string][]string{}, Studies: []StudyRow{}, Left: []StudyRow{}}
+	for i := range o.Studies {
+		d.Studies = append(d.Studies, StudyRow{studyMark(w.ID, i), o.Studies[i].Source.Row.Row, o.Studies[i].Source.Name})
+	}
+	for _, e := range o.Excluded {
+		d.Left = append(d.Left, StudyRow{Row: e.Place.Row, Name: e.Study})
+	}
+	if o.Result == nil {
+		return d
+	}
 	if w.Answer.Beliefs != nil {
 		d.Priors, d.Prior = w.Answer.Beliefs.Stops, w.Answer.Beliefs.Start
 	}

@@ -56,14 +56,15 @@ type sectionView struct {
 	After   []string
 }
 
-// outcome builds the view of an outcome.
-func (v *view) outcome(s *synthesis.Synthesis, i int) (*outcomeView, error) {
+// outcome builds the view of an outcome; id begins the ids of its elements.
+func (v *view) outcome(s *synthesis.Synthesis, i int, id string) (*outcomeView, error) {
 	o := &s.Outcomes[i]
-	w := &outcomeView{ID: fmt.Sprintf("o%d", i+1), Name: outcomeName(s, o), Problem: o.Problem}
+	w := &outcomeView{ID: id, Name: outcomeName(s, o), Problem: o.Problem}
 	for _, e := range o.Excluded {
 		w.LeftOut = append(w.LeftOut, leftOutView{e.Study, e.Where(), e.Reason})
 	}
 	if o.Result == nil {
+		v.data.Outcomes = append(v.data.Outcomes, v.outcomeData(o, w))
 		return w, nil
 	}
 	w.Problem = ""

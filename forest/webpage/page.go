@@ -1,10 +1,14 @@
+//go:build !js
+
 package webpage
 
 import (
+	"bytes"
 	"crypto/sha256"
 	"embed"
 	"encoding/base64"
 	"encoding/json"
+	"errors"
 	"fmt"
 	"io/fs"
 	"slices"
@@ -15,12 +19,6 @@ import (
 
 //go:embed style.css script/*.js
 var files embed.FS
-
-// Options say how the page is written.
-type Options struct {
-	Version string            // of the program
-	Change  *synthesis.Change // what differs from an earlier state; nil: not wanted
-}
 
 // Page writes the page of a synthesis. The same synthesis gives the same bytes. It
 // shows the parts of an outcome that are there, so ask synthesis.Run for what Wanted
@@ -38,14 +36,6 @@ func Page(s *synthesis.Synthesis, options Options) ([]byte, error) {
 	return []byte(m.String()), nil
 }
 
-// Wanted returns the parts of a synthesis that the page shows.
-func Wanted() synthesis.Want {
-	return synthesis.Want{
-		Cumulative: true, LeaveOneOut: true, Beliefs: true, Runs: true,
-		Further: synthesis.Further{Panel: &synthesis.PanelWanted{}, SmallStudy: &synthesis.SmallStudyWanted{}, Posterior: true},
-	}
-}
-
 // finish fills what depends on the rest of the page: style, script, data and the
 // policy that allows these and nothing else.
 func (v *view) finish() error {
@@ -53,7 +43,11 @@ func (v *view) finish() error {
 	if err != nil {
 		return err
 	}
-	script, err := joinedScript()
+	more := ""
+	if v.Live != nil {
+		more = v.Live.Script
+	}
+	script, err := joinedScript(more)
 	if err != nil {
 		return err
 	}
@@ -63,14 +57,43 @@ func (v *view) finish() error {
 	}
 	css := string(style) + v.positions.css()
 	v.Style, v.Script = css, script
-	v.Data = strings.ReplaceAll(string(data), "</", `<\/`)
+	v.Data = island(data)
 	v.Policy = fmt.Sprintf("default-src 'none'; style-src '%s'; script-src '%s'; img-src data:; base-uri 'none'; form-action 'none'", hash(css), hash(script))
+	if v.Live != nil {
+		v.Policy = fmt.Sprintf("default-src 'none'; style-src '%s'; script-src '%s' 'wasm-unsafe-eval'; worker-src blob:; img-src data:; base-uri 'none'; form-action 'none'", hash(css), hash(script))
+		return v.finishLive()
+	}
 	return nil
 }
 
-// joinedScript joins the modules, in the order of their names, into one script with a
-// scope of its own.
-func joinedScript() (string, error) {
+// finishLive checks what the engine's elements hold, and tells the engine where on the
+// page each outcome stands.
+func (v *view) finishLive() error {
+	for _, text := range []string{v.Live.Code, v.Live.Worker} {
+		if lower := strings.ToLower(text); strings.Contains(lower, "</script") || strings.Contains(lower, "<!--") {
+			return errors.New("the engine's text would end the element that holds it")
+		}
+	}
+	places, err := json.Marshal(v.places)
+	if err != nil {
+		return err
+	}
+	sheet := bytes.TrimSpace(v.Live.Sheet)
+	if len(sheet) < 2 || sheet[0] != '{' {
+		return errors.New("the sheet for the engine is no JSON object")
+	}
+	v.Sheet = island(slices.Concat([]byte(`{"outcomes":`), places, []byte(","), sheet[1:]))
+	return nil
+}
+
+// island is JSON as it may stand in a script element.
+func island(data []byte) string {
+	return strings.NewReplacer("</", `<\/`, "<!--", `<\u0021--`).Replace(string(data))
+}
+
+// joinedScript joins the modules, in the order of their names, with what is added to
+// them, into one script with a scope of its own.
+func joinedScript(more string) (string, error) {
 	names, err := fs.Glob(files, "script/*.js")
 	if err != nil {
 		return "", err
@@ -85,6 +108,7 @@ func joinedScript() (string, error) {
 		}
 		out.Write(content)
 	}
+	out.WriteString(more)
 	out.WriteString("})();\n")
 	return out.String(), nil
 }

@@ -2,30 +2,44 @@ package webpage
 
 // outcome writes all sections of an outcome.
 func (m *markup) outcome(o *outcomeView) {
-	if o.Answer == nil {
-		m.open("section", "aria-labelledby", o.ID+"-h")
-		m.element("h2", o.Name, "id", o.ID+"-h")
-		m.element("p", "No result: "+o.Problem)
-		m.raw("</section>\n")
-	} else {
-		m.answer(o)
+	for _, section := range o.sections() {
+		m.raw(section.HTML)
 	}
-	m.section(o.ID, "trials", o.Trials)
-	m.section(o.ID, "accrual", o.Accrual)
-	m.section(o.ID, "rests", o.Rests)
-	m.panel(o.Panel)
-	m.section(o.ID, "other", o.Other)
-	m.section(o.ID, "posterior", o.Posterior)
-	m.section(o.ID, "small", o.Small)
-	m.studyData(o.ID, o.Data)
 }
 
-// answer writes the answer in words for three readers, and the key numbers.
+// sections returns the sections of an outcome, each as a whole element.
+func (o *outcomeView) sections() []Section {
+	var all []Section
+	add := func(name string, write func(m *markup)) {
+		var m markup
+		if write(&m); m.Len() > 0 {
+			all = append(all, Section{ID: o.ID + "-" + name, HTML: m.String()})
+		}
+	}
+	add("answer", func(m *markup) { m.answer(o) })
+	add("trials", func(m *markup) { m.section(o.ID, "trials", o.Trials) })
+	add("accrual", func(m *markup) { m.section(o.ID, "accrual", o.Accrual) })
+	add("rests", func(m *markup) { m.section(o.ID, "rests", o.Rests) })
+	add("panel", func(m *markup) { m.panel(o.Panel) })
+	add("other", func(m *markup) { m.section(o.ID, "other", o.Other) })
+	add("posterior", func(m *markup) { m.section(o.ID, "posterior", o.Posterior) })
+	add("small", func(m *markup) { m.section(o.ID, "small", o.Small) })
+	add("data", func(m *markup) { m.studyData(o.ID, o.Data) })
+	return all
+}
+
+// answer writes the answer in words for three readers, and the key numbers; or why there
+// is none.
 func (m *markup) answer(o *outcomeView) {
 	a := o.Answer
 	m.open("section", "id", o.ID+"-answer", "aria-labelledby", o.ID+"-h")
 	m.raw("\n")
 	m.element("h2", o.Name, "id", o.ID+"-h")
+	if a == nil {
+		m.element("p", "No result: "+o.Problem)
+		m.raw("</section>\n")
+		return
+	}
 	m.raw("\n<div class=\"readers\">\n<article><h3>For the reviewer</h3>\n")
 	m.paragraphs(a.Reviewer)
 	m.raw("</article>\n<article><h3>For the panel</h3>\n")

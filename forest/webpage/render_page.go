@@ -20,6 +20,9 @@ func (m *markup) page(v *view) {
 	m.raw("\n")
 	m.element("h1", v.Title, "id", "h-answer")
 	m.raw("\n")
+	if v.Live != nil {
+		m.raw("<p class=\"left\" id=\"whatif-status\" role=\"status\" hidden></p>\n")
+	}
 	for _, o := range v.Outcomes {
 		m.opening(o, v.One)
 	}
@@ -31,7 +34,11 @@ func (m *markup) page(v *view) {
 		m.raw("</div>\n")
 	}
 	m.back(v)
-	m.raw("\n</main>\n</div>\n<footer><p>Decision support only: qualified methodologists, clinicians and local procedures come first. Results depend on the sheet and hold as of the search date.</p></footer>\n</div>\n<script type=\"application/json\" id=\"data\">", v.Data, "</script>\n<script>", v.Script, "</script>\n</body>\n</html>\n")
+	m.raw("\n</main>\n</div>\n<footer><p>Decision support only: qualified methodologists, clinicians and local procedures come first. Results depend on the sheet and hold as of the search date.</p></footer>\n</div>\n<script type=\"application/json\" id=\"data\">", v.Data, "</script>\n")
+	if v.Live != nil {
+		m.raw("<script type=\"application/json\" id=\"sheet\">", v.Sheet, "</script>\n<script type=\"text/plain\" id=\"worker\">", v.Live.Worker, "</script>\n<script type=\"text/plain\" id=\"engine\">", v.Live.Code, "</script>\n")
+	}
+	m.raw("<script>", v.Script, "</script>\n</body>\n</html>\n")
 }
 
 // contents writes the table of contents.
@@ -93,7 +100,9 @@ func (m *markup) opening(o *outcomeView, one bool) {
 		m.element("a", o.Name, "href", "#"+o.ID)
 		m.raw("</h2>\n")
 	}
+	m.open("div", "id", o.ID+"-lead")
 	m.lead(o)
+	m.raw("</div>\n")
 	if !one {
 		m.raw("</article>\n")
 	}
@@ -188,9 +197,16 @@ func (m *markup) findings(f *findingsView) {
 	m.raw("\n</section>\n")
 }
 
-// methods writes the methods of an outcome and its settings.
+// methods writes the methods of an outcome under its name.
 func (m *markup) methods(v *methodsView, one bool) {
 	m.element("h3", v.Name, "class", when(one, "vh"))
+	m.raw("\n", v.section().HTML)
+}
+
+// section returns the methods of an outcome and its settings, as a whole element.
+func (v *methodsView) section() Section {
+	var m markup
+	m.open("div", "id", v.ID+"-methods")
 	m.raw("\n<div class=\"methods\">")
 	m.paragraphs(v.Paragraphs)
 	m.raw("</div>\n<details class=\"more\"><summary>Settings and where each came from</summary>")
@@ -206,5 +222,6 @@ func (m *markup) methods(v *methodsView, one bool) {
 		m.element("td", s.Reason)
 		m.raw("</tr>\n")
 	}
-	m.raw("</tbody></table></div></details>\n")
+	m.raw("</tbody></table></div></details>\n</div>\n")
+	return Section{ID: v.ID + "-methods", HTML: m.String()}
 }

@@ -11,6 +11,21 @@ import (
 	"steelyard/meta/synthesis"
 )
 
+// Options say how the page is written.
+type Options struct {
+	Version string            // of the program
+	Change  *synthesis.Change // what differs from an earlier state; nil: not wanted
+	Live    *Live             // what lets the page compute changed analyses; nil writes a page that stays as it is
+}
+
+// Live is what a page needs to compute changed analyses by itself.
+type Live struct {
+	Code   string // the engine, packed as text without < or &
+	Worker string // script of the worker that unpacks and asks it
+	Script string // what joins the page's own script
+	Sheet  []byte // JSON of the sheet as it was read and of the plan: members "version", "extraction" and "plan"
+}
+
 // view is what the page shows; all its texts are plain, and escaped where they are
 // written.
 type view struct {
@@ -26,12 +41,22 @@ type view struct {
 	Cautions []string
 	Record   recordView
 
+	drawn
+}
+
+// drawn is what grows while outcomes are laid out.
+type drawn struct {
 	data      Data
 	positions positions
 	figures   int // numbered so far
 	tables    int
 	spans     map[string]float64 // of the beams, in steps, by outcome
 	baselines map[string]baselineStopsOf
+	places    []Place
+}
+
+func newDrawn() drawn {
+	return drawn{positions: positions{}, spans: map[string]float64{}, baselines: map[string]baselineStopsOf{}}
 }
 
 // frame is what finish fills in.
@@ -40,6 +65,8 @@ type frame struct {
 	Style  string
 	Script string
 	Data   string // JSON
+	Sheet  string // JSON for the engine
+	Live   *Live
 }
 
 func newView(s *synthesis.Synthesis, options Options) (*view, error) {
@@ -47,15 +74,16 @@ func newView(s *synthesis.Synthesis, options Options) (*view, error) {
 		Title: "What did the " + words.Noun(s, 2) + " find?", Kicker: kicker(s), One: len(s.Outcomes) == 1,
 		Findings: findingsOf(s), Cautions: pageCautions(s), Record: recordOf(s, options),
 	}
-	v.positions, v.spans = positions{}, map[string]float64{}
-	v.baselines = map[string]baselineStopsOf{}
+	v.drawn, v.Live = newDrawn(), options.Live
 	for i := range s.Outcomes {
-		o, err := v.outcome(s, i)
+		at := Place{Outcome: s.Outcomes[i].Name, ID: fmt.Sprintf("o%d", i+1), Figures: v.figures, Tables: v.tables}
+		v.places = append(v.places, at)
+		o, err := v.outcome(s, i, at.ID)
 		if err != nil {
 			return nil, err
 		}
 		v.Outcomes = append(v.Outcomes, o)
-		v.Methods = append(v.Methods, methodsOf(s, &s.Outcomes[i]))
+		v.Methods = append(v.Methods, methodsOf(s, &s.Outcomes[i], at.ID))
 	}
 	v.Eligible, v.Changes = v.eligible(s), v.changes(options.Change)
 	if v.One {

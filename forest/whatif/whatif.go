@@ -6,6 +6,9 @@ package whatif
 import (
 	"embed"
 	"fmt"
+	"io/fs"
+	"path"
+	"strings"
 )
 
 //go:embed built script/*.js
@@ -15,6 +18,7 @@ var files embed.FS
 type Engine struct {
 	Code   string // the WebAssembly, packed by LZMA and written in base 85
 	Worker string // the script of the worker that unpacks, starts and asks it
+	Script string // what joins the script of the page: all other files, start.js last
 }
 
 // Packed returns the engine; ok is false in a program that was built without it.
@@ -24,7 +28,25 @@ func Packed() (engine Engine, ok bool) {
 	if err != nil || errStart != nil {
 		return Engine{}, false
 	}
-	return Engine{Code: string(code), Worker: string(start) + script("unpack.js") + script("worker.js")}, true
+	return Engine{Code: string(code), Worker: string(start) + script("unpack.js") + script("worker.js"), Script: pageScript()}, true
+}
+
+// pageScript joins the files of the script that are not the worker's: they declare in any
+// order, and start.js, the last, begins.
+func pageScript() string {
+	names, err := fs.Glob(files, "script/*.js")
+	if err != nil {
+		panic(err) // a slip in the pattern
+	}
+	var out strings.Builder
+	for _, name := range names {
+		switch name = path.Base(name); name {
+		case "unpack.js", "worker.js", "start.js":
+		default:
+			out.WriteString(script(name))
+		}
+	}
+	return out.String() + script("start.js")
 }
 
 // script returns a file of the script; each is embedded, so that it is there.

@@ -1,5 +1,6 @@
 /** Moves an outcome's sliders of beliefs, the beam and the texts to a stop. */
 function showPrior(outcome, stop) {
+  outcome.priorAt = stop;
   const root = document.getElementById(outcome.id);
   const q = outcome.priors[stop];
   all('input[data-control=prior]', root).forEach((e) => {
@@ -14,10 +15,3 @@ function showPrior(outcome, stop) {
     mark.classList.toggle('off', x < 0.025 || x > 0.975);
   });
 }
-
-data.outcomes.filter((outcome) => outcome.priors.length).forEach((outcome) => {
-  all('input[data-control=prior]', document.getElementById(outcome.id)).forEach((e) => {
-    e.addEventListener('input', () => showPrior(outcome, +e.value));
-  });
-  showPrior(outcome, outcome.prior);
-});

@@ -1,5 +1,6 @@
 /** Moves an outcome's slider of baseline risks, with all that follows from it, to a stop. */
 function showBaseline(outcome, stop) {
+  outcome.baselineAt = stop;
   const root = document.getElementById(outcome.id);
   const q = outcome.baselines[stop];
   all('input[data-control=baseline]', root).forEach((e) => {
@@ -13,10 +14,3 @@ function showBaseline(outcome, stop) {
     bar.style.width = `${to === undefined ? from : to - from}%`;
   });
 }
-
-data.outcomes.filter((outcome) => outcome.baselines).forEach((outcome) => {
-  all('input[data-control=baseline]', document.getElementById(outcome.id)).forEach((e) => {
-    e.addEventListener('input', () => showBaseline(outcome, +e.value));
-  });
-  showBaseline(outcome, outcome.baseline);
-});

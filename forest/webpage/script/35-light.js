@@ -1,10 +1,14 @@
 /** Elements of each study, by its mark: its row in the table and its rows in charts. */
 const studies = new Map();
 
+/** Whether rows of charts that are shown may not be bound yet. */
+let chartsWait = true;
+
 const NS = 'http://www.w3.org/2000/svg';
 
 /** Adds or takes away a class of all elements of a study. */
 function markStudy(study, name, on) {
+  bindCharts();
   (studies.get(study) || []).forEach((e) => e.classList.toggle(name, on));
 }
 
@@ -33,18 +37,26 @@ function bindRow(study, group) {
 
 /** Binds the rows of the charts that are shown; hidden ones have no box yet. */
 function bindCharts() {
+  if (!chartsWait) return;
+  chartsWait = false;
   data.outcomes.forEach((outcome) => Object.keys(outcome.rows).forEach((chart) => {
-    outcome.rows[chart].forEach((study, i) => ['w', 'n'].forEach((form) => {
-      const figure = document.getElementById(`${outcome.id}-${chart}`);
-      const group = figure && figure.querySelector(`[id^="${outcome.id}-${chart}-${form}"][id$="-row-${i + 1}"]`);
-      if (group && !group.dataset.bound && group.getBoundingClientRect().height > 0) {
+    const figure = document.getElementById(`${outcome.id}-${chart}`);
+    all('g[id*="-row-"]', figure || document.createElement('p')).forEach((group) => {
+      const study = outcome.rows[chart][group.id.split('-row-')[1] - 1];
+      if (study && !group.dataset.bound && group.getBoundingClientRect().height > 0) {
         group.dataset.bound = 'yes';
         bindRow(study, group);
       }
-    }));
+    });
   }));
 }
 
-all('[data-study]').forEach((row) => bindStudy(row.dataset.study, row));
-bindCharts();
-addEventListener('resize', bindCharts);
+/** Binds what shows studies within a root. Rows of charts wait until they are needed. */
+function bindStudies(root) {
+  studies.forEach((elements, study) => studies.set(study, elements.filter((e) => e.isConnected)));
+  all('[data-study]', root).forEach((row) => bindStudy(row.dataset.study, row));
+  chartsWait = true;
+}
+
+document.addEventListener('pointerover', (event) => { if (chartsWait && event.target.closest('figure')) bindCharts(); });
+addEventListener('resize', () => { chartsWait = true; });

@@ -10,8 +10,7 @@ function makeSortable(table) {
 }
 
 /** Sorts the rows of a table by a column, up at first, then down. */
-function sortBy(table, head) {
-  const up = head.getAttribute('aria-sort') !== 'ascending';
+function sortBy(table, head, up = head.getAttribute('aria-sort') !== 'ascending') {
   all('thead th', table).forEach((h) => h.removeAttribute('aria-sort'));
   head.setAttribute('aria-sort', up ? 'ascending' : 'descending');
   const body = table.tBodies[0];
@@ -42,7 +41,14 @@ function makeFilter(controls) {
     controls.querySelector('output').textContent = `${rows.filter((row) => !row.hidden).length} of ${rows.length} rows`;
   };
   inputs.forEach((input) => input.addEventListener('input', apply));
+  if (inputs.some((input) => input.value)) apply();
 }
 
-all('table.sort').forEach(makeSortable);
-all('.filter').forEach(makeFilter);
+/** Binds the tables within a root; they come as they were sorted and filtered. */
+function bindTables(root) {
+  all('table.sort', root).forEach((table) => {
+    makeSortable(table);
+    all('th[data-sorted]', table).forEach((head) => sortBy(table, head, head.dataset.sorted === 'ascending'));
+  });
+  all('.filter', root).forEach(makeFilter);
+}

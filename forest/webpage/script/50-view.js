@@ -1,13 +1,13 @@
-const root = document.documentElement;
+const page = document.documentElement;
 const theme = document.getElementById('theme');
 
 /** Whether the page is dark now. */
-const dark = () => (root.dataset.theme ? root.dataset.theme === 'dark' : matchMedia('(prefers-color-scheme: dark)').matches);
+const dark = () => (page.dataset.theme ? page.dataset.theme === 'dark' : matchMedia('(prefers-color-scheme: dark)').matches);
 
 const nameTheme = () => { theme.textContent = dark() ? 'Light page' : 'Dark page'; };
 
 theme.addEventListener('click', () => {
-  root.dataset.theme = dark() ? 'light' : 'dark';
+  page.dataset.theme = dark() ? 'light' : 'dark';
   nameTheme();
 });
 nameTheme();

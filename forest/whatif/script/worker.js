@@ -5,7 +5,7 @@
  * The worker behind a report page: it unpacks and starts the engine, hands it the page's
  * data, and answers one change after another. What it is sent and what it sends:
  *   {open: {code, data}} → {ready: true} or {broken: why}
- *   {ask: change, id}    → {id, reply} with the reply's JSON as text
+ *   {ask: change, id}    → {id, reply} with the reply's JSON as text, or {broken: why}
  * The two functions are set by the engine itself.
  * @type {any}
  */
@@ -16,21 +16,21 @@ async function start(page) {
   const go = new scope.Go();
   const code = /** @type {Uint8Array<ArrayBuffer>} */ (unpack(fromText(page.code)));
   const instance = await WebAssembly.instantiate(await WebAssembly.compile(code), go.importObject);
-  go.run(instance); // runs on: it waits for questions
+  go.run(instance).then(() => scope.postMessage({ broken: "the engine ended" })); // it runs on, and waits for questions
   const problem = scope.steelyardOpen(page.data);
   if (problem) throw new Error(problem);
 }
 
 scope.onmessage = async (/** @type {MessageEvent} */ message) => {
   const { open, ask, id } = message.data;
-  if (open) {
-    try {
+  try {
+    if (open) {
       await start(open);
       scope.postMessage({ ready: true });
-    } catch (error) {
-      scope.postMessage({ broken: error instanceof Error ? error.message : String(error) });
+    } else {
+      scope.postMessage({ id, reply: scope.steelyardAnswer(JSON.stringify(ask)) });
     }
-    return;
+  } catch (error) {
+    scope.postMessage({ broken: error instanceof Error ? error.message : String(error) });
   }
-  scope.postMessage({ id, reply: scope.steelyardAnswer(JSON.stringify(ask)) });
 };

@@ -1,0 +1,51 @@
+package webpage
+
+import (
+	"steelyard/meta/synthesis"
+)
+
+// Place is where an outcome stands on the page: the prefix of its elements' ids, and how
+// many figures and tables are numbered before its own.
+type Place struct {
+	Outcome string `json:"name"` // as the sheet spells it
+	ID      string `json:"id"`
+	Figures int    `json:"figures"`
+	Tables  int    `json:"tables"`
+}
+
+// Section is a whole element of the page, with its id.
+type Section struct {
+	ID   string `json:"id"`
+	HTML string `json:"html"`
+}
+
+// Part is an outcome's share of the page.
+type Part struct {
+	Lead     string      // HTML of the sentence with which the page opens for it, for the element with id "…-lead"
+	Sections []Section   // in the order of the page, its methods last
+	CSS      string      // rules for the places in them
+	Data     OutcomeData // for the page's script
+}
+
+// PartOf writes an outcome's share of the page: the same as Page writes for it if it
+// stands at that place.
+func PartOf(s *synthesis.Synthesis, i int, at Place) (Part, error) {
+	v := &view{drawn: newDrawn()}
+	v.figures, v.tables = at.Figures, at.Tables
+	o, err := v.outcome(s, i, at.ID)
+	if err != nil {
+		return Part{}, err
+	}
+	var lead markup
+	lead.lead(o)
+	methods := methodsOf(s, &s.Outcomes[i], at.ID)
+	return Part{Lead: lead.String(), Sections: append(o.sections(), methods.section()), CSS: v.positions.css(), Data: v.data.Outcomes[0]}, nil
+}
+
+// Wanted returns the parts of a synthesis that the page shows.
+func Wanted() synthesis.Want {
+	return synthesis.Want{
+		Cumulative: true, LeaveOneOut: true, Beliefs: true, Runs: true,
+		Further: synthesis.Further{Panel: &synthesis.PanelWanted{}, SmallStudy: &synthesis.SmallStudyWanted{}, Posterior: true},
+	}
+}
