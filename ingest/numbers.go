@@ -103,7 +103,7 @@ func (t *tableReader) decide(c *numberColumn, texts []string, rows []int) {
 	switch {
 	case errors.As(err, &mixed):
 		c.unclear = map[int]doubt{}
-		message := fmt.Sprintf("the column marks decimals by points in %d cells (such as %s) and by commas in %d (such as %s), so none of them can be read safely; use one mark throughout",
+		message := fmt.Sprintf("the column marks decimals by points in some cells (%d, such as %s) and by commas in others (%d, such as %s), so none of them can be read safely; use one mark throughout",
 			len(mixed.Points), quote(mixed.PointExample), len(mixed.Commas), quote(mixed.CommaExample))
 		for _, list := range [][]int{mixed.Points, mixed.Commas} {
 			for _, i := range list {

@@ -3,6 +3,7 @@ package rules_test
 import (
 	"context"
 	"fmt"
+	"math"
 	"math/rand/v2"
 	"strings"
 	"testing"
@@ -216,4 +217,30 @@ func ExampleCheck() {
 		fmt.Println(f.Severity, f.Rule, f.Place.Cell(), x.Studies[0].Measure == effect.OddsRatio)
 	}
 	// Output: error I2 B2 true
+}
+
+// TestReadingOfBothArms wants the reading of M3.csv to take the standard errors of both
+// arms as SDs; one arm alone would leave the row almost no weight. The standard error of
+// a difference of means is √(sd₁²/n₁ + sd₂²/n₂).
+func TestReadingOfBothArms(t *testing.T) {
+	wrong := run(t, "M3.csv")
+	if len(wrong.Readings) != 2 {
+		t.Fatalf("%d readings, want 2", len(wrong.Readings))
+	}
+	want := math.Sqrt(6.6*6.6/61 + 6.2*6.2/63)
+	if got := wrong.Readings[1].Outcome.Studies[1].Estimate.SE; !within(got, want, 1e-12) {
+		t.Errorf("the row's standard error with both taken as SDs: %v, want %v", got, want)
+	}
+}
+
+// TestLevelHasNoReading: limits that another number of the row shows to be of another
+// level are not what the row is pooled by, so no answer is offered for them.
+func TestLevelHasNoReading(t *testing.T) {
+	s := run(t, "I6.csv")
+	for _, f := range s.Findings {
+		if f.Rule == "I6" && len(f.Readings) == 0 && strings.Contains(f.Message, "pooled by its standard error") {
+			return
+		}
+	}
+	t.Errorf("no finding I6 that says what the row is pooled by: %v", s.Findings)
 }

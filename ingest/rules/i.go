@@ -148,22 +148,23 @@ func (c *checker) scaleOfError(r *row, a *result) {
 	if !ok || near(a.se.Value, s, differs) || !near(a.se.Value, a.estimate.Value*s, fits) {
 		return
 	}
-	c.add(r, review.Error, "I5", review.StandardError, fmt.Sprintf("%s is the standard error of the ratio %s, but that of its logarithm is needed, for which %s %s", typed(*a.se), typed(*a.estimate), by, shown(s)),
+	c.add(r, review.Error, "I5", review.StandardError, fmt.Sprintf("%s is the standard error of the ratio %s, but that of its logarithm is needed, for which %s %s; enter that", typed(*a.se), typed(*a.estimate), by, shown(s)),
 		r.asEntered(review.StandardError), r.with("that of the logarithm", fieldValue{review.StandardError, s}))
 }
 
-// level reports limits of another level than stated (I6).
+// level reports limits of another level than stated (I6). It has no readings: the
+// other numbers that show the level are those that the row is pooled by.
 func (c *checker) level(r *row, a *result) {
 	const within = 0.03
 	half, ok := a.width()
 	if !ok {
 		return
 	}
-	s, by := 0.0, "the standard error"
+	s, by, pooledBy := 0.0, "the standard error", "its standard error"
 	if a.se != nil {
 		s = a.se.Value
 	} else if s, ok = r.expectedSE(); ok {
-		by = "the standard error that the row's numbers give"
+		by, pooledBy = "the standard error that the row's numbers give", "those numbers"
 	}
 	if !(s > 0) || !(0 < a.level && a.level < 1) {
 		return
@@ -177,8 +178,7 @@ func (c *checker) level(r *row, a *result) {
 	}
 	for _, other := range []struct{ times, level float64 }{{1.645, 0.9}, {2.576, 0.99}, {1.282, 0.8}, {1.95996, 0.95}} {
 		if near(times, other.times, within) && other.level != a.level {
-			c.add(r, review.Warning, "I6", a.low.Field, fmt.Sprintf("the limits lie %s times %s from the middle, as those of a %.0f%% interval do, not of a %s%% one; check the level and write it under ci level", shown(times), by, 100*other.level, shown(100*a.level)),
-				r.asEntered(a.low.Field), r.with(fmt.Sprintf("at a level of %g", other.level), fieldValue{review.LimitLevel, other.level}))
+			c.add(r, review.Warning, "I6", a.low.Field, fmt.Sprintf("the limits lie %s times %s from the middle, as those of a %.0f%% interval do, not of a %s%% one; check the level and write it under ci level (the row is pooled by %s, whatever the level)", shown(times), by, 100*other.level, shown(100*a.level), pooledBy))
 			return
 		}
 	}

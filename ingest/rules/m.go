@@ -167,9 +167,13 @@ func (c *checker) wholeItems(r *row) {
 		if math.Abs(nearest-mean.Value) <= h+1e-12 {
 			continue
 		}
+		asked := shown(items) + " items"
+		if items == 1 {
+			asked = "1 item"
+		}
 		below, above := math.Floor(mean.Value*n*items)/(n*items), math.Ceil(mean.Value*n*items)/(n*items)
-		c.add(r, review.Warning, "M7", a.mean, fmt.Sprintf("no whole answers of %s people to %s items have a mean of %s; the nearest means are %.*f and %.*f: check the mean, the number of people and of items",
-			shown(n), shown(items), typed(mean), decimals(mean)+1, below, decimals(mean)+1, above))
+		c.add(r, review.Warning, "M7", a.mean, fmt.Sprintf("no whole answers of %s people to %s have a mean of %s; the nearest means are %.*f and %.*f: check the mean, the number of people and of items",
+			shown(n), asked, typed(mean), decimals(mean)+1, below, decimals(mean)+1, above))
 		return
 	}
 }

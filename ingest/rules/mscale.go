@@ -93,18 +93,27 @@ func (c *checker) rangeAsDeviation(r *row) {
 }
 
 // deviationForError reports an SD in the column of a standard error (M3): times the
-// root of n it is more than three times the median SD, and itself near that.
+// root of n it is more than three times the median SD, and itself near that. Its
+// reading takes every such arm of the row as an SD, since both come from one report.
 func (c *checker) deviationForError(r *row, center float64) {
 	const times, within = 3, 1.5
+	var message string
+	var fields []review.Field
+	var values []fieldValue
 	for _, a := range arms {
 		se, ok := r.number(a.se)
 		n := r.value(a.total)
 		if !ok || n < 2 || se.Value*math.Sqrt(n) <= times*center || se.Value > within*center || se.Value < center/within {
 			continue
 		}
-		c.add(r, review.Warning, "M3", a.se, fmt.Sprintf("a standard error of %s would mean an SD of %s, where the other studies have a median of %s; is it the SD?", typed(se), shown(se.Value*math.Sqrt(n)), shown(center)),
-			r.asEntered(a.se), r.with("as the SD", fieldValue{a.se, se.Value / math.Sqrt(n)}))
-		return
+		if message == "" {
+			message = fmt.Sprintf("a standard error of %s would mean an SD of %s, where the other studies have a median of %s; is it the SD?", typed(se), shown(se.Value*math.Sqrt(n)), shown(center))
+		}
+		fields = append(fields, a.se)
+		values = append(values, fieldValue{a.se, se.Value / math.Sqrt(n)})
+	}
+	if len(fields) > 0 {
+		c.add(r, review.Warning, "M3", fields[0], message, r.asEntered(fields...), r.with("as the SD", values...))
 	}
 }
 

@@ -141,8 +141,8 @@ func (e *examination) repeats() {
 	if len(groups) > most {
 		names = append(names, "…")
 	}
-	e.find(review.Warning, "D5", fmt.Sprintf("%d of the %d estimates are from %s that give several (%s), and are pooled as if each were a study of its own, which makes the result look too sure: pool them with --dependence three-level or robust, or keep one for each study",
-		rows, len(e.o.Studies), map[bool]string{true: "a study", false: fmt.Sprintf("%d studies", len(groups))}[len(groups) == 1], strings.Join(names, "; ")))
+	e.find(review.Warning, "D5", fmt.Sprintf("%d of the %d estimates are from %s (%s), and are pooled as if each were a study of its own, which makes the result look too sure: pool them with --dependence three-level or robust, or keep one for each study",
+		rows, len(e.o.Studies), map[bool]string{true: "a study that gives several", false: fmt.Sprintf("%d studies that give several", len(groups))}[len(groups) == 1], strings.Join(names, "; ")))
 }
 
 // DependenceDocument says how several estimates from one study were allowed for;
