@@ -23,6 +23,7 @@ type outcomeView struct {
 	Posterior *sectionView
 	Small     *sectionView
 	Data      *tableView
+	WhatIf    *whatIfView // what can be changed; nil on a page that only shows
 }
 
 // leftOutView is a row that was not pooled.
@@ -37,6 +38,7 @@ type answerView struct {
 	Keys                                           []keyView
 	Beliefs                                        *beliefsView
 	Remarks                                        []string
+	Facts                                          []string // attributes: what is set beside a changed analysis
 }
 
 // keyView is one of the key numbers.
@@ -69,6 +71,9 @@ func (v *view) outcome(s *synthesis.Synthesis, i int, id string) (*outcomeView, 
 	}
 	w.Problem = ""
 	w.Answer = v.answer(s, o, w.ID)
+	if v.Live != nil {
+		w.WhatIf = whatIf(s, o)
+	}
 	var err error
 	if w.Trials, err = v.trials(s, o, w.ID); err != nil {
 		return nil, err
@@ -103,7 +108,7 @@ func (v *view) answer(s *synthesis.Synthesis, o *synthesis.Outcome, id string) *
 		Interval: words.MeanInterval(o), Direction: words.Direction(o),
 		Reviewer: keep(words.ModelShort(o), words.SpreadSentence(s, o), words.LeaveOneOutSentence(s, o)),
 		Living:   keep(words.LatestArrival(o), words.BeforeLatest(o), words.CumulativeSentence(o)),
-		Remarks:  remarks(o),
+		Remarks:  remarks(o), Facts: whatIfFacts(s, o, id),
 	}
 	a.Keys = append(a.Keys, keyView{Name: words.Capital(a.Measure), Value: a.Estimate, About: []string{a.Interval}})
 	if fit.Prediction != nil {

@@ -2,8 +2,11 @@ package webpage
 
 // outcome writes all sections of an outcome.
 func (m *markup) outcome(o *outcomeView) {
-	for _, section := range o.sections() {
+	for i, section := range o.sections() {
 		m.raw(section.HTML)
+		if i == 0 {
+			m.whatIf(o.ID, o.WhatIf)
+		}
 	}
 }
 
@@ -40,6 +43,7 @@ func (m *markup) answer(o *outcomeView) {
 		m.raw("</section>\n")
 		return
 	}
+	m.element("span", "", a.Facts...)
 	m.raw("\n<div class=\"readers\">\n<article><h3>For the reviewer</h3>\n")
 	m.paragraphs(a.Reviewer)
 	m.raw("</article>\n<article><h3>For the panel</h3>\n")

@@ -1,0 +1,169 @@
+// @ts-check
+"use strict";
+
+/** Everything that changes one outcome: its controls, its banner, and what was looked at. */
+class Desk {
+  /** @param {HTMLElement} section the controls that the program wrote */
+  constructor(section) {
+    this.section = section;
+    this.id = section.dataset.whatif ?? "";
+    this.controls = new Controls(section, () => this.go(this.controls.read()));
+    this.looks = new Looks(planned(this.controls.outcome));
+    this.planned = factsOf(this.id);
+    /** @type {Map<string, Facts | null>} the answer of each variant looked at */
+    this.answers = new Map();
+    /** @type {Reply} */
+    this.reply = {};
+    this.rows = new Rows(this.id, this.controls.known, (row) => this.controls.toggle(row));
+    const acts = { undo: () => this.undo(), redo: () => this.redo(), plan: () => this.plan(), show: (/** @type {Variant} */ v) => this.go(v) };
+    this.banner = new Banner(section, this.id, acts);
+    this.export = new Export(section, this.id, {
+      json: () => JSON.stringify(exported(this.look(this.looks.now), this.planned, this.looks.log.map((v) => this.look(v)), this.reply), null, 2) + "\n",
+      link: () => linkTo(desks.map((d) => d.looks.now)),
+      command: () => this.reply.command ?? "",
+      notes: () => this.notes(),
+      say: (text) => this.banner.announce(text),
+    });
+    this.section.hidden = false;
+    this.rows.attach(pageOutcome(this.id).studies, []);
+    this.show();
+  }
+
+  /** @param {Variant} v @returns {Look} */
+  look(v) {
+    return { variant: v, words: differencesOf(v, this.controls.known), facts: isPlanned(v) ? this.planned : this.answers.get(JSON.stringify(v)) ?? null };
+  }
+
+  /** Lines for a figure of its own. */
+  notes() {
+    const words = this.look(this.looks.now).words;
+    if (words.length === 0) return [];
+    return [`What if, not the plan: ${words.join("; ")}. ${this.looks.log.length} variants were looked at.`];
+  }
+
+  /**
+   * Shows a variant; taken over only once it has an answer.
+   * @param {Variant} v
+   * @param {() => void} [take]
+   */
+  async go(v, take = () => void this.looks.change(v)) {
+    current = this;
+    const spot = spotNow();
+    const from = document.activeElement;
+    this.section.setAttribute("aria-busy", "true");
+    /** @type {Reply | null} */
+    let reply;
+    try {
+      reply = await whatIf.ask(this.id, v);
+    } catch (error) {
+      reply = { problem: error instanceof Error ? error.message : String(error) };
+    }
+    this.section.removeAttribute("aria-busy");
+    if (reply === null) return; // a later change overtook this one
+    if (!reply.document) {
+      const kept = this.looks.now;
+      if (from?.closest(".whatif") !== this.section || !(from instanceof HTMLInputElement)) this.controls.show(kept);
+      this.controls.refuse(reply.problem ?? "the change cannot be made", from);
+      return;
+    }
+    take();
+    this.reply = reply;
+    this.answers.set(JSON.stringify(this.looks.now), factsOf(this.id));
+    this.rows.attach(reply.data?.studies ?? [], this.looks.now.left_out);
+    this.show();
+    returnTo(spot, this.id);
+    this.tell();
+  }
+
+  /** Brings controls, banner, export and the page's address to what is shown. */
+  show() {
+    const look = this.look(this.looks.now);
+    this.controls.show(this.looks.now);
+    this.banner.show(look, this.planned, this.looks.log.map((v) => this.look(v)), { undo: this.looks.past.length > 0, redo: this.looks.future.length > 0 });
+    this.export.show();
+  }
+
+  tell() {
+    const { words, facts } = this.look(this.looks.now);
+    this.banner.announce(`${words.length === 0 ? "Back at the plan." : `Not the plan: ${changesText(words.length)}.`} ${inShort(words.length === 0 ? null : this.planned, facts)}`);
+    try {
+      history.replaceState(null, "", linkTo(desks.map((d) => d.looks.now)));
+    } catch {
+      // some browsers keep the address of a file as it is; the link can still be copied
+    }
+  }
+
+  undo() {
+    const before = this.looks.past.at(-1);
+    if (before !== undefined) this.go(before, () => void this.looks.undo());
+  }
+
+  redo() {
+    const after = this.looks.future.at(-1);
+    if (after !== undefined) this.go(after, () => void this.looks.redo());
+  }
+
+  plan() {
+    if (!isPlanned(this.looks.now)) this.go(planned(this.controls.outcome));
+  }
+
+  /** The engine cannot answer: the page stays as it is. */
+  close() {
+    this.section.hidden = true;
+    this.rows.detach();
+  }
+}
+
+/** The outcomes of the page that can be changed. @type {Desk[]} */
+let desks = [];
+
+/** The one changed last, for the keys. @type {Desk | null} */
+let current = null;
+
+/**
+ * The texts of an outcome's answer as it stands on the page; null where there is none.
+ * @param {string} id
+ * @returns {Facts | null}
+ */
+function factsOf(id) {
+  const place = document.querySelector(`#${id} [data-facts]`);
+  return place instanceof HTMLElement ? /** @type {Facts} */ (/** @type {unknown} */ ({ ...place.dataset })) : null;
+}
+
+/** The page's address with variants behind it. @param {Variant[]} variants */
+function linkTo(variants) {
+  const fragment = toFragment(variants);
+  const address = location.href.split("#")[0];
+  return fragment === "" ? address : `${address}#${fragment}`;
+}
+
+/** Opens the controls of every outcome, in the state that the page's address names. */
+function openDesks() {
+  if (whatIf.broken) return;
+  desks = Array.from(document.querySelectorAll("[data-whatif]")).map((section) => new Desk(/** @type {HTMLElement} */ (section)));
+  document.addEventListener("whatif:broken", () => desks.forEach((desk) => desk.close()));
+  document.addEventListener("keydown", (event) => {
+    const act = actOf(event, isTyping(event.target));
+    const desk = deskOf(event.target);
+    if (act === "" || desk === null || event.defaultPrevented) return;
+    event.preventDefault();
+    desk[act]();
+  });
+  addEventListener("resize", () => desks.forEach((desk) => desk.rows.attachCharts()));
+  addEventListener("hashchange", openLink);
+  openLink();
+}
+
+/** Shows the variants of the page's address. */
+function openLink() {
+  for (const v of fromFragment(location.hash)) {
+    const desk = desks.find((d) => d.controls.outcome === v.outcome);
+    if (desk !== undefined && !sameVariant(desk.looks.now, v)) desk.go(v);
+  }
+}
+
+/** The outcome that a key is for: where it was pressed, else the last changed, else the first. @param {EventTarget | null} target */
+function deskOf(target) {
+  const place = target instanceof Element ? target.closest(".outcome") : null;
+  return desks.find((d) => d.id === place?.id) ?? current ?? desks[0] ?? null;
+}
