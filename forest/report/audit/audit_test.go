@@ -75,6 +75,12 @@ func written(t testing.TB, x *review.Extraction, settings map[string]string) ([]
 			t.Fatal(err)
 		}
 	}
+	return planned(t, x, plan)
+}
+
+// planned writes the workbook of an extraction under a plan.
+func planned(t testing.TB, x *review.Extraction, plan *review.Plan) ([]byte, *synthesis.Synthesis) {
+	t.Helper()
 	s, err := synthesis.Run(context.Background(), x, plan, Wanted())
 	if err != nil {
 		t.Fatal(err)

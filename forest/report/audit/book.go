@@ -142,7 +142,7 @@ func (s *sheet) text(col, row int, l look, text string) cell {
 	}
 	s.style(c, l)
 	s.hold(col, row, held{value: formula.Text(clean(text))})
-	if l.role == wrapped || l.role == head || l.role == headText {
+	if l.role == wrapped || l.role == head || l.role == headText || l.role == headSoft {
 		s.tall = append(s.tall, c)
 	}
 	return c

@@ -82,7 +82,7 @@ func (b *book) writePlan(s *synthesis.Synthesis) {
 			if v.From == review.FromSheet {
 				place = v.Place.String()
 			}
-			rows = append(rows, []string{name, setting.Name, text, v.From.String(), place, v.Reason})
+			rows = append(rows, []string{name, setting.Name, text, v.From.String(), place, v.Reason, v.Date.String()})
 		}
 	}
 	for _, run := range s.Plan.Runs {
@@ -92,10 +92,10 @@ func (b *book) writePlan(s *synthesis.Synthesis) {
 				changes = append(changes, setting+" = "+value)
 			}
 		}
-		rows = append(rows, []string{run.Outcome, "planned run: " + run.Name, strings.Join(changes, "; "), "sheet", run.Place.String(), ""})
+		rows = append(rows, []string{run.Outcome, "planned run: " + run.Name, strings.Join(changes, "; "), "sheet", run.Place.String(), "", ""})
 	}
-	b.list("plan", "Plan", "Every setting with its value and where it came from.", []string{"outcome", "setting", "value", "from", "place", "reason"},
-		[]float64{24, 26, 56, 9, 16, 50}, rows)
+	b.list("plan", "Plan", "Every setting with its value and where it came from.", []string{"outcome", "setting", "value", "from", "place", "reason", "date"},
+		[]float64{24, 26, 56, 9, 16, 50, 12}, rows)
 }
 
 func settingNames() []string {

@@ -22,6 +22,7 @@ const (
 	section
 	head     // of a column of numbers
 	headText // of a column of texts
+	headSoft // of a column of soft texts
 	index    // a number that counts
 	wrapped
 	soft
@@ -87,9 +88,15 @@ func (l look) style() *excelize.Style {
 		s.Alignment.Horizontal = "center"
 	case section:
 		s.Font.Bold, s.Font.Size = true, 11
-	case head, headText:
+	case head, headText, headSoft:
 		s.Font.Bold = true
-		s.Alignment = &excelize.Alignment{Vertical: "bottom", Horizontal: map[role]string{head: "right", headText: "left"}[l.role], WrapText: true}
+		s.Alignment = &excelize.Alignment{Vertical: "bottom", Horizontal: "left", WrapText: true}
+		switch l.role {
+		case head:
+			s.Alignment.Horizontal = "right"
+		case headSoft:
+			s.Alignment.Indent = 1
+		}
 		s.Border = []excelize.Border{{Type: "bottom", Style: 2, Color: inkColour}}
 	case wrapped:
 		s.Alignment.WrapText = true

@@ -83,7 +83,7 @@ func (o *outcome) writeResult() {
 	s := o.open("result", "Result", words.Model(o.fit()))
 	l := &listing{o: o, s: s, row: 4}
 	for i, h := range []string{"", "analysis scale", "as read: " + words.Measure(o.o.Analysis.Measure), "formula and source"} {
-		s.text(i+1, 4, look{role: map[bool]role{true: headText, false: head}[i == 0 || i == 3]}, h)
+		s.text(i+1, 4, look{role: []role{headText, head, head, headSoft}[i]}, h)
 	}
 	l.interval()
 	l.prediction()

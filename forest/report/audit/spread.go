@@ -14,7 +14,7 @@ func (o *outcome) writeSpread() cell {
 	model := o.fit().Model
 	s := o.open("spread", "Spread between studies, τ²", "each estimator from the effects and their variances; the model's own is tinted. The steps are written out below.")
 	for i, h := range []string{"estimator", "τ²", "τ", "came to rest", "its equation misses by", "what that is"} {
-		s.text(i+1, 4, look{role: map[bool]role{true: headText, false: head}[i == 0 || i == 5]}, h)
+		s.text(i+1, 4, look{role: []role{headText, head, head, head, head, headSoft}[i]}, h)
 	}
 	list := estimators
 	if own := model.Tau; own != meta.DefaultTau && own != meta.RestrictedML && own != meta.PauleMandel && own != meta.DerSimonianLaird {

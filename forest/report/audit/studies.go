@@ -36,7 +36,7 @@ func (b *book) writeStudies(s *synthesis.Synthesis, x *review.Extraction) map[*r
 			said = "not asked for"
 		}
 		for j, text := range []string{study.Name, study.Date.String(), study.Outcome, study.Row.String(), said} {
-			sh.text(j+1, row, look{role: plain}, text)
+			sh.text(j+1, row, look{role: map[bool]role{true: wrapped}[j == len(heads)-1]}, text)
 		}
 		cells[study] = map[review.Field]cell{}
 		for j, f := range fields {

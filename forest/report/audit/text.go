@@ -1,6 +1,8 @@
 package audit
 
 import (
+	"maps"
+	"slices"
 	"strings"
 	"unicode"
 
@@ -104,11 +106,14 @@ func (s *sheet) finish(p page) {
 // lineHeight is the height of a line of text in points.
 const lineHeight = 13
 
+// letterShare is how many letters of running text stand, at the least, where a column's
+// width counts one digit of the usual size.
+const letterShare = 1.1
+
 // heighten gives rows of wrapped texts the height that these need, which programs do
 // not find out by themselves when they open a workbook.
 func (s *sheet) heighten(p page) {
 	lines := map[int]int{}
-	var rows []int
 	for _, c := range s.tall {
 		width := p.rest
 		if c.col <= len(p.widths) && p.widths[c.col-1] > 0 {
@@ -117,14 +122,12 @@ func (s *sheet) heighten(p page) {
 		if width == 0 {
 			width = 9
 		}
-		need := wrappedLines(s.get(c.col, c.row).Text, width)
-		if need > 1 && lines[c.row] == 0 {
-			rows = append(rows, c.row)
-		}
-		lines[c.row] = max(lines[c.row], need)
+		lines[c.row] = max(lines[c.row], wrappedLines(s.get(c.col, c.row).Text, letterShare*width))
 	}
-	for _, row := range rows {
-		s.book.do(s.book.f.SetRowHeight(s.name, row, min(400, float64(lineHeight*lines[row]+2))))
+	for _, row := range slices.Sorted(maps.Keys(lines)) {
+		if lines[row] > 1 {
+			s.book.do(s.book.f.SetRowHeight(s.name, row, min(400, float64(lineHeight*lines[row]+2))))
+		}
 	}
 }
 
