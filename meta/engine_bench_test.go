@@ -56,3 +56,30 @@ func BenchmarkManySets(b *testing.B) {
 		}
 	}
 }
+
+// BenchmarkBrief pools set after set by moments, without p-values.
+func BenchmarkBrief(b *testing.B) {
+	for _, k := range []int{10, 100} {
+		b.Run(fmt.Sprintf("k=%d", k), func(b *testing.B) {
+			n := 100_000 / k
+			y, s := manySets(n, k)
+			m := with(DerSimonianLaird, Wald)
+			var p Pooler
+			b.ReportAllocs()
+			sum, i := 0.0, 0
+			for b.Loop() {
+				from := i % n * k
+				brief, err := p.Brief(m, y[from:from+k], s[from:from+k])
+				if err != nil {
+					b.Fatal(err)
+				}
+				sum += brief.Estimate
+				i++
+			}
+			if math.IsNaN(sum) {
+				b.Fatal("not a number")
+			}
+			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(i*k), "ns/study")
+		})
+	}
+}

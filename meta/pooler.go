@@ -22,6 +22,9 @@ type Pooler struct {
 	answer answer  // about the mean
 
 	critical criticals
+
+	brief   quickModel
+	scratch [sumBlock]float64 // of quick
 }
 
 // answer is an inference about the mean in working units.

@@ -19,13 +19,13 @@ var models = map[string]meta.Model{
 	"likelihood": {Level: 0.95},
 }
 
-// pool pools all sets on one core.
+// pool pools all sets on one core. Like the peer it leaves the p-values out.
 func (d *sets) pool(method string) (pooled, error) {
 	var p meta.Pooler
 	var result pooled
 	m, start := models[method], cpuSeconds()
 	for from := 0; from < len(d.y); from += d.k {
-		mean, err := p.Pool(m, d.y[from:from+d.k], d.s[from:from+d.k])
+		mean, err := p.Brief(m, d.y[from:from+d.k], d.s[from:from+d.k])
 		if err != nil {
 			return result, err
 		}
