@@ -14,6 +14,7 @@ import (
 func (t *tableReader) readRows(ctx context.Context) error {
 	outcomes := map[string]string{}
 	outcomeUsed := t.columnUsed(t.role.outcome)
+	titled := false // the row above holds a single text
 	for i := range t.rows {
 		if i%4096 == 4095 && ctx.Err() != nil {
 			return grid.Interrupted(ctx, t.book.File)
@@ -21,7 +22,8 @@ func (t *tableReader) readRows(ctx context.Context) error {
 		row := &t.rows[i]
 		if t.looksLikeHeader(row) {
 			if t.repeatsHeader(row) {
-				t.find(review.Note, "F9", t.place(row.Number, 0, ""), "", "the header is repeated here; the row is skipped")
+				gap := i > 0 && row.Number > t.rows[i-1].Number+1
+				t.reportRepeat(row, !outcomeUsed && (gap || titled))
 				continue
 			}
 			t.refuseSecondTable(i)
@@ -37,6 +39,7 @@ func (t *tableReader) readRows(ctx context.Context) error {
 		if len(t.x.Findings) > maxFindings {
 			return t.tooManyFindings()
 		}
+		titled = t.loneText(row) != ""
 		row.Cells = nil // read: the room of its cells is needed for the studies
 	}
 	return nil

@@ -8,9 +8,13 @@ import (
 )
 
 // looksLikeHeader reports whether a row below the header is a header itself: at
-// least two of its number cells are words of a header and none is a number.
+// least two of its number cells are words of a header and none is a number; one is
+// enough where its name is that of a column of studies.
 func (t *tableReader) looksLikeHeader(row *grid.Row) bool {
-	words := 0
+	words, enough := 0, 2
+	if m, ok := recognise(headerText(row, t.role.name)); ok && m.field == review.StudyName {
+		enough = 1
+	}
 	for i := range t.numeric {
 		col := t.numeric[i].col
 		if col > len(row.Cells) || row.Cells[col-1].Kind == grid.Blank {
@@ -24,7 +28,17 @@ func (t *tableReader) looksLikeHeader(row *grid.Row) bool {
 			words++
 		}
 	}
-	return words >= 2
+	return words >= enough
+}
+
+// reportRepeat reports a row that repeats the header. Behind a gap or a title it may
+// head a table of another outcome, which nothing else would tell from the one above.
+func (t *tableReader) reportRepeat(row *grid.Row, parted bool) {
+	severity, message := review.Note, "the header is repeated here; the row is skipped"
+	if parted {
+		severity, message = review.Warning, "the header is repeated here below a gap, and the rows below it are read with those above as one table; if they are of another outcome, say so in a column outcome, or move them to another sheet"
+	}
+	t.find(severity, "F9", t.place(row.Number, 0, ""), "", message)
 }
 
 // headerWord reports whether a text is a word of a header: a field, a quantity or
