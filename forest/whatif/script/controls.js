@@ -5,7 +5,7 @@
 class Controls {
   /**
    * @param {HTMLElement} section
-   * @param {() => void} changed called when a reader has changed something
+   * @param {(at: Element | null) => void} changed called when a reader has changed something, with the control
    */
   constructor(section, changed) {
     this.section = section;
@@ -40,25 +40,39 @@ class Controls {
   }
 
   listen() {
-    for (const box of this.boxes) box.addEventListener("change", () => this.changed());
+    for (const box of this.boxes) box.addEventListener("change", () => this.changed(box));
     for (const column of this.columns) {
       for (const input of inputsIn(column, "input")) {
         input.addEventListener("change", () => {
           this.byColumn(column, input);
-          this.changed();
+          this.changed(input);
         });
       }
     }
-    for (const e of this.settings) e.addEventListener("change", () => this.changed());
+    for (const e of this.settings) e.addEventListener("change", () => this.changed(e));
+    for (const e of inputsIn(this.section, "input[type=text]")) e.addEventListener("keydown", (event) => this.giveUp(e, event));
     this.form.addEventListener("submit", (event) => {
       event.preventDefault();
-      if (this.readAdded()) this.changed();
+      if (this.readAdded()) this.changed(this.form);
     });
     this.takeAway.addEventListener("click", () => {
       this.added = null;
-      this.changed();
+      this.changed(this.takeAway);
       inputsIn(this.form, "input")[0].focus();
     });
+  }
+
+  /**
+   * Escape takes back a text that is not yet taken over, or was refused.
+   * @param {HTMLInputElement} input
+   * @param {KeyboardEvent} event
+   */
+  giveUp(input, event) {
+    const taken = input.dataset.taken ?? "";
+    if (event.key !== "Escape" || input.value === taken) return;
+    event.preventDefault();
+    input.value = taken;
+    this.refuse("");
   }
 
   /**
@@ -90,7 +104,7 @@ class Controls {
   toggle(row) {
     if (this.boxes.some((box) => Number(box.dataset.row) === row)) this.check((r, on) => (r === row ? !on : on));
     else this.added = null;
-    this.changed();
+    this.changed(null);
   }
 
   /** @returns {boolean} whether the form holds a study; else it says what is amiss */
@@ -119,7 +133,7 @@ class Controls {
     const changes = { ...this.further };
     for (const e of this.settings) {
       const value = e.value.trim();
-      if (value !== "" && value !== e.dataset.planned) changes[e.dataset.setting ?? ""] = value;
+      if (value !== "" && value !== e.dataset.planned && value !== e.dataset.refused) changes[e.dataset.setting ?? ""] = value;
     }
     const out = this.boxes.filter((box) => !box.checked).map((box) => Number(box.dataset.row));
     return tidied({ outcome: this.outcome, changes, left_out: out, added: this.added });
@@ -146,6 +160,7 @@ class Controls {
     for (const input of inputsIn(this.form, "[data-number]")) {
       if (v.added !== null) input.value = String(v.added.numbers[input.dataset.number ?? ""] ?? "");
     }
+    for (const input of inputsIn(this.section, "input[type=text]")) input.dataset.taken = input.value;
     this.count("studies", out.size);
     this.count("added", v.added === null ? 0 : 1);
     for (const group of ["model", "meaning"]) this.count(group, this.section.querySelectorAll(`[data-group=${group}] .wi-set`).length);
@@ -182,16 +197,19 @@ class Controls {
     for (const e of this.section.querySelectorAll("[aria-invalid]")) {
       e.removeAttribute("aria-invalid");
       e.removeAttribute("aria-errormessage");
+      e.removeAttribute("data-refused");
     }
     if (problem === "") return;
     const id = this.section.id + "-problem";
     const message = make("p", { class: "wi-problem", id, role: "alert" }, capitalised(problem));
     const field = at !== null && this.section.contains(at) ? at : null;
-    const beside = field?.closest(".wi-field, .wi-column");
-    if (field !== null && beside) {
+    const beside = field?.closest(".wi-field, .wi-column, form");
+    if (beside) {
+      beside.append(message);
+      if (!(field instanceof HTMLInputElement || field instanceof HTMLSelectElement)) return;
       field.setAttribute("aria-invalid", "true");
       field.setAttribute("aria-errormessage", id);
-      beside.append(message);
+      if (field instanceof HTMLInputElement) field.dataset.refused = field.value.trim();
     } else this.section.querySelector(".wi-groups")?.before(message);
   }
 }

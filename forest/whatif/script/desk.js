@@ -7,7 +7,7 @@ class Desk {
   constructor(section) {
     this.section = section;
     this.id = section.dataset.whatif ?? "";
-    this.controls = new Controls(section, () => this.go(this.controls.read()));
+    this.controls = new Controls(section, (at) => this.go(this.controls.read(), undefined, at));
     this.looks = new Looks(planned(this.controls.outcome));
     this.planned = factsOf(this.id);
     /** @type {Map<string, Facts | null>} the answer of each variant looked at */
@@ -45,11 +45,11 @@ class Desk {
    * Shows a variant; taken over only once it has an answer.
    * @param {Variant} v
    * @param {() => void} [take]
+   * @param {Element | null} [at] the control that asks for it
    */
-  async go(v, take = () => void this.looks.change(v)) {
+  async go(v, take = () => void this.looks.change(v), at = null) {
     current = this;
     const spot = spotNow();
-    const from = document.activeElement;
     this.section.setAttribute("aria-busy", "true");
     /** @type {Reply | null} */
     let reply;
@@ -61,9 +61,10 @@ class Desk {
     this.section.removeAttribute("aria-busy");
     if (reply === null) return; // a later change overtook this one
     if (!reply.document) {
-      const kept = this.looks.now;
-      if (from?.closest(".whatif") !== this.section || !(from instanceof HTMLInputElement)) this.controls.show(kept);
-      this.controls.refuse(reply.problem ?? "the change cannot be made", from);
+      const typed = at === this.controls.form || (at instanceof HTMLInputElement && at.type === "text");
+      if (typed) this.controls.added = this.looks.now.added;
+      else this.controls.show(this.looks.now);
+      this.controls.refuse(reply.problem ?? "the change cannot be made", at);
       return;
     }
     take();
@@ -79,7 +80,7 @@ class Desk {
   show() {
     const look = this.look(this.looks.now);
     this.controls.show(this.looks.now);
-    this.banner.show(look, this.planned, this.looks.log.map((v) => this.look(v)), { undo: this.looks.past.length > 0, redo: this.looks.future.length > 0 });
+    this.banner.show(look, this.planned, this.looks.log.map((v) => this.look(v)), { undo: this.can("undo"), redo: this.can("redo") });
     this.export.show();
   }
 
@@ -104,7 +105,13 @@ class Desk {
   }
 
   plan() {
-    if (!isPlanned(this.looks.now)) this.go(planned(this.controls.outcome));
+    if (this.can("plan")) this.go(planned(this.controls.outcome));
+  }
+
+  /** @param {"undo" | "redo" | "plan"} act */
+  can(act) {
+    if (act === "plan") return !isPlanned(this.looks.now);
+    return (act === "undo" ? this.looks.past : this.looks.future).length > 0;
   }
 
   /** The engine cannot answer: the page stays as it is. */
@@ -144,8 +151,9 @@ function openDesks() {
   document.addEventListener("whatif:broken", () => desks.forEach((desk) => desk.close()));
   document.addEventListener("keydown", (event) => {
     const act = actOf(event, isTyping(event.target));
-    const desk = deskOf(event.target);
-    if (act === "" || desk === null || event.defaultPrevented) return;
+    if (act === "" || event.defaultPrevented) return;
+    const desk = deskFor(act, event.target);
+    if (desk === undefined) return;
     event.preventDefault();
     desk[act]();
   });
@@ -158,12 +166,18 @@ function openDesks() {
 function openLink() {
   for (const v of fromFragment(location.hash)) {
     const desk = desks.find((d) => d.controls.outcome === v.outcome);
-    if (desk !== undefined && !sameVariant(desk.looks.now, v)) desk.go(v);
+    if (desk === undefined) desks[0]?.controls.refuse(`the link is for the outcome “${v.outcome}”, which this page does not have`);
+    else if (!sameVariant(desk.looks.now, v)) desk.go(v);
   }
 }
 
-/** The outcome that a key is for: where it was pressed, else the last changed, else the first. @param {EventTarget | null} target */
-function deskOf(target) {
-  const place = target instanceof Element ? target.closest(".outcome") : null;
-  return desks.find((d) => d.id === place?.id) ?? current ?? desks[0] ?? null;
+/**
+ * The outcome that a key is for: where it was pressed, else the last changed, else the
+ * first in which it means something.
+ * @param {"undo" | "redo" | "plan"} act
+ * @param {EventTarget | null} target
+ */
+function deskFor(act, target) {
+  const id = target instanceof Element ? target.closest(".outcome")?.id : undefined;
+  return [...desks.filter((d) => d.id === id), ...desks.filter((d) => d === current), ...desks].find((d) => d.can(act));
 }

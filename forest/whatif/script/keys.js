@@ -25,5 +25,5 @@ function actOf(event, typing) {
 function isTyping(target) {
   if (target instanceof HTMLTextAreaElement) return true;
   if (!(target instanceof HTMLInputElement) || !/^(text|search|number)$/.test(target.type)) return false;
-  return target.type !== "text" || target.closest(".whatif") === null || target.dataset.taken !== target.value;
+  return target.type !== "text" || target.closest(".whatif") === null || (target.dataset.taken ?? "") !== target.value;
 }
