@@ -1,17 +1,19 @@
 package forest
 
 import (
-	"fmt"
 	"image/color"
+	"strconv"
 
 	"steelyard/forest/layout"
 )
 
 // colourOf returns the theme's colour of a role.
 func colourOf(theme layout.Theme, ink layout.Ink) color.RGBA {
-	c := color.RGBA{A: 0xFF}
-	if _, err := fmt.Sscanf(theme.Colour(ink), "#%02x%02x%02x", &c.R, &c.G, &c.B); err != nil {
-		panic("forest: the palette holds " + theme.Colour(ink) + ", which is no #RRGGBB colour")
+	text := theme.Colour(ink)
+	if len(text) == len("#RRGGBB") && text[0] == '#' {
+		if v, err := strconv.ParseUint(text[1:], 16, 32); err == nil {
+			return color.RGBA{R: uint8(v >> 16), G: uint8(v >> 8), B: uint8(v), A: 0xFF}
+		}
 	}
-	return c
+	panic("forest: the palette holds " + text + ", which is no #RRGGBB colour")
 }
