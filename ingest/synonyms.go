@@ -187,11 +187,14 @@ func (d *dictionary) add(phrase string, m meaning) {
 }
 
 func (d *dictionary) addArms() {
+	// No word of an arm changes how one of a quantity is folded, nor the reverse, so
+	// that each is folded once and not once for each pair.
 	combine := func(arms []string, q quantity, field review.Field) {
-		for _, arm := range arms {
-			for _, word := range q.words {
-				d.add(word+" "+arm, meaning{field: field})
-				d.add(arm+" "+word, meaning{field: field})
+		words := foldedAll(q.words)
+		for _, arm := range foldedAll(arms) {
+			for _, word := range words {
+				d.phrases[joined(word, arm)] = meaning{field: field}
+				d.phrases[joined(arm, word)] = meaning{field: field}
 			}
 		}
 	}
@@ -212,6 +215,23 @@ func (d *dictionary) addArms() {
 	for _, word := range controlWords {
 		d.control[word] = true
 	}
+}
+
+// foldedAll folds each of some phrases.
+func foldedAll(phrases []string) []string {
+	folded := make([]string, len(phrases))
+	for i, phrase := range phrases {
+		folded[i], _ = fold(phrase)
+	}
+	return folded
+}
+
+// joined joins folded phrases, of which one may have been all fillers.
+func joined(a, b string) string {
+	if a == "" || b == "" {
+		return a + b
+	}
+	return a + " " + b
 }
 
 func (d *dictionary) addMeasures() {

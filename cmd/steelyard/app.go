@@ -26,6 +26,7 @@ func run(ctx context.Context, args []string, s streams) int {
 	app := newApp(s)
 	arranged, err := arrange(app, args)
 	if err == nil {
+		writeHelp(app, arranged)
 		err = app.RunContext(ctx, arranged)
 	}
 	if ctx.Err() != nil {
@@ -70,20 +71,34 @@ func newApp(s streams) *cli.App {
 		ExitErrHandler: func(*cli.Context, error) {},
 		OnUsageError:   usageError,
 	}
-	for _, command := range app.Commands {
-		prepare(command, command.Name)
-	}
+	prepare(app.Commands)
 	return app
 }
 
-// prepare gives a command and its subcommands the same manners; path is what is
-// typed to call it.
-func prepare(command *cli.Command, path string) {
-	command.OnUsageError = usageError
-	command.HideHelpCommand = true
-	command.CustomHelpTemplate = strings.ReplaceAll(commandHelp(command, path), "{{", `{{"{{"}}`)
-	for _, sub := range command.Subcommands {
-		prepare(sub, path+" "+sub.Name)
+// prepare gives commands and their subcommands the same manners.
+func prepare(commands []*cli.Command) {
+	for _, command := range commands {
+		command.OnUsageError = usageError
+		command.HideHelpCommand = true
+		prepare(command.Subcommands)
+	}
+}
+
+// writeHelp writes the help text of the command that is asked for it; to write all of
+// them in every call would take longer than to pool a sheet.
+func writeHelp(app *cli.App, args []string) {
+	if len(args) < 3 || args[len(args)-1] != "--help" {
+		return
+	}
+	path := args[1 : len(args)-1]
+	command := app.Command(path[0])
+	for _, name := range path[1:] {
+		if command != nil {
+			command = subcommand(command, name)
+		}
+	}
+	if command != nil {
+		command.CustomHelpTemplate = strings.ReplaceAll(commandHelp(command, strings.Join(path, " ")), "{{", `{{"{{"}}`)
 	}
 }
 
