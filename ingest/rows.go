@@ -169,6 +169,7 @@ func (r *rowReader) readContext() {
 		if text == "" {
 			continue
 		}
+		r.warnUnsettled(i+1, text)
 		c := &t.header.columns[i]
 		name := c.Header
 		if c.field != review.NoField {

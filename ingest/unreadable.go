@@ -47,6 +47,8 @@ func notANumber(text string) string {
 	switch {
 	case dateLike.MatchString(trimmed):
 		return said + " looks like a date, which spreadsheet programs make of entries such as 3-12 or 3/12; write the number again as a plain number"
+	case twoNumbers.MatchString(trimmed):
+		return said + settle
 	case strings.ContainsAny(trimmed, "<>≤≥~≈"):
 		return said + " is a bound, not a value; write the exact number if the report gives it, else leave the cell blank and keep the bound in a note"
 	case ratioLike.MatchString(trimmed):

@@ -44,7 +44,7 @@ type Pair struct {
 	First, Second *review.Study
 	Cells         []Cell // empty: identical
 	Large         bool   // the effects differ by 0.1 SD, 10 per cent, or 10 per cent of the standard error
-	Effects       string // both effects, in words; blank where one is missing
+	Effects       string // both effects, in words; blank where one is missing or they are the same
 }
 
 // Differing reports whether the rows differ in more than rounding.
@@ -173,7 +173,9 @@ func (c *Comparison) Weigh(first, second *synthesis.Synthesis) {
 		reader := func(e *result) string {
 			return fmt.Sprintf("%.3g (se %.3g)", effect.ToReader(e.measure, e.Y), e.SE)
 		}
-		p.Effects = fmt.Sprintf("%s of %s against %s", x.measure, reader(x), reader(y))
+		if x.measure != y.measure || x.Estimate != y.Estimate {
+			p.Effects = fmt.Sprintf("%s of %s against %s", x.measure, reader(x), reader(y))
+		}
 	}
 	slices.SortStableFunc(c.Pairs, func(p, q Pair) int { return rank(&p) - rank(&q) })
 }

@@ -83,6 +83,9 @@ func TestCompare(t *testing.T) {
 				t.Errorf("%s: no cell %q in %v", w.name, cell, p.Cells)
 			}
 		}
+		if w.cells == "" && p.Effects != "" {
+			t.Errorf("%s: the same effect is set against itself: %s", w.name, p.Effects)
+		}
 		if p.First.Name != w.name || len(p.Cells) != len(all) || p.Large != w.large {
 			t.Errorf("pair %d: %s, %d cells, large %v; want %+v", i, p.First.Name, len(p.Cells), p.Large, w)
 		}
@@ -123,11 +126,19 @@ func TestWorkbook(t *testing.T) {
 		t.Fatal(err)
 	}
 	x, _ := read(t, data, "settle.xlsx")
-	open := 0
+	open, texts := 0, 0
 	for _, f := range x.Findings {
 		if f.Severity == review.Error {
 			open++
+		} else if f.Rule == "A9" {
+			texts++
 		}
+		if (f.Severity == review.Error || f.Rule == "A9") && !strings.Contains(f.Message, "what two extractions say") {
+			t.Errorf("%s does not say what the cell holds: %s", f.Place, f.Message)
+		}
+	}
+	if texts != 1 {
+		t.Errorf("%d unsettled texts are reported, want the risk of bias of Dubois", texts)
 	}
 	if len(x.Studies) != 6 || open != 4 { // the limit of Castro, three numbers of Dubois
 		t.Errorf("%d rows with %d errors, want 6 with 4: %v", len(x.Studies), open, x.Findings)
