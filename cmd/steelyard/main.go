@@ -20,6 +20,7 @@ func main() {
 	if os.Getenv("GOMEMLIMIT") == "" { // else the runtime has taken that
 		debug.SetMemoryLimit(ingest.MemoryLimit)
 	}
+	easeCollector(os.Args[1:])
 	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt)
 	code := run(ctx, os.Args, streams{in: os.Stdin, out: os.Stdout, err: os.Stderr})
 	stop()
