@@ -7,6 +7,8 @@ import (
 	"unicode"
 
 	"github.com/xuri/excelize/v2"
+
+	"steelyard/forest/words"
 )
 
 // clean removes what text must not carry into a workbook: control characters and
@@ -122,30 +124,13 @@ func (s *sheet) heighten(p page) {
 		if width == 0 {
 			width = 9
 		}
-		lines[c.row] = max(lines[c.row], wrappedLines(s.get(c.col, c.row).Text, letterShare*width))
+		lines[c.row] = max(lines[c.row], words.Lines(s.get(c.col, c.row).Text, letterShare*width))
 	}
 	for _, row := range slices.Sorted(maps.Keys(lines)) {
 		if lines[row] > 1 {
 			s.book.do(s.book.f.SetRowHeight(s.name, row, min(400, float64(lineHeight*lines[row]+2))))
 		}
 	}
-}
-
-// wrappedLines is about how many lines a text takes in a column of a width, broken
-// between words.
-func wrappedLines(text string, width float64) int {
-	lines, used := 1, 0.
-	for _, word := range strings.Fields(text) {
-		size := float64(len([]rune(word)))
-		if used > 0 && used+1+size > width {
-			lines, used = lines+1, 0
-		}
-		if used > 0 {
-			used++
-		}
-		used += size
-	}
-	return lines
 }
 
 // printed names the rows that repeat on each page and the columns that are printed.

@@ -34,6 +34,7 @@ func Workbook(s *synthesis.Synthesis) ([]byte, error) {
 	w.styles()
 	w.cards(s)
 	w.numbers(s)
+	w.print()
 	w.do(f.SetDocProps(&excelize.DocProperties{Title: "Panel cards", Creator: "steelyard", LastModifiedBy: "steelyard", Created: fixedDate, Modified: fixedDate}))
 	if w.err != nil {
 		return nil, fmt.Errorf("writing the workbook of cards: %w", w.err)
@@ -65,23 +66,55 @@ func (w *writer) styles() {
 		w.do(err)
 		return id
 	}
-	w.title = style(&excelize.Style{Font: &excelize.Font{Bold: true, Size: 13}})
-	w.head = style(&excelize.Style{Font: &excelize.Font{Bold: true}, Border: []excelize.Border{{Type: "bottom", Style: 1, Color: "1A1A1A"}}})
-	w.wrapped = style(&excelize.Style{Alignment: &excelize.Alignment{WrapText: true, Vertical: "top"}})
-	for col, width := range map[string]float64{"A": 24, "B": 76, "C": 24, "D": 44} {
+	face := func(bold bool, size float64) *excelize.Font {
+		return &excelize.Font{Family: "Arial", Size: size, Bold: bold}
+	}
+	wrap := &excelize.Alignment{WrapText: true, Vertical: "top"}
+	w.title = style(&excelize.Style{Font: face(true, 13)})
+	w.head = style(&excelize.Style{Font: face(true, 10), Alignment: wrap, Border: []excelize.Border{{Type: "bottom", Style: 1, Color: "1A1A1A"}}})
+	w.wrapped = style(&excelize.Style{Font: face(false, 10), Alignment: wrap})
+	for i, width := range cardWidths {
+		col := review.ColumnLetters(i + 1)
 		w.do(w.f.SetColWidth(cardsSheet, col, col, width))
 	}
 	w.do(w.f.SetColWidth(numbersSheet, "A", "B", 26))
 	w.do(w.f.SetColWidth(numbersSheet, "C", "Z", 15))
 }
 
-// line writes texts into the next row of the cards.
+// cardWidths are the widths of the columns of the cards: the digits of the usual size
+// that each holds.
+var cardWidths = []float64{24, 84, 34, 44}
+
+// The height of a line in points, and how many letters of running text stand, at the
+// least, where a width counts one digit.
+const (
+	lineHeight  = 13.
+	letterShare = 1.1
+)
+
+// line writes texts into the next row of the cards, which is made as high as the
+// tallest of them needs: not every program finds that out by itself.
 func (w *writer) line(style int, texts ...string) {
 	w.row++
+	lines := 1
 	for i, text := range texts {
 		w.text(cardsSheet, i+1, w.row, text)
+		lines = max(lines, words.Lines(text, letterShare*cardWidths[i]))
+	}
+	if style != w.title {
+		w.do(w.f.SetRowHeight(cardsSheet, w.row, min(400, lineHeight*float64(lines)+2)))
 	}
 	w.do(w.f.SetCellStyle(cardsSheet, cell(1, w.row), cell(4, w.row), style))
+}
+
+// print sets how the sheets are printed: lying, each as wide as a page.
+func (w *writer) print() {
+	fit, orientation, paper, across, down := true, "landscape", 9, 1, 0
+	for _, sheet := range []string{cardsSheet, numbersSheet} {
+		w.do(w.f.SetSheetProps(sheet, &excelize.SheetPropsOptions{FitToPage: &fit}))
+		w.do(w.f.SetPageLayout(sheet, &excelize.PageLayoutOptions{Orientation: &orientation, Size: &paper, FitToWidth: &across, FitToHeight: &down}))
+		w.do(w.f.SetHeaderFooter(sheet, &excelize.HeaderFooterOptions{OddFooter: "&R&8page &P of &N"}))
+	}
 }
 
 func (w *writer) text(sheet string, col, row int, text string) {

@@ -92,3 +92,48 @@ func TestWorkbook(t *testing.T) {
 		t.Errorf("the outcome is %q, %v", name, err)
 	}
 }
+
+// TestRowHeights: each row of a card is high enough for its texts. A column holds no
+// more than a tenth more letters than its width in digits, and a line of ten points
+// takes twelve or more.
+func TestRowHeights(t *testing.T) {
+	data, err := Workbook(carded(t))
+	if err != nil {
+		t.Fatal(err)
+	}
+	f, err := excelize.OpenReader(bytes.NewReader(data))
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer f.Close()
+	rows, err := f.GetRows(cardsSheet)
+	if err != nil {
+		t.Fatal(err)
+	}
+	tall := 0
+	for i, row := range rows {
+		height, err := f.GetRowHeight(cardsSheet, i+1)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for j, text := range row {
+			width, err := f.GetColWidth(cardsSheet, review.ColumnLetters(j+1))
+			if err != nil {
+				t.Fatal(err)
+			}
+			need := 0.
+			for _, paragraph := range strings.Split(text, "\n") {
+				need += math.Ceil(float64(len([]rune(paragraph))) / (1.1 * width))
+			}
+			if need > 1 {
+				tall++
+			}
+			if height < 12*need {
+				t.Errorf("row %d is %v points high for %v lines: %q", i+1, height, need, text)
+			}
+		}
+	}
+	if tall < 10 {
+		t.Errorf("only %d texts are longer than a line", tall)
+	}
+}
