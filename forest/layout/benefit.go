@@ -49,7 +49,7 @@ const (
 	benefitNamesShare = 0.22
 	benefitValueGap   = 12 // between the axis of effects and its numbers
 	benefitColumnGap  = 11
-	benefitNarrow     = 4.3 // pitch of the narrow form, in type sizes
+	benefitNarrow     = 4.7 // pitch of the narrow form, in type sizes
 	leastBenefitZone  = 70
 )
 
@@ -263,7 +263,7 @@ func (b *benefit) top(i int) float64 { return b.heads.rule + benefitPad + float6
 // mark is the height of the marks of a row.
 func (b *benefit) mark(i int) float64 {
 	if b.metrics.twoLine {
-		return b.top(i) + 2.05*b.metrics.row
+		return b.top(i) + 2.45*b.metrics.row
 	}
 	return b.top(i) + b.pitch()/2
 }

@@ -3,6 +3,7 @@ package layout
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"steelyard/forest/words"
@@ -86,18 +87,29 @@ func (b *benefit) notes() []Note {
 		thresholds = b.thresholds(b.in.Rows[0]) + ". " + diamond
 	}
 	rail := fmt.Sprintf("evidence for %s (right) against a trivial effect (left), for the mean effect.", b.benefitName())
-	if b.hasSettings() {
+	if b.hasSettings() && !b.metrics.twoLine {
 		rail += " Settings: share predicted beyond the threshold."
 	}
 	notes := []Note{{Head: "Thresholds", Text: thresholds}, {Head: "Rail", Text: rail}}
 	if b.metrics.twoLine {
-		var odds []string
-		for _, r := range b.in.Rows {
-			odds = append(odds, harmText(r.Harm))
-		}
-		notes = append(notes, Note{Head: capital(strings.ToLower(b.in.Heads[1])), Text: strings.Join(odds, "; ") + ", in the order of the rows."})
+		notes = append(notes, Note{Head: capital(strings.ToLower(b.in.Heads[1])), Text: b.harms()})
 	}
 	return append(notes, b.in.Notes...)
+}
+
+// harms are the texts of the last column: once where they are all alike.
+func (b *benefit) harms() string {
+	var odds []string
+	for _, r := range b.in.Rows {
+		odds = append(odds, harmText(r.Harm))
+	}
+	switch {
+	case len(odds) == 1:
+		return odds[0] + "."
+	case len(slices.Compact(slices.Clone(odds))) == 1:
+		return odds[0] + " in every row."
+	}
+	return strings.Join(odds, "; ") + ", in the order of the rows."
 }
 
 // harmText is the evidence of the last column in one text.

@@ -131,6 +131,39 @@ func TestBenefitTexts(t *testing.T) {
 	narrow := textsOf(mustBenefit(t, threeBaselines(), Style{Width: NarrowWidth}).Items)
 	if text := strings.Join(narrow, " "); !strings.Contains(text, "44 fewer (21 to 62 fewer)") || !strings.Contains(text, "1,700 : 1; 61 : 1; 18 : 1, in the order of the rows.") {
 		t.Errorf("the narrow form says %q", narrow)
+	} else if strings.Contains(text, "Settings:") {
+		t.Errorf("the narrow form explains what it does not show: %q", narrow)
+	}
+	in := threeBaselines()
+	for i := range in.Rows {
+		in.Rows[i].Harm = math.Log(61)
+	}
+	for rows, want := range map[int]string{3: "61 : 1 in every row.", 1: "61 : 1."} {
+		in.Rows = in.Rows[:rows]
+		if text := strings.Join(textsOf(mustBenefit(t, in, Style{Width: NarrowWidth}).Items), " "); !strings.Contains(text, " "+want) || strings.Contains(text, "in the order") {
+			t.Errorf("%d rows alike: %q", rows, text)
+		}
+	}
+}
+
+// TestBenefitNarrowRows: the name of a row of the narrow form, descenders and all (a
+// quarter of the size), stands clear above the trivial zone, the numbers below it.
+func TestBenefitNarrowRows(t *testing.T) {
+	page := mustBenefit(t, threeBaselines(), Style{Width: NarrowWidth})
+	zones := rectsOf(group(t, page, "grid").Items, Solid(TrivialZone))
+	for i, zone := range zones {
+		for _, item := range group(t, page, rowID(i)).Items {
+			text, ok := item.(Text)
+			if !ok {
+				continue
+			}
+			if text.Y < zone.Y+zone.Height/2 && text.Y+text.Size/4 > zone.Y || text.Y > zone.Y+zone.Height/2 && text.Y-0.75*text.Size < zone.Y+zone.Height {
+				t.Errorf("row %d: a text at %v meets the zone from %v to %v", i, text.Y, zone.Y, zone.Y+zone.Height)
+			}
+		}
+	}
+	if len(zones) != 3 {
+		t.Errorf("%d zones", len(zones))
 	}
 }
 
