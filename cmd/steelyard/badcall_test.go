@@ -7,6 +7,7 @@ import (
 	"fmt"
 	"os"
 	"path/filepath"
+	"regexp"
 	"strings"
 	"testing"
 	"time"
@@ -53,6 +54,8 @@ func TestBadCalls(t *testing.T) {
 		{"pool BCG --interval henmi-copas --effects common", codeData, nil},
 		{"pool nowhere.csv", codeFile, []string{"nowhere.csv"}},
 		{"pool BCG --out /nowhere/at/all.txt", codeFile, []string{"/nowhere/at"}},
+		{"pool BCG --out x.xlsx", codeCall, []string{"Markdown, JSON or CSV; name it .txt"}},
+		{"next-trial LOR --size 100", codeCall, []string{"a measure that is not stated (--measure): give it with --se"}},
 		{"audit BCG", codeCall, []string{"--out F.xlsx"}},
 		{"audit BCG --out x.xls", codeCall, []string{"name it .xlsx"}},
 		{"audit DEMO --out DEMO --overwrite", codeCall, []string{"never overwritten"}},
@@ -79,7 +82,7 @@ func TestBadCalls(t *testing.T) {
 		{"weigh --p 0.05 --one-sided", codeCall, []string{"direction"}},
 		{"weigh trials.csv", codeCall, []string{"steelyard pool trials.csv"}},
 	} {
-		args := strings.Fields(strings.NewReplacer("BCG", bcg, "DEMO", data+"demo.xlsx", "FOLDER", data+"checks").Replace(c.args))
+		args := strings.Fields(strings.NewReplacer("BCG", bcg, "LOR", data+"checks/bcg_lor.csv", "DEMO", data+"demo.xlsx", "FOLDER", data+"checks").Replace(c.args))
 		stdout, stderr, code := call(t, "", args...)
 		if code != c.code {
 			t.Errorf("%s: exit %d, want %d (%s)", c.args, code, c.code, stderr)
@@ -199,6 +202,30 @@ func TestHelpAnywhere(t *testing.T) {
 	}
 	if got, _, code := call(t, "", "version"); code != codeDone || !strings.Contains(got, version) {
 		t.Errorf("version: exit %d, %s", code, got)
+	}
+}
+
+// TestHelpGaps: in every command's help a flag stands apart from its explanation, on a
+// line of its own where it is too long, and no line is wider than 100.
+func TestHelpGaps(t *testing.T) {
+	flag := regexp.MustCompile(`^  --[a-z0-9-]+($|  +\S)`)
+	for _, command := range newApp(streams{}).Commands {
+		calls := [][]string{{command.Name}}
+		for _, sub := range command.Subcommands {
+			calls = append(calls, []string{command.Name, sub.Name})
+		}
+		for _, args := range calls {
+			text, _, _ := call(t, "", append(args, "--help")...)
+			for line := range strings.Lines(text) {
+				line = strings.TrimRight(line, "\n")
+				if strings.HasPrefix(line, "  --") && !flag.MatchString(line) || len([]rune(line)) > 100 {
+					t.Errorf("%v: %q", args, line)
+				}
+			}
+			if len(command.Flags) > 0 && !strings.Contains(text, "\n  --") {
+				t.Errorf("%v: no flags in\n%s", args, text)
+			}
+		}
 	}
 }
 

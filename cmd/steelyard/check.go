@@ -29,7 +29,8 @@ func checkCommand() *cli.Command {
 		Description: "Lists what the catalogue of rules finds, errors first. Rows with an error are not pooled until they\n" +
 			"are mended, or accepted by writing the rule and a reason in the accept column. Nothing is corrected;\n" +
 			"where a number can be read in two ways, the pooled answer under each is printed. With --compare, two\n" +
-			"extractions of the same studies are set side by side, rows paired by outcome and id, else by name and year.",
+			"extractions of the same studies are set side by side, rows paired by outcome and id, else by\n" +
+			"name and year.",
 		Flags: slices.Concat([]cli.Flag{
 			&cli.BoolFlag{Name: flagRules, Usage: "list the catalogue: every rule with its threshold and source"},
 			&cli.StringFlag{Name: flagCompare, Usage: "another extraction of the same studies: what differs, and what each choice does to the answer"},

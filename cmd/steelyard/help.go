@@ -39,10 +39,16 @@ func commandHelp(c *cli.Command, path string) string {
 	return b.String()
 }
 
-// entry formats a term with its explanation, wrapped and indented.
+// entry formats a term with its explanation, wrapped and indented; a term that leaves
+// no gap before it has a line of its own.
 func entry(term, text string, indent int) string {
 	lines := wrap(text, helpWidth-indent-2)
-	out := fmt.Sprintf("  %-*s%s\n", indent, term, lines[0])
+	if utf8.RuneCountInString(term) > indent-2 {
+		term = "  " + term + "\n" + strings.Repeat(" ", indent+2)
+	} else {
+		term = fmt.Sprintf("  %-*s", indent, term)
+	}
+	out := term + lines[0] + "\n"
 	for _, line := range lines[1:] {
 		out += strings.Repeat(" ", indent+2) + line + "\n"
 	}

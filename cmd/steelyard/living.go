@@ -75,7 +75,7 @@ var livingKinds = []livingKind{
 		flags: slices.Concat(recordFlags(), []cli.Flag{anewFlag(), triggerFlag(), livingLooksFlag()}, livingSheetFlags(), outputFormatFlags(), workFlags()), run: livingUpdate,
 	},
 	{
-		name: "watch", usage: "read the sheet again whenever it is saved, and print what changed; record nothing", call: "watch FILE [--in DIR] [flags]",
+		name: "watch", usage: "read the sheet whenever it is saved and print what changed; record nothing", call: "watch FILE [--in DIR] [flags]",
 		about: "The sheet is held against the last state of the record. End it with ctrl-C.",
 		flags: slices.Concat([]cli.Flag{anewFlag()}, livingSheetFlags(), []cli.Flag{formatFlag()}), run: livingWatch,
 	},
@@ -91,7 +91,7 @@ var livingKinds = []livingKind{
 	},
 	{
 		name: "compare", usage: "say what changed between two states", call: "compare [A B] [--in DIR] [flags]",
-		about: "A and B are states by their number, or by the first digits of their checksum. Without B: the last one;\nwithout both: the last two.",
+		about: "A and B are states by their number, or by the first digits of their checksum. Without B: the\nlast one; without both: the last two.",
 		flags: slices.Concat([]cli.Flag{triggerFlag(), livingLooksFlag()}, outputFormatFlags(), workFlags()), run: livingCompare,
 	},
 	{

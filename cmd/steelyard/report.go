@@ -30,8 +30,9 @@ func reportCommand() *cli.Command {
 		Usage:     "write one page that a panel can read, print and question, with figures and data",
 		UsageText: "steelyard report FILE --out FOLDER [flags]",
 		Description: "Writes report.html, which needs no network, results.json, audit.xlsx and figures/ (SVG, PDF and\n" +
-			"PNG, 180 and 85 mm wide) to the folder. It is built aside and put in place whole; with --overwrite only files that\n" +
-			"an earlier report wrote there are replaced. The same input gives the same files.",
+			"PNG, 180 and 85 mm wide) to the folder. It is built aside and put in place whole; with\n" +
+			"--overwrite only files that an earlier report wrote there are replaced. The same input gives the\n" +
+			"same files.",
 		Flags: slices.Concat([]cli.Flag{
 			&cli.StringFlag{Name: flagOut, Usage: "folder to write"},
 			&cli.BoolFlag{Name: flagOverwrite, Usage: "replace an earlier report in that folder"},
