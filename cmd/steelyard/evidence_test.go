@@ -182,7 +182,7 @@ func TestEvidenceCalls(t *testing.T) {
 		{"", "pool BCG --evidence normal-prior --effect-scale 0.5", codeDone, "a wide one favours no effect whatever the data"},
 		{"", "pool BCG --effect-scale 0.5", codeDone, "The setting effect-scale (0.5) is not used"},
 		{"", "pool BCG --evidence normal-prior", codeData, "state it with --effect-scale"},
-		{"", "pool BCG --evidence cauchy-prior --effect-scale 1 --effect-mean 0.8", codeData, "a cauchy prior is centred on no effect"},
+		{"", "pool BCG --evidence cauchy-prior --effect-scale 1 --effect-mean 0.8", codeData, "a Cauchy prior is centred on no effect"},
 		{"", "pool BCG --evidence integrated --effects common", codeData, "a common effect has none"},
 		{"", "pool BCG --evidence averaged --method mantel-haenszel", codeData, "mantel-haenszel pools counts without them"},
 		{"", "pool BCG --evidence integrated --tau-prior log-normal", codeData, "needs two numbers"},

@@ -51,7 +51,11 @@ func checkOut(c *cli.Context, format answerFormat) error {
 	case promises && promised != format:
 		return &callError{fmt.Sprintf("--out %s would hold %s; add --format %s, or name it %s", path, formatNames[format], formatNames[promised], usualEnding(format))}
 	case slices.Contains([]string{".svg", ".pdf", ".png", ".xlsx", ".html"}, ending):
-		return &callError{fmt.Sprintf("--out %s: this command writes text, Markdown, JSON or CSV; name it %s", path, usualEnding(format))}
+		kinds := "text, Markdown, JSON or CSV"
+		if c.Command.Name == "panel" {
+			kinds = "text, Markdown, JSON, CSV or a workbook (.xlsx)"
+		}
+		return &callError{fmt.Sprintf("--out %s: this command writes %s; name it %s", path, kinds, usualEnding(format))}
 	}
 	return nil
 }

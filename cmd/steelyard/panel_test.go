@@ -135,6 +135,7 @@ func TestPanelCalls(t *testing.T) {
 		{"", "panel BCG --standard-deviation 2", codeDone, "is not used: a risk ratio needs none"},
 		{"", "panel BCG --out x.xlsx --format json", codeCall, "is a workbook"},
 		{"", "panel BCG --out x.md", codeCall, "--format markdown"},
+		{"", "panel BCG --out x.pdf", codeCall, "CSV or a workbook (.xlsx)"},
 		{"", "panel BCG --earlier nowhere.json", codeFile, "nowhere.json"},
 		{"", "panel BCG --earlier BCG", codeFile, "is no result in JSON"},
 		{smd, "panel - --baseline 0.2", codeCall, "it counts standard deviations"},

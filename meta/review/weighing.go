@@ -86,7 +86,7 @@ func (w Weighing) Effect(mean float64) (bayes.EffectPrior, error) {
 	case w.EffectSD == 0:
 		return prior, fmt.Errorf("evidence: %s needs the scale of the prior for the effect, which decides the answer and has no usual value: state it with --%s, such as 0.5 for a log ratio", w.Form, SettingEffectSD)
 	case prior.Kind == bayes.CauchyPrior && mean != 0:
-		return prior, fmt.Errorf("%s: a cauchy prior is centred on no effect; leave the centre away, or choose normal-prior", SettingEffectMean)
+		return prior, fmt.Errorf("%s: a Cauchy prior is centred on no effect; leave the centre away, or choose normal-prior", SettingEffectMean)
 	}
 	return prior, prior.Check()
 }

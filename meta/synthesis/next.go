@@ -122,7 +122,11 @@ func (o *Outcome) next(ctx context.Context, w NextWanted, plan *review.Plan) (*N
 	se, err := design.SE(w.Treated, w.Control)
 	var measure *effect.MeasureError
 	if errors.As(err, &measure) {
-		return nil, &accrual.InputError{Problem: fmt.Sprintf("no standard error follows from the arms for a %s: give it with --se", o.Analysis.Measure)}
+		what := "a " + o.Analysis.Measure.String()
+		if o.Analysis.Measure == effect.Unspecified {
+			what = "a measure that is not stated (--measure)"
+		}
+		return nil, &accrual.InputError{Problem: fmt.Sprintf("no standard error follows from the arms for %s: give it with --se", what)}
 	}
 	if err != nil {
 		return nil, err
