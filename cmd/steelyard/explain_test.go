@@ -300,3 +300,24 @@ func TestExplainDependence(t *testing.T) {
 		}
 	}
 }
+
+// TestExplainSeveral: evidence against d differences at once reaches at most
+// (2e)^(d/2) : 1, the chi-square form at 0: 5.4 : 1 for two, 13 : 1 for three.
+func TestExplainSeveral(t *testing.T) {
+	demo := []string{"explain", data + "demo.xlsx", "--outcome", "flare within 24 weeks"}
+	for _, c := range []struct {
+		args []string
+		says string
+	}{
+		{[]string{"--subgroups", "risk of bias"}, "5.4 : 1 for the 2 weighed here together"},
+		{[]string{"--on", "year, risk of bias"}, "13 : 1 for the 3 weighed here together"},
+		{[]string{"--subgroups", "setting"}, ""},
+		{[]string{"--subgroups", "risk of bias", "--evidence", "student-t"}, ""},
+	} {
+		stdout, stderr, code := call(t, "", append(demo, c.args...)...)
+		text := strings.Join(strings.Fields(stdout), " ")
+		if code != codeDone || !strings.Contains(text, c.says) || c.says == "" && strings.Contains(text, "weighed here together") {
+			t.Errorf("%v: exit %d, want %q in\n%s%s", c.args, code, c.says, stdout, stderr)
+		}
+	}
+}

@@ -180,7 +180,24 @@ func ExplainLimits(s *synthesis.Synthesis, o *synthesis.Outcome) []string {
 		}
 		all = append(all, "Whether groups differ is answered by the test between them, not by which of them passes a step alone.")
 	}
+	if most := severalDifferences(e); most > 1 && o.Analysis.Model.Evidence != evidence.StudentForm {
+		all = append(all, fmt.Sprintf("Against several differences at once the evidence can reach 2.33 : 1 for each: %s for the %s weighed here together, so that it speaks for none more readily than against a single one.",
+			Odds(-evidence.ChiSquare(0, most).Ln()), Count(int(most))))
+	}
 	return all
+}
+
+// severalDifferences is the most differences that a test of the comparison weighs
+// together.
+func severalDifferences(e *synthesis.Explained) float64 {
+	most := 0.
+	if g := e.Subgroups; g != nil && g.Subgroups != nil {
+		most = g.Test.DF1
+	}
+	if r := e.Regression; r != nil && r.Regression != nil {
+		most = max(most, r.Whole.DF1)
+	}
+	return most
 }
 
 // mostPerCovariate is how many studies common practice asks for each coefficient.
