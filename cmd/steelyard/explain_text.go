@@ -91,7 +91,7 @@ func (p *page) subgroupComparison(s *synthesis.Synthesis, o *synthesis.Outcome, 
 	case r.Shared:
 		how = fmt.Sprintf("with one spread τ, %s", words.WithInterval(words.Tau(math.Sqrt(r.Tau2)), words.Tau(math.Sqrt(r.Limits.Low)), words.Tau(math.Sqrt(r.Limits.High))))
 	}
-	p.line(fmt.Sprintf("By %s: %d groups, %s", r.Column, len(r.Groups), how))
+	p.section(fmt.Sprintf("By %s: %d groups, %s", r.Column, len(r.Groups), how))
 	p.omitted(s, o, r.Omitted)
 	columns := []column{{head: "group"}, {head: "k", right: true}, {head: estimateHead(o)}, {head: "τ", right: true},
 		{head: "effect : none", right: true}, {head: "steps", right: true}, {head: "against the first"}}
@@ -132,7 +132,7 @@ func (p *page) regression(s *synthesis.Synthesis, o *synthesis.Outcome, r *synth
 	for _, t := range r.Design.Terms {
 		names = append(names, t.Name)
 	}
-	p.line(fmt.Sprintf("Regression on %s: %s", strings.Join(names, ", "), words.Number(r.K, words.Noun(s, 1), words.Noun(s, 2))))
+	p.section(fmt.Sprintf("Regression on %s: %s", strings.Join(names, ", "), words.Number(r.K, words.Noun(s, 1), words.Noun(s, 2))))
 	p.wrapped("", words.RegressionModel(r.Model))
 	for _, c := range r.Design.Covariates {
 		p.wrapped("", words.Covariate(c))

@@ -16,6 +16,8 @@ func markdown(p *page) string {
 		switch b.kind {
 		case headingBlock:
 			out.WriteString("## " + plain(b.text) + "\n")
+		case sectionBlock:
+			out.WriteString("### " + plain(b.text) + "\n")
 		case paragraphBlock:
 			out.WriteString(plain(b.text) + "\n")
 		case itemBlock:

@@ -25,6 +25,7 @@ type blockKind int
 
 const (
 	headingBlock   blockKind = iota
+	sectionBlock             // a heading under another
 	paragraphBlock           // text alone
 	labelledBlock            // a label and its text; a blank label continues the one before
 	itemBlock                // a paragraph with a mark, kept in label
@@ -49,6 +50,12 @@ func (p *page) line(text string) {
 	if text != "" {
 		p.record(block{kind: headingBlock, text: text})
 	}
+	p.write(text)
+}
+
+// section writes a heading under that of an outcome.
+func (p *page) section(text string) {
+	p.record(block{kind: sectionBlock, text: text})
 	p.write(text)
 }
 

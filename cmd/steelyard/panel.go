@@ -189,7 +189,7 @@ func (p *page) card(s *synthesis.Synthesis, o *synthesis.Outcome, card words.Car
 	}
 	if len(card.Large) > 0 {
 		p.line("")
-		p.line("  Large enough to matter?")
+		p.section("  Large enough to matter?")
 	}
 	for _, fact := range card.Large {
 		if fact.Label != "" {
@@ -198,7 +198,7 @@ func (p *page) card(s *synthesis.Synthesis, o *synthesis.Outcome, card words.Car
 		p.item(" ", fact.Text)
 	}
 	p.line("")
-	p.line("  Domains of certainty: the numbers each asks about, and the panel's own rating")
+	p.section("  Domains of certainty: the numbers each asks about, and the panel's own rating")
 	for _, domain := range append(slices.Clone(card.Domains), card.Certainty) {
 		p.row(domain.Domain, ratingText(domain))
 		for _, number := range domain.Numbers {

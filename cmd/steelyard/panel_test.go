@@ -4,6 +4,7 @@ import (
 	"encoding/json"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 
@@ -208,5 +209,21 @@ func TestChartPanel(t *testing.T) {
 	_, stderr, code := call(t, "", "chart", "panel", data+"checks/bcg_counts.csv", "--out", t.TempDir()+"/f.svg")
 	if code != codeData || !strings.Contains(stderr, "set one with --important or --important-per-1000") {
 		t.Errorf("without an important difference: exit %d, %s", code, stderr)
+	}
+}
+
+// TestPanelMarkdownLevels: the parts of a card stand one level under its outcome.
+func TestPanelMarkdownLevels(t *testing.T) {
+	stdout, _, _ := call(t, "", "panel", data+"demo.xlsx", "--format", "markdown")
+	var heads []string
+	for line := range strings.Lines(stdout) {
+		if strings.HasPrefix(line, "#") {
+			heads = append(heads, strings.TrimSpace(line))
+		}
+	}
+	want := []string{"## flare within 24 weeks", "### Large enough to matter?", "### Domains of certainty", "## symptom score at 24 weeks", "### Large enough to matter?",
+		"### Domains of certainty", "## serious harm", "### Domains of certainty", "## Findings", "## Cautions"}
+	if !slices.EqualFunc(heads, want, strings.HasPrefix) {
+		t.Errorf("%q, want %q", heads, want)
 	}
 }
