@@ -83,12 +83,21 @@ func TestCompare(t *testing.T) {
 				t.Errorf("%s: no cell %q in %v", w.name, cell, p.Cells)
 			}
 		}
-		if w.cells == "" && p.Effects != "" {
-			t.Errorf("%s: the same effect is set against itself: %s", w.name, p.Effects)
-		}
 		if p.First.Name != w.name || len(p.Cells) != len(all) || p.Large != w.large {
 			t.Errorf("pair %d: %s, %d cells, large %v; want %+v", i, p.First.Name, len(p.Cells), p.Large, w)
 		}
+	}
+}
+
+// TestSameEffect wants a row that differs in a text alone not to set its effect against
+// itself.
+func TestSameEffect(t *testing.T) {
+	x, plan := read(t, []byte(firstSheet), "first.csv")
+	y, _ := read(t, []byte(strings.Replace(firstSheet, "1.21,high", "1.21,low", 1)), "second.csv")
+	c := Compare(x, y)
+	c.Weigh(pooled(t, x, plan), pooled(t, y, plan))
+	if all := c.Findings(); len(all) != 1 || !strings.HasSuffix(all[0].Message, "risk of bias high against low") {
+		t.Errorf("findings %v, want one that ends with the judgements", all)
 	}
 }
 
