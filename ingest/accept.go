@@ -18,16 +18,11 @@ var lastRules = map[byte]int{'F': 12, 'D': 9, 'C': 11, 'M': 16, 'I': 20, 'A': 20
 
 // knownRule reports whether a text names a rule, such as "C2".
 func knownRule(text string) bool {
-	if !ruleName(text) {
+	if !review.IsRuleName(text) {
 		return false
 	}
 	number, err := strconv.Atoi(text[1:])
 	return err == nil && 1 <= number && number <= lastRules[text[0]]
-}
-
-// ruleName reports whether a text has the form of a rule: a capital and digits.
-func ruleName(text string) bool {
-	return len(text) >= 2 && len(text) <= 4 && 'A' <= text[0] && text[0] <= 'Z' && strings.Trim(text[1:], "0123456789") == ""
 }
 
 // howToAccept ends the message of a finding that a reviewer may accept.
@@ -86,7 +81,7 @@ func (t *tableReader) remarkAcceptance(s *review.Study, text string, findings []
 			}
 		}
 		switch {
-		case !ruleName(a.Rule):
+		case !review.IsRuleName(a.Rule):
 			wordless = true
 		case !knownRule(a.Rule):
 			say(review.Warning, quote(a.Rule)+" is no rule; write the rule of the finding and the reason, such as \"C2 corrected for clusters\"")

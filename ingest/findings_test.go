@@ -121,6 +121,7 @@ func TestFindings(t *testing.T) {
 		{"study of that name", counts([]any{"Trial", 2001, 3, 40, 5, 41}), nil, ""},
 		{"accepted", counts([]any{"A", 2002, 3.5, 40, 5, 41, "C2 corrected for clusters"}), []string{"error C2 C3 accepted"}, ""},
 		{"accepted with colon, two rules", counts([]any{"A", 2002, 3.5, 40, 42, 41, "C2: clusters; c1: recurrent events"}), []string{"error C2 C3 accepted", "error C1 E3", "warning F9 G3"}, ""},
+		{"accepted with a semicolon in the reason", counts([]any{"A", 2002, 3.5, 40, 5, 41, "C2 asked the author; corrected for clusters"}), []string{"error C2 C3 accepted"}, ""},
 		{"accepted without reason", counts([]any{"A", 2002, 3.5, 40, 5, 41, "C2"}), []string{"error C2 C3", "warning F9 G3"}, ""},
 		{"accepted in vain", counts([]any{"A", 2002, 3, 40, 5, 41, "F6 fine"}), []string{"note F9 G3"}, "nothing to accept"},
 		{"accepted no rule", counts([]any{"A", 2002, 3, 40, 5, 41, "all fine"}), []string{"note F9 G3"}, "names no rule"},

@@ -161,6 +161,7 @@ func accrualAnswer(s *synthesis.Synthesis, write func(*page, *synthesis.Synthesi
 		}
 	}
 	p.line("")
+	p.flagged(s)
 	p.item("·", synthesis.AccrualCaution)
 	p.item("·", synthesis.EvidenceCaution(s.Forms()...))
 	return &p

@@ -336,9 +336,15 @@ func findingText(f review.Finding) string {
 	if about := findingAbout(f); about != "" {
 		text += ", " + about
 	}
-	text += ": " + f.Message
-	if f.Accepted != "" {
-		text += ". Accepted: " + f.Accepted
+	return text + ": " + verdict(f)
+}
+
+// verdict returns the message of a finding, and in place of the offer to accept it the
+// reason where somebody has.
+func verdict(f review.Finding) string {
+	if f.Accepted == "" {
+		return f.Message
 	}
-	return text
+	message, _, _ := strings.Cut(f.Message, ", or accept it by writing")
+	return message + ". Accepted: " + f.Accepted
 }

@@ -156,11 +156,7 @@ func (p *page) finding(f review.Finding) {
 	if about := findingAbout(f); about != "" {
 		text += ", " + about
 	}
-	text += ": " + f.Message
-	if f.Accepted != "" {
-		text += ". Accepted: " + f.Accepted
-	}
-	p.item("·", text)
+	p.item("·", text+": "+verdict(f))
 }
 
 // unchecked writes the rules that the sheet lacks columns for, by the columns; those

@@ -50,6 +50,7 @@ func explainAnswer(s *synthesis.Synthesis) *page {
 	}
 	p.line("")
 	p.line("Cautions")
+	p.flagged(s)
 	for _, text := range limits {
 		p.item("·", text)
 	}

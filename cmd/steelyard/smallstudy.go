@@ -75,6 +75,7 @@ func smallStudyAnswer(s *synthesis.Synthesis) *page {
 	}
 	p.line("")
 	p.line("Cautions")
+	p.flagged(s)
 	p.item("·", synthesis.SmallStudyCaution)
 	p.item("·", synthesis.NoProofCaution)
 	p.item("·", synthesis.EvidenceCaution(s.Forms()...))

@@ -229,13 +229,13 @@ func (o *Outcome) unusedBySize(w NextWanted) error {
 	binary := comparesRisks(m)
 	switch {
 	case w.ControlRisk > 0 && !binary:
-		return &accrual.InputError{Problem: fmt.Sprintf("a %s has no use for a control risk: leave --control-risk away", m)}
+		return &accrual.InputError{Problem: fmt.Sprintf("%s has no use for a control risk: leave --control-risk away", m.WithArticle())}
 	case w.SD > 0 && m != effect.MeanDifference:
-		return &accrual.InputError{Problem: fmt.Sprintf("a %s has no use for a standard deviation: leave --sd away", m)}
+		return &accrual.InputError{Problem: fmt.Sprintf("%s has no use for a standard deviation: leave --sd away", m.WithArticle())}
 	case binary && w.ControlRisk == 0:
-		return &accrual.InputError{Problem: fmt.Sprintf("the standard error of a %s needs the risk in the control arm: give it with --control-risk, such as 0.2, or --se in place of the size", m)}
+		return &accrual.InputError{Problem: fmt.Sprintf("the standard error of %s needs the risk in the control arm: give it with --control-risk, such as 0.2, or --se in place of the size", m.WithArticle())}
 	case m == effect.MeanDifference && w.SD == 0:
-		return &accrual.InputError{Problem: fmt.Sprintf("the standard error of a %s needs the standard deviation: give it with --sd, or --se in place of the size", m)}
+		return &accrual.InputError{Problem: fmt.Sprintf("the standard error of %s needs the standard deviation: give it with --sd, or --se in place of the size", m.WithArticle())}
 	}
 	return nil
 }
