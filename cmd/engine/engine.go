@@ -31,6 +31,7 @@ type variant struct {
 	Changes map[string]string `json:"changes,omitempty"`  // setting → value; "where" holds besides the plan's own
 	LeftOut []int             `json:"left_out,omitempty"` // rows of the sheet
 	Added   *addition         `json:"added,omitempty"`    // a study that nobody has done
+	First   bool              `json:"first,omitempty"`    // only what is worked out at once
 }
 
 // addition is a hypothetical study.
@@ -85,20 +86,20 @@ func (o *opened) answer(request []byte) (r reply) {
 	}
 	d := s.Document(o.Version)
 	r = reply{Document: &d, Command: command}
-	if r.shown, err = o.show(s); err != nil {
+	if r.shown, err = o.show(s, v.extent()); err != nil {
 		return reply{Problem: err.Error()}
 	}
 	return r
 }
 
 // show writes the outcome for its place on the page.
-func (o *opened) show(s *synthesis.Synthesis) (*shown, error) {
+func (o *opened) show(s *synthesis.Synthesis, extent webpage.Extent) (*shown, error) {
 	for _, at := range o.Outcomes {
 		for i := range s.Outcomes {
 			if s.Outcomes[i].Name != at.Outcome {
 				continue
 			}
-			part, err := webpage.PartOf(s, i, at)
+			part, err := webpage.PartOf(s, i, at, extent)
 			if err != nil {
 				return nil, err
 			}
@@ -138,9 +139,17 @@ func (o *opened) run(v variant) (*synthesis.Synthesis, string, error) {
 	return s, command, nil
 }
 
+// extent says how much of the outcome is wanted.
+func (v variant) extent() webpage.Extent {
+	if v.First {
+		return webpage.First
+	}
+	return webpage.Whole
+}
+
 // want asks for what the page shows of an outcome.
 func (v variant) want() synthesis.Want {
-	want := webpage.Wanted()
+	want := webpage.WantedOf(v.extent())
 	if v.Outcome != "" {
 		want.Outcomes = []string{v.Outcome}
 	}

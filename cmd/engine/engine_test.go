@@ -14,6 +14,7 @@ import (
 	"strings"
 	"testing"
 
+	"steelyard/forest/webpage"
 	"steelyard/ingest"
 	"steelyard/meta/review"
 	"steelyard/meta/synthesis"
@@ -268,5 +269,18 @@ func BenchmarkAnswer(b *testing.B) {
 		if r := o.answer([]byte(`{"changes":{"level":"0.9"},"left_out":[3]}`)); r.Document == nil {
 			b.Fatal(r.Problem)
 		}
+	}
+}
+
+func BenchmarkHundred(b *testing.B) {
+	o := page(b, "/tmp/hundred.csv")
+	o.Outcomes = []webpage.Place{{Outcome: "relapse", ID: "o1"}}
+	for b.Loop() {
+		r := o.answer([]byte(`{"outcome":"relapse","changes":{"level":"0.9"},"left_out":[3]}`))
+		if r.Document == nil {
+			b.Fatal(r.Problem)
+		}
+		d, _ := json.Marshal(r)
+		b.ReportMetric(float64(len(d)), "bytes")
 	}
 }

@@ -67,7 +67,7 @@ func TestReportParts(t *testing.T) {
 		t.Fatalf("%v, %d places", err, len(sheet.Outcomes))
 	}
 	for i := range s.Outcomes {
-		part, err := webpage.PartOf(s, i, sheet.Outcomes[i])
+		part, err := webpage.PartOf(s, i, sheet.Outcomes[i], webpage.Whole)
 		if err != nil {
 			t.Fatal(err)
 		}

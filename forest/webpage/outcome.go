@@ -58,10 +58,11 @@ type sectionView struct {
 	After   []string
 }
 
-// outcome builds the view of an outcome; id begins the ids of its elements.
-func (v *view) outcome(s *synthesis.Synthesis, i int, id string) (*outcomeView, error) {
+// outcome builds the view of an outcome for its place, and notes there how many tables
+// come late.
+func (v *view) outcome(s *synthesis.Synthesis, i int, at *Place) (*outcomeView, error) {
 	o := &s.Outcomes[i]
-	w := &outcomeView{ID: id, Name: outcomeName(s, o), Problem: o.Problem}
+	w := &outcomeView{ID: at.ID, Name: outcomeName(s, o), Problem: o.Problem}
 	for _, e := range o.Excluded {
 		w.LeftOut = append(w.LeftOut, leftOutView{e.Study, e.Where(), e.Reason})
 	}
@@ -88,17 +89,32 @@ func (v *view) outcome(s *synthesis.Synthesis, i int, id string) (*outcomeView, 
 		return nil, err
 	}
 	w.Answer.withPanel(w.Panel)
-	if w.Other, err = v.other(s, o, w.ID); err != nil {
-		return nil, err
-	}
-	w.Posterior = v.posterior(s, o)
-	if w.Small, err = v.smallStudy(s, o, w.ID); err != nil {
+	if err = v.late(s, o, w, at); err != nil {
 		return nil, err
 	}
 	table := v.studyTable(s, o, w.ID)
 	w.Data = &table
 	v.data.Outcomes = append(v.data.Outcomes, v.outcomeData(o, w))
 	return w, nil
+}
+
+// late builds the sections that take long to work out.
+func (v *view) late(s *synthesis.Synthesis, o *synthesis.Outcome, w *outcomeView, at *Place) error {
+	if v.extent == First {
+		v.tables += at.Late
+		return nil
+	}
+	before := v.tables
+	var err error
+	if w.Other, err = v.other(s, o, w.ID); err != nil {
+		return err
+	}
+	w.Posterior = v.posterior(s, o)
+	if w.Small, err = v.smallStudy(s, o, w.ID); err != nil {
+		return err
+	}
+	at.Late = v.tables - before
+	return nil
 }
 
 func (v *view) answer(s *synthesis.Synthesis, o *synthesis.Outcome, id string) *answerView {

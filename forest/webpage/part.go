@@ -11,7 +11,17 @@ type Place struct {
 	ID      string `json:"id"`
 	Figures int    `json:"figures"`
 	Tables  int    `json:"tables"`
+	Late    int    `json:"late"` // tables of the sections that First leaves out and that come after the analyses without one study
 }
+
+// Extent says how much of an outcome is written.
+type Extent int
+
+// Extents.
+const (
+	Whole Extent = iota
+	First        // what is worked out at once: the answer, the forest chart, the panel's part, the studies, the methods
+)
 
 // Section is a whole element of the page, with its id.
 type Section struct {
@@ -28,11 +38,12 @@ type Part struct {
 }
 
 // PartOf writes an outcome's share of the page: the same as Page writes for it if it
-// stands at that place.
-func PartOf(s *synthesis.Synthesis, i int, at Place) (Part, error) {
+// stands at that place. First leaves sections out; the numbers of the tables behind them
+// are then those of the plan.
+func PartOf(s *synthesis.Synthesis, i int, at Place, extent Extent) (Part, error) {
 	v := &view{drawn: newDrawn()}
-	v.figures, v.tables = at.Figures, at.Tables
-	o, err := v.outcome(s, i, at.ID)
+	v.figures, v.tables, v.extent = at.Figures, at.Tables, extent
+	o, err := v.outcome(s, i, &at)
 	if err != nil {
 		return Part{}, err
 	}
@@ -40,6 +51,14 @@ func PartOf(s *synthesis.Synthesis, i int, at Place) (Part, error) {
 	lead.lead(o)
 	methods := methodsOf(s, &s.Outcomes[i], at.ID)
 	return Part{Lead: lead.String(), Sections: append(o.sections(), methods.section()), CSS: v.positions.css(), Data: v.data.Outcomes[0]}, nil
+}
+
+// WantedOf returns the parts of a synthesis that the page shows to that extent.
+func WantedOf(extent Extent) synthesis.Want {
+	if extent == First {
+		return synthesis.Want{Cumulative: true, LeaveOneOut: true, Further: synthesis.Further{Panel: &synthesis.PanelWanted{}}}
+	}
+	return Wanted()
 }
 
 // Wanted returns the parts of a synthesis that the page shows.

@@ -27,6 +27,10 @@ func (v *view) accrual(s *synthesis.Synthesis, o *synthesis.Outcome, id string) 
 	if o.Accrual == nil || len(o.Accrual.Cumulative) < 2 {
 		return nil, nil
 	}
+	if v.extent == First {
+		v.figures, v.tables = v.figures+1, v.tables+1
+		return nil, nil
+	}
 	f, err := v.figure(s, o, id, kind("cumulative"))
 	if err != nil {
 		return nil, err
@@ -43,7 +47,17 @@ func (v *view) accrual(s *synthesis.Synthesis, o *synthesis.Outcome, id string) 
 // rests is the section of leave-one-out and of the planned runs; nil for one study.
 func (v *view) rests(s *synthesis.Synthesis, o *synthesis.Outcome, id string) (*sectionView, error) {
 	w := &sectionView{Items: "13f, 20d", Heading: "What does it rest on?", Under: keep(words.LeaveOneOutSentence(s, o))}
-	if o.Accrual != nil && len(o.Accrual.LeaveOneOut) > 1 {
+	without := o.Accrual != nil && len(o.Accrual.LeaveOneOut) > 1
+	if v.extent == First {
+		if without {
+			v.figures, v.tables = v.figures+1, v.tables+1
+		}
+		if len(o.Studies) > 1 {
+			v.tables++
+		}
+		return nil, nil
+	}
+	if without {
 		f, err := v.figure(s, o, id, kind("leave-one-out"))
 		if err != nil {
 			return nil, err

@@ -53,6 +53,7 @@ type drawn struct {
 	spans     map[string]float64 // of the beams, in steps, by outcome
 	baselines map[string]baselineStopsOf
 	places    []Place
+	extent    Extent
 }
 
 func newDrawn() drawn {
@@ -77,11 +78,11 @@ func newView(s *synthesis.Synthesis, options Options) (*view, error) {
 	v.drawn, v.Live = newDrawn(), options.Live
 	for i := range s.Outcomes {
 		at := Place{Outcome: s.Outcomes[i].Name, ID: fmt.Sprintf("o%d", i+1), Figures: v.figures, Tables: v.tables}
-		v.places = append(v.places, at)
-		o, err := v.outcome(s, i, at.ID)
+		o, err := v.outcome(s, i, &at)
 		if err != nil {
 			return nil, err
 		}
+		v.places = append(v.places, at)
 		v.Outcomes = append(v.Outcomes, o)
 		v.Methods = append(v.Methods, methodsOf(s, &s.Outcomes[i], at.ID))
 	}
