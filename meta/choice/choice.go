@@ -13,18 +13,26 @@ import (
 type Names[T ~int] struct {
 	what     string
 	names    []string
-	synonyms map[string]T
+	folded   []string     // the names as they are compared
+	synonyms map[string]T // by how they are compared
 }
 
 // Of returns the names of an enumeration; what says in a message what is being
 // chosen, such as "interval method". names[i] is the name of T(i).
 func Of[T ~int](what string, names ...string) Names[T] {
-	return Names[T]{what: what, names: names}
+	n := Names[T]{what: what, names: names}
+	for _, name := range names {
+		n.folded = append(n.folded, Fold(name))
+	}
+	return n
 }
 
 // With returns a copy that also takes other words for a value.
 func (n Names[T]) With(synonyms map[string]T) Names[T] {
-	n.synonyms = synonyms
+	n.synonyms = make(map[string]T, len(synonyms))
+	for name, v := range synonyms {
+		n.synonyms[Fold(name)] = v
+	}
 	return n
 }
 
@@ -46,17 +54,12 @@ func (n Names[T]) All() []string {
 // whether words are joined by blanks, underscores or hyphens do not matter. The
 // error of an unknown name lists the valid ones.
 func (n Names[T]) Parse(text string) (T, error) {
-	want := Fold(text)
-	if want != "" {
-		for i, name := range n.names {
-			if name != "" && Fold(name) == want {
-				return T(i), nil
-			}
+	if want := Fold(text); want != "" {
+		if i := slices.Index(n.folded, want); i >= 0 {
+			return T(i), nil
 		}
-		for name, v := range n.synonyms {
-			if Fold(name) == want {
-				return v, nil
-			}
+		if v, ok := n.synonyms[want]; ok {
+			return v, nil
 		}
 	}
 	return 0, &UnknownError{What: n.what, Text: text, Valid: n.All()}

@@ -194,9 +194,13 @@ func namedValues(values []effect.Value, row *review.Study) map[string]float64 {
 			continue
 		}
 		name := v.Name
-		for _, title := range []string{v.Name, "analysis " + v.Name} {
+		titles := []string{v.Name, "analysis " + v.Name}
+		if row == nil {
+			titles = nil
+		}
+		for _, title := range titles {
 			field, err := review.ParseField(title)
-			if err != nil || row == nil {
+			if err != nil {
 				continue
 			}
 			if n, ok := row.Number(field); ok && n.Value == v.Value {
