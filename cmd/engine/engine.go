@@ -32,6 +32,7 @@ type variant struct {
 	LeftOut []int             `json:"left_out,omitempty"` // rows of the sheet
 	Added   *addition         `json:"added,omitempty"`    // a study that nobody has done
 	First   bool              `json:"first,omitempty"`    // only what is worked out at once
+	Narrow  bool              `json:"narrow,omitempty"`   // and of charts the narrow form
 }
 
 // addition is a hypothetical study.
@@ -53,6 +54,7 @@ type reply struct {
 type shown struct {
 	Lead     string              `json:"lead"`     // HTML of the opening sentence
 	Sections []webpage.Section   `json:"sections"` // of the outcome, in the page's order, and its methods
+	Late     []string            `json:"late"`     // ids of sections that were left out
 	CSS      string              `json:"css"`      // rules for the places in them
 	Data     webpage.OutcomeData `json:"data"`
 }
@@ -103,7 +105,7 @@ func (o *opened) show(s *synthesis.Synthesis, extent webpage.Extent) (*shown, er
 			if err != nil {
 				return nil, err
 			}
-			return &shown{part.Lead, part.Sections, part.CSS, part.Data}, nil
+			return &shown{part.Lead, part.Sections, part.Late, part.CSS, part.Data}, nil
 		}
 	}
 	return nil, nil
@@ -141,7 +143,10 @@ func (o *opened) run(v variant) (*synthesis.Synthesis, string, error) {
 
 // extent says how much of the outcome is wanted.
 func (v variant) extent() webpage.Extent {
-	if v.First {
+	switch {
+	case v.First && v.Narrow:
+		return webpage.FirstNarrow
+	case v.First:
 		return webpage.First
 	}
 	return webpage.Whole

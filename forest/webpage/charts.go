@@ -16,7 +16,9 @@ type figureView struct {
 	Number       int
 	Title        string
 	Notes        []noteView
-	Wide, Narrow string // Wide is blank where the narrow form serves both, and Narrow where the wide one scrolls
+	Wide, Narrow string // one is blank where the other serves both, or until it is drawn
+	Small        bool   // the narrow form serves both
+	Long         bool   // the wide form serves both, and scrolls
 	Problem      string // why there is no chart
 }
 
@@ -88,33 +90,53 @@ func laidOut[Input any](
 func (v *view) figure(s *synthesis.Synthesis, o *synthesis.Outcome, id string, k chart) (figureView, error) {
 	v.figures++
 	f := figureView{ID: id + "-" + k.Name, Number: v.figures}
+	long := k.long && len(o.Studies) > mostTwice
+	both := !k.small && !long
+	if both && v.extent == FirstNarrow {
+		return f, f.drawNarrow(s, o, k, "")
+	}
 	wide, err := k.Lay(s, o, layout.Style{ID: f.ID + "-w", NoTitle: true})
 	if err != nil {
 		f.Problem = err.Error()
 		return f, nil
 	}
-	f.Title = wide.Pages[0].Title
+	f.take(&wide)
+	if k.small {
+		return f, f.drawNarrow(s, o, k, "")
+	}
+	if f.Wide, err = inline(wide, ""); err != nil || long || v.extent == First {
+		f.Long = long
+		return f, err
+	}
+	return f, f.drawNarrow(s, o, k, wide.Pages[0].ID)
+}
+
+// take takes title and notes from a chart.
+func (f *figureView) take(d *layout.Document) {
+	f.Title = d.Pages[0].Title
 	if !strings.HasSuffix(f.Title, "?") {
 		f.Title += "."
 	}
+	f.Notes = takeNotes(d)
+}
+
+// drawNarrow draws the narrow form; described names the chart that describes it too.
+func (f *figureView) drawNarrow(s *synthesis.Synthesis, o *synthesis.Outcome, k chart, described string) error {
 	narrow, err := k.Lay(s, o, layout.Style{ID: f.ID + "-n", NoTitle: true, Width: layout.NarrowWidth, TypeSize: narrowType})
 	if err != nil {
 		narrow, err = k.Lay(s, o, layout.Style{ID: f.ID + "-n", NoTitle: true, Width: layout.NarrowWidth})
 	}
 	if err != nil {
-		return f, fmt.Errorf("chart %s of %s in the narrow form: %w", k.Name, outcomeName(s, o), err)
+		return fmt.Errorf("chart %s of %s in the narrow form: %w", k.Name, outcomeName(s, o), err)
 	}
-	f.Notes = takeNotes(&wide)
-	takeNotes(&narrow)
-	if k.small {
-		f.Narrow, err = inline(narrow, "")
-		return f, err
+	if f.Title == "" {
+		f.take(&narrow)
+	} else {
+		takeNotes(&narrow)
 	}
-	if f.Wide, err = inline(wide, ""); err != nil || k.long && len(o.Studies) > mostTwice {
-		return f, err
-	}
-	f.Narrow, err = inline(narrow, wide.Pages[0].ID)
-	return f, err
+	f.Small = k.small
+	f.Narrow, err = inline(narrow, described)
+	return err
 }
 
 // noteView is a note under a chart: its head word and text.

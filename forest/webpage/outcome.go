@@ -100,7 +100,7 @@ func (v *view) outcome(s *synthesis.Synthesis, i int, at *Place) (*outcomeView, 
 
 // late builds the sections that take long to work out.
 func (v *view) late(s *synthesis.Synthesis, o *synthesis.Outcome, w *outcomeView, at *Place) error {
-	if v.extent == First {
+	if v.extent != Whole {
 		v.tables += at.Late
 		return nil
 	}

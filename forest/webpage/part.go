@@ -19,9 +19,13 @@ type Extent int
 
 // Extents.
 const (
-	Whole Extent = iota
-	First        // what is worked out at once: the answer, the forest chart, the panel's part, the studies, the methods
+	Whole       Extent = iota
+	First              // what is worked out at once: the answer, the forest chart, the panel's part, the studies, the methods; of a chart in two forms the wide one
+	FirstNarrow        // First with the narrow forms
 )
+
+// late are the sections that First leaves out.
+var late = []string{"accrual", "rests", "other", "posterior", "small"}
 
 // Section is a whole element of the page, with its id.
 type Section struct {
@@ -33,6 +37,7 @@ type Section struct {
 type Part struct {
 	Lead     string      // HTML of the sentence with which the page opens for it, for the element with id "…-lead"
 	Sections []Section   // in the order of the page, its methods last
+	Late     []string    // ids of sections that the extent leaves out
 	CSS      string      // rules for the places in them
 	Data     OutcomeData // for the page's script
 }
@@ -50,12 +55,18 @@ func PartOf(s *synthesis.Synthesis, i int, at Place, extent Extent) (Part, error
 	var lead markup
 	lead.lead(o)
 	methods := methodsOf(s, &s.Outcomes[i], at.ID)
-	return Part{Lead: lead.String(), Sections: append(o.sections(), methods.section()), CSS: v.positions.css(), Data: v.data.Outcomes[0]}, nil
+	part := Part{Lead: lead.String(), Sections: append(o.sections(), methods.section()), Late: []string{}, CSS: v.positions.css(), Data: v.data.Outcomes[0]}
+	if extent != Whole && s.Outcomes[i].Result != nil {
+		for _, name := range late {
+			part.Late = append(part.Late, at.ID+"-"+name)
+		}
+	}
+	return part, nil
 }
 
 // WantedOf returns the parts of a synthesis that the page shows to that extent.
 func WantedOf(extent Extent) synthesis.Want {
-	if extent == First {
+	if extent != Whole {
 		return synthesis.Want{Cumulative: true, LeaveOneOut: true, Further: synthesis.Further{Panel: &synthesis.PanelWanted{}}}
 	}
 	return Wanted()

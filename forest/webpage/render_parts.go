@@ -9,9 +9,9 @@ func (m *markup) figure(f *figureView) {
 	}
 	m.open("figure", "id", f.ID)
 	switch {
-	case f.Wide == "":
+	case f.Small:
 		m.raw(`<div class="small">`, f.Narrow, "</div>")
-	case f.Narrow == "":
+	case f.Long:
 		m.open("div", "class", "scroll long", "role", "region", "aria-label", "Figure "+whole(f.Number), "tabindex", "0")
 		m.raw(f.Wide, "</div>")
 	default:

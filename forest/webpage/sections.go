@@ -27,7 +27,7 @@ func (v *view) accrual(s *synthesis.Synthesis, o *synthesis.Outcome, id string) 
 	if o.Accrual == nil || len(o.Accrual.Cumulative) < 2 {
 		return nil, nil
 	}
-	if v.extent == First {
+	if v.extent != Whole {
 		v.figures, v.tables = v.figures+1, v.tables+1
 		return nil, nil
 	}
@@ -48,7 +48,7 @@ func (v *view) accrual(s *synthesis.Synthesis, o *synthesis.Outcome, id string) 
 func (v *view) rests(s *synthesis.Synthesis, o *synthesis.Outcome, id string) (*sectionView, error) {
 	w := &sectionView{Items: "13f, 20d", Heading: "What does it rest on?", Under: keep(words.LeaveOneOutSentence(s, o))}
 	without := o.Accrual != nil && len(o.Accrual.LeaveOneOut) > 1
-	if v.extent == First {
+	if v.extent != Whole {
 		if without {
 			v.figures, v.tables = v.figures+1, v.tables+1
 		}

@@ -1,14 +1,21 @@
 // @ts-check
 "use strict";
 
+/** How long the page waits for a further change before it works out the late sections, in ms. */
+const pauseBeforeRest = 120;
+
 /**
  * What the page offers to those who change an analysis.
  *
  * whatIf.ask(outcomeId, variant) computes a changed analysis, shows it in place of the
  * outcome with that prefix of ids, as "o1", and then sends document the event
- * "whatif:shown" with detail {outcomeId, variant, reply}. It returns the reply; null if a
- * later question about the same outcome overtook it. A reply with a problem and without a
- * document changes nothing on the page; the event comes all the same.
+ * "whatif:shown" with detail {outcomeId, variant, reply, complete}. It returns the reply;
+ * null if a later question about the same outcome overtook it. A reply with a problem and
+ * without a document changes nothing on the page; the event comes all the same.
+ * Sections that take long come later: they stand as they were and are marked aria-busy
+ * until then, and reply.late holds their ids. The same reply object then gets all that the
+ * whole answer holds, and the event comes again, with complete true.
+ * whatIf.settled() waits until nothing is busy.
  * whatIf.broken says why nothing can be computed; blank while it can. When the engine
  * breaks, document gets the event "whatif:broken" with detail {reason}.
  * whatIf.sheet is what the engine was given: {version, extraction, plan, outcomes}, the
@@ -29,6 +36,22 @@ const whatIf = (() => {
     }
     tell("whatif:broken", { reason });
   };
+  /** What is being worked out, by outcome. @type {Map<string, Promise<void>>} */
+  const working = new Map();
+  /** The latest reply shown, by outcome. @type {Map<string, Reply>} */
+  const latest = new Map();
+
+  /** Works out and shows what comes late. @param {string} outcomeId @param {Variant} variant @param {Reply} reply */
+  const complete = async (outcomeId, variant, reply) => {
+    await new Promise((done) => setTimeout(done, pauseBeforeRest));
+    if (latest.get(outcomeId) !== reply || engine.broken) return;
+    const whole = await engine.askWhole(variant).catch(() => null); // onbroken says why
+    if (!whole?.document || latest.get(outcomeId) !== reply) return;
+    swapRest(outcomeId, whole);
+    Object.assign(reply, whole, { late: [] });
+    tell("whatif:shown", { outcomeId, variant, reply, complete: true });
+  };
+
   return {
     sheet: JSON.parse(sheet),
     engine,
@@ -36,12 +59,26 @@ const whatIf = (() => {
       return engine.broken;
     },
     start: () => engine.start(),
+    settled: async () => {
+      while (working.size > 0) await Promise.all(working.values());
+    },
     /** @param {string} outcomeId @param {Variant} variant @returns {Promise<Reply | null>} */
     ask: async (outcomeId, variant) => {
-      const reply = await engine.ask(variant);
-      if (reply === null) return null;
-      if (reply.document) swap(outcomeId, reply);
-      tell("whatif:shown", { outcomeId, variant, reply });
+      const answer = await engine.ask(variant);
+      if (answer === null) return null;
+      const reply = { ...answer };
+      const later = (reply.late ?? []).length > 0;
+      if (reply.document) {
+        latest.set(outcomeId, reply);
+        swap(outcomeId, reply);
+      }
+      tell("whatif:shown", { outcomeId, variant, reply, complete: !later });
+      if (reply.document && later) {
+        const rest = complete(outcomeId, variant, reply).finally(() => {
+          if (working.get(outcomeId) === rest) working.delete(outcomeId);
+        });
+        working.set(outcomeId, rest);
+      }
       return reply;
     },
   };

@@ -11,6 +11,7 @@ const swapped = new Map();
  * Shows a reply in place of what the page shows of an outcome: its opening sentence, its
  * sections and its methods. Sections that read the same stay as they are; so do elements
  * beside the sections, focus, scroll, sliders, filters, sorting and opened details.
+ * Sections that come late are marked busy until they do.
  * @param {string} outcomeId the prefix of the outcome's ids, as "o1"
  * @param {Reply} reply one with a document
  */
@@ -20,13 +21,45 @@ function swap(outcomeId, reply) {
   const scroll = { left: window.scrollX, top: window.scrollY };
   const focus = focusPath(document.activeElement);
   placePositions(outcomeId, reply.css ?? "");
-  const changed = replaceSections(outcome, reply.sections);
+  const changed = replaceSections(outcome, reply.sections, reply.late ?? []);
   const lead = document.getElementById(outcomeId + "-lead");
   if (lead && lead.innerHTML !== reply.lead) lead.innerHTML = reply.lead ?? "";
   rebindOutcome(reply.data, changed);
   hideDeadLinks(outcomeId);
   refocus(focus);
   if (window.scrollX !== scroll.left || window.scrollY !== scroll.top) window.scrollTo({ ...scroll, behavior: "instant" });
+}
+
+/** Sections to which the page has added something, so that they are completed in place. */
+const completed = ["-trials", "-data"];
+
+/**
+ * Shows what came late of an answer.
+ * @param {string} outcomeId
+ * @param {Reply} whole
+ */
+function swapRest(outcomeId, whole) {
+  for (const { id, html } of whole.sections ?? []) {
+    const old = document.getElementById(id);
+    if (!old || swapped.get(id) === html || !completed.some((end) => id.endsWith(end))) continue;
+    completeSection(old, elementOf(html));
+    swapped.set(id, html);
+  }
+  swap(outcomeId, whole);
+}
+
+/**
+ * Fills in the forms of charts that were not drawn at first, and numbers figures and
+ * tables anew.
+ * @param {Element} old @param {Element} fresh
+ */
+function completeSection(old, fresh) {
+  const pairs = (/** @type {string} */ selector, /** @type {(a: Element, b: Element) => void} */ act) => {
+    const there = fresh.querySelectorAll(selector);
+    old.querySelectorAll(selector).forEach((e, i) => there[i] && act(e, there[i]));
+  };
+  pairs("caption, figcaption", (a, b) => { if (a.innerHTML !== b.innerHTML) a.innerHTML = b.innerHTML; });
+  pairs("figure > .wide, figure > .narrow", (a, b) => { if (!a.querySelector("svg")) a.prepend(...b.childNodes); });
 }
 
 /** @param {string} outcomeId @param {string} css */
@@ -43,17 +76,20 @@ function placePositions(outcomeId, css) {
 /**
  * @param {HTMLElement} outcome
  * @param {{id: string, html: string}[]} sections
+ * @param {string[]} late ids of sections that are kept, but busy
  * @returns {HTMLElement[]} the new elements
  */
-function replaceSections(outcome, sections) {
+function replaceSections(outcome, sections, late) {
   /** @type {HTMLElement[]} */
   const changed = [];
-  const wanted = new Set(sections.map((section) => section.id));
+  const wanted = new Set([...sections.map((section) => section.id), ...late]);
   for (const old of Array.from(outcome.children)) {
-    if (old.localName === "section" && old.id && !wanted.has(old.id)) {
-      old.remove();
-      swapped.delete(old.id);
-    }
+    if (old.localName !== "section" || !old.id) continue;
+    if (late.includes(old.id)) old.setAttribute("aria-busy", "true");
+    else old.removeAttribute("aria-busy");
+    if (wanted.has(old.id)) continue;
+    old.remove();
+    swapped.delete(old.id);
   }
   /** @type {Element | null} the section before */
   let before = null;
