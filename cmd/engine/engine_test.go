@@ -272,15 +272,89 @@ func BenchmarkAnswer(b *testing.B) {
 	}
 }
 
-func BenchmarkHundred(b *testing.B) {
-	o := page(b, "/tmp/hundred.csv")
-	o.Outcomes = []webpage.Place{{Outcome: "relapse", ID: "o1"}}
-	for b.Loop() {
-		r := o.answer([]byte(`{"outcome":"relapse","changes":{"level":"0.9"},"left_out":[3]}`))
-		if r.Document == nil {
-			b.Fatal(r.Problem)
-		}
-		d, _ := json.Marshal(r)
-		b.ReportMetric(float64(len(d)), "bytes")
+// hundredStudies writes a sheet of 100 seeded trials and returns its path.
+func hundredStudies(t testing.TB) string {
+	t.Helper()
+	r := rand.New(rand.NewPCG(100, 1))
+	sheet := "study,year,outcome,events treated,total treated,events control,total control,risk of bias\n"
+	for i := range 100 {
+		n, m := 60+r.IntN(340), 60+r.IntN(340)
+		sheet += fmt.Sprintf("Trialist-%d,%d,relapse,%d,%d,%d,%d,%s\n", i, 1970+i/2, 1+r.IntN(n/3), n, 1+r.IntN(m/3), m, []string{"low", "unclear", "high"}[i%3])
 	}
+	path := filepath.Join(t.TempDir(), "hundred.csv")
+	if err := os.WriteFile(path, []byte(sheet), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	return path
+}
+
+// BenchmarkHundred is one change of a review of 100 studies, as far as it is worked out at
+// once and whole.
+func BenchmarkHundred(b *testing.B) {
+	for name, first := range map[string]bool{"first": true, "whole": false} {
+		b.Run(name, func(b *testing.B) {
+			o := page(b, hundredStudies(b))
+			o.Outcomes = []webpage.Place{{Outcome: "relapse", ID: "o1"}}
+			request := fmt.Appendf(nil, `{"outcome":"relapse","changes":{"level":"0.9"},"left_out":[3],"first":%v}`, first)
+			for b.Loop() {
+				text, err := json.Marshal(o.answer(request))
+				if err != nil || len(text) < 1e5 {
+					b.Fatalf("%d bytes, %v", len(text), err)
+				}
+			}
+		})
+	}
+}
+
+// TestFirst wants what is answered at once to hold the sections of the whole answer, with
+// the same numbers, and to name the others as late.
+func TestFirst(t *testing.T) {
+	o := page(t, filepath.Join("..", "..", "testdata", "demo.xlsx"))
+	outcome := o.Extraction.Outcomes()[0]
+	o.Outcomes = []webpage.Place{{Outcome: outcome, ID: "o1"}}
+	ask := func(first bool) reply {
+		r := o.answer(fmt.Appendf(nil, `{"outcome":%q,"changes":{"level":"0.9"},"first":%v}`, outcome, first))
+		if r.shown == nil {
+			t.Fatalf("nothing to show: %s", r.Problem)
+		}
+		return r
+	}
+	whole := ask(false)
+	place, err := webpage.PartOf(mustRun(t, o, outcome), 0, o.Outcomes[0], webpage.Whole)
+	if err != nil || len(place.Sections) != len(whole.Sections) {
+		t.Fatalf("%d sections, %v; the whole answer has %d", len(place.Sections), err, len(whole.Sections))
+	}
+	first := ask(true)
+	html := map[string]string{}
+	for _, section := range whole.Sections {
+		html[section.ID] = section.HTML
+	}
+	for _, section := range first.Sections {
+		if section.ID != "o1-trials" && section.ID != "o1-data" && html[section.ID] != section.HTML { // these are completed later
+			t.Errorf("%s is another at once than whole", section.ID)
+		}
+		delete(html, section.ID)
+	}
+	for _, id := range first.Late {
+		delete(html, id)
+	}
+	if len(html) > 0 || len(first.Late) == 0 || len(whole.Late) != 0 {
+		t.Errorf("%d sections are neither there at once nor late", len(html))
+	}
+	if first.Lead != whole.Lead {
+		t.Errorf("the lead at once is %q, whole %q", first.Lead, whole.Lead)
+	}
+	if !reflect.DeepEqual(first.Document.Outcomes[0].Pooled, whole.Document.Outcomes[0].Pooled) {
+		t.Error("the pooled result at once is another")
+	}
+}
+
+// mustRun analyses the outcome whole, as planned but for the level.
+func mustRun(t *testing.T, o *opened, outcome string) *synthesis.Synthesis {
+	t.Helper()
+	s, _, err := o.run(variant{Outcome: outcome, Changes: map[string]string{"level": "0.9"}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return s
 }
