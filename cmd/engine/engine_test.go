@@ -330,7 +330,7 @@ func TestFirst(t *testing.T) {
 		html[section.ID] = section.HTML
 	}
 	for _, section := range first.Sections {
-		if section.ID != "o1-trials" && section.ID != "o1-data" && html[section.ID] != section.HTML { // these are completed later
+		if section.ID == "o1-answer" && html[section.ID] != section.HTML { // in the others, charts and numbers of tables are completed later
 			t.Errorf("%s is another at once than whole", section.ID)
 		}
 		delete(html, section.ID)

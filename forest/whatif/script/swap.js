@@ -31,7 +31,7 @@ function swap(outcomeId, reply) {
 }
 
 /** Sections to which the page has added something, so that they are completed in place. */
-const completed = ["-trials", "-data"];
+const completed = ["-trials", "-panel", "-data"];
 
 /**
  * Shows what came late of an answer.
