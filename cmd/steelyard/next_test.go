@@ -145,6 +145,7 @@ func TestNextCalls(t *testing.T) {
 		{"", "next-trial BCG", codeCall, "give one of --size, --arms and --se"},
 		{"", "next-trial BCG --size 100 --se 0.2", codeCall, "2 are given"},
 		{"", "next-trial BCG --size 100", codeDone, "control risk 1.6%, the median of 13 studies' control arms"},
+		{"study,events treated,total treated,events control,total control\nA,4,123,11,139\n", "next-trial - --size 100", codeDone, "control risk 7.9%, that of the only control arm (--control-risk"},
 		{odds, "next-trial - --size 100", codeCall, "give it with --control-risk"},
 		{zeros, "next-trial - --size 100", codeCall, "the median risk of the studies' 3 control arms is 0"},
 		{"", "next-trial BCG --size 100 --control-risk 1", codeCall, "--control-risk 1"},

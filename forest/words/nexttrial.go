@@ -14,7 +14,11 @@ func AssumedRisk(s *synthesis.Synthesis, n *synthesis.Next) string {
 	case risk == 0:
 		return ""
 	case n.RiskFrom > 0:
-		return fmt.Sprintf("control risk %s%%, the median of %s %s' control arms (--control-risk states another); ", PriorScale(100*risk), Count(n.RiskFrom), Noun(s, n.RiskFrom))
+		whose := "that of the only control arm"
+		if n.RiskFrom > 1 {
+			whose = fmt.Sprintf("the median of %s %s' control arms", Count(n.RiskFrom), Noun(s, n.RiskFrom))
+		}
+		return fmt.Sprintf("control risk %s%%, %s (--control-risk states another); ", PriorScale(100*risk), whose)
 	default:
 		return fmt.Sprintf("control risk %s%%; ", PriorScale(100*risk))
 	}
