@@ -2,6 +2,7 @@ package main
 
 import (
 	"encoding/json"
+	"fmt"
 	"math"
 	"os"
 	"path/filepath"
@@ -318,6 +319,31 @@ func TestExplainSeveral(t *testing.T) {
 		text := strings.Join(strings.Fields(stdout), " ")
 		if code != codeDone || !strings.Contains(text, c.says) || c.says == "" && strings.Contains(text, "weighed here together") {
 			t.Errorf("%v: exit %d, want %q in\n%s%s", c.args, code, c.says, stdout, stderr)
+		}
+	}
+}
+
+// TestExplainLongCategories: the table of fitted values is no wider than an answer,
+// however long a category's name; Markdown has the name whole.
+func TestExplainLongCategories(t *testing.T) {
+	long := "hospital wards in three countries of the north, with long names"
+	sheet := "study,estimate,se,year,setting\n"
+	for i, setting := range []string{long, "home", "home", long, "home", long} {
+		sheet += fmt.Sprintf("%s,%v,0.2,%d,\"%s\"\n", strings.Repeat("S", i+1), 0.1*float64(i), 2001+i, setting)
+	}
+	for _, on := range []string{"setting", "year, setting", "year, setting, setting*year"} {
+		args := []string{"explain", "-", "--measure", "mean difference", "--permutations", "0", "--on", on}
+		stdout, stderr, code := call(t, sheet, args...)
+		if code != codeDone {
+			t.Fatalf("exit %d, %s", code, stderr)
+		}
+		for line := range strings.Lines(stdout) {
+			if n := len([]rune(strings.TrimRight(line, "\n"))); n > 100 {
+				t.Errorf("%s: %d columns: %s", on, n, line)
+			}
+		}
+		if whole, _, _ := call(t, sheet, append(args, "--format", "markdown")...); !strings.Contains(whole, "| "+long+" |") {
+			t.Errorf("%s: the name is cut in\n%s", on, whole)
 		}
 	}
 }

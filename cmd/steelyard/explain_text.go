@@ -241,7 +241,7 @@ func (p *page) fitted(o *synthesis.Outcome, r *synthesis.RegressionResult) {
 	level := words.Level(r.Model.Level)
 	columns := []column{{head: "study"}}
 	for _, c := range r.Design.Covariates {
-		columns = append(columns, column{head: c.Name, right: c.Levels == nil})
+		columns = append(columns, column{head: c.Name, right: c.Levels == nil, names: c.Levels != nil})
 	}
 	columns = append(columns, column{head: "own", right: true}, column{head: "expected (" + level + ")"}, column{head: "predicted (" + level + ")"})
 	values := func(f explain.Fitted) []string {

@@ -7,11 +7,12 @@ import (
 	"github.com/rivo/uniseg"
 )
 
-// column is a column of a text table: its head, and whether its cells stand at
-// the right.
+// column is a column of a text table: its head, whether its cells stand at the
+// right, and whether they are names that may be cut where the table is too wide.
 type column struct {
 	head  string
 	right bool
+	names bool
 }
 
 // The first column of a table holds names: it is cut to widestName, and further,
@@ -47,8 +48,13 @@ func (p *page) tableNamed(columns []column, rows [][]string, narrowest, widest i
 	}
 	name := min(widest, max(narrowest, widths[0]-max(0, total-answerWidth)))
 	widths[0] = max(width(columns[0].head), min(widths[0], name))
+	cutNames(columns, widths)
 	for _, row := range rows {
-		row[0] = cut(row[0], widths[0])
+		for i := range row {
+			if i == 0 || columns[i].names {
+				row[i] = cut(row[i], widths[i])
+			}
+		}
 	}
 	heads := make([]string, len(columns))
 	for i, c := range columns {
@@ -66,6 +72,27 @@ func (p *page) tableNamed(columns []column, rows [][]string, narrowest, widest i
 			line += cell + "  "
 		}
 		p.write(line)
+	}
+}
+
+// cutNames narrows the columns of names, the widest first, until the table is no wider
+// than an answer, none below its head or narrowestName.
+func cutNames(columns []column, widths []int) {
+	total := 0
+	for _, w := range widths {
+		total += w + 2
+	}
+	for ; total > answerWidth; total-- {
+		widest := -1
+		for i, c := range columns {
+			if c.names && widths[i] > max(narrowestName, width(c.head)) && (widest < 0 || widths[i] > widths[widest]) {
+				widest = i
+			}
+		}
+		if widest < 0 {
+			return
+		}
+		widths[widest]--
 	}
 }
 
