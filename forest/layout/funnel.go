@@ -263,6 +263,7 @@ func (c *funnel) page() Drawing {
 		centre = *c.in.Pooled
 	}
 	taken = append(taken, area{null - 1, null + 1, c.top, c.bottom})
+	taken = append(taken, besideLines(pooled)...)
 	names := c.nameItems(farthestFirst(len(c.dots), func(i int) float64 { return math.Abs(c.dots[i].x-centre) / (c.dots[i].y + 0.1*c.up.high) }), taken)
 	return c.drawing(title, c.description(), []Item{
 		Group{ID: "head", Items: []Item{c.headItem("Standard error", c.unit())}},

@@ -342,6 +342,39 @@ func TestSmallStudyChartsHostileNames(t *testing.T) {
 	}
 }
 
+// TestNamesOffPooledLines wants no name laid over the pooled line of a funnel chart, or
+// over the pooled ray of a radial chart and those beside it.
+func TestNamesOffPooledLines(t *testing.T) {
+	for _, k := range []int{9, 14, 40} {
+		in := manyFunnel(k)
+		radial, err := Radial(radialOf(in), Style{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		for kind, page := range map[string]Drawing{"funnel": mustFunnel(t, in, Style{}), "radial": radial.Pages[0]} {
+			names := 0
+			for _, it := range group(t, page, noun(in.Study, 2)).Items {
+				name, ok := it.(Text)
+				if !ok {
+					continue
+				}
+				names++
+				for _, l := range linesOf(group(t, page, "pooled").Items, Estimate) {
+					for i := 0.0; i <= 1000; i++ {
+						if at := (Point{l.X1 + i/1000*(l.X2-l.X1), l.Y1 + i/1000*(l.Y2-l.Y1)}); areaOf(name).holds(at) {
+							t.Errorf("%s of %d: %q lies over a pooled line", kind, k, name.Spans[0].Text)
+							break
+						}
+					}
+				}
+			}
+			if names == 0 {
+				t.Errorf("%s of %d: no study is named", kind, k)
+			}
+		}
+	}
+}
+
 func TestSmallStudyChartsGolden(t *testing.T) {
 	checkGolden(t, "funnel-nine", mustFunnel(t, nineFunnel(), Style{Width: NarrowWidth}), Light)
 	checkGolden(t, "funnel-many", mustFunnel(t, manyFunnel(200), Style{ID: "many", Contours: PContours}), Mono)

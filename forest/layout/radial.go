@@ -208,14 +208,16 @@ func (c *radial) page() Drawing {
 	name := "Precision, 1/standard error" + " " + strings.TrimSpace(c.unit())
 	name, _ = cut(name, "", c.style.Width-2*m.margin, m.second)
 	axes = append(axes, label((c.plot.low+c.plot.high)/2, lowest, m.second, Middle, Ordinary, name))
-	names := c.nameItems(farthestFirst(len(c.dots), func(i int) float64 { return math.Abs(c.dots[i].y - slope*c.dots[i].x) }), []area{{c.plot.low, c.plot.high, zero - 0.5, zero + 0.5}})
+	pooled := c.pooledItems()
+	taken := append(besideLines(pooled), area{c.plot.low, c.plot.high, zero - 0.5, zero + 0.5})
+	names := c.nameItems(farthestFirst(len(c.dots), func(i int) float64 { return math.Abs(c.dots[i].y - slope*c.dots[i].x) }), taken)
 	heads := []Item{c.headItem("Standard errors from none", "")}
 	if text := capitalised(c.in.Scale.Measure); Width("Standard errors from none  ", m.head, true)+Width(text, m.head, true) < c.style.Width-2*m.margin {
 		heads = append(heads, boldLabel(c.style.Width-m.margin, c.head, m.head, End, text))
 	}
 	return c.drawing(title, c.description(), []Item{
 		Group{ID: "head", Items: heads},
-		Group{ID: "pooled", Items: c.pooledItems()},
+		Group{ID: "pooled", Items: pooled},
 		Line{X1: c.plot.low, Y1: zero, X2: c.plot.high, Y2: zero, Width: 0.75},
 		Group{ID: noun(c.in.Study, 2), Items: append(c.discItems(), names...)},
 		Group{ID: "axes", Items: append(axes, c.rayItems()...)},

@@ -151,6 +151,24 @@ func (s *scatter) nameItems(order []int, taken []area) []Item {
 	return items
 }
 
+// besideLines returns small areas that follow the lines among some items, so that no text
+// is laid over them.
+func besideLines(items []Item) (all []area) {
+	const step, half = 3, 1
+	for _, it := range items {
+		l, ok := it.(Line)
+		if !ok {
+			continue
+		}
+		n := 1 + math.Ceil(math.Hypot(l.X2-l.X1, l.Y2-l.Y1)/step)
+		for i := 0.0; i <= n; i++ {
+			x, y := l.X1+i/n*(l.X2-l.X1), l.Y1+i/n*(l.Y2-l.Y1)
+			all = append(all, area{x - half, x + half, y - half, y + half})
+		}
+	}
+	return all
+}
+
 // beside places a text at one of six places around a point, or reports that none is
 // clear.
 func beside(p Point, text string, size float64, inside area, obstacles []area) (Text, bool) {
