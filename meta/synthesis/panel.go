@@ -162,7 +162,8 @@ func (o *Outcome) panelRow(ctx context.Context, b review.Baseline, settings revi
 }
 
 // adequacy returns the optimal information size: for the important difference in the
-// wanted direction, else for the relative reduction of the settings. It is nil for a
+// wanted direction, for the side that needs more people where no direction is, and
+// without an important difference for the relative reduction of the settings. It is nil for a
 // rate, and for means without a standard deviation or an important difference.
 func (o *Outcome) adequacy(p0 float64, zone *zoneLimits, settings review.PanelSettings, sd *PanelSD) *Adequacy {
 	level := 1 - o.Result.Fit.Model.Level
@@ -172,10 +173,13 @@ func (o *Outcome) adequacy(p0 float64, zone *zoneLimits, settings review.PanelSe
 	switch {
 	case p0 > 0 && m != effect.RateRatio:
 		a.From, a.To = p0, o.reduced(p0, settings.Reduction)
-		if p1, ok := o.importantRisk(p0, zone); ok {
-			a.To, a.Important = p1, true
-		}
 		a.Information, err = panel.RiskInformation(a.From, a.To, level, settings.Power)
+		for _, p1 := range o.importantRisks(p0, zone) {
+			size, fails := panel.RiskInformation(p0, p1, level, settings.Power)
+			if fails == nil && (!a.Important || size.PerArm > a.PerArm) {
+				a.To, a.Important, a.Information, err = p1, true, size, nil
+			}
+		}
 	case zone != nil && (m == effect.StandardisedMeanDifference || m == effect.MeanDifference && sd != nil):
 		a.Delta, a.Important = math.Abs(o.wantedLimit(zone)-o.Analysis.Model.Null), true
 		if m == effect.MeanDifference {
@@ -200,18 +204,26 @@ func (o *Outcome) reduced(p0, reduction float64) float64 {
 	return p0 * (1 - reduction)
 }
 
-// importantRisk returns the risk at the important limit in the wanted direction; ok is
-// false where there is none or no risk is so far away.
-func (o *Outcome) importantRisk(p0 float64, zone *zoneLimits) (risk float64, ok bool) {
+// importantRisks returns the risk at the important limit in the wanted direction, at
+// both limits where no direction is; none where no risk is so far away.
+func (o *Outcome) importantRisks(p0 float64, zone *zoneLimits) []float64 {
 	if zone == nil {
-		return 0, false
+		return nil
 	}
-	limit := o.wantedLimit(zone)
-	if math.IsInf(limit, 0) {
-		return 0, false
+	limits := []float64{zone.Low, zone.High}
+	if o.Analysis.Better != review.BetterUnknown {
+		limits = []float64{o.wantedLimit(zone)}
 	}
-	risk, capped, err := panel.Risk(o.Analysis.Measure, p0, limit)
-	return risk, err == nil && !capped && risk != p0
+	var risks []float64
+	for _, limit := range limits {
+		if math.IsInf(limit, 0) {
+			continue
+		}
+		if risk, capped, err := panel.Risk(o.Analysis.Measure, p0, limit); err == nil && !capped && risk != p0 {
+			risks = append(risks, risk)
+		}
+	}
+	return risks
 }
 
 // wantedLimit returns the limit of the zone on the side that is better, the nearer one

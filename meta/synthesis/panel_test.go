@@ -409,3 +409,26 @@ func TestPanelReduction(t *testing.T) {
 		}
 	}
 }
+
+// TestPanelInformationBothSides: where no direction is better, the information size is
+// that of the side that needs more people: (z.975 + z.80)² [p0(1-p0) + p1(1-p1)]/(p0-p1)²
+// is 1503.06 for 30 against 50 per 1000, 1056.11 for 80; 6035.79 for 180 against 200,
+// 2939.84 for 230.
+func TestPanelInformationBothSides(t *testing.T) {
+	for _, c := range []struct {
+		baseline, better string
+		to, perArm       float64
+	}{
+		{"0.05", "", 0.03, 1503.06}, {"0.2", "", 0.18, 6035.79}, {"0.05", "higher", 0.08, 1056.11}, {"0.2", "higher", 0.23, 2939.84}, {"0.05", "lower", 0.03, 1503.06},
+	} {
+		settings := []string{"measure", "risk ratio", "baseline", c.baseline, "important-per-1000", "-20, 30"}
+		if c.better != "" {
+			settings = append(settings, "better", c.better)
+		}
+		o := carded(t, &brindle().Extraction, planOf(t, settings...))
+		a := o.Panel.Rows[0].Information
+		if a == nil || !a.Important || math.Abs(a.To-c.to) > 1e-12 || math.Abs(a.PerArm-c.perArm) > 0.01 {
+			t.Errorf("%+v: %+v", c, a)
+		}
+	}
+}
