@@ -158,6 +158,17 @@ func TestNoHeader(t *testing.T) {
 	}
 }
 
+// TestIntervalInOneCell: a column that holds both limits, the commonest form of a
+// published table, is to be parted, and is not taken for a percentage.
+func TestIntervalInOneCell(t *testing.T) {
+	for _, header := range []string{"95% CI", "OR (95% CI)", "ci", "Confidence interval"} {
+		_, _, err := Read(context.Background(), []byte("study\todds ratio\t"+header+"\nA\t0.7\t0.5 to 0.9\n"), "a.tsv", Options{})
+		if err == nil || !strings.Contains(err.Error(), "part them into two columns, ci low and ci high") || strings.Contains(err.Error(), "percentage") {
+			t.Errorf("%q: %v", header, err)
+		}
+	}
+}
+
 // TestColumnFlag maps a header of a two-row header, and refuses an unknown one.
 func TestColumnFlag(t *testing.T) {
 	rows := table{{"Who", "Drug", nil, "Nothing", nil}, {nil, "Falls", "People", "Falls", "People"}, {"A", 1, 20, 2, 21}}

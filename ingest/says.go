@@ -2,6 +2,7 @@ package ingest
 
 import (
 	"regexp"
+	"slices"
 	"strings"
 
 	"steelyard/meta/review"
@@ -162,8 +163,17 @@ func adviceFor(header string) string {
 		return quote(header) + " may hold standard deviations or standard errors: part them into two columns"
 	case said[saysWithout]:
 		return quote(header) + " seems to count people without the event: write the number with it"
+	case holdsInterval(header) && !said[saysLow] && !said[saysHigh]:
+		return quote(header) + " seems to hold both limits in one cell: part them into two columns, ci low and ci high"
 	case said[saysPercent]:
 		return quote(header) + " seems to be a percentage: write the number of people"
 	}
 	return ""
+}
+
+// holdsInterval reports whether a header speaks of an interval as a whole.
+func holdsInterval(header string) bool {
+	phrase, _ := fold(header)
+	words := strings.Fields(phrase)
+	return slices.Contains(words, "ci") || slices.Contains(words, "interval")
 }

@@ -102,7 +102,23 @@ func readSheet(c *cli.Context, path string) (*review.Extraction, *review.Plan, e
 	if err != nil {
 		return nil, nil, err
 	}
-	return ingest.Read(c.Context, data, "standard input", options)
+	x, plan, err := ingest.Read(c.Context, data, standardInput, options)
+	var unknown *ingest.HeaderError
+	if errors.As(err, &unknown) {
+		unknown.Call = ingest.Call{Path: "-", Sheet: options.Sheet}
+	}
+	return x, plan, err
+}
+
+// standardInput is what messages call a sheet that is read from there.
+const standardInput = "standard input"
+
+// inCall is how a sheet's file is named in a call: "-" for standard input.
+func inCall(file string) string {
+	if file == standardInput {
+		return "-"
+	}
+	return file
 }
 
 // readInput reads standard input whole, and stops waiting for it when the call is

@@ -288,7 +288,7 @@ func (p *page) findings(s *synthesis.Synthesis) {
 	p.line("Findings")
 	for i, f := range rest {
 		if i == mostFindings {
-			p.item("·", fmt.Sprintf("and %d more; see: steelyard check %s", len(rest)-i, s.Source.File))
+			p.item("·", fmt.Sprintf("and %d more; see: steelyard check %s", len(rest)-i, inCall(s.Source.File)))
 			return
 		}
 		p.item("·", findingText(s.Findings[f]))

@@ -23,3 +23,12 @@ func TestFlagged(t *testing.T) {
 		}
 	}
 }
+
+// TestCallOfStandardInput: a call that a message shows for a sheet from standard input
+// can be typed as it stands.
+func TestCallOfStandardInput(t *testing.T) {
+	_, stderr, code := call(t, "study,beta,se\nA,-0.2,0.1\nB,-0.5,0.2\n", "pool", "-")
+	if code != codeData || !strings.Contains(stderr, `steelyard pool - --column "estimate=beta"`) {
+		t.Errorf("exit %d, %s", code, stderr)
+	}
+}

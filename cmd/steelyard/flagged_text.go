@@ -31,12 +31,12 @@ func (p *page) flagged(s *synthesis.Synthesis) {
 		}
 	}
 	if accepted > mostFindings {
-		p.item("·", fmt.Sprintf("and %d more accepted findings; see: steelyard check %s", accepted-mostFindings, s.Source.File))
+		p.item("·", fmt.Sprintf("and %d more accepted findings; see: steelyard check %s", accepted-mostFindings, inCall(s.Source.File)))
 	}
 	if warnings > 0 {
 		slices.Sort(rules)
 		p.item("·", fmt.Sprintf("The sheet has %s that nobody has accepted (%s); see: steelyard check %s",
-			words.Number(warnings, "warning", "warnings"), strings.Join(rules, ", "), s.Source.File))
+			words.Number(warnings, "warning", "warnings"), strings.Join(rules, ", "), inCall(s.Source.File)))
 	}
 }
 

@@ -116,7 +116,7 @@ var fileRules = []Rule{
 	{"F6", "marks in a numeric cell", "error; warning where read as missing or a bound", "<, >, ~, *, letters, %, NS or n/a beside or in place of a number", "Cochrane Handbook 6.3", nil},
 	{"F7", "code for a missing number", "warning", "-1, 9, 99, 999 or 9999, or one of them below 0, twice or more and beyond 5 median absolute deviations of the column", practice, nil},
 	{"F8", "0 events without a source", "warning", "0 events where source, how obtained and note are blank or say not reported", "Xu 2022", [][]review.Field{{review.EventsTreated, review.SourceField}, {review.EventsTreated, review.HowObtained}, {review.Events, review.SourceField}}},
-	{"F9", "header, sheet or row is not one to be read", "error, warning or note", "headers given twice, merged or hidden cells, a second table, formulas without a value, rows without a name or number", practice, nil},
+	{"F9", "header, sheet or row is not one to be read", "error, warning or note", "headers given twice, merged or hidden cells, a second table, formulas without a value, rows without a name or a full set of numbers", practice, nil},
 	{"F10", "row of totals", "error", "named total, overall, pooled or the like; or every count the sum of the others, give or take one", practice, nil},
 	{"F11", "number beyond any result", "error", "too large to be a result of a study", "Ziemann 2016", nil},
 	{"F12", "year", "warning; note for a letter after it", "before 1800 or after 2100, not four digits, or against the date", practice, nil},

@@ -196,7 +196,7 @@ func (o *Outcome) derive(rows []*review.Study) []review.Finding {
 			o.Studies = append(o.Studies, study)
 			continue
 		}
-		f := review.Finding{Severity: review.Error, Rule: "I20", Place: d.blame(err), Study: row.Name, Outcome: o.Name, Message: err.Error()}
+		f := review.Finding{Severity: review.Error, Rule: "F9", Place: d.blame(err), Study: row.Name, Outcome: o.Name, Message: err.Error()}
 		var missing *missingError
 		var left *leftByMethodError
 		switch {
@@ -249,8 +249,8 @@ func (d *derivation) study() (Study, error) {
 	return study, nil
 }
 
-// missingError says which number a row lacks, under the rule that asks for it and
-// with values to try.
+// missingError says which number a row lacks, or that it has another measure's, under
+// the rule that asks for it and with values to try.
 type missingError struct {
 	rule, message string
 	readings      []review.Reading

@@ -212,7 +212,7 @@ func (d *derivation) toMeasure(e effect.Estimate, own effect.Measure) (effect.Es
 	case own == effect.MeanDifference && d.measure == effect.StandardisedMeanDifference:
 		return d.standardise(e)
 	}
-	return e, fmt.Errorf("the row gives its effect as %s, which cannot be pooled as %s", own, d.measure)
+	return e, &missingError{rule: "I20", message: fmt.Sprintf("the row gives its effect as %s, which cannot be pooled as %s", own, d.measure)}
 }
 
 // standardise divides a difference in means by the standard deviation that its

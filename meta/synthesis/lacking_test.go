@@ -37,7 +37,7 @@ func TestBlame(t *testing.T) {
 	s.row("A", "", counts(3, 40, 5, 41))
 	s.row("B", "", counts(3, 40.5, 5, 41))
 	_, o := runOne(t, s)
-	if len(o.Excluded) != 1 || o.Excluded[0].Place.Col != int(review.TotalTreated) || o.Excluded[0].Rule != "I20" || !strings.HasSuffix(o.Excluded[0].Where(), "3, rule I20") {
+	if len(o.Excluded) != 1 || o.Excluded[0].Place.Col != int(review.TotalTreated) || o.Excluded[0].Rule != "F9" || !strings.HasSuffix(o.Excluded[0].Where(), "3, rule F9") {
 		t.Errorf("left out: %+v", o.Excluded)
 	}
 }
