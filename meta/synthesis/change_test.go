@@ -160,7 +160,7 @@ func TestRowsOfChange(t *testing.T) {
 		t.Errorf("rows:\n%s\nwant:\n%s", strings.Join(texts, "\n"), strings.Join(want, "\n"))
 	}
 	correction := c.Outcomes[0].Triggers[CorrectionTrigger-1]
-	if named := []string{"BELL, total treated", "Eve, note", "Dunn, removed", "Fox, removed"}; correction.Verdict != TriggerMet || !slices.Equal(correction.Named, named) {
+	if named := []string{"BELL (total treated)", "Eve (note)", "Dunn (removed)", "Fox (removed)"}; correction.Verdict != TriggerMet || !slices.Equal(correction.Named, named) {
 		t.Errorf("T7 is %v by %q, want %q", correction.Verdict, correction.Named, named)
 	}
 	weights := map[string]WeightChange{}

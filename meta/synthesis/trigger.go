@@ -260,23 +260,26 @@ func (o *OutcomeChange) correction() Trigger {
 	for _, row := range o.Rows.Changed {
 		for _, cell := range row.Cells {
 			if cell.Number || speaksOfRetraction(cell.After) && !speaksOfRetraction(cell.Before) {
-				t.Named = append(t.Named, row.Study.Name+", "+cell.Header)
+				t.Named = append(t.Named, corrected(row.Study.Name, cell.Header))
 			}
 		}
 	}
 	for _, s := range o.Rows.Removed {
-		t.Named = append(t.Named, s.Name+", removed")
+		t.Named = append(t.Named, corrected(s.Name, "removed"))
 	}
 	for _, s := range o.Rows.New {
 		for _, r := range s.Remarks {
 			if speaksOfRetraction(r.Text) {
-				t.Named = append(t.Named, s.Name+", "+r.Header)
+				t.Named = append(t.Named, corrected(s.Name, r.Header))
 			}
 		}
 	}
 	t.Verdict = verdict(len(t.Named) > 0)
 	return t
 }
+
+// corrected names a row and what of it was corrected.
+func corrected(study, what string) string { return study + " (" + what + ")" }
 
 func speaksOfRetraction(text string) bool {
 	text = strings.ToLower(text)
