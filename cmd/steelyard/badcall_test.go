@@ -56,6 +56,7 @@ func TestBadCalls(t *testing.T) {
 		{"pool BCG --out /nowhere/at/all.txt", codeFile, []string{"/nowhere/at"}},
 		{"pool BCG --out x.xlsx", codeCall, []string{"Markdown, JSON or CSV; name it .txt"}},
 		{"next-trial LOR --size 100", codeCall, []string{"a measure that is not stated (--measure): give it with --se"}},
+		{"chart next-trial BCG --se 0.2 --out x.svg", codeData, []string{"steelyard: the outcome has no curve over sizes"}},
 		{"audit BCG", codeCall, []string{"--out F.xlsx"}},
 		{"audit BCG --out x.xls", codeCall, []string{"name it .xlsx"}},
 		{"audit DEMO --out DEMO --overwrite", codeCall, []string{"never overwritten"}},

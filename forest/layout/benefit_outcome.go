@@ -20,10 +20,10 @@ func BenefitOf(s *synthesis.Synthesis, o *synthesis.Outcome) (BenefitInput, erro
 		return BenefitInput{}, err
 	}
 	if o.Panel == nil {
-		return BenefitInput{}, fmt.Errorf("outcome %q has no panel's card to draw: ask for one", o.Name)
+		return BenefitInput{}, fmt.Errorf("%s has no panel's card to draw: ask for one", o.Called())
 	}
 	if o.Panel.Threshold == nil {
-		return BenefitInput{}, fmt.Errorf("outcome %q has no important difference to draw: set one with --important or --important-per-1000, before the results are seen", o.Name)
+		return BenefitInput{}, fmt.Errorf("%s has no important difference to draw: set one with --important or --important-per-1000, before the results are seen", o.Called())
 	}
 	in := BenefitInput{
 		Title: "Is the benefit large enough to matter?", Subtitle: accrualSubtitle(s, o, effectsText(o)+", "+words.Treatment(s)),
@@ -42,7 +42,7 @@ func BenefitOf(s *synthesis.Synthesis, o *synthesis.Outcome) (BenefitInput, erro
 		in.Rows = append(in.Rows, benefitRow(o, r))
 	}
 	if len(in.Rows) == 0 {
-		return BenefitInput{}, fmt.Errorf("outcome %q has no baseline at which its important difference can be drawn: %s", o.Name, firstTrouble(o))
+		return BenefitInput{}, fmt.Errorf("%s has no baseline at which its important difference can be drawn: %s", o.Called(), firstTrouble(o))
 	}
 	if in.PerThousand {
 		in.Scale = EffectScale{Measure: "difference per 1000"}

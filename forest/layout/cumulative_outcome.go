@@ -23,7 +23,7 @@ func CumulativeOf(s *synthesis.Synthesis, o *synthesis.Outcome) (CumulativeInput
 		return CumulativeInput{}, err
 	}
 	if o.Accrual == nil || len(o.Accrual.Cumulative) == 0 {
-		return CumulativeInput{}, fmt.Errorf("outcome %q has no cumulative analysis to draw: ask for one", o.Name)
+		return CumulativeInput{}, fmt.Errorf("%s has no cumulative analysis to draw: ask for one", o.Called())
 	}
 	noun := words.Noun(s, 2)
 	in := CumulativeInput{
@@ -100,9 +100,9 @@ func looksNote(s *synthesis.Synthesis, l *synthesis.Looks) Note {
 func drawable(o *synthesis.Outcome) error {
 	switch {
 	case o.Result == nil:
-		return fmt.Errorf("outcome %q has no result to draw: %s", o.Name, o.Problem)
+		return fmt.Errorf("%s has no result to draw: %s", o.Called(), o.Problem)
 	case o.Analysis.NullMissing:
-		return fmt.Errorf("outcome %q: the measure, %s, has no value of no effect, and the chart needs a null for its evidence: give --null", o.Name, o.Analysis.Measure)
+		return fmt.Errorf("%s: the measure, %s, has no value of no effect, and the chart needs a null for its evidence: give --null", o.Called(), o.Analysis.Measure)
 	}
 	return nil
 }

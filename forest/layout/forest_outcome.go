@@ -20,10 +20,10 @@ import (
 // an error if the outcome has no result.
 func ForestOf(s *synthesis.Synthesis, o *synthesis.Outcome) (ForestInput, error) {
 	if o.Result == nil {
-		return ForestInput{}, fmt.Errorf("outcome %q has no result to draw: %s", o.Name, o.Problem)
+		return ForestInput{}, fmt.Errorf("%s has no result to draw: %s", o.Called(), o.Problem)
 	}
 	if o.Analysis.NullMissing {
-		return ForestInput{}, fmt.Errorf("outcome %q: the measure, %s, has no value of no effect, and the chart needs a null for its evidence rail: give --null", o.Name, o.Analysis.Measure)
+		return ForestInput{}, fmt.Errorf("%s: the measure, %s, has no value of no effect, and the chart needs a null for its evidence rail: give --null", o.Called(), o.Analysis.Measure)
 	}
 	fit := o.Result.Fit
 	notation := words.OutcomeNotation(o)

@@ -17,9 +17,9 @@ func InfluenceOf(s *synthesis.Synthesis, o *synthesis.Outcome) (InfluenceInput, 
 	one := words.Noun(s, 1)
 	switch {
 	case len(o.Studies) < 2:
-		return InfluenceInput{}, fmt.Errorf("outcome %q has one %s: there are no others that it could pull", o.Name, one)
+		return InfluenceInput{}, fmt.Errorf("%s has one %s: there are no others that it could pull", o.Called(), one)
 	case o.Accrual == nil || len(o.Accrual.Influence) == 0:
-		return InfluenceInput{}, fmt.Errorf("outcome %q has no analysis of influence to draw: ask for one", o.Name)
+		return InfluenceInput{}, fmt.Errorf("%s has no analysis of influence to draw: ask for one", o.Called())
 	}
 	mean := o.Result.Fit.Mean
 	in := InfluenceInput{

@@ -19,9 +19,9 @@ func LeaveOneOutOf(s *synthesis.Synthesis, o *synthesis.Outcome) (LeaveOneOutInp
 	one := words.Noun(s, 1)
 	switch {
 	case len(o.Studies) < 2:
-		return LeaveOneOutInput{}, fmt.Errorf("outcome %q has one %s: without it nothing is left to draw", o.Name, one)
+		return LeaveOneOutInput{}, fmt.Errorf("%s has one %s: without it nothing is left to draw", o.Called(), one)
 	case o.Accrual == nil || len(o.Accrual.LeaveOneOut) == 0:
-		return LeaveOneOutInput{}, fmt.Errorf("outcome %q has no leave-one-out analysis to draw: ask for one", o.Name)
+		return LeaveOneOutInput{}, fmt.Errorf("%s has no leave-one-out analysis to draw: ask for one", o.Called())
 	}
 	in := LeaveOneOutInput{
 		Title: "What each " + one + " carries", Subtitle: accrualSubtitle(s, o, effectsText(o)+", pooled again without one "+one), Study: one,

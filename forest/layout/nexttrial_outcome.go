@@ -17,7 +17,7 @@ func NextTrialOf(s *synthesis.Synthesis, o *synthesis.Outcome) (NextTrialInput, 
 		return NextTrialInput{}, err
 	}
 	if o.Accrual == nil || o.Accrual.Next == nil || len(o.Accrual.Next.Curve) == 0 {
-		return NextTrialInput{}, fmt.Errorf("outcome %q has no curve over sizes to draw: give the next %s with --size or --arms in place of --se", o.Name, words.Noun(s, 1))
+		return NextTrialInput{}, fmt.Errorf("%s has no curve over sizes to draw: give the next %s with --size or --arms in place of --se", o.Called(), words.Noun(s, 1))
 	}
 	n := o.Accrual.Next
 	noun := words.Noun(s, 1)

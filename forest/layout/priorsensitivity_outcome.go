@@ -19,7 +19,7 @@ func PriorSensitivityOf(s *synthesis.Synthesis, o *synthesis.Outcome) (PriorSens
 	}
 	b := o.Beliefs
 	if b == nil {
-		return PriorSensitivityInput{}, fmt.Errorf("outcome %q has no priors weighed to draw: ask for them", o.Name)
+		return PriorSensitivityInput{}, fmt.Errorf("%s has no priors weighed to draw: ask for them", o.Called())
 	}
 	in := PriorSensitivityInput{
 		Title: "Would another prior change the answer?", Subtitle: accrualSubtitle(s, o, "evidence by the width of the prior"),

@@ -18,18 +18,18 @@ const linePlaces = 65
 // error if the outcome has no regression or no such covariate.
 func RegressionOf(s *synthesis.Synthesis, o *synthesis.Outcome) (RegressionInput, error) {
 	if o.Result == nil {
-		return RegressionInput{}, fmt.Errorf("outcome %q has no result to draw: %s", o.Name, o.Problem)
+		return RegressionInput{}, fmt.Errorf("%s has no result to draw: %s", o.Called(), o.Problem)
 	}
 	if o.Explain == nil || o.Explain.Regression == nil {
-		return RegressionInput{}, fmt.Errorf("outcome %q has no regression to draw: name columns with --on", o.Name)
+		return RegressionInput{}, fmt.Errorf("%s has no regression to draw: name columns with --on", o.Called())
 	}
 	r := o.Explain.Regression
 	if r.Problem != "" {
-		return RegressionInput{}, fmt.Errorf("outcome %q has no regression to draw: %s", o.Name, r.Problem)
+		return RegressionInput{}, fmt.Errorf("%s has no regression to draw: %s", o.Called(), r.Problem)
 	}
 	at := slices.IndexFunc(r.Design.Covariates, func(c *explain.Covariate) bool { return c.Levels == nil })
 	if at < 0 {
-		return RegressionInput{}, fmt.Errorf("outcome %q has no covariate of numbers to draw along: categories are drawn by \"chart subgroups\"", o.Name)
+		return RegressionInput{}, fmt.Errorf("%s has no covariate of numbers to draw along: categories are drawn by \"chart subgroups\"", o.Called())
 	}
 	c := r.Design.Covariates[at]
 	in := RegressionInput{

@@ -16,7 +16,7 @@ func FunnelOf(s *synthesis.Synthesis, o *synthesis.Outcome) (FunnelInput, error)
 		return FunnelInput{}, err
 	}
 	if !linearScale(o) {
-		return FunnelInput{}, fmt.Errorf("outcome %q: a funnel chart needs estimates with their standard errors on one scale, and %s is analysed on another than it is read on", o.Name, words.Measure(o.Analysis.Measure))
+		return FunnelInput{}, fmt.Errorf("%s: a funnel chart needs estimates with their standard errors on one scale, and %s is analysed on another than it is read on", o.Called(), words.Measure(o.Analysis.Measure))
 	}
 	in := FunnelInput{
 		Title: "Do small " + words.Noun(s, 2) + " show other effects?", Subtitle: accrualSubtitle(s, o, effectsText(o)), Study: words.Noun(s, 1),
@@ -85,9 +85,9 @@ func ContributionOf(s *synthesis.Synthesis, o *synthesis.Outcome) (ContributionI
 	many := words.Noun(s, 2)
 	switch {
 	case o.Result == nil:
-		return ContributionInput{}, fmt.Errorf("outcome %q has no result to draw: %s", o.Name, o.Problem)
+		return ContributionInput{}, fmt.Errorf("%s has no result to draw: %s", o.Called(), o.Problem)
 	case o.Accrual == nil || len(o.Accrual.Influence) < 2:
-		return ContributionInput{}, fmt.Errorf("outcome %q has fewer than two %s, or no analysis of influence to draw", o.Name, many)
+		return ContributionInput{}, fmt.Errorf("%s has fewer than two %s, or no analysis of influence to draw", o.Called(), many)
 	}
 	in := ContributionInput{
 		Title: "Which " + many + " make the results differ?", Subtitle: accrualSubtitle(s, o, effectsText(o)), Study: words.Noun(s, 1), Notes: methodNotes(o),
@@ -104,7 +104,7 @@ func ContributionOf(s *synthesis.Synthesis, o *synthesis.Outcome) (ContributionI
 		in.Rows = append(in.Rows, row)
 	}
 	if len(in.Rows) < 2 {
-		return ContributionInput{}, fmt.Errorf("outcome %q: %s gives %s no weights, so that no contribution to Q can be told; choose --method inverse-variance", o.Name, o.Analysis.Method, many)
+		return ContributionInput{}, fmt.Errorf("%s: %s gives %s no weights, so that no contribution to Q can be told; choose --method inverse-variance", o.Called(), o.Analysis.Method, many)
 	}
 	if len(without) > 0 {
 		in.Notes = append(in.Notes, Note{"Not drawn", fmt.Sprintf("%s without which the rest could not be pooled.", words.Number(len(without), words.Noun(s, 1), many))})

@@ -19,11 +19,11 @@ func SubgroupsOf(s *synthesis.Synthesis, o *synthesis.Outcome) (ForestInput, err
 		return in, err
 	}
 	if o.Explain == nil || o.Explain.Subgroups == nil {
-		return in, fmt.Errorf("outcome %q has no subgroups to draw: name a column with --subgroups", o.Name)
+		return in, fmt.Errorf("%s has no subgroups to draw: name a column with --subgroups", o.Called())
 	}
 	r := o.Explain.Subgroups
 	if r.Problem != "" {
-		return in, fmt.Errorf("outcome %q has no subgroups to draw: %s", o.Name, r.Problem)
+		return in, fmt.Errorf("%s has no subgroups to draw: %s", o.Called(), r.Problem)
 	}
 	rows := in.Rows
 	in.Rows = nil

@@ -18,7 +18,7 @@ func SubsetsOf(s *synthesis.Synthesis, o *synthesis.Outcome) (SubsetsInput, erro
 		return SubsetsInput{}, err
 	}
 	if o.Accrual == nil || o.Accrual.Subsets == nil {
-		return SubsetsInput{}, fmt.Errorf("outcome %q has no analysis of subsets to draw: ask for one", o.Name)
+		return SubsetsInput{}, fmt.Errorf("%s has no analysis of subsets to draw: ask for one", o.Called())
 	}
 	all, mean := o.Accrual.Subsets, o.Result.Fit.Mean
 	noun := words.Noun(s, 2)

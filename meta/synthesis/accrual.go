@@ -84,7 +84,7 @@ func (o *Outcome) accrue(ctx context.Context, columns []review.Column, plan *rev
 	}
 	refit, err := o.weighedRefit()
 	if err != nil {
-		return fmt.Errorf("outcome %q: %w", o.Name, err)
+		return fmt.Errorf("%s: %w", o.Called(), err)
 	}
 	a := &Accrual{}
 	if want.Cumulative {

@@ -319,7 +319,7 @@ func (o *Outcome) regress(ctx context.Context, columns []review.Column, w *Expla
 		return nil, err
 	}
 	if errors.As(err, &model) {
-		return nil, fmt.Errorf("outcome %q: %w", o.Name, err)
+		return nil, fmt.Errorf("%s: %w", o.Called(), err)
 	}
 	if err != nil {
 		r.Problem = err.Error()

@@ -41,7 +41,7 @@ func (o *Outcome) compare(plan *review.Plan) error {
 	}
 	asked, err := plan.Analysis(o.Name)
 	if err != nil {
-		return fmt.Errorf("outcome %q: %w", o.Name, err)
+		return fmt.Errorf("%s: %w", o.Called(), err)
 	}
 	c := &Methods{}
 	o.Methods = c

@@ -149,7 +149,7 @@ func (o *Outcome) modelWithNext(plan *review.Plan) (meta.Model, error) {
 	}
 	asked, err := plan.Analysis(o.Name)
 	if err != nil {
-		return meta.Model{}, fmt.Errorf("outcome %q: %w", o.Name, err)
+		return meta.Model{}, fmt.Errorf("%s: %w", o.Called(), err)
 	}
 	model := asked.Model
 	model.Effects, model.Null = o.Analysis.Model.Effects, o.Analysis.Model.Null

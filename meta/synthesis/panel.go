@@ -74,7 +74,7 @@ func (o *Outcome) examinePanel(ctx context.Context, x *review.Extraction, plan *
 	}
 	asked, err := plan.Analysis(o.Name)
 	if err != nil {
-		return fmt.Errorf("outcome %q: %w", o.Name, err)
+		return fmt.Errorf("%s: %w", o.Called(), err)
 	}
 	p := &Panel{Baselines: plan.Value(review.SettingBaseline, o.Name), Median: o.medianRisk(), Threshold: o.threshold(plan, x, w)}
 	p.SD = o.panelSD(asked.Panel, plan)
@@ -146,7 +146,7 @@ func (o *Outcome) panelRow(ctx context.Context, b review.Baseline, settings revi
 	}
 	zone, err := o.zoneAt(b.Risk, settings.Per1000)
 	if err != nil {
-		return row, fmt.Errorf("outcome %q: %w", o.Name, err)
+		return row, fmt.Errorf("%s: %w", o.Called(), err)
 	}
 	trial := o.nullTrial(b.Risk, sd)
 	if row.Null, err = o.boundary(ctx, o.Analysis.Model.Null, b.Risk, trial); err != nil {

@@ -78,7 +78,7 @@ func (o *Outcome) evidenceMap() (EvidenceMap, error) {
 	}
 	fit, err := o.fit(o.Analysis.Model, rest)
 	if err != nil {
-		return e, fmt.Errorf("outcome %q without the studies at high risk of bias: %w", o.Name, err)
+		return e, fmt.Errorf("%s without the studies at high risk of bias: %w", o.Called(), err)
 	}
 	e.WithoutHigh = fit
 	return e, nil

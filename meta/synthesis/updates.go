@@ -189,7 +189,7 @@ func (o *Outcome) AccrueByUpdate(ctx context.Context, updates []Update, work met
 	}
 	refit, err := o.refit()
 	if err != nil {
-		return fmt.Errorf("outcome %q: %w", o.Name, err)
+		return fmt.Errorf("%s: %w", o.Called(), err)
 	}
 	groups, at := o.entering(updates)
 	entering := &order{Order: Order{By: OrderByUpdate, Ties: review.TiesTogether}, groups: groups}
