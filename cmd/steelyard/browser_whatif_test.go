@@ -73,7 +73,7 @@ func TestBrowserWhatIf(t *testing.T) {
 		Rows   int
 	}
 	const now = `({Looks: looks, Focus: document.activeElement.id, Scroll: scrollY, Prior: document.querySelector('#o1 [data-t=prior]').textContent,
-		Open: document.querySelector('#o1-accrual details').open, Rows: document.querySelectorAll('#o1-studies tbody tr').length})`
+		Open: document.querySelector('#o1-accrual details').open, Rows: document.querySelectorAll('#o1-studies tbody tr[data-study]').length})`
 	b.eval(now, &state)
 	if len(state.Looks) < 1 || fmt.Sprint(state.Looks[0]) != "[o1 common 8]" || state.Focus != "o1-prior" || state.Scroll != 700 || state.Prior != "5%" || !state.Open || state.Rows != 8 {
 		t.Errorf("after the change: %+v", state)

@@ -141,12 +141,19 @@ func (m *markup) leftOut(rows []leftOutView) {
 	m.raw(`<div class="left">`)
 	m.element("b", whole(len(rows))+verb+" left out:")
 	m.raw("<ul>")
-	for _, row := range rows {
+	for len(rows) > 0 {
+		alike := 1 // rows left out for one reason, as by a filter
+		for alike < len(rows) && rows[alike].Reason == rows[0].Reason {
+			alike++
+		}
 		m.raw("<li>")
-		m.text(row.Study + " ")
-		m.element("span", row.Where, "class", "cell")
-		m.text(": " + row.Reason)
+		for i, row := range rows[:alike] {
+			m.text(when(i > 0, ", ") + row.Study + " ")
+			m.element("span", row.Where, "class", "cell")
+		}
+		m.text(": " + rows[0].Reason)
 		m.raw("</li>")
+		rows = rows[alike:]
 	}
 	m.raw("</ul></div>\n")
 }

@@ -44,13 +44,14 @@ class Controls {
     for (const column of this.columns) {
       for (const input of inputsIn(column, "input")) {
         input.addEventListener("change", () => {
+          if (!this.isNew(input)) return;
           this.byColumn(column, input);
           this.changed(input);
         });
       }
     }
-    for (const e of this.settings) e.addEventListener("change", () => this.changed(e));
-    for (const e of inputsIn(this.section, "input[type=text]")) e.addEventListener("keydown", (event) => this.giveUp(e, event));
+    for (const e of this.settings) e.addEventListener("change", () => this.isNew(e) && this.changed(e));
+    for (const e of inputsIn(this.section, "input[type=text]")) e.addEventListener("keydown", (event) => this.typed(e, event));
     this.form.addEventListener("submit", (event) => {
       event.preventDefault();
       if (this.readAdded()) this.changed(this.form);
@@ -63,16 +64,30 @@ class Controls {
   }
 
   /**
-   * Escape takes back a text that is not yet taken over, or was refused.
+   * Enter takes a text over; Escape takes back one that is not yet taken over, or was
+   * refused.
    * @param {HTMLInputElement} input
    * @param {KeyboardEvent} event
    */
-  giveUp(input, event) {
+  typed(input, event) {
     const taken = input.dataset.taken ?? "";
-    if (event.key !== "Escape" || input.value === taken) return;
+    if (input.value === taken) return;
+    if (event.key === "Enter" && input.form === null) input.dispatchEvent(new Event("change"));
+    if (event.key !== "Escape") return;
     event.preventDefault();
-    input.value = taken;
+    input.value = input.dataset.asked = taken;
     this.refuse("");
+  }
+
+  /**
+   * Whether a text was not asked for already: Enter and leaving the field both tell.
+   * @param {HTMLInputElement | HTMLSelectElement} e
+   */
+  isNew(e) {
+    if (e.type !== "text") return true;
+    if (e.value === e.dataset.asked) return false;
+    e.dataset.asked = e.value;
+    return true;
   }
 
   /**
@@ -160,7 +175,7 @@ class Controls {
     for (const input of inputsIn(this.form, "[data-number]")) {
       if (v.added !== null) input.value = String(v.added.numbers[input.dataset.number ?? ""] ?? "");
     }
-    for (const input of inputsIn(this.section, "input[type=text]")) input.dataset.taken = input.value;
+    for (const input of inputsIn(this.section, "input[type=text]")) input.dataset.taken = input.dataset.asked = input.value;
     this.count("studies", out.size);
     this.count("added", v.added === null ? 0 : 1);
     for (const group of ["model", "meaning"]) this.count(group, this.section.querySelectorAll(`[data-group=${group}] .wi-set`).length);

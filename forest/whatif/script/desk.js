@@ -14,6 +14,8 @@ class Desk {
     this.answers = new Map();
     /** @type {Reply} */
     this.reply = {};
+    /** What was asked for last, how it is taken over, and where the keyboard was. @type {{variant: Variant, take: () => void, spot: Spot | null} | null} */
+    this.asked = null;
     this.rows = new Rows(this.id, this.controls.known, (row) => this.controls.toggle(row));
     const acts = { undo: () => this.undo(), redo: () => this.redo(), plan: () => this.plan(), show: (/** @type {Variant} */ v) => this.go(v) };
     this.banner = new Banner(section, this.id, acts);
@@ -38,7 +40,8 @@ class Desk {
   notes() {
     const words = this.look(this.looks.now).words;
     if (words.length === 0) return [];
-    return [`What if, not the plan: ${words.join("; ")}. ${this.looks.log.length} variants were looked at.`];
+    const looks = this.looks.log.length;
+    return [`What if, not the plan: ${words.join("; ")}. ${looks} ${looks === 1 ? "variant was" : "variants were"} looked at.`];
   }
 
   /**
@@ -49,30 +52,42 @@ class Desk {
    */
   async go(v, take = () => void this.looks.change(v), at = null) {
     current = this;
-    const spot = spotNow();
+    this.asked = { variant: v, take, spot: spotNow() };
     this.section.setAttribute("aria-busy", "true");
-    /** @type {Reply | null} */
-    let reply;
+    let problem = "";
     try {
-      reply = await whatIf.ask(this.id, v);
+      const reply = await whatIf.ask(this.id, v);
+      if (reply === null) return; // a later change overtook this one
+      if (!reply.document) problem = reply.problem ?? "the change cannot be made";
     } catch (error) {
-      reply = { problem: error instanceof Error ? error.message : String(error) };
+      problem = error instanceof Error ? error.message : String(error);
     }
     this.section.removeAttribute("aria-busy");
-    if (reply === null) return; // a later change overtook this one
-    if (!reply.document) {
-      const typed = at === this.controls.form || (at instanceof HTMLInputElement && at.type === "text");
-      if (typed) this.controls.added = this.looks.now.added;
-      else this.controls.show(this.looks.now);
-      this.controls.refuse(reply.problem ?? "the change cannot be made", at);
-      return;
-    }
-    take();
+    if (problem !== "") this.refuse(problem, at);
+  }
+
+  /** @param {string} problem @param {Element | null} at */
+  refuse(problem, at) {
+    const typed = at === this.controls.form || (at instanceof HTMLInputElement && at.type === "text");
+    if (typed) this.controls.added = this.looks.now.added;
+    else this.controls.show(this.looks.now);
+    this.controls.refuse(problem, at);
+  }
+
+  /**
+   * An answer has come into the page, asked for here or elsewhere.
+   * @param {Variant} variant
+   * @param {Reply} reply
+   */
+  shown(variant, reply) {
+    const mine = this.asked !== null && sameVariant(this.asked.variant, variant) ? this.asked : null;
+    if (mine !== null) mine.take();
+    else this.looks.change(variant);
     this.reply = reply;
     this.answers.set(JSON.stringify(this.looks.now), factsOf(this.id));
     this.rows.attach(reply.data?.studies ?? [], this.looks.now.left_out);
     this.show();
-    returnTo(spot, this.id);
+    returnTo(mine?.spot ?? null, this.id);
     this.tell();
   }
 
@@ -114,9 +129,10 @@ class Desk {
     return (act === "undo" ? this.looks.past : this.looks.future).length > 0;
   }
 
-  /** The engine cannot answer: the page stays as it is. */
+  /** The engine cannot answer: what is shown stays, and what it differs in from the plan is still said. */
   close() {
-    this.section.hidden = true;
+    this.section.hidden = isPlanned(this.looks.now);
+    byId(this.id)?.classList.add("wi-closed");
     this.rows.detach();
   }
 }
@@ -149,6 +165,10 @@ function openDesks() {
   if (whatIf.broken) return;
   desks = Array.from(document.querySelectorAll("[data-whatif]")).map((section) => new Desk(/** @type {HTMLElement} */ (section)));
   document.addEventListener("whatif:broken", () => desks.forEach((desk) => desk.close()));
+  document.addEventListener("whatif:shown", (event) => {
+    const { outcomeId, variant, reply } = /** @type {CustomEvent} */ (event).detail;
+    if (reply.document) desks.find((desk) => desk.id === outcomeId)?.shown(variant, reply);
+  });
   document.addEventListener("keydown", (event) => {
     const act = actOf(event, isTyping(event.target));
     if (act === "" || event.defaultPrevented) return;

@@ -52,7 +52,7 @@ class Export {
     this.copyCommand.hidden = command === "";
     const chosen = this.figures.value;
     const figures = Array.from(document.querySelectorAll(`#${this.id} figure[id]`)).filter((f) => f.querySelector("svg.chart"));
-    this.figures.replaceChildren(...figures.map((f) => make("option", { value: f.id }, (f.querySelector("figcaption b")?.textContent ?? f.id).slice(0, 60))));
+    this.figures.replaceChildren(...figures.map((f) => make("option", { value: f.id }, `${capitalised(f.id.replace(this.id + "-", "").replace(/-/g, " "))}: ${titleOf(f)}`)));
     if (figures.some((f) => f.id === chosen)) this.figures.value = chosen;
   }
 
@@ -67,7 +67,7 @@ class Export {
     const charts = chartsOf(figure);
     try {
       for (const [i, chart] of charts.entries()) {
-        const image = standalone(chart, this.of.notes());
+        const image = standalone(chart, [titleOf(figure), ...this.of.notes()]);
         const name = `${figure.id}${charts.length > 1 ? "-" + (i + 1) : ""}.${form}`;
         save(form === "svg" ? new Blob([svgText(image)], { type: "image/svg+xml" }) : await png(image), name);
       }
@@ -81,6 +81,11 @@ class Export {
   async copy(text, what) {
     this.of.say((await copied(text)) ? `${what} is copied.` : `${what} cannot be copied here.`);
   }
+}
+
+/** A figure's title, without its number on the page. @param {Element} figure */
+function titleOf(figure) {
+  return (figure.querySelector("figcaption b")?.textContent ?? "").replace(/^Figure \d+\. /, "");
 }
 
 /** @param {Blob} content @param {string} name */
