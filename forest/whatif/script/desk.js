@@ -75,17 +75,21 @@ class Desk {
   }
 
   /**
-   * An answer has come into the page, asked for here or elsewhere.
+   * An answer has come into the page, asked for here or elsewhere. It comes again when its
+   * late sections have.
    * @param {Variant} variant
    * @param {Reply} reply
    */
   shown(variant, reply) {
+    const again = reply === this.reply;
     const mine = this.asked !== null && sameVariant(this.asked.variant, variant) ? this.asked : null;
-    if (mine !== null) mine.take();
-    else this.looks.change(variant);
+    if (mine === null) this.looks.change(variant);
+    else mine.take();
+    this.asked = mine === null ? this.asked : null;
     this.reply = reply;
     this.answers.set(JSON.stringify(this.looks.now), factsOf(this.id));
     this.rows.attach(reply.data?.studies ?? [], this.looks.now.left_out);
+    if (again) return this.export.show();
     this.show();
     returnTo(mine?.spot ?? null, this.id);
     this.tell();

@@ -56,12 +56,14 @@ class Export {
     if (figures.some((f) => f.id === chosen)) this.figures.value = chosen;
   }
 
-  json() {
+  async json() {
+    await whatIf.settled();
     save(new Blob([this.of.json()], { type: "application/json" }), this.id + "-what-if.json");
   }
 
   /** @param {"svg" | "png"} form */
   async draw(form) {
+    await whatIf.settled();
     const figure = byId(this.figures.value);
     if (figure === null) return;
     const charts = chartsOf(figure);
