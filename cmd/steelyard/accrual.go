@@ -125,7 +125,11 @@ func (k accrualKind) command() *cli.Command {
 			if err != nil {
 				return err
 			}
-			if err := reply(c, format, accrualAnswer(s, k.write), s.Document(version), k.records...); err != nil {
+			records := k.records
+			if want.Next != nil && want.Next.SE > 0 { // no sizes to list: the outlook is the table
+				records = []string{"outcomes", "next_trial", "outlook"}
+			}
+			if err := reply(c, format, accrualAnswer(s, k.write), s.Document(version), records...); err != nil {
 				return err
 			}
 			return incomplete(s)

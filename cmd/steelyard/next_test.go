@@ -190,3 +190,15 @@ func TestChartNextTrial(t *testing.T) {
 		t.Errorf("a standard error alone: exit %d, %s", code, stderr)
 	}
 }
+
+// TestNextRecordsOfSE: without sizes the CSV holds the outlook, the numbers of the JSON,
+// and not the outcome's name alone.
+func TestNextRecordsOfSE(t *testing.T) {
+	sheet := data + "checks/bcg_counts.csv"
+	_, n := nextDocument(t, sheet, "--se", "0.3")
+	stdout, _, _ := call(t, "", "next-trial", sheet, "--se", "0.3", "--format", "csv")
+	want := fmt.Sprintf("se,expected_steps,excludes_null\n0.3,%v,%v\n", n.Outlook.ExpectedSteps, n.Outlook.ExcludesNull)
+	if stdout != want {
+		t.Errorf("got %q, want %q", stdout, want)
+	}
+}
