@@ -227,3 +227,16 @@ func TestPanelMarkdownLevels(t *testing.T) {
 		t.Errorf("%q, want %q", heads, want)
 	}
 }
+
+// TestPanelHarmfulEstimate: the sentence names the threshold for harm too where the
+// estimate lies on that side.
+func TestPanelHarmfulEstimate(t *testing.T) {
+	for better, want := range map[string]string{
+		"lower": "thresholds 5 fewer and 10 more; certainty", "higher": "threshold 10 more; certainty",
+	} {
+		stdout, stderr, code := call(t, "", "panel", data+"demo.xlsx", "--outcome", "serious harm", "--better", better, "--important-per-1000", "-5, 10")
+		if text := strings.Join(strings.Fields(stdout), " "); code != codeDone || !strings.Contains(text, "7 more (5 fewer to 32 more) per 1000; "+want) {
+			t.Errorf("%s: exit %d, want %q in\n%s%s", better, code, want, stdout, stderr)
+		}
+	}
+}

@@ -228,17 +228,18 @@ func capital(text string) string {
 	return strings.ToUpper(text[:1]) + text[1:]
 }
 
-// thresholdWords says what the panel called important on the side that is better:
-// "threshold 40 fewer".
+// thresholdWords says what the panel called important on the side that is better,
+// "threshold 40 fewer", and on both sides where the estimate is not on that one.
 func thresholdWords(o *synthesis.Outcome, r *synthesis.PanelRow) string {
 	z := r.Zone
 	if z == nil {
 		return "no threshold was set"
 	}
-	switch o.Analysis.Better {
-	case review.BetterLower:
+	y, null := o.Result.Fit.Mean.Estimate, o.Analysis.Model.Null
+	switch better := o.Analysis.Better; {
+	case better == review.BetterLower && y <= null:
 		return "threshold " + boundaryName(o, r, z.Limits.Low)
-	case review.BetterHigher:
+	case better == review.BetterHigher && y >= null:
 		return "threshold " + boundaryName(o, r, z.Limits.High)
 	}
 	return fmt.Sprintf("thresholds %s and %s", boundaryName(o, r, z.Limits.Low), boundaryName(o, r, z.Limits.High))
