@@ -323,9 +323,12 @@ func (p *page) outcomeChange(t *words.OutcomeChangeText) {
 	part("", []column{{head: "input to certainty"}, {head: "before", right: true}, {head: "now", right: true}, {head: "guide"}}, t.Guides)
 	p.line("")
 	p.line("Triggers for a full update")
+	triggers := block{kind: tableBlock, columns: []column{{head: "trigger"}, {head: "verdict"}, {head: "why"}}}
 	for _, trigger := range t.Triggers {
-		p.wrapped(pad(trigger[0], 23)+pad(trigger[1], 12), trigger[2])
+		triggers.rows = append(triggers.rows, trigger)
+		p.fold(pad(trigger[0], 23)+pad(trigger[1], 12), trigger[2])
 	}
+	p.record(triggers)
 	if t.Looks != "" {
 		p.line("")
 		p.wrapped("", t.Looks)
