@@ -78,7 +78,7 @@ func explainStudies(c *cli.Context) error {
 		return err
 	}
 	table := []string{"outcomes", "explain", "regression", "coefficients"}
-	if want.Explain.Subgroups != "" {
+	if strings.TrimSpace(c.String(flagSubgroups)) != "" {
 		table = []string{"outcomes", "explain", "subgroups", "groups"}
 	}
 	if err := reply(c, format, explainAnswer(s), s.Document(version), table...); err != nil {

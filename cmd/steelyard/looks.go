@@ -41,8 +41,9 @@ func wantCumulative(c *cli.Context) (synthesis.Want, error) {
 		}
 		return want, nil
 	}
-	want.Looks = &synthesis.LooksWanted{Draws: c.Int(flagLooks)}
-	if n := want.Looks.Draws; n < leastDraws || n > mostDraws {
+	looks := &synthesis.LooksWanted{Draws: c.Int(flagLooks)}
+	want.Looks = looks
+	if n := looks.Draws; n < leastDraws || n > mostDraws {
 		return want, &callError{fmt.Sprintf("--looks %d: give %d to %d sequences to simulate", n, leastDraws, mostDraws)}
 	}
 	if c.IsSet(flagEffect) {
@@ -50,7 +51,7 @@ func wantCumulative(c *cli.Context) (synthesis.Want, error) {
 		if math.IsNaN(stated) || math.IsInf(stated, 0) {
 			return want, &callError{fmt.Sprintf("--effect %v: give a number in the reader's unit, such as 0.8 for a ratio", stated)}
 		}
-		want.Looks.Effect = &stated
+		looks.Effect = &stated
 	}
 	return want, nil
 }

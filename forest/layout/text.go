@@ -6,7 +6,7 @@ import (
 	"unicode"
 	"unicode/utf8"
 
-	"golang.org/x/text/unicode/norm"
+	"steelyard/meta/letters"
 )
 
 // Anchor says which part of a text stands at its x.
@@ -89,7 +89,7 @@ func Clean(text string) string {
 		}
 		return r
 	}, strings.ToValidUTF8(text, "\uFFFD"))
-	return strings.TrimSpace(norm.NFC.String(text))
+	return strings.TrimSpace(letters.Composed(text))
 }
 
 // steersDirection reports the invisible marks that reorder or hide text:

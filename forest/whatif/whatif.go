@@ -16,7 +16,7 @@ var files embed.FS
 
 // Engine is what a page needs to recompute.
 type Engine struct {
-	Code   string // the WebAssembly, packed by LZMA and written in base 85
+	Code   string // the WebAssembly, packed by LZMA and written in base 91
 	Worker string // the script of the worker that unpacks, starts and asks it
 	Script string // what joins the script of the page: all other files, start.js last
 }

@@ -4,9 +4,8 @@ import (
 	"errors"
 	"math"
 
-	"gonum.org/v1/gonum/mat"
-
 	"steelyard/meta"
+	"steelyard/meta/numeric"
 )
 
 // errEigen reports a decomposition that did not converge.
@@ -73,23 +72,21 @@ func robustly(f *meta.Fit, y, s []float64, groups [][]int) error {
 // pseudo-inverse does.
 func adjusted(phi []float64, rows []int, total float64) ([]float64, error) {
 	n := len(rows)
-	b := mat.NewSymDense(n, nil)
+	b := make([][]float64, n)
 	for i, r := range rows {
+		b[i] = make([]float64, n)
 		for j := i; j < n; j++ {
 			x := -math.Sqrt(phi[r]*phi[rows[j]]) / total
 			if i == j {
 				x += phi[r] * phi[r]
 			}
-			b.SetSym(i, j, x)
+			b[i][j] = x
 		}
 	}
-	var eigen mat.EigenSym
-	if !eigen.Factorize(b, true) {
+	values, vectors, err := numeric.SymmetricEigen(b)
+	if err != nil {
 		return nil, errEigen
 	}
-	values := eigen.Values(nil)
-	var vectors mat.Dense
-	eigen.VectorsTo(&vectors)
 	largest := values[n-1]
 	a := make([]float64, n)
 	for c, value := range values {
@@ -98,11 +95,11 @@ func adjusted(phi []float64, rows []int, total float64) ([]float64, error) {
 		}
 		along := 0.0
 		for i, r := range rows {
-			along += vectors.At(i, c) / math.Sqrt(phi[r]) // Dⱼ·Wⱼ1
+			along += vectors[c][i] / math.Sqrt(phi[r]) // Dⱼ·Wⱼ1
 		}
 		along /= math.Sqrt(value) * total
 		for i, r := range rows {
-			a[i] += math.Sqrt(phi[r]) * vectors.At(i, c) * along
+			a[i] += math.Sqrt(phi[r]) * vectors[c][i] * along
 		}
 	}
 	return a, nil

@@ -5,7 +5,7 @@ import (
 	"unicode"
 	"unicode/utf8"
 
-	"golang.org/x/text/unicode/norm"
+	"steelyard/meta/letters"
 )
 
 // joinedLetters are letters that no decomposition takes apart.
@@ -26,7 +26,7 @@ func FoldName(name string) string {
 			return -1
 		}
 		return r
-	}, norm.NFKD.String(name))
+	}, letters.Decomposed(name))
 	words := strings.FieldsFunc(joinedLetters.Replace(strings.ToLower(bare)), func(r rune) bool {
 		return !unicode.IsLetter(r) && !unicode.IsDigit(r) && !unicode.IsMark(r)
 	})

@@ -97,7 +97,7 @@ func (o *Outcome) accrue(ctx context.Context, columns []review.Column, plan *rev
 			return err
 		}
 		if want.Looks != nil {
-			if a.Looks, err = o.looks(ctx, groups, want); err != nil {
+			if a.Looks, err = want.Looks.look(ctx, o, groups, want.Work); err != nil {
 				return err
 			}
 		}
@@ -125,12 +125,12 @@ func (o *Outcome) accrue(ctx context.Context, columns []review.Column, plan *rev
 		o.note("There is one study only: nothing can be left out.")
 	}
 	if want.Subsets != nil {
-		if a.Subsets, err = o.subsets(ctx, refit, want); err != nil {
+		if a.Subsets, err = want.Subsets.subsets(ctx, o, refit, want.Work); err != nil {
 			return err
 		}
 	}
 	if want.Next != nil {
-		if a.Next, err = o.next(ctx, *want.Next, plan); err != nil {
+		if a.Next, err = want.Next.next(ctx, o, plan); err != nil {
 			return err
 		}
 	}
@@ -187,25 +187,25 @@ func (o *Outcome) checkAffordable(want SubsetsWanted) error {
 	return &accrual.InputError{Problem: fmt.Sprintf("subsets: evidence %s is too slow for %d subsets of %d studies, at most %d are weighed; %s", form, every, k, most, remedy)}
 }
 
-func (o *Outcome) subsets(ctx context.Context, refit meta.Refit, want Want) (*Subsets, error) {
-	if err := o.checkAffordable(*want.Subsets); err != nil {
+func (w *SubsetsWanted) subsets(ctx context.Context, o *Outcome, refit meta.Refit, work meta.Work) (*Subsets, error) {
+	if err := o.checkAffordable(*w); err != nil {
 		return nil, err
 	}
 	options := meta.SubsetOptions{
-		Important: o.Analysis.Important, Sample: want.Subsets.Sample,
-		Seed: o.Analysis.Model.Seed, Work: want.Work,
+		Important: o.Analysis.Important, Sample: w.Sample,
+		Seed: o.Analysis.Model.Seed, Work: work,
 	}
 	result := &Subsets{Chosen: -1}
-	if want.Subsets.Study != "" {
+	if w.Study != "" {
 		var names []string
 		for i, study := range o.Studies {
 			names = append(names, study.Source.Name)
-			if choice.Fold(study.Source.Name) == choice.Fold(want.Subsets.Study) && result.Chosen < 0 {
+			if choice.Fold(study.Source.Name) == choice.Fold(w.Study) && result.Chosen < 0 {
 				result.Chosen = i
 			}
 		}
 		if result.Chosen < 0 {
-			return nil, &choice.UnknownError{What: "pooled study", Text: want.Subsets.Study, Valid: names}
+			return nil, &choice.UnknownError{What: "pooled study", Text: w.Study, Valid: names}
 		}
 		options.Chosen = &result.Chosen
 	}

@@ -265,7 +265,7 @@ func TestAccrualEndsWithItsContext(t *testing.T) {
 func TestAccrualDocument(t *testing.T) {
 	s, _ := bcg(t)
 	want := everything()
-	want.Subsets.Study = "1980 trial 8"
+	want.Subsets = &SubsetsWanted{Study: "1980 trial 8"}
 	got, err := Run(context.Background(), &s.Extraction, planOf(t, review.SettingMeasure, "risk ratio", review.SettingImportant, "0.8"), want)
 	if err != nil {
 		t.Fatal(err)

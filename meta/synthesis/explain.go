@@ -75,13 +75,10 @@ func (e *ColumnError) Error() string {
 	return fmt.Sprintf("%s; its columns: %s", text, strings.Join(e.Columns, ", "))
 }
 
-// explainWhy fills in the wanted comparisons. It returns a *ColumnError for a column
+// explain fills in the wanted comparisons. It returns a *ColumnError for a column
 // that the sheet does not have and the cause if ctx ends; what the outcome's own
 // cells do not allow is told in the results' Problem.
-func (o *Outcome) explainWhy(ctx context.Context, columns []review.Column, w *ExplainWanted, work meta.Work) error {
-	if w == nil || o.Result == nil {
-		return nil
-	}
+func (w *ExplainWanted) explain(ctx context.Context, o *Outcome, columns []review.Column, work meta.Work) error {
 	e := &Explained{Planned: w.Planned}
 	if w.Subgroups != "" {
 		column, err := findColumn(columns, w.Subgroups)

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 
+	"steelyard/meta"
 	"steelyard/meta/accrual"
 	"steelyard/meta/effect"
 	"steelyard/meta/review"
@@ -32,10 +33,10 @@ func (l *Looks) Stated(i int) bool { return i == len(l.Scenarios)-1 }
 const LooksEndless = "Every number of steps is a fixed bound on the statistic: with looks that never end each is passed in time, under no effect too. " +
 	"A review that goes on for longer than these looks passes it with a greater chance than stands here."
 
-// looks simulates the outcome's own sequence of standard errors. An outcome that
+// look simulates the outcome's own sequence of standard errors. An outcome that
 // cannot have repeated looks says so in a note. It returns an *accrual.InputError
 // for an effect that the measure cannot have, and the cause if ctx ends.
-func (o *Outcome) looks(ctx context.Context, order *order, want Want) (*Looks, error) {
+func (w *LooksWanted) look(ctx context.Context, o *Outcome, order *order, work meta.Work) (*Looks, error) {
 	switch {
 	case o.Analysis.NullMissing:
 		o.note("The measure has no value of no effect and none is given, so that there is no evidence to look at again: state one with --null.")
@@ -48,10 +49,10 @@ func (o *Outcome) looks(ctx context.Context, order *order, want Want) (*Looks, e
 		return nil, nil
 	}
 	pooled := o.Result.Fit.Mean
-	result := &Looks{Effect: pooled.Estimate, Pooled: want.Looks.Effect == nil}
+	result := &Looks{Effect: pooled.Estimate, Pooled: w.Effect == nil}
 	if !result.Pooled {
 		var err error
-		if result.Effect, err = effect.FromReader(o.Analysis.Measure, *want.Looks.Effect); err != nil {
+		if result.Effect, err = effect.FromReader(o.Analysis.Measure, *w.Effect); err != nil {
 			return nil, &accrual.InputError{Problem: "the stated effect: " + err.Error()}
 		}
 	}
@@ -61,7 +62,7 @@ func (o *Outcome) looks(ctx context.Context, order *order, want Want) (*Looks, e
 	_, s := estimates(o.Studies)
 	sequence := accrual.Sequence{SE: s, Groups: order.groups, Model: o.Analysis.Model}
 	scenarios := accrual.Scenarios(pooled, o.Analysis.Model.Null, &result.Effect)
-	draws := accrual.Draws{N: want.Looks.Draws, Seed: o.Analysis.Model.Seed, Work: want.Work}
+	draws := accrual.Draws{N: w.Draws, Seed: o.Analysis.Model.Seed, Work: work}
 	var err error
 	if result.Scenarios, err = accrual.Looks(ctx, sequence, scenarios, draws); err != nil {
 		return nil, err

@@ -75,7 +75,8 @@ func curveSizes() []float64 {
 // next foresees the next study. An outcome without evidence says so in a note. It
 // returns an *accrual.InputError if its size gives no standard error, and the cause
 // if ctx ends.
-func (o *Outcome) next(ctx context.Context, w NextWanted, plan *review.Plan) (*Next, error) {
+func (asked *NextWanted) next(ctx context.Context, o *Outcome, plan *review.Plan) (*Next, error) {
+	w := *asked
 	if o.Analysis.NullMissing {
 		o.note("The measure has no value of no effect and none is given, so that there is no evidence that another study could change: state one with --null.")
 		return nil, nil

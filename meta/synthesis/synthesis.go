@@ -23,15 +23,15 @@ import (
 type Want struct {
 	Outcomes    []string
 	Cumulative  bool
-	Looks       *LooksWanted // repeated looks, beside Cumulative; nil: not wanted
+	Looks       Looking // repeated looks, beside Cumulative; nil: not wanted
 	LeaveOneOut bool
 	Influence   bool
-	Subsets     *SubsetsWanted // nil: not wanted
-	Next        *NextWanted    // what one more study could change; nil: not wanted
-	Methods     bool           // all methods for counts side by side
-	Beliefs     bool           // what sceptics make of the evidence
-	Runs        bool           // the planned sensitivity runs
-	Work        meta.Work      // how all this is done; its progress starts anew with each part
+	Subsets     Subsetting // nil: not wanted
+	Next        Foreseeing // what one more study could change; nil: not wanted
+	Methods     bool       // all methods for counts side by side
+	Beliefs     bool       // what sceptics make of the evidence
+	Runs        bool       // the planned sensitivity runs
+	Work        meta.Work  // how all this is done; its progress starts anew with each part
 	Further
 }
 
@@ -41,7 +41,7 @@ type Further struct {
 	SmallStudy *SmallStudyWanted // whether small studies show other effects
 	Panel      *PanelWanted      // what a guideline panel reads
 	Posterior  bool              // the posterior distribution of mean effect and spread
-	Explain    *ExplainWanted    // why the studies differ
+	Explain    Explaining        // why the studies differ
 }
 
 // Synthesis is the result of an analysis. Every output prints its numbers.
@@ -218,8 +218,10 @@ func Run(ctx context.Context, x *review.Extraction, plan *review.Plan, want Want
 				return nil, err
 			}
 		}
-		if err := o.explainWhy(ctx, x.Columns, want.Explain, want.Work); err != nil {
-			return nil, err
+		if want.Explain != nil && o.Result != nil {
+			if err := want.Explain.explain(ctx, o, x.Columns, want.Work); err != nil {
+				return nil, err
+			}
 		}
 		more, err := o.examine(ctx)
 		if err != nil {

@@ -2,39 +2,43 @@
 "use strict";
 
 /**
- * Text to bytes: base 85 over printable characters that need no escape in HTML, five
- * characters for four bytes, the most significant first; the last group may be shorter.
+ * Text to bytes: base 91 over printable characters that need no escape in HTML, two
+ * characters for 13 bits, the lowest bits and digits first; a last single one holds 6.
  * @param {string} text
  * @returns {Uint8Array}
  */
 function fromText(text) {
-  const digits = digitsOf85();
+  const digits = digitsOf91();
   const clean = text.trim();
-  const rest = clean.length % 5;
-  if (rest === 1) throw new Error("the engine's text is cut short");
-  const bytes = new Uint8Array(Math.floor(clean.length / 5) * 4 + (rest ? rest - 1 : 0));
+  const digitAt = (/** @type {number} */ i) => {
+    const digit = digits[clean.charCodeAt(i)] ?? -1;
+    if (digit < 0) throw new Error("the engine's text is damaged at character " + i);
+    return digit;
+  };
+  const pairs = Math.floor(clean.length / 2);
+  const bytes = new Uint8Array(Math.floor((pairs * 13 + (clean.length % 2) * 6) / 8));
   let at = 0;
-  for (let i = 0; i < clean.length; i += 5) {
-    const count = Math.min(5, clean.length - i);
-    let value = 0;
-    for (let j = 0; j < 5; j++) {
-      const digit = j < count ? digits[clean.charCodeAt(i + j)] ?? -1 : 84;
-      if (digit < 0) throw new Error("the engine's text is damaged at character " + (i + j));
-      value = value * 85 + digit;
-    }
-    for (let j = 0; j < count - 1; j++) {
-      bytes[at++] = Math.floor(value / 2 ** (24 - 8 * j)) % 256;
+  let waiting = 0;
+  let bits = 0;
+  for (let i = 0; i < clean.length; i += 2) {
+    const single = i + 1 === clean.length;
+    const value = digitAt(i) + (single ? 0 : 91 * digitAt(i + 1));
+    if (value >= 8192) throw new Error("the engine's text is damaged at character " + i);
+    waiting |= value << bits;
+    for (bits += single ? 6 : 13; bits >= 8; bits -= 8) {
+      bytes[at++] = waiting & 255;
+      waiting >>= 8;
     }
   }
   return bytes;
 }
 
 /** The value of each character, by its code; −1 for one that is no digit. */
-function digitsOf85() {
+function digitsOf91() {
   const digits = new Int8Array(128).fill(-1);
   let next = 0;
-  for (let code = 35; code < 128 && next < 85; code++) {
-    if (!"&'<\\`".includes(String.fromCharCode(code))) digits[code] = next++;
+  for (let code = 33; code < 127; code++) {
+    if (!"<&`".includes(String.fromCharCode(code))) digits[code] = next++;
   }
   return digits;
 }

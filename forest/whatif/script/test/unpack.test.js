@@ -51,8 +51,9 @@ test("damage ends in an error or in other bytes, never in a hang", () => {
   assert.throws(() => unpack(new Uint8Array(5)));
 });
 
-test("text that is no base 85 is refused", () => {
-  assert.throws(() => fromText("##<##"), /damaged/);
-  assert.throws(() => fromText("######"), /cut short/);
-  assert.deepStrictEqual([...fromText("#####")], [0, 0, 0, 0]);
+test("text that is no base 91 is refused, and its digits are read from the lowest", () => {
+  assert.throws(() => fromText("!!<!!"), /damaged at character 2/);
+  assert.throws(() => fromText("!!~~"), /damaged at character 2/); // 90 + 91 · 90 is more than 13 bits
+  assert.deepStrictEqual([...fromText("!!!!!")], [0, 0, 0, 0]);
+  assert.deepStrictEqual([...fromText('#$#$')], [19, 97, 34]); // twice 2 + 3 · 91 = 275: 275 + 275 · 2¹³ = 2253075 = 19 + 97 · 2⁸ + 34 · 2¹⁶
 });
