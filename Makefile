@@ -6,13 +6,23 @@ VERSION := $(shell git describe --tags --always --dirty 2>/dev/null || echo unre
 FUZZCOUNT ?= 20000x
 
 .DEFAULT_GOAL := help
-.PHONY: help build demo test race office browser soak check fuzz bench bench-peers golden dist clean
+.PHONY: help build engine demo test race office script browser soak check fuzz bench bench-peers golden dist clean
+
+ENGINE := forest/whatif/built/engine.txt
+ENGINE_SOURCES := go.mod $(shell find cmd/engine forest/layout forest/words forest/webpage ingest/rules meta -name '*.go' ! -name '*_test.go')
 
 help: ## list the targets
 	@awk -F ':.*## ' '/^[a-z-]+:.*## / { printf "  make %-11s %s\n", $$1, $$2 }' $(MAKEFILE_LIST)
 
-build: ## build ./steelyard
+build: engine ## build ./steelyard with the engine for report pages
 	@go build -trimpath -ldflags "-s -w -X main.version=$(VERSION)" -o steelyard ./cmd/steelyard
+
+engine: ## build the engine that recomputes report pages, if its sources changed (needs xz)
+	@if command -v xz >/dev/null; then $(MAKE) --no-print-directory $(ENGINE); \
+	else rm -f $(ENGINE); echo "xz was not found: building without the engine, so that report pages only show the analysis as planned (Debian: apt-get install xz-utils)"; fi
+
+$(ENGINE): $(ENGINE_SOURCES)
+	go run ./cmd/engine/pack
 
 demo: build ## pool the published BCG trials and an invented workbook; charts and a report page go to out/
 	@mkdir -p out
@@ -31,7 +41,13 @@ race: ## run every test under the race detector
 office: ## what needs LibreOffice Calc: the template keeps its numbers in another program, the audit workbook is computed anew by it
 	go test -tags office -run Office ./ingest ./cmd/steelyard
 
-browser: ## the report in a real browser: widths, sliders, filter, print, accessibility (needs Chromium; axe-core by npm where there is a network)
+script: ## the script of the report page: its tests by node, its types by TypeScript (needs node and npm)
+	node --test forest/whatif/script/test/*.test.js
+	@folder="$$(mktemp -d)"; trap 'rm -rf "$$folder"' EXIT; \
+	if npm install --silent --no-audit --no-fund --prefix "$$folder" typescript@5 >/dev/null 2>&1; then "$$folder/node_modules/.bin/tsc" -p forest/whatif/script; \
+	else echo "TypeScript could not be fetched: types are not checked"; fi
+
+browser: engine ## the report in a real browser: widths, sliders, filter, print, accessibility (needs Chromium; axe-core by npm where there is a network)
 	@folder="$$(mktemp -d)"; trap 'rm -rf "$$folder"' EXIT; \
 	if npm install --silent --no-audit --no-fund --prefix "$$folder" axe-core@4.10.3 >/dev/null 2>&1; then export STEELYARD_AXE="$$folder/node_modules/axe-core/axe.min.js"; \
 	else echo "axe-core could not be fetched: the tests' own checks of accessibility stand alone"; fi; \
@@ -47,6 +63,7 @@ check: ## formatting, vet, tidiness, static analysis, imports
 	GOOS=windows go vet ./...
 	go vet -tags office,soak ./ingest ./cmd/steelyard
 	go vet -tags browser ./cmd/steelyard
+	GOOS=js GOARCH=wasm go vet ./cmd/engine ./forest/webpage ./meta/letters
 	go mod tidy -diff
 	go tool staticcheck ./...
 	go test -count=1 -run TestRooms ./cmd/steelyard
@@ -68,7 +85,7 @@ bench-peers: ## the same work here and in general-purpose peers (numpy, scipy, a
 golden: ## rewrite the golden files and the README's transcript and figures, to be looked at before they are committed
 	go test ./... -run 'Golden|Readme' -update
 
-dist: ## cross-build for Linux, Windows and macOS into dist/
+dist: engine ## cross-build for Linux, Windows and macOS into dist/
 	@set -e; mkdir -p dist; for target in linux/amd64 linux/arm64 windows/amd64 darwin/arm64 darwin/amd64; do \
 	  suffix=; case $$target in windows/*) suffix=.exe;; esac; \
 	  echo "dist/steelyard-$${target/\//-}$$suffix"; \
@@ -76,4 +93,4 @@ dist: ## cross-build for Linux, Windows and macOS into dist/
 	done
 
 clean: ## remove what the targets above made
-	rm -rf steelyard steelyard.exe out dist
+	rm -rf steelyard steelyard.exe out dist $(ENGINE) forest/whatif/built/wasm_exec.js
