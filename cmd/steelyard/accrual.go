@@ -126,7 +126,7 @@ func (k accrualKind) command() *cli.Command {
 				return err
 			}
 			records := k.records
-			if want.Next != nil && want.Next.SE > 0 { // no sizes to list: the outlook is the table
+			if next, ok := want.Next.(*synthesis.NextWanted); ok && next.SE > 0 { // no sizes to list: the outlook is the table
 				records = []string{"outcomes", "next_trial", "outlook"}
 			}
 			if err := reply(c, format, accrualAnswer(s, k.write), s.Document(version), records...); err != nil {
