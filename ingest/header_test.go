@@ -169,6 +169,15 @@ func TestIntervalInOneCell(t *testing.T) {
 	}
 }
 
+// TestLowAndHigh: limits headed low and high beside an estimate are its limits, and
+// the ends of a scale are not.
+func TestLowAndHigh(t *testing.T) {
+	got := lines(mustRead(t, []byte("study,OR,low,high,scale low,scale high\nA,0.8,0.5,1.3,0,10\n"), "a.csv", Options{}))
+	if len(got) != 1 || !strings.Contains(got[0], "ci low=0.5|ci high=1.3") || !strings.Contains(got[0], "scale low=0|scale high=10") {
+		t.Errorf("read as %q", got)
+	}
+}
+
 // TestColumnFlag maps a header of a two-row header, and refuses an unknown one.
 func TestColumnFlag(t *testing.T) {
 	rows := table{{"Who", "Drug", nil, "Nothing", nil}, {nil, "Falls", "People", "Falls", "People"}, {"A", 1, 20, 2, 21}}

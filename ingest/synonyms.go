@@ -274,7 +274,7 @@ func (d *dictionary) addLimits() {
 			d.add(word, meaning{field: review.LimitHigh})
 		}
 	}
-	for word, field := range map[string]review.Field{"lower": review.LimitLow, "upper": review.LimitHigh, "lcl": review.LimitLow, "ucl": review.LimitHigh} {
+	for word, field := range map[string]review.Field{"lower": review.LimitLow, "upper": review.LimitHigh, "low": review.LimitLow, "high": review.LimitHigh, "lcl": review.LimitLow, "ucl": review.LimitHigh} {
 		d.add(word, meaning{field: field})
 	}
 }
