@@ -115,6 +115,7 @@ func (r *rowReader) read() {
 	}
 	r.readNumbers()
 	r.readContext()
+	r.readCellNotes()
 	r.readMeasure()
 	r.readBetter()
 }
