@@ -24,7 +24,11 @@ func (p *page) smallStudies(s *synthesis.Synthesis, o *synthesis.Outcome) {
 		return
 	}
 	if a.Refused != "" {
-		p.wrapped("", "Not run: "+a.Refused+".")
+		text := "Not run: " + a.Refused + "."
+		if a.Few {
+			text += " To run them all the same, add --allow-few."
+		}
+		p.wrapped("", text)
 		return
 	}
 	if a.Few {

@@ -72,7 +72,7 @@ func methodsOf(s *synthesis.Synthesis, o *synthesis.Outcome, id string) methodsV
 	m := methodsView{ID: id, Name: outcomeName(s, o), Paragraphs: words.MethodsParagraphs(s, o)}
 	for _, setting := range review.Settings() {
 		v := s.Plan.Value(setting.Name, o.Name)
-		if v.Text == "" {
+		if v.Text == "" || v.From == review.FromDefault {
 			continue
 		}
 		origin := v.From.String()
@@ -82,6 +82,20 @@ func methodsOf(s *synthesis.Synthesis, o *synthesis.Outcome, id string) methodsV
 		m.Settings = append(m.Settings, settingView{setting.Name, v.Text, origin, v.Reason})
 	}
 	return m
+}
+
+// defaultsOf lists the settings that stand at their defaults for every outcome.
+func defaultsOf(s *synthesis.Synthesis) []settingView {
+	var all []settingView
+	for _, setting := range review.Settings() {
+		given := slices.ContainsFunc(s.Outcomes, func(o synthesis.Outcome) bool {
+			return s.Plan.Value(setting.Name, o.Name).From != review.FromDefault
+		})
+		if text := s.Plan.Value(setting.Name, "").Text; !given && text != "" {
+			all = append(all, settingView{Name: setting.Name, Value: text})
+		}
+	}
+	return all
 }
 
 // pageCautions are the synthesis's own, and those that every page has.

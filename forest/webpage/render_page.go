@@ -167,6 +167,9 @@ func (m *markup) back(v *view) {
 	for i := range v.Methods {
 		m.methods(&v.Methods[i], v.One)
 	}
+	if len(v.Defaults) > 0 {
+		m.settings("Settings at their defaults", "Settings at their defaults", v.Defaults)
+	}
 	m.raw("</section>\n<section id=\"cautions\" aria-labelledby=\"h-cautions\">\n<h2 id=\"h-cautions\">Cautions</h2>\n<ol class=\"plain\">")
 	for _, caution := range v.Cautions {
 		m.raw("\n")
@@ -216,19 +219,37 @@ func (v *methodsView) section() Section {
 	m.open("div", "id", v.ID+"-methods")
 	m.raw("\n<div class=\"methods\">")
 	m.paragraphs(v.Paragraphs)
-	m.raw("</div>\n<details class=\"more\"><summary>Settings and where each came from</summary>")
-	m.open("div", "class", "scroll", "role", "region", "aria-label", "Settings: "+v.Name, "tabindex", "0")
+	m.raw("</div>\n")
+	if len(v.Settings) > 0 {
+		m.settings("Settings of "+v.Name, "Settings that were given, and where", v.Settings)
+	}
+	m.raw("</div>\n")
+	return Section{ID: v.ID + "-methods", HTML: m.String()}
+}
+
+// settings writes settings behind a summary; those at their defaults come from nowhere
+// and have no reason.
+func (m *markup) settings(caption, summary string, settings []settingView) {
+	given := settings[0].Origin != ""
+	m.raw(`<details class="more">`)
+	m.element("summary", summary)
+	m.open("div", "class", "scroll", "role", "region", "aria-label", caption, "tabindex", "0")
 	m.raw("<table>")
-	m.element("caption", "Settings: "+v.Name, "class", "vh")
-	m.raw("<thead><tr><th scope=\"col\">Setting</th><th scope=\"col\">Value</th><th scope=\"col\">From</th><th scope=\"col\">Reason</th></tr></thead><tbody>\n")
-	for _, s := range v.Settings {
+	m.element("caption", caption, "class", "vh")
+	m.raw("<thead><tr><th scope=\"col\">Setting</th><th scope=\"col\">Value</th>")
+	if given {
+		m.raw("<th scope=\"col\">From</th><th scope=\"col\">Reason</th>")
+	}
+	m.raw("</tr></thead><tbody>\n")
+	for _, s := range settings {
 		m.raw("<tr>")
 		m.element("th", s.Name, "scope", "row")
 		m.element("td", s.Value)
-		m.element("td", s.Origin)
-		m.element("td", s.Reason)
+		if given {
+			m.element("td", s.Origin)
+			m.element("td", s.Reason)
+		}
 		m.raw("</tr>\n")
 	}
-	m.raw("</tbody></table></div></details>\n</div>\n")
-	return Section{ID: v.ID + "-methods", HTML: m.String()}
+	m.raw("</tbody></table></div></details>\n")
 }

@@ -38,6 +38,7 @@ type view struct {
 	Changes  *changesView
 	Findings findingsView
 	Methods  []methodsView
+	Defaults []settingView // of all outcomes
 	Cautions []string
 	Record   recordView
 
@@ -73,7 +74,7 @@ type frame struct {
 func newView(s *synthesis.Synthesis, options Options) (*view, error) {
 	v := &view{
 		Title: "What did the " + words.Noun(s, 2) + " find?", Kicker: kicker(s), One: len(s.Outcomes) == 1,
-		Findings: findingsOf(s), Cautions: pageCautions(s), Record: recordOf(s, options),
+		Findings: findingsOf(s), Defaults: defaultsOf(s), Cautions: pageCautions(s), Record: recordOf(s, options),
 	}
 	v.drawn, v.Live = newDrawn(), options.Live
 	for i := range s.Outcomes {

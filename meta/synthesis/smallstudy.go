@@ -36,7 +36,7 @@ type SmallStudyWanted struct {
 // what the result would be under several ideas of why.
 type SmallStudy struct {
 	Refused  string // why nothing was run; blank where it was
-	Few      bool   // run with fewer than 10 studies
+	Few      bool   // refused for fewer than 10 studies, or run with so few on request
 	Spread   float64
 	Tables   int     // pooled studies with counts as they stand
 	Step     float64 // one-sided p of the selection model's step
@@ -93,7 +93,8 @@ func (o *Outcome) seekAsymmetry(want SmallStudyWanted) {
 	case k < 3:
 		part.Refused = fmt.Sprintf("there %s, and no line can be laid through fewer than 3 so that scatter is left", map[bool]string{true: "is 1 study", false: "are 2 studies"}[k == 1])
 	case k < leastForAsymmetry && !want.AllowFew:
-		part.Refused = fmt.Sprintf("there are %d studies; below %d such tests find little and mislead easily (Sterne et al. 2011). To run them all the same, add --allow-few", k, leastForAsymmetry)
+		part.Few = true
+		part.Refused = fmt.Sprintf("there are %d studies; below %d such tests find little and mislead easily (Sterne et al. 2011)", k, leastForAsymmetry)
 	case part.Spread < leastSpread:
 		part.Refused = fmt.Sprintf("the studies are nearly alike in precision (the largest standard error is %.3g times the smallest; %.1f is wanted), so that small and large ones cannot be told apart", part.Spread, leastSpread)
 	}
