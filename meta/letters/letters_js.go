@@ -16,10 +16,12 @@ func Composed(text string) string { return normalised(text, "NFC") }
 // characters that are forms of others as those.
 func Decomposed(text string) string { return normalised(text, "NFKD") }
 
+var normalize = js.Global().Get("String").Get("prototype").Get("normalize")
+
 // normalised asks the script's own method; texts of plain letters are in every form.
 func normalised(text, form string) string {
 	if strings.IndexFunc(text, func(r rune) bool { return r >= utf8.RuneSelf }) < 0 {
 		return text
 	}
-	return js.ValueOf(text).Call("normalize", form).String()
+	return normalize.Call("call", text, form).String()
 }
