@@ -38,18 +38,23 @@ const whatIf = (() => {
   };
   /** What is being worked out, by outcome. @type {Map<string, Promise<void>>} */
   const working = new Map();
-  /** The latest reply shown, by outcome. @type {Map<string, Reply>} */
+  /** The latest answer shown, by outcome. @type {Map<string, {variant: Variant, reply: Reply}>} */
   const latest = new Map();
+  /** How many questions were asked, by outcome. @type {Map<string, number>} */
+  const turns = new Map();
 
-  /** Works out and shows what comes late. @param {string} outcomeId @param {Variant} variant @param {Reply} reply */
-  const complete = async (outcomeId, variant, reply) => {
+  /** Works out and shows what comes late, unless a further change comes first. @param {string} outcomeId */
+  const complete = async (outcomeId) => {
+    const turn = turns.get(outcomeId);
+    const overtaken = () => turns.get(outcomeId) !== turn || engine.broken !== "";
     await new Promise((done) => setTimeout(done, pauseBeforeRest));
-    if (latest.get(outcomeId) !== reply || engine.broken) return;
-    const whole = await engine.askWhole(variant).catch(() => null); // onbroken says why
-    if (!whole?.document || latest.get(outcomeId) !== reply) return;
+    const shown = latest.get(outcomeId);
+    if (overtaken() || !shown) return;
+    const whole = await engine.askWhole(shown.variant).catch(() => null); // onbroken says why
+    if (!whole?.document || overtaken()) return;
     swapRest(outcomeId, whole);
-    Object.assign(reply, whole, { late: [] });
-    tell("whatif:shown", { outcomeId, variant, reply, complete: true });
+    Object.assign(shown.reply, whole, { late: [] });
+    tell("whatif:shown", { outcomeId, ...shown, complete: true });
   };
 
   return {
@@ -64,17 +69,18 @@ const whatIf = (() => {
     },
     /** @param {string} outcomeId @param {Variant} variant @returns {Promise<Reply | null>} */
     ask: async (outcomeId, variant) => {
+      turns.set(outcomeId, (turns.get(outcomeId) ?? 0) + 1);
       const answer = await engine.ask(variant);
       if (answer === null) return null;
       const reply = { ...answer };
-      const later = (reply.late ?? []).length > 0;
       if (reply.document) {
-        latest.set(outcomeId, reply);
+        latest.set(outcomeId, { variant, reply });
         swap(outcomeId, reply);
       }
-      tell("whatif:shown", { outcomeId, variant, reply, complete: !later });
-      if (reply.document && later) {
-        const rest = complete(outcomeId, variant, reply).finally(() => {
+      const late = latest.get(outcomeId)?.reply.late ?? [];
+      tell("whatif:shown", { outcomeId, variant, reply, complete: late.length === 0 });
+      if (late.length > 0) {
+        const rest = complete(outcomeId).finally(() => {
           if (working.get(outcomeId) === rest) working.delete(outcomeId);
         });
         working.set(outcomeId, rest);
