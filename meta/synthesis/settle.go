@@ -1,6 +1,7 @@
 package synthesis
 
 import (
+	"errors"
 	"fmt"
 	"math"
 	"strings"
@@ -39,7 +40,7 @@ func (o *Outcome) settle(asked review.Analysis, rows []*review.Study) error {
 	if asked.Null != nil {
 		null = *asked.Null
 	}
-	if o.Analysis.Model.Null, err = effect.FromReader(measure, null); err != nil {
+	if o.Analysis.Model.Null, err = settled(measure, "the value of no effect", null); err != nil {
 		return fmt.Errorf("null: %w", err)
 	}
 	o.Analysis.Important, err = important(measure, asked.Important, o.Analysis.Model.Null)
@@ -132,6 +133,16 @@ func (o *Outcome) better(asked review.Better, rows []*review.Study) review.Bette
 	return found
 }
 
+// settled puts a value of the plan on the analysis scale; its error names what it is.
+func settled(m effect.Measure, what string, value float64) (float64, error) {
+	y, err := effect.FromReader(m, value)
+	var input *effect.InputError
+	if errors.As(err, &input) { // which speaks of an estimate
+		err = &effect.InputError{What: what, Value: input.Value, Why: input.Why, Do: input.Do}
+	}
+	return y, err
+}
+
 // important puts the important difference on the analysis scale: one value is
 // mirrored at the null.
 func important(m effect.Measure, values []float64, null float64) (*meta.Limits, error) {
@@ -140,7 +151,7 @@ func important(m effect.Measure, values []float64, null float64) (*meta.Limits, 
 	}
 	scaled := make([]float64, 0, 2)
 	for _, v := range values {
-		y, err := effect.FromReader(m, v)
+		y, err := settled(m, "the difference", v)
 		if err != nil {
 			return nil, fmt.Errorf("important: %w", err)
 		}
