@@ -107,18 +107,23 @@ class Rows {
     const bar = make("div", { class: "wi-rows", role: "toolbar", "aria-orientation": "vertical", "aria-label": `Leave ${this.known.nouns} out` });
     host.append(bar);
     const box = bar.getBoundingClientRect();
+    const groups = new Map(Array.from(host.querySelectorAll('g[id*="-row-"]'), (g) => [g.id.split("-row-")[1], g]));
+    const places = this.shown.map((_, i) => groups.get(String(i + 1))?.getBoundingClientRect()); // all before the first button, or each would be laid out anew
+    const planned = new Set(this.known.studies.map((s) => s.row));
+    /** @type {HTMLElement[]} */
+    const buttons = [];
     this.shown.forEach((study, i) => {
-      const group = host.querySelector(`[id$="-row-${i + 1}"]`);
-      if (!(group instanceof SVGGElement) || box.height === 0) return;
-      const place = group.getBoundingClientRect();
-      const planned = this.known.studies.some((s) => s.row === study.row);
-      const what = planned ? `Leave out ${study.name}` : `Take away ${study.name}`;
-      const button = makeButton("", () => this.toggle(study.row), { "aria-label": what, title: what, "data-again": "chart " + study.row, tabindex: bar.children.length === 0 ? "0" : "-1" });
+      const place = places[i];
+      if (place === undefined || box.height === 0) return;
+      const group = groups.get(String(i + 1));
+      const what = planned.has(study.row) ? `Leave out ${study.name}` : `Take away ${study.name}`;
+      const button = makeButton("", () => this.toggle(study.row), { "aria-label": what, title: what, "data-again": "chart " + study.row, tabindex: buttons.length === 0 ? "0" : "-1" });
       button.style.top = `${((place.top - box.top) / box.height) * 100}%`;
       button.style.height = `${(place.height / box.height) * 100}%`;
-      for (const event of ["pointerenter", "pointerleave"]) button.addEventListener(event, () => group.dispatchEvent(new Event(event)));
-      bar.append(button);
+      for (const event of ["pointerenter", "pointerleave"]) button.addEventListener(event, () => group?.dispatchEvent(new Event(event)));
+      buttons.push(button);
     });
+    bar.append(...buttons);
     bar.addEventListener("keydown", (event) => moveAlong(bar, event));
     if (bar.children.length === 0) bar.remove();
   }

@@ -20,8 +20,8 @@ function swap(outcomeId, reply) {
   if (!outcome || !reply.sections) return;
   const scroll = { left: window.scrollX, top: window.scrollY };
   const focus = focusPath(document.activeElement);
-  placePositions(outcomeId, reply.css ?? "");
   const changed = replaceSections(outcome, reply.sections, reply.late ?? []);
+  placePositions(outcomeId, reply.css ?? "");
   const lead = document.getElementById(outcomeId + "-lead");
   if (lead && lead.innerHTML !== reply.lead) lead.innerHTML = reply.lead ?? "";
   rebindOutcome(reply.data, changed);
@@ -82,6 +82,11 @@ function placePositions(outcomeId, css) {
 function replaceSections(outcome, sections, late) {
   /** @type {HTMLElement[]} */
   const changed = [];
+  const places = sections.map(({ id, html }) => {
+    const old = document.getElementById(id);
+    const same = old !== null && swapped.get(id) === html;
+    return { id, html, old, same, kept: old && !same ? stateOf(old) : null }; // all read before the first is replaced, or each would be laid out anew
+  });
   const wanted = new Set([...sections.map((section) => section.id), ...late]);
   for (const old of Array.from(outcome.children)) {
     if (old.localName !== "section" || !old.id) continue;
@@ -93,15 +98,13 @@ function replaceSections(outcome, sections, late) {
   }
   /** @type {Element | null} the section before */
   let before = null;
-  for (const { id, html } of sections) {
-    const old = document.getElementById(id);
-    if (old && swapped.get(id) === html) {
+  for (const { id, html, old, same, kept } of places) {
+    if (same) {
       before = old;
       continue;
     }
     const fresh = elementOf(html);
-    if (old) {
-      const kept = stateOf(old);
+    if (old && kept) {
       old.replaceWith(fresh);
       restore(fresh, kept);
     } else if (before) {
