@@ -41,7 +41,7 @@ func (b *browser) ask(outcome, variant string) whatIfReply {
 }
 
 // TestBrowserWhatIf: the page computes a changed analysis from file://, within its policy,
-// shows it in place of the outcome, keeps focus, scroll and slider, and goes back to the
+// shows it in place of the outcome, keeps focus and slider, and what is read near its place in the window, and goes back to the
 // plan, which then reads as before.
 func TestBrowserWhatIf(t *testing.T) {
 	needEngine(t)
@@ -51,7 +51,7 @@ func TestBrowserWhatIf(t *testing.T) {
 	var before, changed, after string
 	b.eval(shown, &before)
 	b.eval(`(() => { window.start = document.getElementById('o1-prior').value; window.looks = []; document.addEventListener('whatif:shown', (e) => looks.push([e.detail.outcomeId, e.detail.variant.changes.effects, e.detail.reply.document.outcomes[0].k]));
-		const e = document.getElementById('o1-prior'); e.value = 3; e.dispatchEvent(new Event('input')); e.focus(); scrollTo(0, 700);
+		const e = document.getElementById('o1-prior'); e.value = 3; e.dispatchEvent(new Event('input')); e.focus(); scrollTo(0, 700); window.top0 = e.getBoundingClientRect().top;
 		document.querySelector('#o1-accrual details').open = true; })()`, nil)
 	const variant = `{outcome: whatIf.sheet.outcomes[0].name, changes: %s, left_out: %s, added: null}`
 	reply := b.ask("o1", fmt.Sprintf(variant, `{effects: "common"}`, `[JSON.parse(document.getElementById('data').textContent).outcomes[0].studies[0].row]`))

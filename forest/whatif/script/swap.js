@@ -11,14 +11,14 @@ const swapped = new Map();
  * Shows a reply in place of what the page shows of an outcome: its opening sentence, its
  * sections and its methods. Sections that read the same stay as they are; so do elements
  * beside the sections, focus, scroll, sliders, filters, sorting and opened details.
- * Sections that come late are marked busy until they do.
+ * Sections that come late are marked busy until they do. Nothing here asks where anything
+ * stands once it is replaced: the browser keeps the scroll, and lays the page out once.
  * @param {string} outcomeId the prefix of the outcome's ids, as "o1"
  * @param {Reply} reply one with a document
  */
 function swap(outcomeId, reply) {
   const outcome = document.getElementById(outcomeId);
   if (!outcome || !reply.sections) return;
-  const scroll = { left: window.scrollX, top: window.scrollY };
   const focus = focusPath(document.activeElement);
   const changed = replaceSections(outcome, reply.sections, reply.late ?? []);
   placePositions(outcomeId, reply.css ?? "");
@@ -27,7 +27,6 @@ function swap(outcomeId, reply) {
   rebindOutcome(reply.data, changed);
   hideDeadLinks(outcomeId);
   refocus(focus);
-  if (window.scrollX !== scroll.left || window.scrollY !== scroll.top) window.scrollTo({ ...scroll, behavior: "instant" });
 }
 
 /** Sections to which the page has added something, so that they are completed in place. */
