@@ -253,7 +253,7 @@ func TestBrowserWhatIfPrints(t *testing.T) {
 	b := startBrowser(t)
 	b.open(reportFile(t, data+"demo.xlsx"), 1400)
 	seen := func() (shown []string) {
-		b.eval(`['.whatif', '.wi-tag', '.wi-says', '.wi-compare table', '.wi-log li', '.wi-groups', '.wi-bar', '.wi-strip', '.wi-rows', '.wi-box', '.wi-export', '.wi-log button'].filter((s) => [...document.querySelectorAll('#o1 ' + s)].some((e) => e.getClientRects().length))`, &shown)
+		b.eval(`['.whatif', '.wi-tag', '.wi-says', '.wi-compare table', '.wi-log li', '.wi-groups', '.wi-bar', '.wi-strip', '.wi-rows', '.wi-box', '.wi-export', '.wi-invite', '.wi-log button'].filter((s) => [...document.querySelectorAll(s)].some((e) => e.getClientRects().length))`, &shown)
 		return shown
 	}
 	b.call("Emulation.setEmulatedMedia", map[string]any{"media": "print"}, nil)

@@ -31,6 +31,7 @@ class Banner {
     section.append(this.log, this.live);
     this.strip = make("div", { class: "wi-strip", role: "region", "aria-label": "What differs from the plan", hidden: true });
     byId(id)?.append(this.strip);
+    this.enlist();
     // Where the table is in the window, the strip would say the same again.
     new IntersectionObserver(([seen]) => this.strip.classList.toggle("wi-seen", seen.isIntersecting)).observe(this.table);
   }
@@ -78,6 +79,23 @@ class Banner {
       place?.querySelector(":scope > .wi-tag")?.remove();
       if (words.length > 0) place?.prepend(make("p", { class: "wi-tag" }, ...this.sentence(words)));
     }
+    const lead = byId(this.id + "-lead");
+    if (lead !== null && lead.querySelector(".wi-invite") === null) lead.append(make("p", { class: "wi-invite" }, this.link()));
+  }
+
+  /** A link to the controls. */
+  link() {
+    return make("a", { href: `#${this.id}-whatif` }, "What if …?");
+  }
+
+  /** Names the controls among the page's contents. */
+  enlist() {
+    document.querySelector(`nav.toc a[href="#${this.id}"] + ol`)?.prepend(make("li", { class: "wi-invite" }, this.link()));
+  }
+
+  /** Takes away what leads to controls that can do nothing. */
+  close() {
+    for (const e of document.querySelectorAll(`.wi-invite:has([href="#${this.id}-whatif"])`)) e.remove();
   }
 
   /** @param {Look} now @param {Facts | null} planned */

@@ -138,6 +138,7 @@ class Desk {
     this.section.hidden = isPlanned(this.looks.now);
     byId(this.id)?.classList.add("wi-closed");
     this.rows.detach();
+    if (this.section.hidden) this.banner.close();
   }
 }
 
