@@ -13,6 +13,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"regexp"
 	"strings"
 	"testing"
 
@@ -152,6 +153,11 @@ func TestBrowserFigures(t *testing.T) {
 	text := string(content)
 	if name != "o1-forest.svg" || !strings.Contains(text, "What if, not the plan: effects common") || strings.Contains(text, "var(") {
 		t.Errorf("%s: %.300s", name, text)
+	}
+	for _, tag := range regexp.MustCompile("<text[^>]*>").FindAllString(text, -1) {
+		if !strings.Contains(tag, " fill=") {
+			t.Errorf("a text has no colour of its own: %s", tag)
+		}
 	}
 	decoder := xml.NewDecoder(bytes.NewReader(content))
 	for {

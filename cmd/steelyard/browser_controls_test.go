@@ -17,6 +17,7 @@ import (
 func (b *browser) change(act string) {
 	b.t.Helper()
 	b.eval(`(async () => {
+		await whatIf.settled(); // what comes late of the change before
 		const shown = new Promise((give, refuse) => { document.addEventListener('whatif:shown', () => setTimeout(give), {once: true}); setTimeout(() => refuse(new Error('nothing was shown')), 30000); });
 		`+act+`;
 		await shown;
@@ -40,7 +41,7 @@ func (b *browser) press(key string, code, modifiers int) {
 // pressed presses a key and waits until the answer to it is shown.
 func (b *browser) pressed(key string, code, modifiers int) {
 	b.t.Helper()
-	b.eval(`window.answered = new Promise((give) => document.addEventListener('whatif:shown', () => setTimeout(give), {once: true})); 0`, nil)
+	b.eval(`whatIf.settled().then(() => { window.answered = new Promise((give, refuse) => { document.addEventListener('whatif:shown', () => setTimeout(give), {once: true}); setTimeout(() => refuse(new Error('no key was answered')), 30000); }); })`, nil)
 	b.press(key, code, modifiers)
 	b.eval("answered", nil)
 }
