@@ -82,6 +82,7 @@ class Desk {
    */
   shown(variant, reply) {
     const again = reply === this.reply;
+    const here = again ? spotNow() : null;
     const mine = this.asked !== null && sameVariant(this.asked.variant, variant) ? this.asked : null;
     if (mine === null) this.looks.change(variant);
     else mine.take();
@@ -89,7 +90,10 @@ class Desk {
     this.reply = reply;
     this.answers.set(JSON.stringify(this.looks.now), factsOf(this.id));
     this.rows.attach(reply.data?.studies ?? [], this.looks.now.left_out);
-    if (again) return this.export.show();
+    if (again) {
+      this.export.show();
+      return returnTo(here, this.id);
+    }
     this.show();
     returnTo(mine?.spot ?? null, this.id);
     this.tell();
