@@ -212,7 +212,7 @@ func TestBrowserFocus(t *testing.T) {
 		t.Fatalf("two down the focus is on %q", got)
 	}
 	var before, after float64
-	const height = `document.activeElement.getBoundingClientRect().top`
+	const height = `whatIf.settled().then(() => document.activeElement.getBoundingClientRect().top)`
 	b.eval(height, &before)
 	b.change(`document.activeElement.click()`)
 	if got := focus(); got != "Leave out Brandão 2014" {

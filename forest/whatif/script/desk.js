@@ -91,6 +91,7 @@ class Desk {
     this.answers.set(JSON.stringify(this.looks.now), factsOf(this.id));
     this.rows.attach(reply.data?.studies ?? [], this.looks.now.left_out);
     if (again) {
+      this.banner.tag(this.look(this.looks.now).words);
       this.export.show();
       return returnTo(here, this.id);
     }
