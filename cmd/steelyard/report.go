@@ -146,7 +146,7 @@ func writeReport(c *cli.Context) error {
 	}
 	fmt.Fprintf(c.App.Writer, "%s: %s\n", folder, reportContents(files))
 	if static != "" {
-		fmt.Fprintln(c.App.Writer, "report.html shows the analysis as planned and computes no other: "+static)
+		fmt.Fprintln(c.App.ErrWriter, "steelyard: report.html shows the analysis as planned and computes no other: "+static)
 	}
 	return incomplete(s)
 }

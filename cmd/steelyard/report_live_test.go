@@ -95,11 +95,11 @@ func TestReportParts(t *testing.T) {
 func TestReportSaysStatic(t *testing.T) {
 	withoutFigures(t)
 	write := func(args ...string) string {
-		stdout, stderr, code := call(t, "", append([]string{"report", data + "demo.xlsx", "--out", filepath.Join(t.TempDir(), "out")}, args...)...)
+		_, stderr, code := call(t, "", append([]string{"report", data + "demo.xlsx", "--out", filepath.Join(t.TempDir(), "out")}, args...)...)
 		if code != codeDone && code != codeData {
 			t.Fatalf("exit %d, %s", code, stderr)
 		}
-		return stdout
+		return stderr
 	}
 	if got := write("--static"); !strings.Contains(got, "computes no other: as --static asks") {
 		t.Errorf("with --static the report says %q", got)
