@@ -39,10 +39,11 @@ class Banner {
   /**
    * @param {Look} now
    * @param {Facts | null} planned
-   * @param {Look[]} looks
+   * @param {Look[]} looks the latest
+   * @param {number} total of all looks
    * @param {{undo: boolean, redo: boolean}} can
    */
-  show(now, planned, looks, can) {
+  show(now, planned, looks, total, can) {
     const changed = now.words.length > 0;
     this.enable(this.undo, can.undo);
     this.enable(this.redo, can.redo);
@@ -54,7 +55,7 @@ class Banner {
     byId(this.id)?.classList.toggle("wi-changed", changed);
     this.tag(now.words);
     this.showStrip(now, planned);
-    this.showLog(looks);
+    this.showLog(looks, total);
   }
 
   /**
@@ -110,17 +111,21 @@ class Banner {
     if (focused) button.focus({ preventScroll: true });
   }
 
-  /** @param {Look[]} looks */
-  showLog(looks) {
-    this.log.hidden = looks.length === 0;
-    const list = make("ol", {});
+  /**
+   * Lists the latest variants; the exported result has all of them.
+   * @param {Look[]} looks the latest
+   * @param {number} total of all
+   */
+  showLog(looks, total) {
+    this.log.hidden = total === 0;
+    const list = make("ol", { start: String(total - looks.length + 1) });
     for (const look of looks) {
       const again = makeButton("Show again", () => this.acts.show(look.variant), { "aria-label": "Show again: " + look.words.join("; ") });
       list.append(make("li", {}, capitalised(look.words.join("; ")) + ": ", inShort(null, look.facts), " ", again));
     }
     const open = this.log.hasAttribute("open");
     const focused = this.log.contains(document.activeElement);
-    const summary = make("summary", {}, `${looks.length} ${looks.length === 1 ? "variant" : "variants"} looked at`);
+    const summary = make("summary", {}, `${total} ${total === 1 ? "variant" : "variants"} looked at`);
     this.log.replaceChildren(summary, make("p", { class: "wi-help" }, "Who looks at many analyses and shows one has chosen among them: say how many were looked at. This list goes with every exported result."), list);
     this.log.toggleAttribute("open", open);
     if (focused) summary.focus({ preventScroll: true });

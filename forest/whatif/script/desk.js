@@ -1,6 +1,9 @@
 // @ts-check
 "use strict";
 
+/** How many of the variants looked at are listed on the page, so that it stays quick. */
+const mostListed = 50;
+
 /** Everything that changes one outcome: its controls, its banner, and what was looked at. */
 class Desk {
   /** @param {HTMLElement} section the controls that the program wrote */
@@ -104,7 +107,8 @@ class Desk {
   show() {
     const look = this.look(this.looks.now);
     this.controls.show(this.looks.now);
-    this.banner.show(look, this.planned, this.looks.log.map((v) => this.look(v)), { undo: this.can("undo"), redo: this.can("redo") });
+    const { log } = this.looks;
+    this.banner.show(look, this.planned, log.slice(-mostListed).map((v) => this.look(v)), log.length, { undo: this.can("undo"), redo: this.can("redo") });
     this.export.show();
   }
 
