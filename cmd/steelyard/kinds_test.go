@@ -138,7 +138,7 @@ func TestBetaBlockers(t *testing.T) {
 			t.Errorf("trial %d: %.4f (%.4f), printed %v (%v)", i+1, s.Estimate, s.SE, want[i][4], want[i][5])
 		}
 	}
-	// REML mean −0.247494 (se 0.060531): PUBLISHED.md §3, recalculated there.
+	// restricted maximum likelihood: mean −0.247494 (se 0.060531): PUBLISHED.md §3, recalculated there.
 	d = pooledText(t, sheet, "--measure", "odds ratio", "--interval", "wald")
 	if p := d.Outcomes[0].Pooled; math.Abs(p.Estimate+0.247494) > 1e-5 || math.Abs(p.SE-0.060531) > 1e-5 {
 		t.Errorf("pooled %v (%v)", p.Estimate, p.SE)
