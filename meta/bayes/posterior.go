@@ -88,7 +88,10 @@ func PosteriorOf(y, s []float64, prior TauPrior, level float64) (*Posterior, err
 	if err := p.means(post); err != nil {
 		return nil, err
 	}
-	return post, p.mix(post)
+	if err := p.mix(post); err != nil {
+		return nil, err
+	}
+	return post, nil
 }
 
 // mix fills in what is normal given τ: the effect in a new setting, and each study's
