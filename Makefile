@@ -22,7 +22,7 @@ engine: ## build the engine that recomputes report pages, if its sources changed
 	else rm -f $(ENGINE); echo "xz was not found: building without the engine, so that report pages only show the analysis as planned (Debian: apt-get install xz-utils)"; fi
 
 $(ENGINE): $(ENGINE_SOURCES)
-	go run ./cmd/engine/pack
+	@go run ./cmd/engine/pack >/dev/null
 
 demo: build ## pool the published BCG trials and an invented workbook; charts and a report page go to out/
 	@mkdir -p out
