@@ -211,19 +211,7 @@ func TestBrowserWhatIfFits(t *testing.T) {
 		for _, width := range browserWidths {
 			b.call("Emulation.setDeviceMetricsOverride", map[string]any{"width": width, "height": 900, "deviceScaleFactor": 1, "mobile": false}, nil)
 			b.eval(`new Promise((give) => requestAnimationFrame(() => setTimeout(give, 50)))`, nil)
-			var wide []string
-			b.eval(`(() => {
-				const wide = document.documentElement.scrollWidth > innerWidth ? ['the page: ' + document.documentElement.scrollWidth] : [];
-				for (const e of document.querySelectorAll('.whatif *, .wi-strip *, .wi-tag, .wi-rows button')) {
-					if (e.closest('.vh, [hidden], option') || !e.getClientRects().length) continue;
-					const r = e.getBoundingClientRect();
-					if (r.right > innerWidth + 0.5 || r.left < -0.5) wide.push(e.tagName + '.' + e.className + ': ' + e.textContent.slice(0, 60));
-				}
-				return wide.slice(0, 5);
-			})()`, &wide)
-			if len(wide) > 0 {
-				t.Errorf("%s at %d px: beyond the window: %s", name, width, strings.Join(wide, "; "))
-			}
+			b.withinWindow(fmt.Sprintf("%s at %d px", name, width), ".whatif *, .wi-strip *, .wi-tag, .wi-rows button", ".vh, [hidden], option")
 			b.picture(fmt.Sprintf("what-if-%s-%d.png", name, width))
 		}
 	}

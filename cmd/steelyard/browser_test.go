@@ -40,24 +40,31 @@ func TestBrowserFits(t *testing.T) {
 		page := reportFile(t, sheet)
 		for _, width := range browserWidths {
 			b.open(page, width)
-			var wide []string
-			b.eval(`(() => {
-				const wide = document.documentElement.scrollWidth > innerWidth ? ['the page: ' + document.documentElement.scrollWidth] : [];
-				for (const e of document.querySelectorAll('main *, header *, nav *, footer *')) {
-					if (e.closest('.scroll, .beam, .vh, svg, [hidden]') || !e.getClientRects().length) continue;
-					const r = e.getBoundingClientRect();
-					if (r.right > innerWidth + 0.5 || r.left < -0.5) wide.push(e.tagName + '.' + e.className + ': ' + e.textContent.slice(0, 60));
-				}
-				return wide.slice(0, 5);
-			})()`, &wide)
-			if len(wide) > 0 {
-				t.Errorf("%s at %d px: beyond the window: %s", name, width, strings.Join(wide, "; "))
-			}
+			b.withinWindow(fmt.Sprintf("%s at %d px", name, width), "main *, header *, nav *, footer *", ".scroll, .beam, .vh, svg, [hidden]")
 			b.picture(fmt.Sprintf("%s-%d.png", name, width))
 		}
 	}
 	for _, complaint := range b.complaints() {
 		t.Errorf("%.400s", complaint)
+	}
+}
+
+// withinWindow reports the elements of a selector that stick out of the window, and a page
+// that does; those within the exceptions may.
+func (b *browser) withinWindow(what, selector, exceptions string) {
+	b.t.Helper()
+	var wide []string
+	b.eval(fmt.Sprintf(`(() => {
+		const wide = document.documentElement.scrollWidth > innerWidth ? ['the page: ' + document.documentElement.scrollWidth] : [];
+		for (const e of document.querySelectorAll(%q)) {
+			if (e.closest(%q) || !e.getClientRects().length) continue;
+			const r = e.getBoundingClientRect();
+			if (r.right > innerWidth + 0.5 || r.left < -0.5) wide.push(e.tagName + '.' + e.className + ': ' + e.textContent.slice(0, 60));
+		}
+		return wide.slice(0, 5);
+	})()`, selector, exceptions), &wide)
+	if len(wide) > 0 {
+		b.t.Errorf("%s: beyond the window: %s", what, strings.Join(wide, "; "))
 	}
 }
 
