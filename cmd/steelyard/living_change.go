@@ -53,16 +53,20 @@ func livingStart(c *cli.Context) error {
 	return incomplete(state.Synthesis)
 }
 
+// sheetAndLedger returns the call's format, its sheet and the folder of its ledger.
+func sheetAndLedger(c *cli.Context) (format answerFormat, path, dir string, err error) {
+	if format, err = outputWanted(c); err != nil {
+		return format, "", "", err
+	}
+	if path, err = oneFile(c); err != nil {
+		return format, "", "", err
+	}
+	dir, err = ledgerFolder(c)
+	return format, path, dir, err
+}
+
 func livingUpdate(c *cli.Context) error {
-	format, err := outputWanted(c)
-	if err != nil {
-		return err
-	}
-	path, err := oneFile(c)
-	if err != nil {
-		return err
-	}
-	dir, err := ledgerFolder(c)
+	format, path, dir, err := sheetAndLedger(c)
 	if err != nil {
 		return err
 	}

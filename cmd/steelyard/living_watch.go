@@ -22,15 +22,7 @@ var (
 )
 
 func livingWatch(c *cli.Context) error {
-	format, err := outputWanted(c)
-	if err != nil {
-		return err
-	}
-	path, err := oneFile(c)
-	if err != nil {
-		return err
-	}
-	dir, err := ledgerFolder(c)
+	format, path, dir, err := sheetAndLedger(c)
 	if err != nil {
 		return err
 	}
