@@ -70,9 +70,7 @@ func Benefit(in BenefitInput, style Style) (Document, error) {
 	if err := b.arrange(); err != nil {
 		return Document{}, err
 	}
-	doc := Document{Pages: []Drawing{b.page()}}
-	doc.Missing = missing(doc.Pages)
-	return doc, nil
+	return onePage(b.page()), nil
 }
 
 // arrange chooses the form, sizes, columns and axes.

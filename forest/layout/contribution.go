@@ -52,9 +52,7 @@ func Contribution(in ContributionInput, style Style) (Document, error) {
 	if err := c.arrange(); err != nil {
 		return Document{}, err
 	}
-	doc := Document{Pages: []Drawing{c.page()}}
-	doc.Missing = missing(doc.Pages)
-	return doc, nil
+	return onePage(c.page()), nil
 }
 
 func (in *ContributionInput) validate() error {

@@ -66,9 +66,7 @@ func Cumulative(in CumulativeInput, style Style) (Document, error) {
 	if err := c.arrange(); err != nil {
 		return Document{}, err
 	}
-	doc := Document{Pages: []Drawing{c.page()}}
-	doc.Missing = missing(doc.Pages)
-	return doc, nil
+	return onePage(c.page()), nil
 }
 
 // narrowBelow is the width in points under which charts take their narrow form.

@@ -13,6 +13,12 @@ type Document struct {
 	Missing []rune
 }
 
+// onePage is a document of one page.
+func onePage(page Drawing) Document {
+	pages := []Drawing{page}
+	return Document{Pages: pages, Missing: missing(pages)}
+}
+
 // Drawing is one page.
 type Drawing struct {
 	ID            string  // prefix of the ids in the SVG; unique on a page that holds several drawings

@@ -48,9 +48,7 @@ func Funnel(in FunnelInput, style Style) (Document, error) {
 	if err := c.arrange(); err != nil {
 		return Document{}, err
 	}
-	doc := Document{Pages: []Drawing{c.page()}}
-	doc.Missing = missing(doc.Pages)
-	return doc, nil
+	return onePage(c.page()), nil
 }
 
 // contoursOf returns the contours of a kind, from the innermost.

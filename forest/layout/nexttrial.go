@@ -54,9 +54,7 @@ func NextTrial(in NextTrialInput, style Style) (Document, error) {
 	if err := c.arrange(); err != nil {
 		return Document{}, err
 	}
-	doc := Document{Pages: []Drawing{c.page()}}
-	doc.Missing = missing(doc.Pages)
-	return doc, nil
+	return onePage(c.page()), nil
 }
 
 // arrange places the panel and its axis.

@@ -50,9 +50,7 @@ func PriorSensitivity(in PriorSensitivityInput, style Style) (Document, error) {
 	if err := c.arrange(); err != nil {
 		return Document{}, err
 	}
-	doc := Document{Pages: []Drawing{c.page()}}
-	doc.Missing = missing(doc.Pages)
-	return doc, nil
+	return onePage(c.page()), nil
 }
 
 // arrange places panel, axes and curves.

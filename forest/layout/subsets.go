@@ -56,9 +56,7 @@ func Subsets(in SubsetsInput, style Style) (Document, error) {
 	if err := c.arrange(); err != nil {
 		return Document{}, err
 	}
-	doc := Document{Pages: []Drawing{c.page()}}
-	doc.Missing = missing(doc.Pages)
-	return doc, nil
+	return onePage(c.page()), nil
 }
 
 // subsetsMetrics returns the type sizes of a chart of subsets.
