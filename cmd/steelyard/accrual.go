@@ -141,6 +141,25 @@ func (k accrualKind) command() *cli.Command {
 // cautions that belong to it.
 func accrualAnswer(s *synthesis.Synthesis, write func(*page, *synthesis.Synthesis, *synthesis.Outcome)) *page {
 	var p page
+	p.outcomes(s, func(o *synthesis.Outcome) {
+		if text := words.Rests(o); text != "" && !o.Analysis.NullMissing {
+			p.wrapped("", "Evidence: "+text)
+		}
+		p.line("")
+		if o.Accrual != nil {
+			write(&p, s, o)
+		}
+	})
+	p.line("")
+	p.flagged(s)
+	p.item("·", synthesis.AccrualCaution)
+	p.item("·", synthesis.EvidenceCaution(s.Forms()...))
+	return &p
+}
+
+// outcomes writes for each outcome what was pooled and left out, then what write adds
+// where there is a result, then what was assumed.
+func (p *page) outcomes(s *synthesis.Synthesis, write func(*synthesis.Outcome)) {
 	for i := range s.Outcomes {
 		o := &s.Outcomes[i]
 		if i > 0 {
@@ -153,20 +172,9 @@ func accrualAnswer(s *synthesis.Synthesis, write func(*page, *synthesis.Synthesi
 			continue
 		}
 		p.wrapped("", words.Pooled(s, o))
-		if text := words.Rests(o); text != "" && !o.Analysis.NullMissing {
-			p.wrapped("", "Evidence: "+text)
-		}
-		p.line("")
-		if o.Accrual != nil {
-			write(&p, s, o)
-		}
+		write(o)
 		for _, note := range o.Notes {
 			p.item("·", note)
 		}
 	}
-	p.line("")
-	p.flagged(s)
-	p.item("·", synthesis.AccrualCaution)
-	p.item("·", synthesis.EvidenceCaution(s.Forms()...))
-	return &p
 }

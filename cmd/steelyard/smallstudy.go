@@ -6,7 +6,6 @@ import (
 
 	"github.com/urfave/cli/v2"
 
-	"steelyard/forest/words"
 	"steelyard/meta/synthesis"
 )
 
@@ -55,24 +54,10 @@ func smallStudy(c *cli.Context) error {
 // results, and the cautions that belong to them.
 func smallStudyAnswer(s *synthesis.Synthesis) *page {
 	var p page
-	for i := range s.Outcomes {
-		o := &s.Outcomes[i]
-		if i > 0 {
-			p.line("")
-		}
-		p.line(heading(s, o))
-		p.leftOut(s, o)
-		if o.Result == nil {
-			p.wrapped("", "No result: "+o.Problem)
-			continue
-		}
-		p.wrapped("", words.Pooled(s, o))
+	p.outcomes(s, func(o *synthesis.Outcome) {
 		p.line("")
 		p.smallStudies(s, o)
-		for _, note := range o.Notes {
-			p.item("·", note)
-		}
-	}
+	})
 	p.line("")
 	p.line("Cautions")
 	p.flagged(s)
